@@ -1,0 +1,31 @@
+"""patlint finds mistakes in the regular expressions of Python code, and shows a text that proves each one.
+
+The names below are the library. They are imported when first used, so that `patlint --help` stays quick.
+"""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    from patlint.language import Language as Language
+    from patlint.run import lint_source as lint_source
+
+__version__ = "0.1.0"
+
+_HOMES = {
+    "Language": "patlint.language",
+    "lint_source": "patlint.run",
+}
+
+__all__ = ["Language", "__version__", "lint_source"]
+
+
+def __getattr__(name: str) -> object:
+    if name not in _HOMES:
+        raise AttributeError(f"module 'patlint' has no attribute {name!r}")
+    from importlib import import_module
+
+    value: object = getattr(import_module(_HOMES[name]), name)
+    globals()[name] = value
+    return value

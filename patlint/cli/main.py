@@ -1,0 +1,84 @@
+"""The entry point: finds the command, imports it alone, and turns what goes wrong into one line and a status.
+
+Status: 0 nothing at or above `--fail-on`, 1 findings, 2 a wrong call, a wrong configuration, or a file that
+could not be read or parsed, 130 interrupted.
+"""
+
+from __future__ import annotations
+
+import sys
+from collections.abc import Sequence
+from typing import Final
+
+COMMANDS: Final = {
+    "lint": "find mistakes in the patterns of Python files",
+    "list": "list every pattern with its place, its flags and how it is used",
+    "inspect": "show everything that is known about one pattern",
+    "rules": "list the rules, or explain one with an example",
+}
+
+EXIT_WRONG: Final = 2
+EXIT_INTERRUPTED: Final = 130
+
+_HELP: Final = """\
+patlint COMMAND [OPTIONS] ...
+
+Finds mistakes in the regular expressions of Python code. Each finding comes
+with a text that shows it on `re`, or with a proof.
+
+commands:
+{commands}
+
+  patlint COMMAND --help   the options of a command
+  patlint --version        the version
+
+exit status: 0 nothing found, 1 findings, 2 a wrong call or configuration, or
+a file that could not be read
+"""
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run the command line `arguments` (default: those of the process) and give the exit status."""
+    given = list(sys.argv[1:] if arguments is None else arguments)
+    try:
+        return _run(given)
+    except KeyboardInterrupt:
+        return EXIT_INTERRUPTED
+
+
+def complain(message: str) -> int:
+    """Say one line on standard error; the exit status of a wrong call."""
+    print(f"patlint: {message}", file=sys.stderr)
+    return EXIT_WRONG
+
+
+def _run(given: list[str]) -> int:
+    if not given:
+        return complain("no command; see patlint --help")
+    command, rest = given[0], given[1:]
+    if command in ("-h", "--help"):
+        print(
+            _HELP.format(commands="\n".join(f"  {name:<9}{what}" for name, what in COMMANDS.items())), end=""
+        )
+        return 0
+    if command == "--version":
+        from patlint import __version__
+
+        print(f"patlint {__version__}")
+        return 0
+    if command not in COMMANDS:
+        from patlint.nearest import nearest
+
+        words = ("--help", "--version") if command.startswith("-") else tuple(COMMANDS)
+        kind = "option" if command.startswith("-") else "command"
+        return complain(f"unknown {kind} {command!r}{nearest(command, words)}")
+    from importlib import import_module
+
+    from patlint.cli.arguments import CallError
+    from patlint.config import ConfigError
+
+    try:
+        status = import_module(f"patlint.cli.{command}").run(rest)
+    except (CallError, ConfigError) as error:
+        return complain(str(error))
+    return int(status)

@@ -1,0 +1,67 @@
+"""`patlint rules`: the rules in one line each, or the page of one with its example linted on the spot."""
+
+from __future__ import annotations
+
+import textwrap
+from collections.abc import Iterator, Sequence
+from typing import TYPE_CHECKING
+
+from patlint.cli.arguments import CallError, Parser
+from patlint.cli.screen import output, style
+from patlint.nearest import nearest
+
+if TYPE_CHECKING:
+    from patlint.report.text import Style
+    from patlint.rules.finding import Rule
+
+
+def parser() -> Parser:
+    """The arguments of the command."""
+    made = Parser("rules", "[RULE]", "List the rules, or explain one with an example.")
+    made.add_argument("rule", nargs="?", metavar="RULE", help="the rule to explain (default: list all)")
+    return made
+
+
+def run(given: Sequence[str]) -> int:
+    """Run the command; the exit status."""
+    options = parser().read(given)
+    from patlint.rules.registry import RULES
+
+    if options.rule is None:
+        lines = list(_table(RULES))
+    else:
+        named = {rule.name: rule for rule in RULES}
+        if options.rule not in named:
+            raise CallError(f"unknown rule {options.rule!r}{nearest(options.rule, named)}")
+        lines = list(_page(named[options.rule], style()))
+    with output() as write:
+        for line in lines:
+            write(line + "\n")
+    return 0
+
+
+def _table(rules: Sequence[Rule]) -> Iterator[str]:
+    from patlint.config import OFF_BY_DEFAULT
+
+    widest = max((len(rule.name) for rule in rules), default=0)
+    for rule in rules:
+        level = f"{rule.level}, off" if rule.name in OFF_BY_DEFAULT else rule.level
+        yield f"{rule.name:<{widest}}  {level:<9} {rule.summary}"
+
+
+def _page(rule: Rule, style: Style) -> Iterator[str]:
+    from patlint.report.text import finding_block
+    from patlint.run import lint_source
+
+    yield f"{rule.name} ({rule.level}): {rule.summary}"
+    yield ""
+    yield from rule.page.strip().splitlines()
+    for title, example in (("Found:", rule.wrong), ("Not found:", rule.right)):
+        yield ""
+        yield f"{title} {example.says}".rstrip()
+        yield ""
+        yield from textwrap.indent(example.source.strip("\n"), "    ").splitlines()
+        findings = [each for each in lint_source(example.source, "example.py") if each.rule == rule.name]
+        for finding in findings:
+            yield ""
+            yield from finding_block(finding, style)

@@ -1,0 +1,92 @@
+"""Every pattern in the code, without judging it: what `patlint list` prints.
+
+>>> inventory = inventory_of(b"import re\\nre.match('a+', input())\\n", "x.py", (3, 12))
+>>> [each.pattern for each in inventory.patterns]
+['a+']
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from patlint.outcome import Remark, failed, internal, site_flag_names
+from patlint.source.sites import LooksAt, Site
+from patlint.target import Target
+
+_MODES = ("match", "fullmatch", "search")
+_LOOKS: tuple[LooksAt, ...] = ("truth", "span", "groups", "unknown")
+
+
+@dataclass(frozen=True, slots=True)
+class Listed:
+    """One pattern: its place, flags by name (inline ones too), modes, and the most that is looked at."""
+
+    path: str
+    line: int
+    column: int
+    end_line: int
+    end_column: int
+    pattern: str | bytes
+    flags: tuple[str, ...]
+    modes: tuple[str, ...]
+    looks_at: LooksAt
+
+
+@dataclass(frozen=True, slots=True)
+class Inventory:
+    """The patterns of one file; `problems` are lines for standard error."""
+
+    path: str
+    patterns: tuple[Listed, ...] = ()
+    unresolved: tuple[Remark, ...] = ()
+    problems: tuple[str, ...] = ()
+
+
+def inventory_of(data: bytes, path: str, target: Target) -> Inventory:
+    """The patterns of a file with content `data`. Raises nothing but KeyboardInterrupt."""
+    from patlint.source import SourceError, read_module
+
+    try:
+        module = read_module(data, path)
+    except SourceError as error:
+        return Inventory(path, problems=failed(path, error.message, error.line).problems)
+    except (RecursionError, MemoryError):
+        return Inventory(path, problems=failed(path, "nested too deeply to be read").problems)
+    except Exception as error:
+        return Inventory(path, problems=failed(path, internal(error)).problems)
+    return Inventory(
+        path,
+        tuple(_listed(site, target) for site in module.sites),
+        tuple(
+            Remark(each.place.line, each.place.column, f"{each.function}: {each.reason}")
+            for each in module.unresolved
+        ),
+    )
+
+
+def looks_at(site: Site) -> LooksAt:
+    """The most that any use of `site` looks at; unknown where not all uses are seen."""
+    if not site.uses_seen or not site.uses:
+        return "unknown"
+    return max((use.looks_at for use in site.uses), key=_LOOKS.index)
+
+
+def modes(site: Site) -> tuple[str, ...]:
+    """The modes of `site`'s seen uses, each once, in a fixed order."""
+    used = {use.mode for use in site.uses}
+    return tuple(mode for mode in _MODES if mode in used)
+
+
+def _listed(site: Site, target: Target) -> Listed:
+    place = site.place
+    return Listed(
+        site.path,
+        place.line,
+        place.column,
+        place.end_line,
+        place.end_column,
+        site.pattern,
+        site_flag_names(site, target),
+        modes(site),
+        looks_at(site),
+    )

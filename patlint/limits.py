@@ -1,0 +1,43 @@
+"""Named limits: counts, never seconds, so that the same input gives the same answer on every machine.
+
+Reaching a limit is a value the caller can see, of another type than "your input is wrong":
+`LimitReached` names the limit, and a rule that meets it says nothing about the pattern.
+
+Each limit has a unit, a default and a worked number beside it. All can be set in
+`[tool.patlint.limits]` under the names used here.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+
+class LimitReached(Exception):
+    """patlint stopped: `limit` is the field of `Limits`, `value` its setting."""
+
+    def __init__(self, limit: str, value: int) -> None:
+        super().__init__(f"limit {limit} reached ({value})")
+        self.limit = limit
+        self.value = value
+
+
+@dataclass(frozen=True, slots=True)
+class Limits:
+    """How far each computation may go."""
+
+    nesting: int = 100
+    """Groups inside groups. Every recursive walk of a tree relies on it; `re` itself gives up near 500."""
+    instructions: int = 20_000
+    """Instructions of one program. `(?:[a-z]{2}-){1,3000}` needs 9,000."""
+    states: int = 2_000
+    """States of one automaton while it is built. `(a|b)*a(a|b){10}` needs 2,048."""
+    work: int = 400_000
+    """Thread steps (threads of a state times minterms) of one determinisation, about 0.3 s."""
+    product: int = 20_000
+    """Pairs of states visited by one comparison of two automata."""
+    turns: int = 60_000
+    """Instructions that the backtracking matcher dispatches in one confirmation of a slow text, about 60 ms.
+    A scan over a run of characters is one turn but as many steps."""
+
+
+DEFAULT_LIMITS = Limits()

@@ -1,0 +1,1 @@
+"""Tree -> program -> automata, and what can be asked of them."""

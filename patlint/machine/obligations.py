@@ -1,0 +1,94 @@
+"""Obligations: what must be true of the rest of a text.
+
+An obligation is a state of a minimal automaton over the program's minterms, told by a small integer: the
+rest of the text must be in that state's language. Equal languages have equal integers. ALL asks nothing, NONE
+cannot be met. Obligations are stepped with each character that is read (`step`) and judged at the end of the
+text (`holds_at_end`).
+
+Interning an automaton of n states costs a minimisation of the n states together with all known ones.
+"""
+
+from __future__ import annotations
+
+from patlint.machine.minimise import equivalence
+
+ALL = 0
+NONE = 1
+
+
+class Obligations:
+    """The obligations of one program; `table[i][minterm]` is the obligation after reading a character."""
+
+    def __init__(self, width: int) -> None:
+        self.width = width
+        self.table: list[tuple[int, ...]] = [(ALL,) * width, (NONE,) * width]
+        self.at_end: list[bool] = [True, False]
+        self._complements: dict[int, int] = {ALL: NONE, NONE: ALL}
+        self._simple: dict[tuple[int, bool, bool], int] = {}
+        self._steps: dict[tuple[frozenset[int], int], frozenset[int] | None] = {}
+
+    def intern(self, table: list[tuple[int, ...]], accepting: list[bool]) -> list[int]:
+        """The obligation of each state of a complete automaton."""
+        known = len(self.table)
+        joined = self.table + [tuple(target + known for target in row) for row in table]
+        ends = self.at_end + accepting
+        classes = equivalence(joined, [int(end) for end in ends])
+        number: dict[int, int] = {}
+        for state in range(known):
+            number[classes[state]] = state
+        fresh: list[int] = []
+        for state in range(known, len(joined)):
+            if classes[state] not in number:
+                number[classes[state]] = known + len(fresh)
+                fresh.append(state)
+        for state in fresh:
+            self.table.append(tuple(number[classes[target]] for target in joined[state]))
+            self.at_end.append(ends[state])
+        return [number[classes[known + state]] for state in range(len(table))]
+
+    def next_in(self, mask: int, or_end: bool) -> int:
+        """The rest begins with a character of the minterms in `mask`; with `or_end` it may be empty too."""
+        key = (mask, or_end, False)
+        if key not in self._simple:
+            row = tuple(1 if mask >> minterm & 1 else 2 for minterm in range(self.width))
+            table = [row, (1,) * self.width, (2,) * self.width]
+            self._simple[key] = self.intern(table, [or_end, True, False])[0]
+        return self._simple[key]
+
+    def final(self, newline: int) -> int:
+        """The rest is empty or one line feed (`newline`: its minterm as a mask)."""
+        key = (newline, True, True)
+        if key not in self._simple:
+            row = tuple(1 if newline >> minterm & 1 else 2 for minterm in range(self.width))
+            table = [row, (2,) * self.width, (2,) * self.width]
+            self._simple[key] = self.intern(table, [True, True, False])[0]
+        return self._simple[key]
+
+    def complement(self, obligation: int) -> int:
+        found = self._complements.get(obligation)
+        if found is None:
+            order = [obligation]
+            index = {obligation: 0}
+            for state in order:
+                for target in self.table[state]:
+                    if target not in index:
+                        index[target] = len(order)
+                        order.append(target)
+            table = [tuple(index[target] for target in self.table[state]) for state in order]
+            found = self.intern(table, [not self.at_end[state] for state in order])[0]
+            self._complements[obligation] = found
+            self._complements[found] = obligation
+        return found
+
+    def step(self, duty: frozenset[int], minterm: int) -> frozenset[int] | None:
+        """A conjunction of obligations after a character; None where it cannot be met any more."""
+        key = (duty, minterm)
+        if key not in self._steps:
+            after = {self.table[obligation][minterm] for obligation in duty}
+            after.discard(ALL)
+            dead = NONE in after or any(self._complements.get(one) in after for one in after)
+            self._steps[key] = None if dead else frozenset(after)
+        return self._steps[key]
+
+    def holds_at_end(self, duty: frozenset[int]) -> bool:
+        return all(self.at_end[obligation] for obligation in duty)

@@ -1,0 +1,135 @@
+"""Texts of a language: the shortest, the first ones, how many of a length, samples.
+
+Texts are tuples of code points (or of bytes). Where any character of a minterm would do, the most readable is
+taken, so `shortest` and `words` show one text for each path through the automaton.
+"""
+
+from __future__ import annotations
+
+import random
+from collections.abc import Iterator
+
+from patlint.machine.alphabet import representative
+from patlint.machine.dfa import Dfa
+
+Codes = tuple[int, ...]
+
+
+def distances(dfa: Dfa) -> list[int | None]:
+    """For each state the length of a shortest text from it to acceptance, None where there is none."""
+    before: list[set[int]] = [set() for _ in dfa.table]
+    for state, row in enumerate(dfa.table):
+        for target in row:
+            before[target].add(state)
+    out: list[int | None] = [0 if end else None for end in dfa.accepting]
+    order = [state for state, end in enumerate(dfa.accepting) if end]
+    for state in order:
+        for source in before[state]:
+            if out[source] is None:
+                out[source] = (out[state] or 0) + 1
+                order.append(source)
+    return out
+
+
+def is_empty(dfa: Dfa) -> bool:
+    return distances(dfa)[0] is None
+
+
+def shortest(dfa: Dfa) -> Codes | None:
+    """A shortest text, the most readable among those, or None where the language is empty."""
+    left = distances(dfa)
+    if left[0] is None:
+        return None
+    state, codes = 0, []
+    while left[state]:
+        closer = [m for m, target in enumerate(dfa.table[state]) if left[target] == (left[state] or 0) - 1]
+        letter, minterm = min(((representative(dfa.alphabet.classes[m]), m) for m in closer), key=_rank)
+        codes.append(letter)
+        state = dfa.table[state][minterm]
+    return tuple(codes)
+
+
+def _rank(move: tuple[int, int]) -> tuple[bool, bool, int]:
+    letter = move[0]
+    return not 32 < letter < 127, letter < 32, letter
+
+
+def words(dfa: Dfa) -> Iterator[Codes]:
+    """Texts in the order of their length, one for each path; endless where the language is infinite."""
+    left = distances(dfa)
+    if left[0] is None:
+        return
+    letters = sorted(
+        ((representative(chars), minterm) for minterm, chars in enumerate(dfa.alphabet.classes)),
+        key=_rank,
+    )
+    layer: list[tuple[Codes, int]] = [((), 0)]
+    while layer:
+        for codes, state in layer:
+            if dfa.accepting[state]:
+                yield codes
+        layer = [
+            ((*codes, letter), dfa.table[state][minterm])
+            for codes, state in layer
+            for letter, minterm in letters
+            if left[dfa.table[state][minterm]] is not None
+        ]
+        if len(layer) > 50_000:
+            layer = layer[:50_000]
+
+
+def count(dfa: Dfa, length: int) -> int:
+    """How many texts of `length` characters are in the language."""
+    sizes = [chars.size() for chars in dfa.alphabet.classes]
+    ways = [int(end) for end in dfa.accepting]
+    steps: list[dict[int, int]] = []
+    for row in dfa.table:
+        weights: dict[int, int] = {}
+        for target, size in zip(row, sizes, strict=True):
+            weights[target] = weights.get(target, 0) + size
+        steps.append(weights)
+    for _ in range(length):
+        ways = [sum(size * ways[target] for target, size in weights.items()) for weights in steps]
+    return ways[0]
+
+
+def total(dfa: Dfa) -> int | None:
+    """How many texts are in the language, None where it is infinite."""
+    useful = [distance is not None for distance in distances(dfa)]
+    longest = 0
+    states = {0} if useful[0] else set()
+    while states:
+        if longest > len(dfa):
+            return None
+        longest += 1
+        states = {target for state in states for target in dfa.table[state] if useful[target]}
+    return sum(count(dfa, length) for length in range(longest))
+
+
+def sample(dfa: Dfa, seed: int, number: int, extra: int = 6) -> list[Codes]:
+    """`number` texts by random walks that head for acceptance after about `extra` further characters."""
+    left = distances(dfa)
+    if left[0] is None:
+        return []
+    generator = random.Random(seed)
+    out = []
+    classes = [list(chars.ranges()) for chars in dfa.alphabet.classes]
+    for _ in range(number):
+        state, codes, budget = 0, [], generator.randint(0, extra)
+        while True:
+            if dfa.accepting[state] and (budget <= 0 or generator.random() < 0.3):
+                break
+            here = left[state] or 0
+            moves = [m for m, target in enumerate(dfa.table[state]) if left[target] is not None]
+            if budget <= 0:
+                closer = [m for m in moves if (left[dfa.table[state][m]] or 0) < here]
+                moves = closer or moves
+            if not moves:
+                break
+            minterm = generator.choice(moves)
+            low, high = generator.choice(classes[minterm])
+            codes.append(generator.choice((low, high, generator.randint(low, high))))
+            state = dfa.table[state][minterm]
+            budget -= 1
+        out.append(tuple(codes))
+    return out

@@ -1,0 +1,273 @@
+"""One file's bytes to its outcome: findings at their levels, what was waived, and what stayed open.
+
+`lint_bytes` reads the file, asks every enabled rule about every site, gives each finding the level that the
+configuration wants, and takes out what a waiver waives. A waiver that waives nothing becomes a `stale-waiver`
+finding, but only where that is certain: all of its rules were on and no limit cut a question short beside it.
+
+An error inside patlint itself is held to the one pattern that caused it and told in `problems`.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass, field
+from typing import Any, Final
+
+from patlint.config import LevelName, Settings
+from patlint.nearest import nearest
+from patlint.placed import PlacedFinding, decode, encode, place_finding
+from patlint.rules.finding import Level
+from patlint.source.sites import Module, Site, Waiver
+from patlint.syntax.tree import FLAG_NAMES, UNICODE
+
+STALE: Final = "stale-waiver"
+
+
+@dataclass(frozen=True, slots=True)
+class Remark:
+    """Something about one place that is no finding: unresolved, inexact or undecided, and why."""
+
+    line: int
+    column: int
+    reason: str
+
+
+@dataclass(frozen=True, slots=True)
+class Outcome:
+    """What linting one file gave.
+
+    `problems` are whole lines for standard error; they make the run exit with 2.
+    `linted` is False where the file could not be read or parsed.
+    """
+
+    path: str
+    findings: tuple[PlacedFinding, ...] = ()
+    patterns: int = 0
+    waived: int = 0
+    unresolved: tuple[Remark, ...] = ()
+    inexact: tuple[Remark, ...] = ()
+    undecided: tuple[Remark, ...] = ()
+    problems: tuple[str, ...] = ()
+    linted: bool = True
+
+
+@dataclass(slots=True)
+class _Tally:
+    """One file in the making."""
+
+    placed: list[tuple[PlacedFinding, Site]] = field(default_factory=list)
+    inexact: list[Remark] = field(default_factory=list)
+    undecided: list[Remark] = field(default_factory=list)
+    undecided_lines: set[int] = field(default_factory=set)
+    problems: list[str] = field(default_factory=list)
+
+
+def lint_bytes(data: bytes, path: str, settings: Settings) -> Outcome:
+    """The outcome of a file with content `data`, named `path`. Raises nothing but KeyboardInterrupt."""
+    from patlint.source import SourceError, read_module  # libcst is slow to import
+
+    try:
+        module = read_module(data, path)
+    except SourceError as error:
+        return failed(path, error.message, error.line)
+    except (RecursionError, MemoryError):
+        return failed(path, "nested too deeply to be read")
+    except Exception as error:
+        return failed(path, internal(error))
+    return lint_module(module, settings)
+
+
+def lint_module(module: Module, settings: Settings) -> Outcome:
+    """The outcome of a file that has been read."""
+    enabled, levels = settings.for_path(module.path)
+    tally = _Tally()
+    for site in module.sites:
+        _check(site, settings, enabled, levels, tally)
+    kept, waived, used = _waive(tally.placed, module.waivers)
+    stale, stale_waived = _stale_waivers(module, settings, enabled, levels, used, tally.undecided_lines)
+    return Outcome(
+        path=module.path,
+        findings=tuple(sorted(kept + stale, key=lambda each: each.sort_key)),
+        patterns=len(module.sites),
+        waived=waived + stale_waived,
+        unresolved=tuple(
+            Remark(each.place.line, each.place.column, f"{each.function}: {each.reason}")
+            for each in module.unresolved
+        ),
+        inexact=tuple(tally.inexact),
+        undecided=tuple(tally.undecided),
+        problems=tuple(tally.problems),
+    )
+
+
+def failed(path: str, message: str, line: int | None = None) -> Outcome:
+    """The outcome of a file that could not be read or parsed."""
+    where = f"{path}:{line}" if line else path
+    return Outcome(path, problems=(f"{where}: {message}",), linted=False)
+
+
+def internal(error: BaseException) -> str:
+    """One line about an error of patlint's own: what and where in the code."""
+    trace = error.__traceback__
+    while trace is not None and trace.tb_next is not None:
+        trace = trace.tb_next
+    where = ""
+    if trace is not None:
+        code = trace.tb_frame.f_code
+        where = f" at {code.co_filename.replace(chr(92), '/').rpartition('/')[2]}:{trace.tb_lineno}"
+    said = " ".join(str(error).split())
+    return f"patlint itself failed here ({type(error).__name__}{where}{': ' + said if said else ''})"
+
+
+def flag_names(flags: int, explicit: int) -> tuple[str, ...]:
+    """The names of `flags`; UNICODE, which every text pattern has, only if `explicit` holds it."""
+    shown = flags & ~UNICODE | explicit & UNICODE
+    return tuple(name for bit, name in FLAG_NAMES.items() if shown & bit)
+
+
+def site_flag_names(site: Site, target: tuple[int, int]) -> tuple[str, ...]:
+    """The names of the flags that `site`'s pattern has under `target`, inline ones included."""
+    from patlint.limits import LimitReached
+    from patlint.syntax.parser import PatternError, parse
+
+    try:
+        parsed = parse(site.pattern, site.flags, target)
+    except (PatternError, LimitReached):
+        return flag_names(site.flags, site.flags)
+    return flag_names(parsed.flags, site.flags | parsed.inline)
+
+
+def _check(
+    site: Site, settings: Settings, enabled: frozenset[str], levels: dict[str, LevelName], tally: _Tally
+) -> None:
+    from patlint.rules import check_site
+
+    line, column = site.place.line, site.place.column
+    try:
+        checked = check_site(site, settings.target, settings.limits, enabled)
+        flags = site_flag_names(site, settings.target) if checked.findings else ()
+        for finding in checked.findings:
+            level = _level(finding.rule, finding.level, levels)
+            tally.placed.append((place_finding(finding, site, level, flags), site))
+    except Exception as error:
+        tally.problems.append(f"{site.path}:{line}:{column}: {internal(error)}")
+        tally.undecided_lines |= _lines(site)
+        return
+    if checked.inexact:
+        tally.inexact.append(Remark(line, column, "; ".join(checked.inexact)))
+    if checked.undecided:
+        tally.undecided.append(Remark(line, column, "; ".join(checked.undecided)))
+        tally.undecided_lines |= _lines(site)
+
+
+def _level(rule: str, own: Level, levels: dict[str, LevelName]) -> Level:
+    given = levels.get(rule)
+    return own if given is None or given == "off" else given
+
+
+def _lines(site: Site) -> set[int]:
+    """The lines at which a waiver of this site's findings may aim."""
+    return {site.statement, *range(site.place.line, site.place.end_line + 1)}
+
+
+def _waive(
+    placed: Iterable[tuple[PlacedFinding, Site]], waivers: tuple[Waiver, ...]
+) -> tuple[list[PlacedFinding], int, set[tuple[int, str]]]:
+    """The findings that stay, the number of those that do not, the (waiver, rule) pairs that were of use."""
+    kept: list[PlacedFinding] = []
+    used: set[tuple[int, str]] = set()
+    waived = 0
+    for finding, site in placed:
+        lines = _lines(site) | {finding.line}
+        hits = {
+            (index, finding.rule)
+            for index, waiver in enumerate(waivers)
+            if finding.rule in waiver.rules and not lines.isdisjoint(waiver.target_lines)
+        }
+        used |= hits
+        if hits:
+            waived += 1
+        else:
+            kept.append(finding)
+    return kept, waived, used
+
+
+def _stale_waivers(
+    module: Module,
+    settings: Settings,
+    enabled: frozenset[str],
+    levels: dict[str, LevelName],
+    used: set[tuple[int, str]],
+    undecided: set[int],
+) -> tuple[list[PlacedFinding], int]:
+    if STALE not in enabled:
+        return [], 0
+    out: list[PlacedFinding] = []
+    waived = 0
+    for index, waiver in enumerate(module.waivers):
+        message = _staleness(index, waiver, settings, enabled, used, undecided)
+        if message is None:
+            continue
+        if STALE in waiver.rules:
+            waived += 1
+            continue
+        place = waiver.place
+        out.append(
+            PlacedFinding(
+                rule=STALE,
+                level=_level(STALE, "warning", levels),
+                path=module.path,
+                line=place.line,
+                column=place.column,
+                end_line=place.end_line,
+                end_column=place.end_column,
+                message=message,
+                way_out="correct the name"
+                if "unknown rule" in message
+                else "delete the comment, or the rule from it",
+            )
+        )
+    return out, waived
+
+
+def _staleness(
+    index: int,
+    waiver: Waiver,
+    settings: Settings,
+    enabled: frozenset[str],
+    used: set[tuple[int, str]],
+    undecided: set[int],
+) -> str | None:
+    """What is wrong with a waiver, None where it is of use or that cannot be told."""
+    if not waiver.rules:
+        return "this waiver names no rule"
+    for rule in waiver.rules:
+        if rule not in settings.rules:
+            return f"this waiver names an unknown rule {rule!r}{nearest(rule, settings.rules)}"
+    if not undecided.isdisjoint(waiver.target_lines):
+        return None
+    idle = [rule for rule in waiver.rules if rule in enabled and rule != STALE and (index, rule) not in used]
+    if not idle:
+        return None
+    return f"nothing here needs the waiver of {' and '.join(idle)}"
+
+
+def to_values(outcome: Outcome) -> tuple[Any, ...]:
+    """`outcome` as nested tuples of plain values, for the cache."""
+    remarks = (outcome.unresolved, outcome.inexact, outcome.undecided)
+    return (
+        outcome.path,
+        tuple(encode(each) for each in outcome.findings),
+        outcome.patterns,
+        outcome.waived,
+        *(tuple((each.line, each.column, each.reason) for each in group) for group in remarks),
+    )
+
+
+def from_values(values: tuple[Any, ...]) -> Outcome:
+    """The inverse of `to_values`; TypeError or ValueError where `values` is something else."""
+    path, findings, patterns, waived, *groups = values
+    unresolved, inexact, undecided = (tuple(Remark(*each) for each in group) for group in groups)
+    return Outcome(
+        path, tuple(decode(each) for each in findings), patterns, waived, unresolved, inexact, undecided
+    )

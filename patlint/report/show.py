@@ -1,0 +1,87 @@
+r"""How patterns and texts are shown: as Python expressions, and as lines of a terminal with parts underlined.
+
+`expression` gives what can be pasted into Python. `cells` gives one piece of display text for each character
+of a pattern: itself where it is printable and fills whole columns, else an escape, so that an underline
+stays in line: control and format characters, combining marks, letters written from right to left, and what
+the output's encoding lacks are escaped; wide characters count two columns.
+
+>>> expression("a" * 30 + "!"), expression("a\nb"), expression(b"\xff")
+("'a' * 30 + '!'", "'a\\nb'", "b'\\xff'")
+>>> cells("a\t\u0301")
+('a', '\\t', '\\u0301')
+"""
+
+from __future__ import annotations
+
+import unicodedata
+from typing import Final
+
+from patlint.rules.finding import SlowWitness, TextWitness, Witness
+
+REPEATS: Final = 30
+"""How often a slow text shows its pump when the rule measured nothing."""
+LONG_RUN: Final = 12
+"""A run of one character of this length or more is shown as `'x' * n`."""
+
+
+def expression(text: str | bytes) -> str:
+    """`text` as a Python expression in ASCII, long runs of one character as products."""
+    parts: list[str] = []
+    start = at = 0
+    while at < len(text):
+        end = at + 1
+        while end < len(text) and text[end] == text[at]:
+            end += 1
+        if end - at >= LONG_RUN:
+            if start < at:
+                parts.append(ascii(text[start:at]))
+            parts.append(f"{ascii(text[at : at + 1])} * {end - at}")
+            start = end
+        at = end
+    if start < len(text) or not parts:
+        parts.append(ascii(text[start:]))
+    return " + ".join(parts)
+
+
+def witness_expression(witness: Witness) -> str:
+    """The text of a witness as a Python expression; a slow one with its pump often enough to be seen."""
+    match witness:
+        case TextWitness():
+            return expression(witness.text)
+        case SlowWitness():
+            count = max((each[0] for each in witness.steps), default=REPEATS)
+            parts = [ascii(witness.prefix)] if witness.prefix else []
+            parts.append(f"{ascii(witness.pump)} * {count}")
+            if witness.suffix:
+                parts.append(ascii(witness.suffix))
+            return " + ".join(parts)
+
+
+def cells(text: str | bytes, encoding: str = "utf-8") -> tuple[str, ...]:
+    """The display of each character of `text`."""
+    if isinstance(text, bytes):
+        return tuple(chr(byte) if 32 <= byte < 127 else _byte_escape(byte) for byte in text)
+    return tuple(_cell(char, encoding) for char in text)
+
+
+def width(shown: str) -> int:
+    """The columns that a piece of display text fills."""
+    return sum(2 if unicodedata.east_asian_width(char) in "WF" else 1 for char in shown)
+
+
+def _cell(char: str, encoding: str) -> str:
+    if " " <= char <= "~":
+        return char
+    if not char.isprintable() or unicodedata.category(char)[0] == "M":
+        return ascii(char)[1:-1]
+    if unicodedata.bidirectional(char) in ("R", "AL", "AN"):
+        return ascii(char)[1:-1]
+    try:
+        char.encode(encoding)
+    except (UnicodeEncodeError, LookupError):
+        return ascii(char)[1:-1]
+    return char
+
+
+def _byte_escape(byte: int) -> str:
+    return ascii(chr(byte))[1:-1]

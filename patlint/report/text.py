@@ -1,0 +1,229 @@
+"""The report for people: one block a finding, one summary line at the end.
+
+    shop.py:4:20: error: exponential-ambiguity: time doubles with each 'a'
+      pattern  ^(a+)+$
+                =====
+      text     'a' * 30 + '!'
+      advice   ...
+
+The first line has the form `path:line:column: level: rule: message`, which editors read (GNU coding
+standards, "Formatting Error Messages"). Below stand the pattern with the part in question (`=`) and others it
+is about (`-`; a place between two characters is `|`), the evidence, a text that can be pasted into Python,
+what could stand instead, places elsewhere, advice. Of a long pattern the neighbourhood of the part is shown,
+of a pattern over several lines (VERBOSE) the lines concerned.
+"""
+
+from __future__ import annotations
+
+import textwrap
+from collections.abc import Iterator
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Final
+
+from patlint.placed import PlacedFinding
+from patlint.report.json import summary
+from patlint.report.show import cells, expression, width, witness_expression
+from patlint.rules.finding import LEVELS
+
+if TYPE_CHECKING:
+    from patlint.outcome import Outcome
+    from patlint.run import RunResult
+
+LABEL: Final = 11
+"""Columns before the text of a row: two blanks, a label, at least one blank."""
+MOST_LINES: Final = 3
+"""Lines that are shown of a pattern over several lines."""
+CUT: Final = "..."
+_COLOURS: Final = {"error": "1;31", "warning": "1;33", "note": "1;34", "label": "2"}
+_KEEPS: Final = {
+    "language": "takes the same texts",
+    "spans": "takes the same texts with the same spans",
+    "groups": "takes the same texts with the same spans and groups",
+}
+
+
+@dataclass(frozen=True, slots=True)
+class Style:
+    """`columns` of the output, its `encoding`, and whether it shows colours."""
+
+    columns: int = 80
+    encoding: str = "utf-8"
+    colour: bool = False
+
+    def paint(self, text: str, kind: str) -> str:
+        """`text` in the colour of a level or a label."""
+        return f"\x1b[{_COLOURS[kind]}m{text}\x1b[0m" if self.colour and text else text
+
+
+def lint_report(result: RunResult, style: Style, verbose: bool = False) -> Iterator[str]:
+    """The report of a run as lines without line feeds."""
+    for finding in result.findings:
+        yield from finding_block(finding, style)
+        yield ""
+    if verbose:
+        remarks = [line for each in result.outcomes for line in _remarks(each)]
+        if remarks:
+            yield from remarks
+            yield ""
+    yield summary_line(result)
+
+
+def finding_block(finding: PlacedFinding, style: Style) -> Iterator[str]:
+    """One finding as lines."""
+    level = style.paint(finding.level, finding.level)
+    place = f"{_one_line(finding.path)}:{finding.line}:{finding.column}"
+    yield f"{place}: {level}: {finding.rule}: {_one_line(finding.message)}"
+    label = "pattern"
+    for shown, under in _pattern_rows(finding, style):
+        yield _row(label, shown, style)
+        if under:
+            yield " " * LABEL + style.paint(under, finding.level)
+        label = ""
+    evidence = finding.evidence or finding.proof
+    if evidence:
+        yield _row("evidence", _one_line(evidence), style)
+    if finding.witness is not None:
+        yield _row("text", witness_expression(finding.witness), style)
+    if finding.suggestion is not None:
+        yield _row("instead", expression(finding.suggestion.pattern), style)
+        yield _row("", _KEEPS[finding.suggestion.keeps], style)
+    for related in finding.related:
+        where = f"{_one_line(related.path)}:{related.line}:{related.column}"
+        yield _row("see", f"{where}: {_one_line(related.message)}", style)
+    if finding.way_out:
+        label = "advice"
+        for line in textwrap.wrap(finding.way_out, max(style.columns - LABEL, 30)):
+            yield _row(label, line, style)
+            label = ""
+
+
+def summary_line(result: RunResult) -> str:
+    """The last line: what was looked at, what was found, what stayed open."""
+    counts = summary(result)
+    levels = [finding.level for finding in result.findings]
+    looked = f"{_count(counts['files'], 'file')}, {_count(counts['patterns'], 'pattern')}"
+    found = ", ".join(_count(levels.count(level), level) for level in LEVELS)
+    waived = sum(each.waived for each in result.outcomes)
+    rest = [
+        (waived, "waived"),
+        *((counts[key], key) for key in ("unresolved", "inexact", "undecided", "skipped")),
+    ]
+    return f"{looked}: {found}; " + ", ".join(f"{number} {word}" for number, word in rest)
+
+
+def _count(number: int, word: str) -> str:
+    return f"{number} {word}" if number == 1 else f"{number} {word}s"
+
+
+def _remarks(outcome: Outcome) -> Iterator[str]:
+    groups = (
+        ("unresolved", outcome.unresolved),
+        ("inexact", outcome.inexact),
+        ("undecided", outcome.undecided),
+    )
+    lines = [
+        (
+            each.line,
+            each.column,
+            f"{_one_line(outcome.path)}:{each.line}:{each.column}: {word}: {each.reason}",
+        )
+        for word, remarks in groups
+        for each in remarks
+    ]
+    yield from (line for _, _, line in sorted(lines))
+
+
+def _row(label: str, text: str, style: Style) -> str:
+    return "  " + style.paint(label, "label") + " " * (LABEL - 2 - len(label)) + text
+
+
+def _one_line(text: str) -> str:
+    """`text` with everything that could break or hide the line escaped."""
+    return "".join(char if char.isprintable() else ascii(char)[1:-1] for char in text)
+
+
+def _pattern_rows(finding: PlacedFinding, style: Style) -> Iterator[tuple[str, str]]:
+    """(shown, underline) for the pattern, or for those of its lines that the finding is about."""
+    pattern = finding.pattern
+    if pattern is None:
+        return
+    spans = [finding.span, *finding.marks]
+    spans += [each.span for each in finding.related if each.span is not None]
+    lines = [(0, len(pattern))]
+    if "VERBOSE" in finding.flags:
+        lines = [each for each in _lines(pattern) if any(_touches(span, each) for span in spans)] or lines
+    for line in lines[:MOST_LINES]:
+        yield _underlined(pattern, line, spans, style, finding.level)
+    if len(lines) > MOST_LINES:
+        yield f"({_count(len(lines) - MOST_LINES, 'more line')})", ""
+
+
+def _lines(pattern: str | bytes) -> Iterator[tuple[int, int]]:
+    """The spans of the lines of a pattern, without line feeds and the blanks around a line."""
+    start = 0
+    text = pattern.decode("latin-1") if isinstance(pattern, bytes) else pattern
+    for line in text.split("\n"):
+        left = len(line) - len(line.lstrip(" \t"))
+        yield start + left, start + max(left, len(line.rstrip()))
+        start += len(line) + 1
+
+
+def _touches(span: tuple[int, int], line: tuple[int, int]) -> bool:
+    if span[0] == span[1]:
+        return line[0] <= span[0] <= line[1]
+    return span[0] < line[1] and line[0] < span[1]
+
+
+def _underlined(
+    pattern: str | bytes, line: tuple[int, int], spans: list[tuple[int, int]], style: Style, level: str
+) -> tuple[str, str]:
+    """The characters of `line` that fit, and the row below them."""
+    start, end = line
+    shown = cells(pattern[start:end], style.encoding)
+    main = (max(spans[0][0] - start, 0), min(max(spans[0][1] - start, 0), end - start))
+    left, right = _window([width(each) for each in shown], main, style.columns - LABEL)
+    first, last = min(max(main[0], left), right), max(min(main[1], right), left)
+    last = max(first, last)
+    part = style.paint("".join(shown[first:last]), level)
+    above = "".join(shown[left:first]) + part + "".join(shown[last:right])
+    under = " " * (len(CUT) if left > 0 else 0)
+    for at in range(left, right):
+        mark, size = _mark(at + start, spans), width(shown[at])
+        under += mark + " " * (size - 1) if mark == "|" else mark * size
+    if right == end - start and any(span[0] == span[1] == end for span in spans):
+        under += "|"
+    above = (CUT if left > 0 else "") + above + (CUT if right < end - start else "")
+    return above, under.rstrip()
+
+
+def _mark(at: int, spans: list[tuple[int, int]]) -> str:
+    if spans[0][0] <= at < spans[0][1]:
+        return "="
+    if any(span[0] <= at < span[1] for span in spans[1:]):
+        return "-"
+    return "|" if any(span[0] == span[1] == at for span in spans) else " "
+
+
+def _window(widths: list[int], main: tuple[int, int], room: int) -> tuple[int, int]:
+    """The range of characters to show: everything if it fits, else as much around `main` as fits."""
+    if sum(widths) <= room:
+        return 0, len(widths)
+    room -= 2 * len(CUT)
+    left = right = min(main[0], len(widths))
+    used = 0
+    while right < main[1] and used + widths[right] <= room - 8:
+        used += widths[right]
+        right += 1
+    while left > 0 or right < len(widths):
+        grew = False
+        if left > 0 and used + widths[left - 1] <= room:
+            left -= 1
+            used += widths[left]
+            grew = True
+        if right < len(widths) and used + widths[right] <= room:
+            used += widths[right]
+            right += 1
+            grew = True
+        if not grew:
+            break
+    return left, right

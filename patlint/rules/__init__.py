@@ -1,0 +1,1 @@
+"""One file a rule: a pure function from a site to findings, with its documentation and its evidence."""

@@ -1,0 +1,1 @@
+"""Pattern text to tree and back: Python's `re` dialect. Imports nothing of patlint but its limits."""

@@ -42,6 +42,7 @@ class Outcome:
     spans: tuple[tuple[int, int] | None, ...] | None
     steps: int
     finished: bool = True
+    turns_left: int = 0
 
     @property
     def span(self) -> tuple[int, int] | None:
@@ -87,8 +88,10 @@ class Matcher:
         except _OutOfTurns:
             return Outcome(None, run.steps, False)
 
-    def scan(self, text: str | bytes, turns: int = NEVER, maximum: int = 0) -> tuple[list[Outcome], int, bool]:
-        """What `finditer` finds (`maximum` matches at most, 0: all), all steps, and whether it finished."""
+    def scan(
+        self, text: str | bytes, turns: int = NEVER, maximum: int = 0
+    ) -> tuple[list[Outcome], int, int, bool]:
+        """What `finditer` finds (`maximum` matches at most, 0: all), steps, turns left, whether it finished."""
         run = _Run(self, text, turns)
         found: list[Outcome] = []
         start, not_empty = 0, False
@@ -101,8 +104,8 @@ class Matcher:
                 begin, start = outcome.span
                 not_empty = begin == start
         except _OutOfTurns:
-            return found, run.steps, False
-        return found, run.steps, True
+            return found, run.steps, 0, False
+        return found, run.steps, run.turns, True
 
 
 class _Run:
@@ -127,13 +130,13 @@ class _Run:
         self.trail.clear()
         end = self.attempt(self.matcher.program.start, pos, full, pos if not_empty else -1)
         if end < 0:
-            return Outcome(None, self.steps)
+            return Outcome(None, self.steps, True, self.turns)
         slots = self.slots
         groups = [
             (slots[2 * g], slots[2 * g + 1]) if slots[2 * g + 1] >= 0 else None
             for g in range(1, self.matcher.program.groups + 1)
         ]
-        return Outcome(((pos, end), *groups), self.steps)
+        return Outcome(((pos, end), *groups), self.steps, True, self.turns)
 
     def search(self, pos: int, not_empty: bool = False) -> Outcome:
         """Leftmost match from `pos`; with `not_empty` the one at `pos` itself may not be empty."""

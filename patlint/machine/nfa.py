@@ -214,11 +214,11 @@ class Nfa:
                     else:
                         threads[self.accept, duty] = None
                 case p.Assert():
-                    asked = self._asked(op, context)
+                    asked = self.asked(op, context)
                     if asked != NONE:
                         stack.append((op.next, marks, duty if asked == ALL else duty | {asked}))
                 case p.Look():
-                    asked = self._look(pc, op, context) if op.ahead else ALL
+                    asked = self.look(pc, op, context) if op.ahead else ALL
                     if asked != NONE:
                         stack.append((op.next, marks, duty if asked == ALL else duty | {asked}))
                 case p.Atomic():
@@ -231,7 +231,7 @@ class Nfa:
                     stack.append((op.yes, marks, duty))
         return tuple(threads)
 
-    def _asked(self, op: p.Assert, context: int) -> int:
+    def asked(self, op: p.Assert, context: int) -> int:
         """What an assertion asks of the rest of the text, as an obligation."""
         table = self.obligations
         match op.kind:
@@ -255,7 +255,7 @@ class Nfa:
                 # `\B` fails on the empty text, so at the start it asks for a character.
                 return table.next_in(others, op.kind == "word" or not context & AT_START)
 
-    def _look(self, pc: int, op: p.Look, context: int) -> int:
+    def look(self, pc: int, op: p.Look, context: int) -> int:
         from patlint.machine.determinise import subset_table
 
         key = (pc, context)

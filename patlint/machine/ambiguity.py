@@ -1,0 +1,291 @@
+"""Ambiguity: how the number of ways through a pattern grows, decided on the graph of walks.
+
+- exponential: a node with two different cycles on one text. Pairs of nodes are walked from every place where
+  one node can go two ways inside its component; where a pair meets again on one node, that node has two
+  cycles on one text.
+- polynomial: nodes p, q with p-v->p, p-v->q and q-v->q on one text v, in different components. The engine
+  then walks in the order of the square of the text; a chain of such pairs adds a power for each link.
+
+The search that begins afresh at every place is a node of the graph like any other (`walks.SCAN`).
+
+`suspects` gives what the graph shows, the worst first; whether the engine walks it depends on what follows, so
+each is only a suspicion until `slow_text` has confirmed it by running the matcher.
+
+Sources: Weber and Seidl, On the degree of ambiguity of finite automata, 1991 (criteria EDA and IDA);
+Allauzen, Mohri and Rastogi, General algorithms for testing the ambiguity of finite automata, 2008.
+Limit: `product` nodes of each walk over pairs and triples.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from patlint.limits import LimitReached
+from patlint.machine.alphabet import representative
+from patlint.machine.nfa import Nfa
+from patlint.machine.walks import SCAN, Walks
+
+Codes = tuple[int, ...]
+Span = tuple[int, int]
+
+
+@dataclass(frozen=True, slots=True)
+class Suspect:
+    """`prefix` leads to the cycle on `pump`; `degree` is 0 for exponential, else the expected power of steps.
+
+    `parts` are the spans that compete for the pump; `by_restart` tells that one of the two is the search
+    itself, beginning afresh.
+    """
+
+    prefix: Codes
+    pump: Codes
+    degree: int
+    parts: tuple[Span, ...]
+    by_restart: bool = False
+
+
+EXPONENTIAL = 0
+
+
+class _Letters:
+    """The most readable character of a set of minterms."""
+
+    def __init__(self, nfa: Nfa) -> None:
+        self.letters = [representative(chars) for chars in nfa.alphabet.classes]
+        self.best: dict[int, int] = {}
+
+    def __call__(self, mask: int) -> int:
+        found = self.best.get(mask)
+        if found is None:
+            codes = [code for minterm, code in enumerate(self.letters) if mask >> minterm & 1]
+            found = self.best[mask] = min(codes, key=_rank)
+        return found
+
+
+def _rank(code: int) -> tuple[int, int]:
+    kind = 0 if 97 <= code <= 122 else 1 if 48 <= code <= 57 else 2 if 33 <= code <= 126 else 3
+    return (kind, code) if code >= 32 else (4, code)
+
+
+def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
+    """What the graph shows, exponential before high powers before low ones. Raises LimitReached."""
+    letter = _Letters(nfa)
+    prefixes = _prefixes(graph, letter)
+    members: dict[int, list[int]] = {}
+    for node, component in enumerate(graph.components):
+        if component in graph.cyclic and node in prefixes:
+            members.setdefault(component, []).append(node)
+    for nodes in members.values():
+        found = _two_cycles(graph, nodes, letter, nfa.limits.product)
+        if found is not None:
+            node, pump, parts = found
+            yield Suspect(prefixes[node], pump, EXPONENTIAL, parts)
+    if len(members) < 2:
+        return
+    links = _links(graph, members, letter, nfa.limits.product)
+    depth = _depths(links)
+    ranked = sorted(links, key=lambda link: (-depth[link], len(links[link][1])))
+    for link in ranked:
+        node, pump, parts = links[link]
+        restart = graph.scan and link[0] == graph.components[SCAN]
+        yield Suspect(prefixes[node], pump, depth[link], parts, restart)
+
+
+def _prefixes(graph: Walks, letter: _Letters) -> dict[int, Codes]:
+    """A shortest text from the start to each node."""
+    out: dict[int, Codes] = {node: () for node in graph.entry}
+    order = list(out)
+    for node in order:
+        for edge in graph.edges[node]:
+            if edge.target not in out:
+                out[edge.target] = (*out[node], letter(edge.mask))
+                order.append(edge.target)
+    return out
+
+
+def _spell(seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None], end: tuple[int, ...]) -> Codes:
+    codes = []
+    step = seen[end]
+    while step is not None:
+        codes.append(step[1])
+        step = seen[step[0]]
+    return tuple(reversed(codes))
+
+
+def _two_cycles(
+    graph: Walks, nodes: list[int], letter: _Letters, limit: int
+) -> tuple[int, Codes, tuple[Span, ...]] | None:
+    """A node of one component that has two cycles on one text, the text, and the parts that compete."""
+    inside = set(nodes)
+    best: tuple[int, Codes, tuple[Span, ...]] | None = None
+    divergences: list[tuple[int, tuple[int, int], int]] = []
+    for node in nodes:
+        edges = [edge for edge in graph.edges[node] if edge.target in inside]
+        for place, edge in enumerate(edges):
+            if edge.ways > 1:
+                divergences.append((node, (edge.target, edge.target), edge.mask))
+            for other in edges[place + 1 :]:
+                if edge.mask & other.mask and edge.target != other.target:
+                    divergences.append((node, (edge.target, other.target), edge.mask & other.mask))
+    seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None] = {}
+    origin: dict[tuple[int, ...], tuple[int, int, tuple[int, int]]] = {}
+    order: list[tuple[int, int]] = []
+    for node, pair, mask in divergences:
+        if pair[0] == pair[1]:
+            back = _path(graph, pair[0], node, inside, letter)
+            if back is not None:
+                pump = (letter(mask), *back)
+                if best is None or len(pump) < len(best[1]):
+                    best = node, pump, _parts(graph, node, pair[0])
+        elif pair not in seen:
+            seen[pair] = None
+            origin[pair] = (node, letter(mask), pair)
+            order.append(pair)
+    if best is not None:
+        return best
+    for pair in order:
+        for edge in graph.edges[pair[0]]:
+            if edge.target not in inside:
+                continue
+            for other in graph.edges[pair[1]]:
+                mask = edge.mask & other.mask
+                if not mask or other.target not in inside:
+                    continue
+                target = (edge.target, other.target)
+                if target in seen:
+                    continue
+                if len(seen) >= limit:
+                    raise LimitReached("product", limit)
+                seen[target] = (pair, letter(mask))
+                if target[0] == target[1]:
+                    middle = _spell(seen, target)
+                    first = pair
+                    step = seen[first]
+                    while step is not None:
+                        first = step[0]  # type: ignore[assignment]
+                        step = seen[first]
+                    node, code, split = origin[first]
+                    back = _path(graph, target[0], node, inside, letter)
+                    assert back is not None
+                    return node, (code, *middle, *back), _parts(graph, *split)
+                order.append(target)
+    return None
+
+
+def _path(graph: Walks, start: int, end: int, inside: set[int], letter: _Letters) -> Codes | None:
+    """A shortest text from one node to another, empty where they are the same."""
+    seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None] = {(start,): None}
+    order = [start]
+    for node in order:
+        if node == end:
+            return _spell(seen, (end,))
+        for edge in graph.edges[node]:
+            if edge.target in inside and (edge.target,) not in seen:
+                seen[edge.target,] = ((node,), letter(edge.mask))
+                order.append(edge.target)
+    return None
+
+
+def _parts(graph: Walks, *nodes: int) -> tuple[Span, ...]:
+    spans = dict.fromkeys(graph.spans[node] for node in nodes)
+    return tuple(sorted(span for span in spans if span is not None))
+
+
+Link = tuple[int, int]
+
+
+def _links(
+    graph: Walks, members: dict[int, list[int]], letter: _Letters, limit: int
+) -> dict[Link, tuple[int, Codes, tuple[Span, ...]]]:
+    """Pairs of components that compete for one text: the node to begin at, the text, the parts."""
+    reach = _reachable(graph, members)
+    links: dict[Link, tuple[int, Codes, tuple[Span, ...]]] = {}
+    budget = limit
+    for first, first_nodes in members.items():
+        for second in reach[first]:
+            second_nodes = set(members[second])
+            for p, q in ((p, q) for p in first_nodes for q in members[second]):
+                found, spent = _triple(graph, p, q, set(first_nodes), second_nodes, letter, budget)
+                budget -= spent
+                if budget <= 0:
+                    raise LimitReached("product", limit)
+                if found is not None:
+                    links[first, second] = (p, found, _parts(graph, p, q))
+                    break
+    return links
+
+
+def _reachable(graph: Walks, members: dict[int, list[int]]) -> dict[int, list[int]]:
+    """For each cyclic component the other ones that can be reached from it."""
+    out: dict[int, list[int]] = {}
+    for component, nodes in members.items():
+        seen = set(nodes)
+        order = list(nodes)
+        for node in order:
+            for edge in graph.edges[node]:
+                if edge.target not in seen:
+                    seen.add(edge.target)
+                    order.append(edge.target)
+        found = dict.fromkeys(graph.components[node] for node in order)
+        out[component] = [c for c in found if c != component and c in members]
+    return out
+
+
+def _triple(
+    graph: Walks, p: int, q: int, first: set[int], second: set[int], letter: _Letters, limit: int
+) -> tuple[Codes | None, int]:
+    """A text v with p-v->p, p-v->q and q-v->q, and how many triples were visited."""
+    start, end = (p, p, q), (p, q, q)
+    seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None] = {start: None}
+    order = [start]
+    for a, b, c in order:
+        for edge_a in graph.edges[a]:
+            if edge_a.target not in first:
+                continue
+            for edge_c in graph.edges[c]:
+                mask = edge_a.mask & edge_c.mask
+                if not mask or edge_c.target not in second:
+                    continue
+                for edge_b in graph.edges[b]:
+                    common = mask & edge_b.mask
+                    if not common:
+                        continue
+                    target = (edge_a.target, edge_b.target, edge_c.target)
+                    if target in seen:
+                        continue
+                    seen[target] = ((a, b, c), letter(common))
+                    if target == end:
+                        return _spell(seen, end), len(seen)
+                    order.append(target)
+                    if len(seen) > limit:
+                        return None, len(seen)
+    return None, len(seen)
+
+
+def _depths(links: dict[Link, tuple[int, Codes, tuple[Span, ...]]]) -> dict[Link, int]:
+    """For each link the power that the longest chain through it stands for: two for a link alone."""
+    after: dict[int, int] = {}
+    before: dict[int, int] = {}
+    follow: dict[int, list[int]] = {}
+    lead: dict[int, list[int]] = {}
+    for first, second in links:
+        follow.setdefault(first, []).append(second)
+        lead.setdefault(second, []).append(first)
+
+    def longest(component: int, table: dict[int, list[int]], known: dict[int, int]) -> int:
+        stack = [component]
+        while stack:
+            top = stack[-1]
+            missing = [c for c in table.get(top, ()) if c not in known]
+            if missing:
+                stack += missing
+                continue
+            known[top] = max((known[c] + 1 for c in table.get(top, ())), default=0)
+            stack.pop()
+        return known[component]
+
+    return {
+        (first, second): longest(first, lead, before) + longest(second, follow, after) + 2
+        for first, second in links
+    }

@@ -1,0 +1,245 @@
+"""The graph of what the engine can walk: threads as nodes, characters as edges, equal ways counted.
+
+A node is a thread of the program (a position and its obligations). An edge says that the engine, reading a
+character of `mask`, can go from one thread to another in `ways` ways (more than one where there are several
+paths that read nothing; counted up to 2). The guard of loops whose body can be empty is respected. The bodies
+of look-ahead and atomic groups are walked too: what stands in them costs steps whether or not it is kept, so
+the graph has all that the engine may walk, and perhaps more; a claim made on it is to be confirmed.
+
+With `scan`, node SCAN stands for the search that begins afresh at every place: it reads any character, stays,
+and enters the program.
+
+Limits: `product` nodes; closures of more than 4,096 equal paths are cut there (they count as many anyway).
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+from patlint.limits import LimitReached
+from patlint.machine import program as p
+from patlint.machine.nfa import FREE, Conjunction, Nfa, Thread
+from patlint.machine.obligations import ALL, NONE
+
+PATH_LIMIT = 4_096
+SCAN = 0
+"""The node of the search itself, where there is one."""
+
+
+@dataclass(frozen=True, slots=True)
+class Edge:
+    target: int
+    mask: int
+    ways: int
+
+
+@dataclass(frozen=True, slots=True)
+class Walks:
+    """`edges[node]`; `spans[node]` is the part of the pattern that a node reads (None for SCAN).
+
+    `entry` are the nodes at the text's start. `components[node]` numbers the strongly connected component
+    of a node, `cyclic` holds the components that have a cycle.
+    """
+
+    edges: tuple[tuple[Edge, ...], ...]
+    spans: tuple[tuple[int, int] | None, ...]
+    entry: tuple[int, ...]
+    scan: bool
+    components: tuple[int, ...]
+    cyclic: frozenset[int]
+
+
+def walks(nfa: Nfa, scan: bool) -> Walks:
+    """The graph of the program of `nfa`. Raises LimitReached("product")."""
+    limit = nfa.limits.product
+    number: dict[Thread, int] = {}
+    order: list[Thread | None] = [None] if scan else []
+    closures: dict[tuple[int, int], dict[Thread, int]] = {}
+
+    def close(pc: int, context: int) -> dict[Thread, int]:
+        key = (pc, context)
+        if key not in closures:
+            closures[key] = _paths(nfa, pc, context)
+        return closures[key]
+
+    def node(thread: Thread) -> int:
+        index = number.get(thread)
+        if index is None:
+            if len(order) >= limit:
+                raise LimitReached("product", limit)
+            index = number[thread] = len(order)
+            order.append(thread)
+        return index
+
+    entry = [node(thread) for thread in close(nfa.program.start, nfa.start_context)]
+    by_context: dict[int, int] = {}
+    for minterm, context in enumerate(nfa.contexts):
+        by_context[context] = by_context.get(context, 0) | 1 << minterm
+    edges: list[tuple[Edge, ...]] = []
+    work = 0
+    for thread in order:
+        out: dict[tuple[int, int], int] = {}
+        for context, minterms in by_context.items():
+            if thread is None:
+                out[SCAN, minterms] = 1
+                for after, ways in close(nfa.program.start, context).items():
+                    out[node(after), minterms] = ways
+                continue
+            position, duty = thread
+            reads = nfa.reads[position] & minterms
+            for mask, rest in _after_duty(nfa, duty, reads):
+                for (after_position, more), ways in _follow(nfa, close, position, context).items():
+                    key = (node((after_position, rest | more)), mask)
+                    out[key] = max(out.get(key, 0), ways)
+        merged: dict[tuple[int, int], int] = {}
+        for (target, mask), ways in out.items():
+            merged[target, ways] = merged.get((target, ways), 0) | mask
+        edges.append(tuple(Edge(target, mask, ways) for (target, ways), mask in merged.items()))
+        work += len(merged)
+        if work > nfa.limits.work:
+            raise LimitReached("work", nfa.limits.work)
+    spans = tuple(None if t is None else nfa.program.spans[nfa.pc_of[t[0]]] for t in order)
+    if scan:
+        entry.append(SCAN)
+    components, cyclic = _components(edges)
+    return Walks(tuple(edges), spans, tuple(entry), scan, tuple(components), cyclic)
+
+
+def _after_duty(nfa: Nfa, duty: Conjunction, reads: int) -> list[tuple[int, Conjunction]]:
+    """The readable minterms with what is left of the obligations after each, grouped."""
+    if not duty:
+        return [(reads, FREE)] if reads else []
+    groups: dict[Conjunction, int] = {}
+    while reads:
+        low = reads & -reads
+        reads ^= low
+        rest = nfa.obligations.step(duty, low.bit_length() - 1)
+        if rest is not None:
+            groups[rest] = groups.get(rest, 0) | low
+    return [(mask, rest) for rest, mask in groups.items()]
+
+
+def _follow(
+    nfa: Nfa, close: Callable[[int, int], dict[Thread, int]], position: int, context: int
+) -> dict[Thread, int]:
+    pc = nfa.pc_of[position]
+    op = nfa.program.code[pc]
+    if isinstance(op, p.Run):
+        count = position - nfa.first[pc] + 1
+        out: dict[Thread, int] = {}
+        if op.maximum is None:
+            out[(position if count >= op.minimum else position + 1), FREE] = 1
+        elif count < op.maximum:
+            out[position + 1, FREE] = 1
+        if count >= op.minimum:
+            for thread, ways in close(op.next, context).items():
+                out[thread] = out.get(thread, 0) + ways
+        return out
+    assert isinstance(op, p.Char | p.Back)
+    out = dict(close(op.next, context))
+    if isinstance(op, p.Back):
+        out[position, FREE] = out.get((position, FREE), 0) + 1
+    return out
+
+
+def _paths(nfa: Nfa, entry: int, context: int) -> dict[Thread, int]:
+    """The threads reached from `entry` without reading, with the number of ways (2: two or more)."""
+    ways: dict[Thread, int] = {}
+    stack: list[tuple[int, frozenset[int], Conjunction]] = [(entry, FREE, FREE)]
+    paths = 0
+
+    def reach(position: int, duty: Conjunction) -> None:
+        ways[position, duty] = min(ways.get((position, duty), 0) + 1, 2)
+
+    while stack:
+        pc, marks, duty = stack.pop()
+        op = nfa.program.code[pc]
+        match op:
+            case p.Char() | p.Back():
+                reach(nfa.first[pc], duty)
+                paths += 1
+                if isinstance(op, p.Back):
+                    stack.append((op.next, marks, duty))
+            case p.Run():
+                if op.maximum != 0:
+                    reach(nfa.first[pc], duty)
+                    paths += 1
+                if op.minimum == 0:
+                    stack.append((op.next, marks, duty))
+            case p.Fork():
+                stack += ((op.second, marks, duty), (op.first, marks, duty))
+            case p.Save():
+                stack.append((op.next, marks, duty))
+            case p.Enter():
+                stack.append((op.next, marks - {op.loop}, duty))
+            case p.Iterate():
+                stack.append((op.exit, marks, duty))
+                if op.loop not in marks:
+                    stack.append((op.body, marks | {op.loop}, duty))
+            case p.Accept():
+                paths += 1
+                if pc in nfa.leads:
+                    stack.append((nfa.leads[pc], marks, duty))
+            case p.Assert():
+                asked = nfa.asked(op, context)
+                if asked != NONE:
+                    stack.append((op.next, marks, duty if asked == ALL else duty | {asked}))
+            case p.Look():
+                asked = nfa.look(pc, op, context) if op.ahead else ALL
+                if asked != NONE:
+                    stack.append((op.next, marks, duty if asked == ALL else duty | {asked}))
+                if op.ahead:
+                    stack.append((op.body, marks, duty))
+            case p.Atomic():
+                stack.append((op.body, marks, duty))
+            case p.Test():
+                stack += ((op.no, marks, duty), (op.yes, marks, duty))
+        if paths > PATH_LIMIT:
+            break
+    return ways
+
+
+def _components(edges: list[tuple[Edge, ...]]) -> tuple[list[int], frozenset[int]]:
+    """Strongly connected components (Tarjan 1972), without recursion, and those that have a cycle."""
+    count = len(edges)
+    index = [-1] * count
+    low = [0] * count
+    component = [-1] * count
+    cyclic = set()
+    path: list[int] = []
+    counter = components = 0
+    for root in range(count):
+        if index[root] >= 0:
+            continue
+        work = [(root, 0)]
+        while work:
+            node, place = work.pop()
+            if index[node] < 0:
+                index[node] = low[node] = counter
+                counter += 1
+                path.append(node)
+            for place in range(place, len(edges[node])):
+                target = edges[node][place].target
+                if index[target] < 0:
+                    work.append((node, place + 1))
+                    work.append((target, 0))
+                    break
+                if component[target] < 0:
+                    low[node] = min(low[node], low[target])
+            else:
+                if low[node] == index[node]:
+                    size = 0
+                    while True:
+                        member = path.pop()
+                        component[member] = components
+                        size += 1
+                        if member == node:
+                            break
+                    if size > 1 or any(edge.target == node for edge in edges[node]):
+                        cyclic.add(components)
+                    components += 1
+                if work:
+                    parent = work[-1][0]
+                    low[parent] = min(low[parent], low[node])
+    return component, frozenset(cyclic)

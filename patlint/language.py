@@ -72,11 +72,20 @@ class Language:
         if mode not in ("match", "fullmatch", "search"):
             raise ValueError(f"mode must be match, fullmatch or search, not {mode!r}")
         parsed = pattern if isinstance(pattern, Pattern) else parse(pattern, flags, target, limits)
-        nfa = Nfa(compile_tree(parsed, limits), limits)
+        self._of_nfa(Nfa(compile_tree(parsed, limits), limits), mode)
+
+    def _of_nfa(self, nfa: Nfa, mode: Mode) -> None:
         self.dfa = language(nfa, mode)
         self.inexact = tuple(Construct(reason, span) for reason, span in nfa.inexact)
-        self.is_bytes = parsed.is_bytes
-        self.limits = limits
+        self.is_bytes = nfa.program.is_bytes
+        self.limits = nfa.limits
+
+    @classmethod
+    def of_nfa(cls, nfa: Nfa, mode: Mode) -> Language:
+        """The language of a program whose positions are known already. Raises LimitReached."""
+        made = object.__new__(cls)
+        made._of_nfa(nfa, mode)
+        return made
 
     @classmethod
     def of_automaton(
@@ -119,6 +128,10 @@ class Language:
     def is_empty(self) -> bool:
         answer = words.is_empty(self.dfa)
         return self._ask(answer, answer)
+
+    def is_empty_for_sure(self) -> bool:
+        """Whether the language is proven empty; never raises Undecided."""
+        return words.is_empty(self.dfa)
 
     def is_universal(self) -> bool:
         """Whether every text is in the language."""

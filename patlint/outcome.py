@@ -17,7 +17,7 @@ from patlint.config import LevelName, Settings
 from patlint.nearest import nearest
 from patlint.placed import PlacedFinding, decode, encode, place_finding
 from patlint.rules.finding import Level
-from patlint.source.sites import Module, Site, Waiver
+from patlint.source.sites import Module, Place, Site, Waiver
 from patlint.syntax.tree import FLAG_NAMES, UNICODE
 
 STALE: Final = "stale-waiver"
@@ -204,6 +204,9 @@ def _stale_waivers(
         return [], 0
     out: list[PlacedFinding] = []
     waived = 0
+    for place, problem in module.bad_waivers:
+        message = f"this waiver counts for nothing: {problem}"
+        out.append(_stale(module.path, place, message, levels, "write it as it is meant to be read"))
     for index, waiver in enumerate(module.waivers):
         message = _staleness(index, waiver, settings, enabled, used, undecided)
         if message is None:
@@ -211,23 +214,24 @@ def _stale_waivers(
         if STALE in waiver.rules:
             waived += 1
             continue
-        place = waiver.place
-        out.append(
-            PlacedFinding(
-                rule=STALE,
-                level=_level(STALE, "warning", levels),
-                path=module.path,
-                line=place.line,
-                column=place.column,
-                end_line=place.end_line,
-                end_column=place.end_column,
-                message=message,
-                way_out="correct the name"
-                if "unknown rule" in message
-                else "delete the comment, or the rule from it",
-            )
-        )
+        known = all(rule in settings.rules for rule in waiver.rules)
+        advice = "delete the comment, or the rule from it" if known else "correct the name"
+        out.append(_stale(module.path, waiver.place, message, levels, advice))
     return out, waived
+
+
+def _stale(path: str, place: Place, message: str, levels: dict[str, LevelName], advice: str) -> PlacedFinding:
+    return PlacedFinding(
+        rule=STALE,
+        level=_level(STALE, "warning", levels),
+        path=path,
+        line=place.line,
+        column=place.column,
+        end_line=place.end_line,
+        end_column=place.end_column,
+        message=message,
+        way_out=advice,
+    )
 
 
 def _staleness(

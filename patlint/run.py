@@ -67,7 +67,7 @@ def lint_source(
         settings = Settings(target or running_target(), tuple(rule.name for rule in RULES))
     elif target is not None:
         settings = replace(settings, target=target)
-    return lint_module(read_module(_as_bytes(text), path), settings).findings
+    return lint_module(read_module(text, path), settings).findings
 
 
 def lint_paths(
@@ -177,18 +177,3 @@ def _lint_missing(paths: list[str], job: _Job, processes: int) -> Iterator[tuple
 def _ignore_interrupt() -> None:
     """Ctrl-C reaches all processes of a terminal; the first one ends the others."""
     signal.signal(signal.SIGINT, signal.SIG_IGN)
-
-
-def _as_bytes(text: str | bytes) -> bytes:
-    """`text` in the encoding that its own coding comment names, or UTF-8."""
-    if isinstance(text, bytes):
-        return text
-    import io
-    import tokenize
-
-    plain = text.encode("utf-8", "surrogatepass")
-    try:
-        encoding, _ = tokenize.detect_encoding(io.BytesIO(plain).readline)
-        return text.encode(encoding)
-    except (SyntaxError, UnicodeEncodeError, LookupError):
-        return plain

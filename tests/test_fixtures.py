@@ -150,7 +150,7 @@ def _flags(finding: PlacedFinding) -> int:
 
 
 def _compiled(finding: PlacedFinding, pattern: str | bytes | None = None) -> re.Pattern[Any]:
-    return re.compile(finding.pattern if pattern is None else pattern, _flags(finding))  # type: ignore[arg-type]
+    return re.compile(finding.pattern if pattern is None else pattern, _flags(finding))
 
 
 def _run(finding: PlacedFinding, pattern: re.Pattern[Any], text: str | bytes) -> re.Match[Any] | None:
@@ -269,7 +269,7 @@ def _slow(finding: PlacedFinding) -> None:
         return witness.prefix + witness.pump * count + witness.suffix  # type: ignore[operator]
 
     def steps(count: int) -> int:
-        outcome = matcher.run(text(count), function)  # type: ignore[arg-type]
+        outcome = matcher.run(text(count), function)
         assert outcome.finished
         return outcome.steps
 
@@ -291,7 +291,7 @@ def _slow(finding: PlacedFinding) -> None:
         [sys.executable, "-c", code, given], capture_output=True, text=True, timeout=SECONDS
     )
     assert done.stderr == ""
-    outcome = matcher.run(text(size), function)  # type: ignore[arg-type]
+    outcome = matcher.run(text(size), function)
     assert done.stdout.strip() == str(outcome.span)
 
 

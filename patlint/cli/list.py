@@ -73,9 +73,9 @@ def _lines(inventory: Inventory) -> Iterator[str]:
 
 
 def _line(listed: Listed) -> str:
-    from patlint.report.show import expression
+    from patlint.report.show import pattern_expression
 
-    words = [expression(listed.pattern)]
+    words = [pattern_expression(listed.pattern)]
     words += listed.flags
     words.append(f"({'/'.join(listed.modes) or 'not used here'}, {listed.looks_at})")
     return f"{listed.path}:{listed.line}:{listed.column}: {' '.join(words)}"

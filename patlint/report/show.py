@@ -43,6 +43,23 @@ def expression(text: str | bytes) -> str:
     return " + ".join(parts)
 
 
+def pattern_expression(pattern: str | bytes) -> str:
+    r"""`pattern` as a Python literal in ASCII, raw where that saves a backslash.
+
+    >>> print(pattern_expression(r"\d+'"), pattern_expression("a\n"), pattern_expression(b"\\."))
+    r"\d+'" 'a\n' rb'\.'
+    """
+    text = pattern.decode("latin-1") if isinstance(pattern, bytes) else pattern
+    plain = ascii(pattern)
+    if "\\" not in text or not (text.isascii() and text.isprintable()):
+        return plain
+    quote = "'" if "'" not in text else '"'
+    ends_raw = (len(text) - len(text.rstrip("\\"))) % 2 == 1
+    if quote in text or ends_raw:
+        return plain
+    return f"r{'b' if isinstance(pattern, bytes) else ''}{quote}{text}{quote}"
+
+
 def witness_expression(witness: Witness) -> str:
     """The text of a witness as a Python expression; a slow one with its pump often enough to be seen."""
     match witness:

@@ -22,7 +22,7 @@ from typing import TYPE_CHECKING, Final
 
 from patlint.placed import PlacedFinding
 from patlint.report.json import summary
-from patlint.report.show import cells, expression, width, witness_expression
+from patlint.report.show import cells, pattern_expression, width, witness_expression
 from patlint.rules.finding import LEVELS
 
 if TYPE_CHECKING:
@@ -85,7 +85,7 @@ def finding_block(finding: PlacedFinding, style: Style) -> Iterator[str]:
     if finding.witness is not None:
         yield _row("text", witness_expression(finding.witness), style)
     if finding.suggestion is not None:
-        yield _row("instead", expression(finding.suggestion.pattern), style)
+        yield _row("instead", pattern_expression(finding.suggestion.pattern), style)
         yield _row("", _KEEPS[finding.suggestion.keeps], style)
     for related in finding.related:
         where = f"{_one_line(related.path)}:{related.line}:{related.column}"
@@ -145,7 +145,7 @@ def _one_line(text: str) -> str:
 def _pattern_rows(finding: PlacedFinding, style: Style) -> Iterator[tuple[str, str]]:
     """(shown, underline) for the pattern, or for those of its lines that the finding is about."""
     pattern = finding.pattern
-    if pattern is None:
+    if not pattern:
         return
     spans = [finding.span, *finding.marks]
     spans += [each.span for each in finding.related if each.span is not None]

@@ -22,6 +22,8 @@ BOM = b"\xef\xbb\xbf"
 _COOKIE = re.compile(rb"[ \t\f]*#.*?coding[:=][ \t]*([-\w.]+)")
 _BLANK = re.compile(rb"[ \t\f]*(?:#.*)?\Z")
 _LINE_END = re.compile(rb"\r\n|\r|\n")
+_ODD_BREAKS = re.compile("[\x0b\x0c\x1c-\x1e\x85\u2028\u2029]")
+"""Where `str.splitlines` ends a line and Python does not."""
 _LINES = re.compile(r"[^\r\n]*(?:\r\n|\r|\n)|[^\r\n]+\Z")
 
 
@@ -99,9 +101,6 @@ def _cookie(data: bytes) -> str | None:
 
 def split_lines(text: str) -> tuple[str, ...]:
     """The lines with their ends; joined they give `text` again."""
-    if "\r" not in text:
-        lines = text.split("\n")
-        last = lines.pop()
-        ended = [line + "\n" for line in lines]
-        return (*ended, last) if last else tuple(ended)
+    if not _ODD_BREAKS.search(text):
+        return tuple(text.splitlines(keepends=True))
     return tuple(_LINES.findall(text))

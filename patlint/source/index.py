@@ -57,6 +57,17 @@ class Index:
     classes: dict[ast.ClassDef, Scope] = field(default_factory=dict)
     dynamic: bool = False
     """exec or globals() may rebind names of the module."""
+    scopes: list[Scope] = field(default_factory=list)
+    """All scopes, the module's first."""
+
+    def release(self) -> None:
+        """Cuts the circles between scopes, bindings and nodes, so that all is freed at once."""
+        for scope in self.scopes:
+            scope.parent = None
+            scope.children.clear()
+            scope.bindings.clear()
+            scope.loads.clear()
+        self.parents.clear()
 
     def statement(self, node: ast.AST) -> ast.stmt | None:
         """The innermost statement that holds `node`."""
@@ -73,7 +84,7 @@ def build_index(tree: ast.Module) -> Index:
     for node in tree.body:
         index.parents[node] = tree
     queue = [index.module]
-    everything = [index.module]
+    everything = index.scopes = [index.module]
     while queue:
         scope = queue.pop()
         _walk_scope(scope, index, queue, everything)

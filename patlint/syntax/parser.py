@@ -18,13 +18,16 @@ from dataclasses import replace
 
 from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
 
+from .bracket import read_set
+from .counts import read_counts
 from .dialect import Dialect, dialect_of
-from .escapes import DIGITS, Boundary, Category, escape_inside, escape_outside
+from .escapes import Boundary, Category, escape_outside
+from .flag_group import TEMPLATE, TYPE_FLAGS, flag_of, read_flags
+from .group_name import read_condition, read_name
 from .scanner import END, PatternError, Scanner
 from .tree import (
     ASCII,
     DOTALL,
-    FLAG_LETTERS,
     IGNORECASE,
     LOCALE,
     MULTILINE,
@@ -42,26 +45,17 @@ from .tree import (
     Look,
     Node,
     Pattern,
-    Range,
     Repeat,
     RepeatKind,
     Sequence,
-    Set,
-    SetItem,
 )
 from .width import Width, width
 
-__all__ = ["MAX_REPEAT", "PatternError", "parse"]
+__all__ = ["PatternError", "parse"]
 
-MAX_REPEAT = 2**32 - 1
-"""Repeat counts from here on are refused (`OverflowError`)."""
-
-_TEMPLATE = 1
-_TYPE_FLAGS = ASCII | LOCALE | UNICODE
 _LEAF_FLAGS = IGNORECASE | LOCALE | MULTILINE | DOTALL | UNICODE | ASCII
 _BLANKS = frozenset(" \t\n\r\v\f")
 _SPECIAL = frozenset(".[{()*+?^$|")
-_LONGEST_NUMBER = 4300  # int() refuses longer ones
 
 
 def parse(
@@ -129,11 +123,11 @@ class _Parser:
         for index, position in self.conditions.items():
             if index >= len(self.bodies):
                 raise PatternError(f"there is no group {index}", position)
-        if self.dialect.template_flag and self.flags & _TEMPLATE and self.has_repeat:
+        if self.dialect.template_flag and self.flags & TEMPLATE and self.has_repeat:
             raise PatternError("the TEMPLATE flag forbids repeats")
         if self.look_behind_problem is not None:
             raise PatternError(self.look_behind_problem)
-        return Pattern(self.text, root, self.flags, self.inline, len(self.bodies) - 1, self.names)
+        return Pattern(self.text, root, self.flags, self.inline & ~flags, len(self.bodies) - 1, self.names)
 
     def check_flags(self) -> None:
         if isinstance(self.text, str):
@@ -192,7 +186,7 @@ class _Parser:
             elif token == ".":
                 items.append(Dot((start, start + 1), flags))
             elif token == "[":
-                items.append(self.char_set(start, flags))
+                items.append(read_set(scanner, start, flags))
             elif token == "(":
                 node = self.group(start, flags, verbose, depth, first and not items)
                 if node is not None:
@@ -204,7 +198,7 @@ class _Parser:
             elif token == "$":
                 items.append(Anchor((start, start + 1), "$", flags))
             else:
-                counts = self.counts(token, start)
+                counts = read_counts(scanner, token, start)
                 if counts is None:
                     items.append(Literal((start, start + 1), ord(token), flags))
                 else:
@@ -214,30 +208,6 @@ class _Parser:
         if not items:
             return Sequence((begin, begin), ())
         return Sequence((items[0].span[0], items[-1].span[1]), tuple(items))
-
-    def counts(self, token: str, start: int) -> tuple[int, int | None] | None:
-        """Minimum and maximum of the repeat that `token` begins; None where it is a literal brace."""
-        if token == "*":
-            return 0, None
-        if token == "+":
-            return 1, None
-        if token == "?":
-            return 0, 1
-        scanner = self.scanner
-        if scanner.next == "}":
-            return None
-        index = scanner.index
-        low = high = scanner.take_while(len(self.text), DIGITS)
-        if scanner.skip(","):
-            high = scanner.take_while(len(self.text), DIGITS)
-        if not scanner.skip("}"):
-            scanner.seek(index)
-            return None
-        minimum = _count(low) if low else 0
-        maximum = _count(high) if high else None
-        if maximum is not None and maximum < minimum:
-            raise PatternError(f"the repeat's minimum {minimum} is above its maximum {maximum}", start + 1)
-        return minimum, maximum
 
     def repeat(self, items: list[Node], start: int, counts: tuple[int, int | None]) -> None:
         """Put a repeat around the last item."""
@@ -279,40 +249,6 @@ class _Parser:
             if index >= self.first_inner_group:
                 raise self.scanner.error(f"group {index} belongs to the same look-behind")
 
-    def char_set(self, start: int, flags: int) -> Node:
-        scanner = self.scanner
-        negated = scanner.skip("^")
-        items: list[SetItem] = []
-        while True:
-            low_start = scanner.position
-            low_token = scanner.take()
-            if not low_token:
-                raise PatternError("the set has no closing bracket", start)
-            if low_token == "]" and items:
-                break
-            low = self.set_member(low_token)
-            low_end = scanner.position
-            if not scanner.skip("-"):
-                items.append(_set_item((low_start, low_end), low, flags))
-                continue
-            high_token = scanner.take()
-            if not high_token:
-                raise PatternError("the set has no closing bracket", start)
-            if high_token == "]":
-                items.append(_set_item((low_start, low_end), low, flags))
-                items.append(Literal((low_end, low_end + 1), ord("-"), flags))
-                break
-            high = self.set_member(high_token)
-            if not isinstance(low, int) or not isinstance(high, int) or high < low:
-                raise scanner.error(
-                    f"{low_token}-{high_token} is no range", len(low_token) + 1 + len(high_token)
-                )
-            items.append(Range((low_start, scanner.position), low, high))
-        return Set((start, scanner.position), tuple(items), negated, flags)
-
-    def set_member(self, token: str) -> int | Category:
-        return escape_inside(self.scanner, token) if token[0] == "\\" else ord(token)
-
     def group(self, start: int, flags: int, verbose: bool, depth: int, first: bool) -> Node | None:
         """What the parenthesis at `start` begins; None for comments and global flags."""
         scanner = self.scanner
@@ -339,18 +275,17 @@ class _Parser:
         if letter == ">" and self.dialect.atomic:
             body = self.body(start, flags, verbose, depth)
             return Atomic((start, scanner.position), body)
-        if letter == "-" or self.flag(letter):
-            changes = self.flag_letters(letter)
-            if changes is None:
-                self.global_flags(start, verbose, first)
+        if letter == "-" or flag_of(letter, self.dialect):
+            change = read_flags(scanner, letter)
+            if change.whole:
+                self.global_flags(change.add, start, verbose, first)
                 return None
-            add, remove = changes
-            if add & _TYPE_FLAGS:
-                flags &= ~_TYPE_FLAGS
-            inner = (flags | add) & ~remove & _LEAF_FLAGS
-            verbose = (verbose or bool(add & VERBOSE)) and not remove & VERBOSE
-            body = self.body(start, inner, verbose, depth)
-            return Group((start, scanner.position), body, None, None, add, remove)
+            if change.add & TYPE_FLAGS:
+                flags &= ~TYPE_FLAGS
+            flags = (flags | change.add) & ~change.remove & _LEAF_FLAGS
+            verbose = (verbose or bool(change.add & VERBOSE)) and not change.remove & VERBOSE
+            body = self.body(start, flags, verbose, depth)
+            return Group((start, scanner.position), body, None, None, change.add, change.remove)
         raise scanner.error(f"?{letter} begins no kind of group", len(letter) + 1)
 
     def body(self, start: int, flags: int, verbose: bool, depth: int) -> Node:
@@ -384,12 +319,9 @@ class _Parser:
         """After `(?P`."""
         scanner = self.scanner
         if scanner.skip("<"):
-            name = scanner.take_until(">", "the group's name")
-            self.check_name(name)
-            return self.capture(start, name, flags, verbose, depth)
+            return self.capture(start, read_name(scanner, ">"), flags, verbose, depth)
         if scanner.skip("="):
-            name = scanner.take_until(")", "the group's name")
-            self.check_name(name)
+            name = read_name(scanner, ")")
             index = self.names.get(name)
             if index is None:
                 raise scanner.error(f"no group is named {name!r}", len(name) + 1)
@@ -401,12 +333,6 @@ class _Parser:
         if letter == END:
             raise scanner.error("the pattern ends in the middle of a group's opening")
         raise scanner.error(f"?P{letter} begins no kind of group", len(letter) + 2)
-
-    def check_name(self, name: str) -> None:
-        if not name.isidentifier() or (
-            self.scanner.is_bytes and not self.dialect.latin_names and not name.isascii()
-        ):
-            raise self.scanner.error(f"{name!r} cannot name a group", len(name) + 1)
 
     def look(self, start: int, letter: str, flags: int, verbose: bool, depth: int) -> Node:
         scanner = self.scanner
@@ -442,17 +368,14 @@ class _Parser:
 
     def conditional(self, start: int, flags: int, verbose: bool, depth: int) -> Node:
         scanner = self.scanner
-        written = scanner.take_until(")", "the group's name")
-        name: str | None = None
-        if self.is_number(written):
-            index = self.condition_number(written)
+        named = read_condition(scanner)
+        if isinstance(named, int):
+            index, name = named, None
+            self.conditions.setdefault(index, start + len("(?("))
+        elif named in self.names:
+            index, name = self.names[named], named
         else:
-            self.check_name(written)
-            name = written
-            found = self.names.get(name)
-            if found is None:
-                raise scanner.error(f"no group is named {name!r}", len(name) + 1)
-            index = found
+            raise scanner.error(f"no group is named {named!r}", len(named) + 1)
         self.check_look_behind_reference(index)
         self.check_depth(depth)
         yes = self.sequence(flags, verbose, depth + 1)
@@ -464,102 +387,13 @@ class _Parser:
         self.close(start)
         return Conditional((start, scanner.position), index, name, yes, no)
 
-    def is_number(self, written: str) -> bool:
-        if self.dialect.loose_numbers:
-            return not written.isidentifier()
-        return written.isdecimal() and written.isascii()
-
-    def condition_number(self, written: str) -> int:
-        scanner = self.scanner
-        back = len(written) + 1
-        try:
-            index = int(written)
-        except ValueError:
-            index = -1
-        if index < 0:
-            if not self.dialect.loose_numbers:
-                raise PatternError("the group's number is too long", None, "ValueError")
-            raise scanner.error(f"{written!r} cannot name a group", back)
-        if index == 0:
-            raise scanner.error("group 0 cannot be a condition", back)
-        if index >= self.dialect.group_limit:
-            raise scanner.error(f"there is no group {index}", back)
-        self.conditions.setdefault(index, scanner.position - back)
-        return index
-
-    def flag(self, letter: str) -> int:
-        """The bit of a flag's letter, 0 where it is none."""
-        if letter == "t" and self.dialect.template_flag:
-            return _TEMPLATE
-        return FLAG_LETTERS.get(letter, 0)
-
-    def flag_letters(self, letter: str) -> tuple[int, int] | None:
-        """Flags added and removed by a scoped group; None for global flags, which are noted."""
-        scanner = self.scanner
-        add = remove = 0
-        while letter != "-":
-            if letter == ")":
-                self.flags |= add
-                self.inline |= add
-                return None
-            if letter == ":":
-                break
-            flag = self.flag(letter)
-            if letter == "L" and not scanner.is_bytes:
-                raise scanner.error("flag L is for bytes patterns only")
-            if letter == "u" and scanner.is_bytes:
-                raise scanner.error("flag u is for str patterns only")
-            add |= flag
-            if flag & _TYPE_FLAGS and add & _TYPE_FLAGS != flag:
-                raise scanner.error("flags a, u and L exclude each other")
-            letter = self.next_flag_letter("-:)", "a colon, a minus sign or a parenthesis")
-        if add & _TEMPLATE:
-            raise scanner.error("flag t cannot be set for a part of the pattern", 1)
-        if letter == "-":
-            letter = self.next_flag_letter("", "a flag")
-            while letter != ":":
-                flag = self.flag(letter)
-                if flag & _TYPE_FLAGS:
-                    raise scanner.error("flags a, u and L cannot be taken away")
-                remove |= flag
-                letter = self.next_flag_letter(":", "a colon")
-        if remove & _TEMPLATE:
-            raise scanner.error("flag t cannot be set for a part of the pattern", 1)
-        if add & remove:
-            raise scanner.error("a flag is both set and taken away", 1)
-        return add, remove
-
-    def next_flag_letter(self, ends: str, wanted: str) -> str:
-        """A flag's letter, or one of the characters `ends`."""
-        letter = self.scanner.take()
-        if not letter:
-            raise self.scanner.error(f"{wanted} is missing after the flags")
-        if letter in ends or self.flag(letter):
-            return letter
-        if letter.isalpha():
-            raise self.scanner.error(f"{letter} is no flag", len(letter))
-        raise self.scanner.error(f"{wanted} is missing after the flags", len(letter))
-
-    def global_flags(self, start: int, verbose: bool, first: bool) -> None:
-        """`(?i)` and the like, whose letters have been noted."""
+    def global_flags(self, add: int, start: int, verbose: bool, first: bool) -> None:
+        """`(?i)` and the like."""
+        self.flags |= add
+        self.inline |= add
         if self.dialect.late_flags:
             if self.flags & VERBOSE and not verbose:
                 raise _TurnedVerbose
             self.late_flags = True
         elif not first:
             raise PatternError("flags for the whole pattern must stand at its start", start)
-
-
-def _count(digits: str) -> int:
-    if len(digits) > _LONGEST_NUMBER:
-        raise PatternError("the repeat count has too many digits", None, "ValueError")
-    count = int(digits)
-    if count >= MAX_REPEAT:
-        raise PatternError("the repeat count is too large", None, "OverflowError")
-    return count
-
-
-def _set_item(span: tuple[int, int], meaning: int | Category, flags: int) -> SetItem:
-    if isinstance(meaning, int):
-        return Literal(span, meaning, flags)
-    return ClassEscape(span, meaning.kind, flags)

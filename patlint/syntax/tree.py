@@ -203,8 +203,8 @@ class Pattern:
     """A parsed pattern.
 
     `text` is what was parsed, `flags` the flags in force at the end (what `re.compile(...).flags` shows,
-    UNICODE included for str), `inline` the part of them that global flag groups in the text gave,
-    `groups` the number of capturing groups, `names` their names to indexes.
+    UNICODE included for str), `inline` the part of them that global flag groups in the text gave and
+    the caller did not, `groups` the number of capturing groups, `names` their names to indexes.
     """
 
     text: str | bytes

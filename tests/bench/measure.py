@@ -17,7 +17,7 @@ from pathlib import Path
 from time import process_time
 from typing import TypeAlias
 
-from patlint.config import OFF_BY_DEFAULT, Target, running_target
+from patlint.config import OFF_BY_DEFAULT
 from patlint.limits import DEFAULT_LIMITS
 from patlint.outcome import site_flag_names
 from patlint.placed import PlacedFinding, place_finding
@@ -25,6 +25,7 @@ from patlint.rules import check_site
 from patlint.rules.registry import RULES
 from patlint.source import SourceError, read_module
 from patlint.source.sites import Site
+from patlint.target import Target, running_target
 
 Pattern: TypeAlias = tuple[str | bytes, int]
 

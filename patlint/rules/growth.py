@@ -1,0 +1,65 @@
+"""What both ambiguity rules share: the uses they judge, and figures in plain words."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from math import exp, log
+
+from patlint.machine.slow_text import Ambiguity, Manner, SlowText
+from patlint.rules.finding import SlowWitness
+from patlint.rules.subject import Subject, manner_of
+from patlint.source.sites import Use
+
+LONG = 10_000
+"""Length of the text for which a polynomial's steps are told, in characters."""
+SHORT = 30
+"""Length of the text for which an exponential's steps are told, in characters."""
+
+
+def judged(subject: Subject) -> Iterator[tuple[Manner, Use | None, Ambiguity]]:
+    """Each manner in which the pattern is seen to be used, once, with its ambiguity.
+
+    Where no use is seen, `match`: what is slow there is slow in search and fullmatch too.
+    """
+    seen: set[Manner] = set()
+    for use in sorted(subject.uses, key=lambda use: use.bounded is not None):
+        manner = manner_of(use)
+        if manner not in seen:
+            seen.add(manner)
+            yield manner, use, subject.ambiguity(manner)
+    if not seen:
+        yield "match", None, subject.ambiguity("match")
+
+
+def witness_of(slow: SlowText) -> SlowWitness:
+    return SlowWitness(slow.prefix, slow.pump, slow.suffix, slow.growth, slow.steps)
+
+
+def mode_name(manner: Manner) -> str:
+    return "search" if manner == "scan" else manner
+
+
+def figures(slow: SlowText) -> str:
+    """How many steps a text of a telling length takes, reckoned from the counted ones."""
+    n, steps = slow.steps[-1]
+    size = len(slow.prefix) + len(slow.suffix)
+    length = SHORT if slow.growth == "exponential" else LONG
+    wanted = max((length - size) // len(slow.pump), n)
+    if slow.growth == "exponential":
+        m, fewer = slow.steps[max(len(slow.steps) - 4, 0)]
+        base = log(steps / fewer) / (n - m)
+        reckoned = log(steps) + base * (wanted - n)
+        count = exp(min(reckoned, 600))
+    else:
+        count = steps * (wanted / n) ** slow.growth
+    return f"a text of {size + wanted * len(slow.pump):,} characters takes about {in_words(count)} steps"
+
+
+def in_words(count: float) -> str:
+    """A large number as one would say it."""
+    for size, word in ((1e15, "million million"), (1e12, "million million"), (1e9, "thousand million"), (1e6, "million")):
+        if count >= size:
+            if size == 1e15:
+                return "over a thousand million million"
+            return f"{count / size:,.0f} {word}"
+    return f"{count:,.0f}"

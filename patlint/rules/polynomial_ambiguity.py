@@ -1,0 +1,71 @@
+"""polynomial-ambiguity: matching time can grow with a power of the text's length."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from patlint.rules.finding import Example, Finding, Level, Rule
+from patlint.rules.growth import figures, judged, mode_name, witness_of
+from patlint.rules.subject import Subject
+
+_POWERS = {2: "square", 3: "cube"}
+
+
+def check(subject: Subject) -> Iterator[Finding]:
+    worst: Finding | None = None
+    degree = 1
+    for manner, use, ambiguity in judged(subject):
+        slow = ambiguity.slow
+        if slow is None or slow.growth == "exponential" or slow.growth <= degree:
+            continue
+        degree = slow.growth
+        restart = slow.by_restart and degree == 2
+        level: Level = RULE.level
+        if restart or degree == 2 or (use is not None and use.bounded is not None):
+            level = "note"
+        power = _POWERS.get(degree, f"{degree}th power")
+        cause = ": the search begins afresh at every character" if restart else ""
+        span, *others = slow.parts or [(0, len(subject.site.pattern))]
+        worst = Finding(
+            RULE.name,
+            level,
+            span,
+            f"matching time can grow with the {power} of the text's length{cause}",
+            mode=mode_name(manner),
+            witness=witness_of(slow),
+            evidence=figures(slow),
+            way_out=""
+            if restart
+            else "let the repeats take different characters, or put between them what only one can take",
+            marks=tuple(others),
+        )
+    if worst is not None:
+        yield worst
+
+
+RULE = Rule(
+    name="polynomial-ambiguity",
+    level="warning",
+    summary="matching time can grow with the square of the text's length or a higher power",
+    page="""\
+Two repeats in a row that can take the same characters (`.*.*=`) are tried
+with every boundary between them if the rest fails: time grows with the square
+of the text's length, with three of them with the cube. A search adds a power,
+since it begins afresh at every character: `\\s+$` takes quadratic time on a
+long run of blanks even though match with it is linear.
+
+A note where the growth is a square: it matters only for texts of
+ten thousand characters and more. A warning from the cube on.
+
+The finding gives a text: prefix, pump (to be repeated) and suffix. It was
+confirmed by counting the steps of a matcher that walks as the engine does.
+""",
+    wrong=Example(
+        'import re\n\n\ndef has_total(line):\n    return re.search(r"\\d*,?\\d*,?\\d*;", line) is not None\n',
+        "three repeats can share one run of digits, and the search adds one power",
+    ),
+    right=Example(
+        'import re\n\n\ndef has_total(line):\n    return re.match(r"\\d+(?:,\\d+){0,2};", line) is not None\n'
+    ),
+    check=check,
+)

@@ -1,0 +1,32 @@
+"""stale-waiver: a waiver that waives nothing. Found where waivers are applied, `patlint.run`."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from patlint.rules.finding import Example, Finding, Rule
+from patlint.rules.subject import Subject
+
+
+def check(subject: Subject) -> Iterator[Finding]:
+    """Nothing: a single site cannot tell; `patlint.run` compares waivers with all findings of a file."""
+    return iter(())
+
+
+RULE = Rule(
+    name="stale-waiver",
+    level="warning",
+    summary="a waiver that waives nothing",
+    page="""\
+A waiver is a comment `# patlint: waive RULE -- reason` on the pattern's line,
+on its statement's first line, or on the line above. When the finding that it
+waives is gone, or its rule's name is not known, the comment says something
+that is no longer true: delete it.
+""",
+    wrong=Example(
+        'import re\n\n# patlint: waive nullable -- blanks are optional here\nGATE = re.compile(r"gate [0-9]+")\n',
+        "the pattern takes no empty text",
+    ),
+    right=Example('import re\n\nGATE = re.compile(r"gate [0-9]+")\n'),
+    check=check,
+)

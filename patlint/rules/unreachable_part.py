@@ -1,0 +1,120 @@
+"""unreachable-part: a part of the pattern that no match ever takes."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from patlint.rules.equal_siblings import equal_branches
+from patlint.rules.finding import Example, Finding, Rule
+from patlint.rules.never import is_spelled_never
+from patlint.rules.subject import Subject
+from patlint.source.sites import SCANNING, Mode
+from patlint.syntax import tree as t
+from patlint.syntax.width import width
+
+
+@dataclass(frozen=True, slots=True)
+class _Part:
+    node: t.Node
+    kind: str
+    cut: tuple[int, int]
+    """What is to be deleted from the pattern."""
+
+
+def check(subject: Subject) -> Iterator[Finding]:
+    pattern = subject.pattern
+    parts = list(_parts(pattern.root))
+    if not parts or subject.written.inexact:
+        return
+    used = _used_spans(subject)
+    taken = [b.branches[later].span for b, _, later in equal_branches(pattern, subject.limits)]
+    reported: list[t.Span] = taken
+    for part in parts:
+        start, end = part.node.span
+        if any(low >= start and high <= end for low, high in used):
+            continue
+        if is_spelled_never(part.node) or any(low <= start and end <= high for low, high in reported):
+            continue
+        reported.append(part.node.span)
+        yield Finding(
+            RULE.name,
+            RULE.level,
+            part.node.span,
+            f"no match ever takes this {part.kind}",
+            proof="no text has a match whose way leads through it; without it language and spans are the same",
+            evidence="whatever the text, another way through the pattern succeeds first or this one fails",
+            way_out=_way_out(part),
+        )
+
+
+def _way_out(part: _Part) -> str:
+    if part.kind == "branch":
+        return "delete it, or move it before the branch that always wins (the longer alternative first)"
+    return "delete it, or say what has to follow it"
+
+
+def _used_spans(subject: Subject) -> set[t.Span]:
+    """The spans of the characters that some winning match reads, over all uses that may be."""
+    site = subject.site
+    asked: set[tuple[Mode, bool]] = set()
+    for use in site.uses:
+        mode: Mode = "search" if use.positioned and use.mode == "match" else use.mode
+        asked.add((mode, use.function in SCANNING))
+    if not site.uses_seen or not asked:
+        asked |= {("search", True), ("fullmatch", False)}
+    nfa = subject.written
+    spans = nfa.program.spans
+    return {spans[nfa.pc_of[q]] for mode, not_empty in asked for q in subject.used(mode, not_empty)}
+
+
+def _parts(node: t.Node, optional: bool = False) -> Iterator[_Part]:
+    """Branches, optional parts and repeats that cannot be passed without reading, the outer ones first."""
+    match node:
+        case t.Alternation():
+            for index, branch in enumerate(node.branches):
+                if width(branch)[0] > 0 and _shows_reading(branch):
+                    start, end = branch.span
+                    yield _Part(branch, "branch", (start - 1, end) if index else (start, end + 1))
+                yield from _parts(branch)
+        case t.Repeat():
+            if node.minimum == 0 and node.maximum != 0 and width(node.body)[0] > 0 and _shows_reading(node):
+                kind = "optional part" if node.maximum == 1 else "repeat"
+                yield _Part(node, kind, node.span)
+            yield from _parts(node.body)
+        case t.Look():
+            return  # what a look-around reads is no part of the match
+        case _:
+            for child in t.children(node):
+                yield from _parts(child)
+
+
+def _shows_reading(node: t.Node) -> bool:
+    """Whether every way through the part reads a character of its own (not one of a look-around)."""
+    return not any(isinstance(part, t.Look | t.BackReference | t.Conditional) for part in t.walk(node))
+
+
+RULE = Rule(
+    name="unreachable-part",
+    level="warning",
+    summary="a branch, an optional part or a repeat that no match ever takes",
+    page="""\
+The engine tries alternatives in order and stops at the first way that
+succeeds. A branch behind one that always succeeds first is dead: in
+`in|into` search and match never get to `into`. A lazy repeat at the end of
+a pattern (`x.*?`) never takes anything, since nothing asks it to go on.
+
+The verdict depends on the use: fullmatch does take the longer alternative.
+Where not all uses of a compiled pattern are seen, a part is reported only
+if none of the functions of re can take it. A part that is used but could be
+left out (`[a-za]`) is not reported here.
+""",
+    wrong=Example(
+        'import re\n\n\ndef terminal(text):\n    return re.match(r"east|eastern", text).group()\n',
+        "east always wins before eastern is tried",
+    ),
+    right=Example(
+        'import re\n\n\ndef terminal(text):\n    return re.match(r"eastern|east", text).group()\n'
+    ),
+    check=check,
+)

@@ -1,0 +1,55 @@
+"""vacuous-test: the truth of a match is tested, and every text passes."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from patlint.rules.finding import Example, Finding, Rule, TextWitness
+from patlint.rules.subject import Subject
+
+
+def check(subject: Subject) -> Iterator[Finding]:
+    if not subject.site.pattern or not subject.exact:
+        return
+    for use in subject.uses:
+        if use.looks_at != "truth" or use.positioned or use.function not in ("match", "fullmatch", "search"):
+            continue
+        if not subject.language(use.mode).is_universal():
+            continue
+        text: str | bytes = b"" if subject.pattern.is_bytes else ""
+        yield Finding(
+            RULE.name,
+            RULE.level,
+            (0, len(subject.site.pattern)),
+            f"this test always passes: every text matches in {use.mode}",
+            mode=use.mode,
+            witness=TextWitness(text),
+            proof=f"the automaton of the pattern in {use.mode} accepts every text",
+            evidence=f"on the empty text {use.function} succeeds, as on every other",
+            way_out="demand at least one character, or anchor both ends",
+        )
+        return
+
+
+RULE = Rule(
+    name="vacuous-test",
+    level="error",
+    summary="the truth of a match is tested, and every text passes",
+    page="""\
+The program asks only whether there is a match, and there always is one, so
+the test tests nothing. Most often everything in the pattern is optional
+(`\\d*`), or search and match are content with an empty match at the start
+where fullmatch was meant.
+
+The empty literal "" as a pattern is the usual way to write "always" and is
+not reported.
+""",
+    wrong=Example(
+        'import re\n\n\ndef is_weight(text):\n    if re.match(r"[0-9]*", text):\n        return True\n    return False\n',
+        "every text begins with no digit at all",
+    ),
+    right=Example(
+        'import re\n\n\ndef is_weight(text):\n    if re.fullmatch(r"[0-9]+", text):\n        return True\n    return False\n'
+    ),
+    check=check,
+)

@@ -1,0 +1,219 @@
+"""A compiled pattern -> its uses in the same file, and whether these are all that there can be.
+
+`Follower.follow(call, scope, pattern)` begins at the expression that makes the pattern object and goes with the
+value: through methods called on it at once, names, attributes of `self` and of the class, and bound methods
+kept under a name. Where the value goes where it cannot be followed, or where it is bound to a name that
+other files may use, the uses that were found are not all.
+
+A name that begins with `_` is taken for private to its file, unless the file also spells it in a string.
+"""
+
+from __future__ import annotations
+
+import ast
+import re
+from dataclasses import dataclass, field
+from typing import cast
+
+from patlint.source.constants import Constants
+from patlint.source.engine import METHODS, Engine, bind_arguments
+from patlint.source.index import Index
+from patlint.source.outcome import Outcomes
+from patlint.source.places import Text
+from patlint.source.reasons import Opaque
+from patlint.source.scopes import Scope
+from patlint.source.sites import Function, Use
+from patlint.source.usage import Uses
+
+_MAKERS = frozenset(
+    {"match", "fullmatch", "search", "findall", "finditer", "split", "sub", "subn"}
+)
+
+
+@dataclass(slots=True)
+class Followed:
+    """What was found: the uses, whether they are all, the first name that the pattern is bound to."""
+
+    pattern: str | bytes
+    uses: list[Use] = field(default_factory=list)
+    seen: bool = True
+    name: str | None = None
+    visited: set[tuple[Scope, str, str | None]] = field(default_factory=set)
+
+
+class Follower:
+    """Follows the compiled patterns of one file."""
+
+    def __init__(
+        self, index: Index, text: Text, source: str, engine: Engine, constants: Constants, uses: Uses
+    ) -> None:
+        self.index = index
+        self.text = text
+        self.source = source
+        self.engine = engine
+        self.constants = constants
+        self.uses = uses
+        self.outcomes = Outcomes(index)
+        self._quoted: dict[str, bool] = {}
+
+    def follow(self, call: ast.Call, scope: Scope, pattern: str | bytes) -> Followed:
+        """`call` makes the pattern object, whose text is `pattern`."""
+        found = Followed(pattern)
+        self._flow(call, scope, None, found)
+        return found
+
+    def _flow(self, node: ast.expr, scope: Scope, method: str | None, found: Followed) -> None:
+        """`node` is the pattern object or, with `method`, that method of it."""
+        parent = self.index.parents.get(node)
+        match parent:
+            case ast.Attribute() if method is None:
+                if parent.attr in METHODS and isinstance(parent.ctx, ast.Load):
+                    self._flow(parent, scope, parent.attr, found)
+                elif parent.attr != "flags":
+                    found.seen = False
+            case ast.Call() if method is not None and parent.func is node:
+                function = cast(Function, method)
+                found.uses.append(self.uses.call(parent, scope, function, True, found.pattern))
+            case ast.Call():
+                self._argument(node, parent, scope, method, found)
+            case ast.Assign() if parent.value is node:
+                for target in parent.targets:
+                    self._target(target, parent, scope, method, found)
+            case ast.AnnAssign() if parent.value is node:
+                self._target(parent.target, parent, scope, method, found)
+            case ast.NamedExpr():
+                self._target(parent.target, parent, scope, method, found)
+                self._flow(parent, scope, method, found)
+            case ast.Expr() | ast.If() | ast.While() | ast.UnaryOp(op=ast.Not()):
+                pass
+            case ast.Compare(ops=[ast.Is() | ast.IsNot()]):
+                pass
+            case ast.Tuple():
+                self._parallel(node, parent, scope, method, found)
+            case _:
+                found.seen = False
+
+    def _argument(
+        self, node: ast.expr, call: ast.Call, scope: Scope, method: str | None, found: Followed
+    ) -> None:
+        if method is None:
+            denoted = self._denotes(call.func, scope)
+            name = denoted.removeprefix("re.") if denoted else ""
+            if name in _MAKERS and call.args and call.args[0] is node:
+                use = self.uses.call(call, scope, cast(Function, name), False, found.pattern)
+                found.uses.append(use)
+                return
+        elif isinstance(call.func, ast.Name) and call.args and call.args[0] is node:
+            above = self.index.parents.get(call)
+            tested = call.func.id == "filter" or (
+                call.func.id == "map"
+                and isinstance(above, ast.Call)
+                and isinstance(above.func, ast.Name)
+                and above.func.id in ("any", "all")
+            )
+            if tested and method in ("match", "fullmatch", "search"):
+                found.uses.append(self.uses.tested_by(node, cast(Function, method), "truth"))
+                return
+        found.seen = False
+
+    def _denotes(self, node: ast.expr, scope: Scope) -> str | None:
+        try:
+            return self.engine.denotes(node, scope)
+        except Opaque:
+            return None
+
+    def _parallel(
+        self, node: ast.expr, parent: ast.Tuple, scope: Scope, method: str | None, found: Followed
+    ) -> None:
+        """`a, b = re.compile(…), re.compile(…)`."""
+        above = self.index.parents.get(parent)
+        if isinstance(above, ast.Assign) and above.value is parent and len(above.targets) == 1:
+            targets = above.targets[0]
+            if isinstance(targets, ast.Tuple) and len(targets.elts) == len(parent.elts):
+                self._target(targets.elts[parent.elts.index(node)], above, scope, method, found)
+                return
+        found.seen = False
+
+    def _target(
+        self, target: ast.expr, statement: ast.AST, scope: Scope, method: str | None, found: Followed
+    ) -> None:
+        match target:
+            case ast.Name():
+                found.name = found.name or target.id
+                owner = scope if scope.kind == "class" and target.id in scope.bindings else scope.find(target.id)
+                if owner is None:
+                    found.seen = False
+                elif owner.kind == "class":
+                    self._attributes(owner, target.id, method, found)
+                else:
+                    self._name(owner, target.id, statement, method, found)
+            case ast.Attribute():
+                found.name = found.name or target.attr
+                owner = self.constants.class_of(target.value, scope)
+                if owner is None:
+                    found.seen = False
+                else:
+                    self._attributes(owner, target.attr, method, found)
+            case _:
+                found.seen = False
+
+    def _name(
+        self, owner: Scope, name: str, statement: ast.AST, method: str | None, found: Followed
+    ) -> None:
+        if (owner, name, method) in found.visited:
+            return
+        found.visited.add((owner, name, method))
+        if owner.kind == "module" and not self._is_private(name):
+            found.seen = False
+        others = [binding for binding in owner.bindings.get(name, ()) if not binding.is_none]
+        reached = None
+        if len(others) > 1:
+            if isinstance(statement, ast.stmt) and owner.kind == "function":
+                reached = self.outcomes.reached(name, statement, owner)
+            if reached is None:
+                found.seen = False
+        for read, scope in owner.reads(name):
+            if reached is None or read in reached:
+                self._flow(read, scope, method, found)
+
+    def _attributes(self, owner: Scope, name: str, method: str | None, found: Followed) -> None:
+        """A name of the class or of its objects: read by name in its body, by attribute anywhere."""
+        if (owner, name, method) in found.visited:
+            return
+        found.visited.add((owner, name, method))
+        stores = [
+            use for use in self.index.stores.get(name, ()) if self._may_be(use.node, use.scope, owner, name)
+        ]
+        values = [use.value for use in stores if not _is_none(use.value)]
+        values += [b.value for b in owner.bindings.get(name, ()) if not b.is_none]
+        if not self._is_private(name) or len(values) > 1:
+            found.seen = False
+        for read, scope in owner.reads(name):
+            self._flow(read, scope, method, found)
+        for use in self.index.reads.get(name, ()):
+            if self.constants.class_of(use.node.value, use.scope) is owner:
+                self._flow(use.node, use.scope, method, found)
+            elif self._may_be(use.node, use.scope, owner, name):
+                found.seen = False
+
+    def _may_be(self, node: ast.Attribute, scope: Scope, owner: Scope, name: str) -> bool:
+        """Whether an attribute may be that of `owner`: not where it is another class's own."""
+        other = self.constants.class_of(node.value, scope)
+        if other is None or other is owner:
+            return True
+        if name in other.bindings:
+            return False
+        return not any(
+            self.constants.class_of(use.node.value, use.scope) is other for use in self.index.stores.get(name, ())
+        )
+
+    def _is_private(self, name: str) -> bool:
+        if not name.startswith("_") or (name.startswith("__") and name.endswith("__")):
+            return False
+        if name not in self._quoted:
+            self._quoted[name] = re.search(rf"""["']{re.escape(name)}["']""", self.source) is not None
+        return not self._quoted[name]
+
+
+def _is_none(node: ast.expr | None) -> bool:
+    return isinstance(node, ast.Constant) and node.value is None

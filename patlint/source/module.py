@@ -1,0 +1,277 @@
+"""A Python file -> `Module`: its patterns, the calls whose pattern cannot be told, its waivers.
+
+>>> [(site.pattern, site.function) for site in find_patterns("import re\\nre.match('a+', text)", "a.py")]
+[('a+', 'match')]
+
+Order of work: decode, parse with `ast`, and only where the text imports `re`: one walk (`index`), the calls
+on `re` (`engine`), the text and flags of each (`constants`, `flags`), its uses (`usage`, `follow`).
+"""
+
+from __future__ import annotations
+
+import ast
+import gc
+import re
+import warnings
+from collections.abc import Iterator
+from typing import cast
+
+from patlint.source import reasons
+from patlint.source.constants import Constants
+from patlint.source.decode import SourceError, decode, split_lines
+from patlint.source.engine import FUNCTIONS, Engine, bind_arguments
+from patlint.source.flags import evaluate_flags
+from patlint.source.follow import Follower
+from patlint.source.index import Index, build_index
+from patlint.source.places import Text
+from patlint.source.reasons import Opaque
+from patlint.source.scopes import Scope
+from patlint.source.sites import Function, Module, Place, Site, Unresolved, Use
+from patlint.source.spelled import Spelled, whole_place
+from patlint.source.usage import Uses
+from patlint.source.waivers import read_waivers
+
+# Two searches that begin with a literal are many times faster than one with an alternation in front.
+_IMPORT_RE = re.compile(r"import[ \t\f\\](?:[^#\n\r;]|(?<=\\)\r?\n|(?<=\\)\r)*?\bre\b")
+_FROM_RE = re.compile(r"from[ \t\f\\\r\n]+re\b")
+
+
+def read_module(data: bytes | str, path: str) -> Module:
+    """Everything the source side knows of one file, which is never run.
+
+    Errors: `SourceError` for what cannot be decoded or parsed.
+    """
+    source = decode(data, path)
+    collecting = gc.isenabled()
+    gc.disable()  # a tree is many objects and no rubbish
+    try:
+        tree = parse(source.text, path)
+        lines = split_lines(source.text)
+        waivers, bad_waivers = read_waivers(source.text, lines)
+        sites: tuple[Site, ...] = ()
+        unresolved: tuple[Unresolved, ...] = ()
+        if mentions_re(source.text):
+            reader = _Reader(tree, source.text, lines, path)
+            try:
+                reader.read()
+                sites, unresolved = reader.results()
+            finally:
+                reader.index.release()
+    finally:
+        if collecting:
+            gc.enable()
+    return Module(path, sites, unresolved, waivers, lines, bad_waivers, source.encoding)
+
+
+def find_patterns(text: bytes | str, path: str = "<text>") -> tuple[Site, ...]:
+    """The patterns of one file whose text can be told, in the order of the file. Errors: `SourceError`."""
+    return read_module(text, path).sites
+
+
+def mentions_re(text: str) -> bool:
+    """Whether the file can have anything of `re` at all; cheap, and True too often rather than too seldom."""
+    return _IMPORT_RE.search(text) is not None or _FROM_RE.search(text) is not None
+
+
+def parse(text: str, path: str) -> ast.Module:
+    """Errors: `SourceError`, whatever the parser comes to."""
+    try:
+        with warnings.catch_warnings():
+            warnings.simplefilter("ignore")
+            return ast.parse(text)
+    except SyntaxError as error:
+        raise SourceError(path, f"cannot be parsed: {error.msg}", error.lineno) from None
+    except RecursionError:
+        raise SourceError(path, "cannot be parsed: nested too deeply") from None
+    except MemoryError:
+        raise SourceError(path, "cannot be parsed: out of memory or nested too deeply") from None
+    except (ValueError, OverflowError) as error:
+        raise SourceError(path, f"cannot be parsed: {type(error).__name__}") from None
+
+
+class _Reader:
+    """One file while it is read."""
+
+    def __init__(self, tree: ast.Module, source: str, lines: tuple[str, ...], path: str) -> None:
+        self.path = path
+        self.index: Index = build_index(tree)
+        self.text = Text(lines)
+        self.engine = Engine(self.index)
+        self.constants = Constants(self.index, self.text, self.engine)
+        self.uses = Uses(self.index, self.text, self.constants)
+        self.follower = Follower(self.index, self.text, source, self.engine, self.constants, self.uses)
+        self.sites: list[Site] = []
+        self.unresolved: list[Unresolved] = []
+
+    def results(self) -> tuple[tuple[Site, ...], tuple[Unresolved, ...]]:
+        sites = sorted(merge(self.sites), key=lambda site: site.place)
+        return tuple(sites), tuple(sorted(self.unresolved, key=lambda call: call.place))
+
+    def read(self) -> None:
+        for node, scope in self._members():
+            try:
+                denoted = self.engine.denotes(node, scope)
+            except Opaque as opaque:
+                self._doubtful(node, opaque)
+                continue
+            name = denoted.removeprefix("re.") if denoted else ""
+            call = self.index.parents.get(node)
+            called = isinstance(call, ast.Call) and call.func is node
+            if name == "Scanner" and called:
+                assert isinstance(call, ast.Call)
+                self._refuse(call, name, reasons.SCANNER)
+            elif name in FUNCTIONS:
+                if called:
+                    assert isinstance(call, ast.Call)
+                    self._call(call, scope, name)
+                elif not self._is_alias(node):
+                    self._refuse(node, name, reasons.PASSED_ON)
+
+    def _members(self) -> Iterator[tuple[ast.expr, Scope]]:
+        """Every expression that may be a member of `re`: `x.match`, or a name from a from-import or alias."""
+        parents = self.index.parents
+        stack = [self.index.module]
+        starred = any(module == "re" for _, module in self.index.module.stars)
+        names = self._names()
+        while stack:
+            scope = stack.pop()
+            stack.extend(scope.children)
+            for name in names & scope.loads.keys() if not starred else scope.loads.keys():
+                for node in scope.loads[name]:
+                    parent = parents.get(node)
+                    if isinstance(parent, ast.Attribute) and parent.value is node:
+                        if parent.attr in FUNCTIONS or parent.attr == "Scanner":
+                            yield parent, scope
+                    elif name in names or name in FUNCTIONS:
+                        yield node, scope
+
+    def _names(self) -> set[str]:
+        """Names that are bound to `re` or to a member of it somewhere in the file."""
+        found: set[str] = set()
+        scopes = [self.index.module]
+        aliases: list[tuple[str, str]] = []
+        while scopes:
+            scope = scopes.pop()
+            scopes.extend(scope.children)
+            for name, bindings in scope.bindings.items():
+                for binding in bindings:
+                    if binding.module == "re":
+                        found.add(name)
+                    else:
+                        value = binding.value
+                        while isinstance(value, ast.Attribute):
+                            value = value.value
+                        if isinstance(value, ast.Name):
+                            aliases.append((value.id, name))
+        grown = True
+        while grown:
+            grown = False
+            for origin, name in aliases:
+                if origin in found and name not in found:
+                    found.add(name)
+                    grown = True
+        return found
+
+    def _is_alias(self, node: ast.expr) -> bool:
+        """`search = re.search`: the calls of the name are looked at where they stand."""
+        parent = self.index.parents.get(node)
+        match parent:
+            case ast.Assign(targets=targets):
+                return parent.value is node and all(isinstance(target, ast.Name) for target in targets)
+            case ast.Compare() | ast.Attribute():
+                return True
+            case _:
+                return False
+
+    def _doubtful(self, node: ast.expr, opaque: Opaque) -> None:
+        call = self.index.parents.get(node)
+        name = node.attr if isinstance(node, ast.Attribute) else getattr(node, "id", "")
+        if isinstance(call, ast.Call) and call.func is node and name in FUNCTIONS:
+            self._refuse(call, name, opaque.reason)
+
+    def _refuse(self, node: ast.expr, function: str, reason: str) -> None:
+        self.unresolved.append(Unresolved(self.path, self.text.place(node), function, reason))
+
+    def _call(self, call: ast.Call, scope: Scope, function: str) -> None:
+        self.constants.restart()
+        arguments = bind_arguments(call, FUNCTIONS[function])
+        argument = arguments.given.get("pattern")
+        try:
+            if argument is None:
+                raise Opaque(reasons.STARRED if arguments.loose else reasons.MISSING)
+            if self.constants.maker(argument, scope) is not None:
+                return  # a pattern object: its site is where it is made
+            pattern = self.constants.text_of(argument, scope)
+            if arguments.loose and "flags" not in arguments.given:
+                raise Opaque(reasons.FLAGS)
+            flags = evaluate_flags(arguments.given.get("flags"), scope, self.constants)
+        except Opaque as opaque:
+            if opaque.reason != reasons.COMPILED:
+                self._refuse(call, function, opaque.reason)
+            return
+        self._site(call, scope, function, argument, pattern, flags)
+
+    def _site(
+        self, call: ast.Call, scope: Scope, function: str, argument: ast.expr, pattern: Spelled, flags: int
+    ) -> None:
+        uses: tuple[Use, ...]
+        if function == "compile":
+            found = self.follower.follow(call, scope, pattern.value)
+            uses, seen, name = tuple(found.uses), found.seen, found.name
+        else:
+            uses = (self.uses.call(call, scope, cast(Function, function), False, pattern.value),)
+            seen, name = True, None
+        place, statement = self._where(argument, scope, pattern)
+        self.sites.append(
+            Site(
+                path=self.path,
+                pattern=pattern.value,
+                flags=flags,
+                function=function,
+                place=place,
+                statement=statement,
+                pieces=pattern.pieces(),
+                uses=uses,
+                uses_seen=seen,
+                name=name,
+            )
+        )
+
+    def _where(self, argument: ast.expr, scope: Scope, pattern: Spelled) -> tuple[Place, int]:
+        """The whole expression that gives the text: a name's definition, or the argument itself."""
+        for _ in range(20):
+            if not isinstance(argument, ast.Name):
+                break
+            definitions = self.constants.definitions(argument, scope)
+            argument, scope = definitions[0]
+        statement = self.index.statement(argument)
+        line = statement.lineno if statement is not None else argument.lineno
+        return self.text.place(argument), line
+
+
+def merge(sites: list[Site]) -> list[Site]:
+    """One site for the same constant with the same flags, so that nothing is reported twice."""
+    merged: dict[tuple[Place, str | bytes, int], Site] = {}
+    for site in sites:
+        key = site.place, site.pattern, site.flags
+        known = merged.get(key)
+        if known is None:
+            merged[key] = site
+            continue
+        uses = known.uses + tuple(use for use in site.uses if use not in known.uses)
+        merged[key] = Site(
+            path=known.path,
+            pattern=known.pattern,
+            flags=known.flags,
+            function=known.function,
+            place=known.place,
+            statement=known.statement,
+            pieces=known.pieces,
+            uses=tuple(sorted(uses, key=lambda use: use.place)),
+            uses_seen=known.uses_seen and site.uses_seen,
+            name=known.name or site.name,
+        )
+    return list(merged.values())
+
+
+__all__ = ["find_patterns", "mentions_re", "parse", "read_module", "whole_place"]

@@ -1,0 +1,121 @@
+"""Wrong calls: one line on standard error, the nearest right word, status 2. And the help."""
+
+from __future__ import annotations
+
+import subprocess
+import sys
+from collections.abc import Callable
+from pathlib import Path
+
+import pytest
+
+from patlint import __version__
+from patlint.cli.main import COMMANDS
+
+from .conftest import CLEAN, Ran
+
+Patlint = Callable[..., Ran]
+
+WRONG = [
+    ((), "no command; see patlint --help"),
+    (("lnit",), "unknown command 'lnit'; the nearest is lint"),
+    (("xyz",), "unknown command 'xyz'"),
+    (("--versoin",), "unknown option '--versoin'; the nearest is --version"),
+    (("lint", "--fromat", "json"), "unknown option '--fromat'; the nearest is --format"),
+    (("lint", "--fromat=json"), "unknown option '--fromat'; the nearest is --format"),
+    (("lint", "--form", "json"), "unknown option '--form'; the nearest is --format"),  # no abbreviations
+    (("lint", "-z"), "unknown option '-z'"),
+    (
+        ("lint", "--format", "jsn"),
+        "--format: 'jsn' is not one of text, json; the nearest is json; see patlint lint --help",
+    ),
+    (("lint", "--format"), "--format: expected one argument; see patlint lint --help"),
+    (
+        ("lint", "--fail-on", "warn"),
+        "--fail-on: 'warn' is not one of error, warning, note, never; the nearest is warning;"
+        " see patlint lint --help",
+    ),
+    (("lint", "--only", "nulable"), "--only: unknown rule 'nulable'; the nearest is nullable"),
+    (("lint", "--skip", "nullable,x"), "--skip: unknown rule 'x'"),
+    (("lint", "--target", "3.9"), "--target: unknown target '3.9'; patlint knows 3.10, 3.11, 3.12, 3.13"),
+    (("lint", "--jobs", "0"), "--jobs: '0' is not a whole number above 0; see patlint lint --help"),
+    (("lint", "--jobs", "two"), "--jobs: 'two' is not a whole number above 0; see patlint lint --help"),
+    (("lint", "--as", "x.py"), "--as names standard input, but - is not among the paths"),
+    (("lint", "--config", "none.toml"), "none.toml: cannot be read: No such file or directory"),
+    (("lint", "--output", "no/where", "a.py"), "--output no/where: No such file or directory"),
+    (("list", "--formt", "json"), "unknown option '--formt'; the nearest is --format"),
+    (("rules", "nulable"), "unknown rule 'nulable'; the nearest is nullable"),
+    (("rules", "nullable", "nullable"), "one argument too many: 'nullable'; see patlint rules --help"),
+    (("inspect",), "the following arguments are required: PATTERN; see patlint inspect --help"),
+    (
+        ("inspect", "a", "--mode", "serch"),
+        "--mode: 'serch' is not one of match, fullmatch, search; the nearest is search;"
+        " see patlint inspect --help",
+    ),
+    (("inspect", "a", "--flags", "ik"), "--flags: unknown flag 'k'; the flags are a, i, L, m, s, u, x"),
+    (
+        ("inspect", "a", "--target", "3.14"),
+        "--target: unknown target '3.14'; patlint knows 3.10, 3.11, 3.12, 3.13",
+    ),
+]
+
+
+@pytest.mark.parametrize(("words", "message"), WRONG)
+def test_wrong_calls(patlint: Patlint, words: tuple[str, ...], message: str) -> None:
+    Path("a.py").write_text(CLEAN)
+    assert patlint(*words) == Ran(2, "", f"patlint: {message}\n")
+
+
+def test_wrong_configuration(patlint: Patlint) -> None:
+    Path("a.py").write_text(CLEAN)
+    Path("pyproject.toml").write_text('[tool.patlint]\nlevls = { nullable = "off" }\n')
+    where = Path("pyproject.toml").absolute()
+    assert patlint("lint") == Ran(2, "", f"patlint: {where}: unknown key levls; the nearest is levels\n")
+
+
+@pytest.mark.parametrize("words", [("--help",), ("-h",)])
+def test_help_names_every_command(patlint: Patlint, words: tuple[str, ...]) -> None:
+    ran = patlint(*words)
+    assert (ran.status, ran.err) == (0, "")
+    assert [line.split()[0] for line in ran.out.splitlines() if line.startswith("  ") and line[2] != " "][
+        : len(COMMANDS)
+    ] == list(COMMANDS)
+
+
+def test_version(patlint: Patlint) -> None:
+    assert patlint("--version") == Ran(0, f"patlint {__version__}\n", "")
+
+
+@pytest.mark.parametrize("command", sorted(COMMANDS))
+def test_each_option_says_its_default(patlint: Patlint, command: str) -> None:
+    from importlib import import_module
+
+    with pytest.raises(SystemExit) as caught:
+        patlint(command, "--help")
+    assert caught.value.code == 0
+    parser = import_module(f"patlint.cli.{command}").parser()
+    seen = 0
+    for action in parser._actions:
+        if "--help" in action.option_strings:
+            continue
+        seen += 1
+        assert action.required or "(default: " in action.help, action.dest
+    assert seen >= 1
+
+
+def test_help_imports_nothing_slow() -> None:
+    """`patlint --help` is quick because of what it does not import; the names are of the slow ones."""
+    code = (
+        "import sys; from patlint.cli.main import main; main(['--help']);"
+        "print(sorted(n for n in sys.modules if n.split('.')[0] in"
+        " ('libcst', 'argparse', 'ast', 'difflib', 'multiprocessing', 'dataclasses', 'json')))"
+    )
+    ran = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
+    assert ran.stdout.splitlines()[-1] == "[]"
+    count = subprocess.run(
+        [sys.executable, "-c", code.replace("main(['--help'])", "import argparse")],
+        capture_output=True,
+        text=True,
+        check=True,
+    )
+    assert "argparse" in count.stdout  # the check can fail

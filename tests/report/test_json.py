@@ -1,0 +1,123 @@
+"""The JSON reports: exactly the documented shape."""
+
+from __future__ import annotations
+
+import json
+
+from patlint import __version__
+from patlint.inventory import Inventory, Listed
+from patlint.outcome import Outcome, Remark
+from patlint.placed import PlacedFinding, RelatedPlace
+from patlint.report.json import lint_report, list_report
+from patlint.rules.finding import SlowWitness, Suggestion, TextWitness
+from patlint.run import RunResult
+
+SLOW = PlacedFinding(
+    rule="exponential-ambiguity",
+    level="error",
+    path="dock.py",
+    line=2,
+    column=16,
+    end_line=2,
+    end_column=20,
+    message="time doubles",
+    pattern="(a+)+$",
+    flags=("IGNORECASE",),
+    mode="match",
+    witness=SlowWitness("", "a", "!", "exponential", ((5, 100),)),
+    suggestion=Suggestion("a+$", "spans"),
+    related=(RelatedPlace("here", "crane.py", 1, 2, 3, 4, (0, 1)),),
+    evidence="not in the JSON",
+    span=(0, 4),
+)
+BYTES = PlacedFinding(
+    "nullable", "note", "dock.py", 5, 1, 5, 2, "m", b"\xff*", witness=TextWitness(b"\x00\xff")
+)
+SURROGATE = PlacedFinding(
+    "nullable", "note", "dock.py", 6, 1, 6, 2, "m", "\ud800*", witness=TextWitness("\udc80")
+)
+WAIVER = PlacedFinding("stale-waiver", "warning", "dock.py", 7, 1, 7, 2, "m")
+
+OUTCOME = Outcome(
+    "dock.py",
+    (SLOW, BYTES, SURROGATE, WAIVER),
+    patterns=5,
+    waived=1,
+    unresolved=(Remark(8, 1, "compile: a parameter"),),
+    inexact=(Remark(2, 1, "x"), Remark(3, 1, "x")),
+    undecided=(Remark(2, 1, "states"), Remark(4, 1, "states"), Remark(5, 1, "states")),
+)
+
+
+def test_lint_report() -> None:
+    text = lint_report(RunResult((OUTCOME, Outcome("bad.py", linted=False)), ("bad.py: no",), 1), (3, 12))
+    assert text.isascii()
+    assert text.endswith("}\n")
+    report = json.loads(text)
+    assert list(report) == ["patlint", "target", "summary", "findings"]
+    assert report["patlint"] == __version__
+    assert report["target"] == "3.12"
+    assert report["summary"] == {
+        "files": 1,
+        "skipped": 1,
+        "patterns": 5,
+        "unresolved": 1,
+        "inexact": 2,
+        "undecided": 3,
+    }
+    slow, raw, surrogate, waiver = report["findings"]
+    assert slow == {
+        "rule": "exponential-ambiguity",
+        "level": "error",
+        "path": "dock.py",
+        "line": 2,
+        "column": 16,
+        "end_line": 2,
+        "end_column": 20,
+        "message": "time doubles",
+        "pattern": "(a+)+$",
+        "bytes": False,
+        "flags": ["IGNORECASE"],
+        "mode": "match",
+        "witness": {"prefix": "", "pump": "a", "suffix": "!", "growth": "exponential"},
+        "suggestion": {"pattern": "a+$", "keeps": "spans"},
+        "related": [
+            {
+                "path": "crane.py",
+                "line": 1,
+                "column": 2,
+                "end_line": 3,
+                "end_column": 4,
+                "message": "here",
+            }
+        ],
+    }
+    assert (raw["pattern"], raw["bytes"], raw["witness"]) == ("\xff*", True, {"text": "\x00\xff"})
+    assert (surrogate["pattern"], surrogate["witness"]) == ("\ud800*", {"text": "\udc80"})
+    assert waiver["pattern"] is waiver["mode"] is waiver["witness"] is waiver["suggestion"] is None
+    assert waiver["flags"] == waiver["related"] == []
+    assert all(list(each) == list(slow) for each in report["findings"])
+
+
+def test_list_report() -> None:
+    listed = Listed("dock.py", 1, 2, 3, 4, b"\xfe", ("DOTALL",), ("match", "search"), "span")
+    inventory = Inventory("dock.py", (listed,), (Remark(8, 1, "compile: a parameter"),))
+    text = list_report([inventory])
+    assert text.isascii()
+    assert json.loads(text) == {
+        "patterns": [
+            {
+                "path": "dock.py",
+                "line": 1,
+                "column": 2,
+                "end_line": 3,
+                "end_column": 4,
+                "pattern": "\xfe",
+                "bytes": True,
+                "flags": ["DOTALL"],
+                "modes": ["match", "search"],
+                "looks_at": "span",
+            }
+        ],
+        "unresolved": [{"path": "dock.py", "line": 8, "column": 1, "reason": "compile: a parameter"}],
+    }

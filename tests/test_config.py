@@ -1,0 +1,258 @@
+"""Configuration: what is read, what is refused (whole messages), where file and target come from."""
+
+from __future__ import annotations
+
+from dataclasses import fields
+from pathlib import Path
+
+import pytest
+
+from patlint.config import ConfigError, Settings, load
+from patlint.globs import fits
+from patlint.limits import Limits
+from patlint.nearest import nearest
+from patlint.target import TARGETS, lowest_target, running_target
+
+RULES = ("nullable", "empty-language", "exponential-ambiguity", "overlapping-siblings", "stale-waiver")
+
+
+def configured(folder: Path, table: str) -> Settings:
+    (folder / "pyproject.toml").write_text("[tool.patlint]\n" + table, encoding="utf-8")
+    return load(RULES, folder)
+
+
+def test_every_key(tmp_path: Path) -> None:
+    settings = configured(
+        tmp_path,
+        """
+        target = "3.12"
+        fail-on = "error"
+        only = ["nullable", "empty-language"]
+        skip = ["nullable"]
+        exclude = ["vendor"]
+        levels = { empty-language = "note" }
+        limits = { states = 7 }
+        per-path = { "tests/**" = { skip = ["empty-language"], levels = { nullable = "off" } } }
+        """,
+    )
+    assert settings.target == (3, 12)
+    assert settings.fail_on == "error"
+    assert settings.limits == Limits(states=7)
+    assert settings.root == str(tmp_path)
+    assert settings.for_path(str(tmp_path / "a.py")) == (
+        frozenset({"empty-language"}),
+        {"empty-language": "note"},
+    )
+    assert settings.for_path(str(tmp_path / "tests" / "b" / "a.py"))[0] == frozenset()
+    assert settings.excludes(str(tmp_path / "lib" / "vendor" / "a.py"))
+    assert not settings.excludes(str(tmp_path / "lib" / "vendors" / "a.py"))
+
+
+def test_without_a_word(tmp_path: Path) -> None:
+    (tmp_path / ".git").mkdir()
+    settings = load(RULES, tmp_path)
+    assert settings.root == str(tmp_path)
+    assert settings.target == running_target()
+    assert settings.fail_on == "warning"
+    enabled, levels = settings.for_path("x.py")
+    assert enabled == frozenset(RULES) - {"overlapping-siblings"}
+    assert levels == {}
+
+
+def test_a_level_turns_a_rule_on_that_is_off_by_default(tmp_path: Path) -> None:
+    settings = configured(tmp_path, 'levels = { overlapping-siblings = "note", nullable = "off" }')
+    assert settings.for_path("x.py")[0] == frozenset(RULES) - {"nullable"}
+    assert configured(tmp_path, 'only = ["overlapping-siblings"]').for_path("x.py")[0] == frozenset(
+        {"overlapping-siblings"}
+    )
+
+
+REFUSED = [
+    ('targt = "3.12"', "unknown key targt; the nearest is target"),
+    ("zzz = 1", "unknown key zzz"),
+    ('target = "3.9"', "unknown target '3.9'; patlint knows 3.10, 3.11, 3.12, 3.13"),
+    ("target = 3.12", "target must be a text, not the number 3.12"),
+    (
+        'fail-on = "warnings"',
+        "fail-on must be one of error, warning, note, never, not 'warnings'; the nearest is warning",
+    ),
+    ("fail-on = true", "fail-on must be a text, not true"),
+    ('only = "nullable"', "only must be a list of texts, not the text 'nullable'"),
+    ("skip = [1]", "skip must be a list of texts; it holds the number 1"),
+    ('skip = ["nulable"]', "skip names an unknown rule 'nulable'; the nearest is nullable"),
+    ("exclude = {}", "exclude must be a list of texts, not a table"),
+    ("levels = []", "levels must be a table, not a list"),
+    ('levels = { nulable = "off" }', "levels names an unknown rule 'nulable'; the nearest is nullable"),
+    (
+        'levels = { nullable = "warn" }',
+        "levels.nullable must be one of error, warning, note, off, not 'warn'; the nearest is warning",
+    ),
+    ("limits = { stats = 1 }", "limits has an unknown key stats; the nearest is states"),
+    ("limits = { states = 0 }", "limits.states must be a whole number above 0, not the number 0"),
+    ("limits = { states = true }", "limits.states must be a whole number above 0, not true"),
+    ("limits = { states = 1.5 }", "limits.states must be a whole number above 0, not the number 1.5"),
+    ("per-path = { a = 1 }", "per-path.'a' must be a table, not the number 1"),
+    ("per-path = { a = { skp = [] } }", "per-path.'a' has an unknown key skp; the nearest is skip"),
+    (
+        'per-path = { a = { skip = ["nulable"] } }',
+        "per-path.'a'.skip names an unknown rule 'nulable'; the nearest is nullable",
+    ),
+    (
+        'per-path = { a = { levels = { nullable = "of" } } }',
+        "per-path.'a'.levels.nullable must be one of error, warning, note, off, not 'of'; the nearest is off",
+    ),
+]
+
+
+@pytest.mark.parametrize(("table", "message"), REFUSED)
+def test_refused(tmp_path: Path, table: str, message: str) -> None:
+    with pytest.raises(ConfigError) as caught:
+        configured(tmp_path, table)
+    assert str(caught.value) == f"{tmp_path / 'pyproject.toml'}: {message}"
+
+
+def test_every_field_of_limits_is_a_key(tmp_path: Path) -> None:
+    names = [each.name for each in fields(Limits)]
+    assert len(names) >= 6
+    table = ", ".join(f"{name} = {index + 1}" for index, name in enumerate(names))
+    settings = configured(tmp_path, f"limits = {{ {table} }}")
+    assert [getattr(settings.limits, name) for name in names] == list(range(1, len(names) + 1))
+
+
+def test_a_broken_file(tmp_path: Path) -> None:
+    path = tmp_path / "pyproject.toml"
+    path.write_text("[tool.patlint\n")
+    with pytest.raises(ConfigError) as caught:
+        load(RULES, tmp_path)
+    assert str(caught.value).startswith(f"{path}: not TOML: ")
+    assert "\n" not in str(caught.value)
+    path.write_bytes(b"a = '\xff'\n")
+    with pytest.raises(ConfigError, match="not TOML"):
+        load(RULES, tmp_path)
+    path.write_text("[tool]\npatlint = 1\n")
+    with pytest.raises(ConfigError) as caught:
+        load(RULES, tmp_path)
+    assert str(caught.value) == f"{path}: tool.patlint must be a table"
+
+
+def test_the_nearest_file_with_a_table_counts(tmp_path: Path) -> None:
+    inner = tmp_path / "one" / "two"
+    inner.mkdir(parents=True)
+    (inner / "pyproject.toml").write_text('[project]\nname = "x"\nrequires-python = ">=3.12"\n')
+    configured(tmp_path, 'skip = ["nullable"]')
+    settings = load(RULES, inner / "missing.py")
+    assert (settings.root, settings.skip) == (str(tmp_path), frozenset({"nullable"}))
+    assert settings.target == (3, 12)
+
+
+def test_the_search_ends_at_the_top_of_the_repository(tmp_path: Path) -> None:
+    inner = tmp_path / "repository"
+    (inner / ".git").mkdir(parents=True)
+    configured(tmp_path, 'skip = ["nullable"]')
+    assert load(RULES, inner).skip == frozenset()
+
+
+def test_a_file_of_its_own(tmp_path: Path) -> None:
+    (tmp_path / "pyproject.toml").write_text('[project]\nname = "x"\nrequires-python = ">=3.11"\n')
+    own = tmp_path / "etc" / "patlint.toml"
+    own.parent.mkdir()
+    own.write_text('skip = ["nullable"]\n')
+    settings = load(RULES, tmp_path, own)
+    assert (settings.root, settings.skip, settings.target) == (
+        str(own.parent),
+        frozenset({"nullable"}),
+        (3, 11),
+    )
+    own.write_text('[tool.patlint]\nskip = ["empty-language"]\n')
+    assert load(RULES, tmp_path, own).skip == frozenset({"empty-language"})
+    own.write_text('[build-system]\nrequires = ["x"]\n')
+    assert load(RULES, tmp_path, own).skip == frozenset()
+    own.write_text("skp = []\n")
+    with pytest.raises(ConfigError) as caught:
+        load(RULES, tmp_path, own)
+    assert str(caught.value) == f"{own}: unknown key skp; the nearest is skip"
+    with pytest.raises(ConfigError) as caught:
+        load(RULES, tmp_path, tmp_path / "none.toml")
+    assert str(caught.value) == f"{tmp_path / 'none.toml'}: cannot be read: No such file or directory"
+
+
+# Source: PEP 440, "Version specifiers"; the outcome is held within 3.10 to 3.13.
+SPECIFIERS = [
+    (">=3.8", (3, 10)),
+    (">=3.11", (3, 11)),
+    (">= 3.11, <4", (3, 11)),
+    (">3.10", (3, 10)),  # 3.10.1 is above 3.10
+    (">3.10.99", (3, 11)),
+    ("~=3.11", (3, 11)),
+    ("~=3.12.2", (3, 12)),
+    ("==3.11.*", (3, 11)),
+    ("==3.12.1", (3, 12)),
+    ("!=3.10.*,>=3.10", (3, 11)),
+    ("<3.12", (3, 10)),
+    (">=2.7,!=3.0.*,!=3.1.*", (3, 10)),
+    ("==3.9.*", (3, 10)),
+    (">=3.14", (3, 13)),
+    ("", (3, 10)),
+    (">=3.13.0rc1", (3, 13)),
+    ("^3.10", None),
+    (">=4", None),
+    ("three", None),
+]
+
+
+@pytest.mark.parametrize(("specifier", "target"), SPECIFIERS)
+def test_requires_python(specifier: str, target: tuple[int, int] | None) -> None:
+    assert lowest_target(specifier) == target
+
+
+def test_requires_python_as_packaging_reads_it() -> None:
+    specifiers = pytest.importorskip("packaging.specifiers")
+    tried = 0
+    for specifier, target in SPECIFIERS:
+        if target is None:
+            continue
+        allowed = specifiers.SpecifierSet(specifier)
+        minors = [minor for minor in range(60) if any(f"3.{minor}.{micro}" in allowed for micro in range(41))]
+        assert min(max((3, minors[0]), TARGETS[0]), TARGETS[-1]) == target, specifier
+        tried += 1
+    assert tried == 16
+
+
+# Globs: the reading of `patlint.globs`' own docstring.
+GLOBS = [
+    ("build", "build/x.py", True),
+    ("build", "src/build/x.py", True),
+    ("build", "src/builds/x.py", False),
+    ("build/", "src/build/x.py", True),
+    ("*_pb2.py", "src/a_pb2.py", True),
+    ("*.py", "src/a.pyc", False),
+    ("src/*.py", "src/a.py", True),
+    ("src/*.py", "src/a/b.py", False),
+    ("src/*.py", "lib/src/a.py", False),
+    ("./src/*.py", "src/a.py", True),
+    ("src/**/*.py", "src/a.py", True),
+    ("src/**/*.py", "src/a/b/c.py", True),
+    ("**/data/**", "data/x.py", True),
+    ("**/data/**", "a/b/data/c/x.py", True),
+    ("**/data/**", "a/datas/x.py", False),
+    ("src/**", "src/a/b.py", True),
+    ("a?.py", "ab.py", True),
+    ("a?.py", "a/.py", False),
+    ("[ab].py", "b.py", True),
+    ("[!ab].py", "b.py", False),
+    ("[!ab].py", "c.py", True),
+    ("[a-c]x.py", "bx.py", True),
+    ("a.py", "axpy", False),
+    ("(a)+[", "(a)+[", True),
+    ("a[^]b", "a^b", True),
+]
+
+
+@pytest.mark.parametrize(("glob", "path", "expected"), GLOBS)
+def test_globs(glob: str, path: str, expected: bool) -> None:
+    assert fits(glob, path) is expected
+
+
+def test_nearest() -> None:
+    assert nearest("nulable", RULES) == "; the nearest is nullable"
+    assert nearest("xyzzy", RULES) == ""

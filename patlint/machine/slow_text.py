@@ -171,15 +171,18 @@ def _confirm(
     budget: list[int],
 ) -> SlowText | None:
     pump = _root(suspect.pump)
+    prefix = suspect.prefix
+    while prefix[-len(pump) :] == pump:
+        prefix = prefix[: -len(pump)]
     candidates: list[tuple[int, int, _Counts]] = []
     for order, suffix in enumerate(_suffixes(suspect, nfa, dfa, manner)):
         if order >= SUFFIXES:
             break
-        text = _Text(suspect.prefix, pump, suffix, nfa.program.is_bytes)
+        text = _Text(prefix, pump, suffix, nfa.program.is_bytes)
         first_look = _Counts(matcher, manner, text, SCREEN_TURNS, budget)
         seen = [steps for steps in map(first_look.at, SCREEN_SIZES) if steps is not None]
         walked = SCREEN_TURNS * (1 + len(SCREEN_SIZES) - len(seen)) if len(seen) < len(SCREEN_SIZES) else seen[-1]
-        candidates.append((-walked, order, _Counts(matcher, manner, text, limits.turns, budget)))
+        candidates.append((-walked.bit_length(), order, _Counts(matcher, manner, text, limits.turns, budget)))
     best: SlowText | None = None
     for _, _, counts in sorted(candidates, key=lambda row: row[:2])[:2]:
         growth = _exponential(counts) if suspect.degree == EXPONENTIAL else _power(counts, most)

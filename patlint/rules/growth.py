@@ -52,7 +52,7 @@ def figures(slow: SlowText) -> str:
         count = exp(min(reckoned, 600))
     else:
         count = steps * (wanted / n) ** slow.growth
-    return f"a text of {size + wanted * len(slow.pump):,} characters takes about {in_words(count)} steps"
+    return f"a text of {size + wanted * len(slow.pump):,} characters takes {in_words(count)} steps"
 
 
 def in_words(count: float) -> str:
@@ -61,5 +61,5 @@ def in_words(count: float) -> str:
         if count >= size:
             if size == 1e15:
                 return "over a thousand million million"
-            return f"{count / size:,.0f} {word}"
-    return f"{count:,.0f}"
+            return f"about {count / size:,.0f} {word}"
+    return f"about {count:,.0f}"

@@ -35,13 +35,15 @@ class Dialect:
     """A condition that names a number from here on is refused at once, not after the end of the pattern."""
     widest_look_behind: int
     """The widest fixed width of a look-behind, in characters."""
+    faulty_look_behind: int
+    """Wider ones up to this are refused with RuntimeError, as a fault of the compiler (3.10)."""
 
 
 _DIALECTS = {
-    10: Dialect(False, True, True, True, True, True, 2**31 - 1, 2**32 - 3),
-    11: Dialect(True, False, True, True, True, True, 2**30 - 1, 2**32 - 1),
-    12: Dialect(True, False, False, False, True, True, 2**30 - 1, 2**32 - 1),
-    13: Dialect(True, False, False, False, False, False, 2**30 - 1, 2**32 - 1),
+    10: Dialect(False, True, True, True, True, True, 2**31 - 1, 2**31 - 1, 2**32 - 2),
+    11: Dialect(True, False, True, True, True, True, 2**30 - 1, 2**32 - 1, 0),
+    12: Dialect(True, False, False, False, True, True, 2**30 - 1, 2**32 - 1, 0),
+    13: Dialect(True, False, False, False, False, False, 2**30 - 1, 2**32 - 1, 0),
 }
 
 

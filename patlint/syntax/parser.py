@@ -87,7 +87,7 @@ def parse(
         again = _Parser(text, flags | parser.inline & VERBOSE, dialect, limits)
         again.leaf_base = parser.flags
         pattern = replace(pattern, root=again.pattern().root)
-    return pattern
+    return replace(pattern, inline=pattern.inline & ~flags) if pattern.inline & flags else pattern
 
 
 class _TurnedVerbose(Exception):
@@ -113,6 +113,7 @@ class _Parser:
         self.conditions: dict[int, int] = {}
         self.has_repeat = False
         self.look_behind_problem: str | None = None
+        self.look_behind_kind = "error"
 
     def pattern(self) -> Pattern:
         flags = self.flags
@@ -126,8 +127,8 @@ class _Parser:
         if self.dialect.template_flag and self.flags & TEMPLATE and self.has_repeat:
             raise PatternError("the TEMPLATE flag forbids repeats")
         if self.look_behind_problem is not None:
-            raise PatternError(self.look_behind_problem)
-        return Pattern(self.text, root, self.flags, self.inline & ~flags, len(self.bodies) - 1, self.names)
+            raise PatternError(self.look_behind_problem, None, self.look_behind_kind)
+        return Pattern(self.text, root, self.flags, self.inline, len(self.bodies) - 1, self.names)
 
     def check_flags(self) -> None:
         if isinstance(self.text, str):
@@ -364,6 +365,8 @@ class _Parser:
             self.look_behind_problem = "a look-behind needs a fixed width"
         elif low > self.dialect.widest_look_behind:
             self.look_behind_problem = "a look-behind is too wide"
+            if low <= self.dialect.faulty_look_behind:
+                self.look_behind_kind = "RuntimeError"
         return low
 
     def conditional(self, start: int, flags: int, verbose: bool, depth: int) -> Node:

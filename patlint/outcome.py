@@ -205,8 +205,8 @@ def _stale_waivers(
     out: list[PlacedFinding] = []
     waived = 0
     for place, problem in module.bad_waivers:
-        message = f"this waiver counts for nothing: {problem}"
-        out.append(_stale(module.path, place, message, levels, "write it as it is meant to be read"))
+        unread = f"this waiver counts for nothing: {problem}"
+        out.append(_stale(module.path, place, unread, levels, "mend the comment"))
     for index, waiver in enumerate(module.waivers):
         message = _staleness(index, waiver, settings, enabled, used, undecided)
         if message is None:

@@ -25,7 +25,9 @@ from patlint.machine.matcher import Matcher
 from patlint.machine.program import compile_tree
 from patlint.placed import PlacedFinding
 from patlint.rules.finding import SlowWitness, TextWitness
+from patlint.source import find_patterns
 from patlint.syntax.parser import parse
+from patlint.target import running_target
 
 ROOT = Path(__file__).resolve().parent.parent
 FIXTURES = ROOT / "fixtures"
@@ -100,6 +102,7 @@ def test_waivers_waive(findings: list[PlacedFinding]) -> None:
 
 def test_the_command_says_the_same(findings: list[PlacedFinding]) -> None:
     call = [sys.executable, "-m", "patlint", "lint", "--format", "json", "--no-cache", "--jobs", "1"]
+    call += ["--target", "{}.{}".format(*running_target())]
     done = subprocess.run(
         [*call, "freight"], cwd=FIXTURES, capture_output=True, text=True, env=_environment()
     )
@@ -216,14 +219,22 @@ def _same_spans(finding: PlacedFinding, pattern: str | bytes, only_truth: bool =
     old, new = _compiled(finding), _compiled(finding, pattern)
     assert old.pattern != new.pattern
     matched = 0
+    modes = (finding.mode,) if finding.mode else _modes(finding)
     for text in _clock_times_and(finding):
-        for name in (finding.mode,) if finding.mode else ("match", "fullmatch", "search"):
+        for name in modes:
             was, now = getattr(old, name)(text), getattr(new, name)(text)
             assert (was is None) == (now is None), text
             if was is not None:
                 matched += 1
                 assert only_truth or was.span() == now.span(), text
     assert matched
+
+
+def _modes(finding: PlacedFinding) -> set[str]:
+    """The modes in which the pattern is used, all where no use is seen."""
+    text = (FIXTURES / finding.path).read_text(encoding="utf-8")
+    (site,) = (each for each in find_patterns(text, finding.path) if each.pattern == finding.pattern)
+    return {use.mode for use in site.uses} if site.uses_seen else {"match", "fullmatch", "search"}
 
 
 def _clock_times_and(finding: PlacedFinding) -> Iterator[Any]:

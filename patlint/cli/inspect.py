@@ -16,6 +16,8 @@ if TYPE_CHECKING:
 LABEL: Final = 10
 EXACT_DIGITS: Final = 16
 """Numbers with more digits are shown as a power of ten."""
+JSON_DIGITS: Final = 4_000
+"""Longer numbers are null in JSON, for Python reads no integers of more than 4,300 digits."""
 
 
 def parser() -> Parser:
@@ -100,7 +102,7 @@ def _flags(letters: str) -> int:
 
 
 def _lines(portrait: Portrait, style: Style) -> Iterator[str]:
-    from patlint.report.show import pattern_expression, witness_expression
+    from patlint.report.show import expression, pattern_expression, witness_expression
     from patlint.report.text import finding_block
 
     def row(label: str, text: str) -> str:
@@ -119,10 +121,11 @@ def _lines(portrait: Portrait, style: Style) -> Iterator[str]:
         states = ", ".join(f"{mode} {_known(number)}" for mode, number in portrait.states.items())
         yield row("states", states)
         yield row("texts", _texts(portrait))
-        if portrait.counts is not None and not portrait.empty:
-            yield row("lengths", ", ".join(f"{n}: {_number(each)}" for n, each in enumerate(portrait.counts)))
+        counts = [f"{_number(each)} of {n}" for n, each in enumerate(portrait.counts or ()) if each]
+        if counts:
+            yield row("lengths", ", ".join(counts))
         if portrait.words:
-            yield row("such as", ", ".join(ascii(each) for each in portrait.words))
+            yield row("such as", ", ".join(expression(each) for each in portrait.words))
         yield row("time", _growth(portrait))
         if portrait.slow is not None:
             yield row("slow text", witness_expression(portrait.slow))
@@ -192,6 +195,9 @@ def _object(portrait: Portrait) -> dict[str, Any]:
     from patlint.report.json import as_text, finding_object, witness_object
 
     refused = portrait.refused
+    total = portrait.total
+    if total is not None and total >= 10**JSON_DIGITS:
+        total = None
     return {
         "pattern": as_text(portrait.pattern),
         "bytes": isinstance(portrait.pattern, bytes),
@@ -209,7 +215,7 @@ def _object(portrait: Portrait) -> dict[str, Any]:
         "empty": portrait.empty,
         "universal": portrait.universal,
         "endless": portrait.endless,
-        "total": portrait.total,
+        "total": total,
         "shortest": None if portrait.shortest is None else as_text(portrait.shortest),
         "words": None if portrait.words is None else [as_text(each) for each in portrait.words],
         "counts": None if portrait.counts is None else list(portrait.counts),

@@ -36,7 +36,7 @@ class Chars:
 
 @dataclass(frozen=True, slots=True)
 class Opaque:
-    """Pattern text that is kept as it is; `width` its least width in characters."""
+    """Pattern text that is kept as it is and holds together beside others."""
 
     written: str
 
@@ -75,6 +75,10 @@ UNROLL = 6
 """Repeats of at least so many are not taken apart to find a common prefix."""
 
 
+DOUBLED = 8
+"""`xx` is not written as `x{2}` for what is shorter than so many characters."""
+
+
 class Algebra:
     """Constructors and text of expressions, for one way to spell sets of characters.
 
@@ -90,6 +94,7 @@ class Algebra:
         self.braces = braces
         self.words = words
         self._texts: dict[tuple[Expr, int], str] = {}
+        self._sets: dict[CharSet, CharSet] = {}
 
     # Text
 
@@ -136,14 +141,17 @@ class Algebra:
         ):
             rest = body * (low - 1) + body + "+" if high is None else body * low + (body + "?") * (high - low)
             rest += mark
-            if len(body) == 1 or not self.braces:
-                if len(rest) <= len(short):
-                    return rest
-            elif high is not None and low == 1:
-                return rest if len(rest) <= len(short) else short
+            bare = len(body) == 1 or not self.braces
+            doubled = low == high == 2 and len(body) < DOUBLED and not self.braces
+            if doubled or (bare and len(rest) <= len(short)):
+                return rest
         return short
 
     # Constructors
+
+    def chars(self, chars: CharSet) -> Chars:
+        """One character of a set; equal sets are kept as one object, which makes comparisons quick."""
+        return Chars(self._sets.setdefault(chars, chars))
 
     def chain(self, items: Iterable[Expr]) -> Expr:
         stack: list[Expr] = []
@@ -161,22 +169,15 @@ class Algebra:
                 stack.pop()
                 self._push(stack, merged)
                 return
-        if isinstance(item, Times) and isinstance(item.body, Chain):
-            width = len(item.body.items)
-            if tuple(stack[-width:]) == item.body.items:
-                del stack[-width:]
-                high = None if item.high is None else item.high + 1
-                self._push(stack, self.times(item.body, item.low + 1, high, item.lazy))
-                return
         stack.append(item)
-        for width in range(2, min(len(stack) - 1, 8) + 1):
-            before = stack[-width - 1]
-            if isinstance(before, Times) and isinstance(before.body, Chain):
-                if before.body.items == tuple(stack[-width:]):
-                    del stack[-width - 1 :]
-                    high = None if before.high is None else before.high + 1
-                    self._push(stack, self.times(before.body, before.low + 1, high, before.lazy))
-                    return
+        for rolled in (_rolled_before, _rolled_after, _rolled_around):
+            found = rolled(stack)
+            if found is not None:
+                width, body, added, loop = found
+                del stack[-width:]
+                high = None if loop.high is None else loop.high + added
+                self._push(stack, self.times(body, loop.low + added, high, loop.lazy))
+                return
 
     def _merged(self, a: Expr, b: Expr) -> Expr | None:
         """`ab` as one repeat, where both repeat the same."""
@@ -204,7 +205,7 @@ class Algebra:
             return EMPTY
         if body == NOTHING:
             return NOTHING if low else EMPTY
-        if low == high == 1:
+        if low == high == 1 or ((low, high, lazy) == (0, 1, False) and nullable(body)):
             return body
         if isinstance(body, Times):
             folded = _folded(body, low, high, lazy)
@@ -233,6 +234,11 @@ class Algebra:
                 return body.body
             case Chain() if not self.ordered and all(map(nullable, body.items)):
                 return self.choice(self._starred_branch(item) for item in body.items)
+            case Chain():
+                # `(a+b?)*` is `(ab?)*`: an iteration without b stands for a repetition of a.
+                firm = [item for item in body.items if not nullable(item)]
+                if len(firm) == 1 and isinstance(firm[0], Times) and firm[0].low == 1 and not firm[0].lazy:
+                    return self.chain([firm[0].body if item is firm[0] else item for item in body.items])
         return body
 
     def _starred_branch(self, branch: Expr) -> Expr:
@@ -268,7 +274,7 @@ class Algebra:
                 if isinstance(part, Chars):
                     before = next(reversed(flat), None) if self.ordered else chars_at
                     if isinstance(before, Chars):
-                        joined = Chars(before.chars | part.chars)
+                        joined = self.chars(before.chars | part.chars)
                         flat = {(joined if each == before else each): None for each in flat}
                         chars_at = joined
                         continue
@@ -304,20 +310,20 @@ class Algebra:
 
     def _factored(self, flat: list[Expr], at_end: bool) -> Expr | None:
         """The choice with prefixes (or suffixes) that several branches share taken out."""
+        if self.ordered and at_end:
+            return self._common_end(flat)
         groups: list[tuple[Expr, list[list[Expr]], list[Expr]]] = []
         for branch in flat:
             row = _elements(branch)
             if at_end:
                 row.reverse()
             for index, (head, rows, members) in enumerate(groups):
-                if row[0] == head and (not self.ordered or at_end is False and index == len(groups) - 1):
+                if row[0] == head and (not self.ordered or index == len(groups) - 1):
                     rows.append(row)
                     members.append(branch)
                     break
             else:
                 groups.append((row[0], [row], [branch]))
-        if self.ordered and at_end:
-            return self._common_end(flat)
         if len(groups) == len(flat):
             return None
         out = []
@@ -355,6 +361,45 @@ class Algebra:
             rest = self.choice([self.chain(reversed(row)) for row in rests])
             return self.chain([rest, *reversed(shared)])
         return self.chain([*shared, self.choice([self.chain(row) for row in rests])])
+
+
+_Rolled: TypeAlias = tuple[int, Expr, int, Times]
+"""How many items at the end of a chain are one repeat: its body, how often it is to be added to which repeat."""
+
+
+def _rolled_before(stack: list[Expr]) -> _Rolled | None:
+    """`ab(ab)*` is `(ab)+`."""
+    loop = stack[-1]
+    if isinstance(loop, Times) and isinstance(loop.body, Chain):
+        width = len(loop.body.items)
+        if tuple(stack[-width - 1 : -1]) == loop.body.items:
+            return width + 1, loop.body, 1, loop
+    return None
+
+
+def _rolled_after(stack: list[Expr]) -> _Rolled | None:
+    """`(ab)*ab` is `(ab)+`."""
+    for width in range(2, min(len(stack) - 1, 8) + 1):
+        loop = stack[-width - 1]
+        if isinstance(loop, Times) and isinstance(loop.body, Chain) and loop.body.items == tuple(stack[-width:]):
+            return width + 1, loop.body, 1, loop
+    return None
+
+
+def _rolled_around(stack: list[Expr]) -> _Rolled | None:
+    """`a(ba)*b` is `(ab)+`."""
+    for width in range(1, min(len(stack) - 2, 7) + 1):
+        loop = stack[-width - 1]
+        if not isinstance(loop, Times) or not isinstance(loop.body, Chain):
+            continue
+        items = loop.body.items
+        front = len(items) - width
+        if front < 1 or len(stack) < width + 1 + front or items[:width] != tuple(stack[-width:]):
+            continue
+        ahead = tuple(stack[-width - 1 - front : -width - 1])
+        if ahead == items[width:]:
+            return width + 1 + front, Chain(ahead + items[:width]), 1, loop
+    return None
 
 
 def nullable(expr: Expr) -> bool:

@@ -21,7 +21,7 @@ from patlint.machine.alphabet import representative
 from patlint.machine.ambiguity import EXPONENTIAL, Suspect, suspects
 from patlint.machine.determinise import Mode, language
 from patlint.machine.dfa import Dfa
-from patlint.machine.matcher import Matcher
+from patlint.machine.matcher import NEVER, Matcher
 from patlint.machine.nfa import Nfa
 from patlint.machine.walks import walks
 
@@ -38,7 +38,9 @@ LEAST_STEPS = 2_000
 SUFFIXES = 5
 SCREEN_SIZES = (8, 24)
 SCREEN_TURNS = 3_000
-"""A first look at each suffix; only the two on which most is walked are run at length."""
+SCREEN_RATIO = 3.6
+"""A first look at each suffix: three times the pumps must take more than three times the steps. Only the two
+texts on which most is walked are run at length."""
 SUSPECTS = 6
 
 
@@ -176,16 +178,20 @@ def _confirm(
         prefix = prefix[: -len(pump)]
     candidates: list[tuple[int, int, _Counts]] = []
     for order, suffix in enumerate(_suffixes(suspect, nfa, dfa, manner)):
-        if order >= SUFFIXES:
+        if order >= SUFFIXES or budget[0] <= 0:
             break
         text = _Text(prefix, pump, suffix, nfa.program.is_bytes)
-        first_look = _Counts(matcher, manner, text, SCREEN_TURNS, budget)
-        seen = [steps for steps in map(first_look.at, SCREEN_SIZES) if steps is not None]
-        walked = SCREEN_TURNS * (1 + len(SCREEN_SIZES) - len(seen)) if len(seen) < len(SCREEN_SIZES) else seen[-1]
-        candidates.append((-walked.bit_length(), order, _Counts(matcher, manner, text, limits.turns, budget)))
+        counts = _Counts(matcher, manner, text, budget)
+        few, more = (counts.at(n, SCREEN_TURNS) for n in SCREEN_SIZES)
+        if few is not None and more is not None and more < SCREEN_RATIO * few:
+            continue
+        walked = NEVER if few is None or more is None else more
+        candidates.append((-walked.bit_length(), order, counts))
+        if walked == NEVER or order == 0:
+            break  # nothing promises more than a text that is refused at great cost
     best: SlowText | None = None
     for _, _, counts in sorted(candidates, key=lambda row: row[:2])[:2]:
-        growth = _exponential(counts) if suspect.degree == EXPONENTIAL else _power(counts, most)
+        growth = _exponential(counts, limits.turns // 3) if suspect.degree == EXPONENTIAL else _power(counts, limits.turns, most)
         if growth is None:
             continue
         slow = SlowText(
@@ -234,14 +240,15 @@ def _string(codes: Codes) -> str:
 class _Counts:
     """Steps at growing n, remembered; None where the limit on turns was met (then that many were walked)."""
 
-    def __init__(self, matcher: Matcher, manner: Manner, text: _Text, turns: int, budget: list[int]) -> None:
-        self.matcher, self.manner, self.text = matcher, manner, text
-        self.turns, self.budget = turns, budget
+    def __init__(self, matcher: Matcher, manner: Manner, text: _Text, budget: list[int]) -> None:
+        self.matcher, self.manner, self.text, self.budget = matcher, manner, text, budget
         self.known: dict[int, int] = {}
 
-    def at(self, n: int) -> int | None:
+    def at(self, n: int, turns: int) -> int | None:
+        if n in self.known:
+            return self.known[n]
         text = self.text.at(n)
-        turns = min(self.turns, self.budget[0])
+        turns = min(turns, self.budget[0])
         if self.manner == "scan":
             _, steps, left, finished = self.matcher.scan(text, turns)
         else:
@@ -253,13 +260,13 @@ class _Counts:
         return steps if finished else None
 
 
-def _exponential(counts: _Counts) -> Growth | None:
+def _exponential(counts: _Counts, turns: int) -> Growth | None:
     """Each further pump must multiply the steps, and go on doing so."""
     sizes = [*range(1, 24), *range(26, 60, 3), *range(64, 128, 8)]
     ratios: list[float] = []
     n = last = 0
     for size in sizes:
-        now = counts.at(size)
+        now = counts.at(size, turns)
         if now is None:
             break
         if last:
@@ -278,32 +285,30 @@ def _exponential(counts: _Counts) -> Growth | None:
     return "exponential" if grows else None
 
 
-def _power(counts: _Counts, most: int) -> Growth | None:
+def _power(counts: _Counts, turns: int, most: int) -> Growth | None:
     """The power in n that doubling n shows, at most `most`; None below a square."""
-    n = 8
-    last = counts.at(n)
+    n = 16
+    last = counts.at(n, turns)
     slope = 0.0
-    while last is not None and n < 4_096:
-        now = counts.at(2 * n)
+    while last is not None and n < 512:
+        now = counts.at(2 * n, turns)
         if now is None:
             break
-        before, slope = slope, math.log2(now / last) if last else 0.0
+        slope = math.log2(now / last) if last else 0.0
         n, last = 2 * n, now
-        if n >= 256 and slope < 1.3:
-            return None
-        if n >= 128 and slope > 1.7 and abs(slope - before) < 0.08:
+        if n >= 64 and abs(slope - round(slope)) < 0.3 and n * slope >= 64 * most / 2:
             break
     if last is None or last < LEAST_STEPS:
         return None
-    degree = math.floor(slope + 0.3) if n >= 64 else _difference_order(counts)
+    degree = math.floor(slope + 0.3) if n >= 64 else _difference_order(counts, turns)
     return min(degree, most) if degree >= 2 else None
 
 
-def _difference_order(counts: _Counts) -> int:
+def _difference_order(counts: _Counts, turns: int) -> int:
     """The degree of the polynomial on which counts at small equal distances lie, 0 where there is none."""
     values: list[int] = []
     for n in range(2, 2 + 2 * 8, 2):
-        steps = counts.at(n)
+        steps = counts.at(n, turns)
         if steps is None:
             break
         values.append(steps)

@@ -18,8 +18,9 @@ from typing import Final
 
 from patlint.rules.finding import SlowWitness, TextWitness, Witness
 
-REPEATS: Final = 30
-"""How often a slow text shows its pump when the rule measured nothing."""
+REPEATS: Final = {"exponential": 30, 2: 10_000, 3: 1_000}
+"""How often a slow text shows its pump: enough for seconds of `re`'s time. Higher powers: `LEAST_REPEATS`."""
+LEAST_REPEATS: Final = 150
 LONG_RUN: Final = 12
 """A run of one character of this length or more is shown as `'x' * n`."""
 
@@ -66,7 +67,7 @@ def witness_expression(witness: Witness) -> str:
         case TextWitness():
             return expression(witness.text)
         case SlowWitness():
-            count = max((each[0] for each in witness.steps), default=REPEATS)
+            count = REPEATS.get(witness.growth, LEAST_REPEATS)
             parts = [ascii(witness.prefix)] if witness.prefix else []
             parts.append(f"{ascii(witness.pump)} * {count}")
             if witness.suffix:

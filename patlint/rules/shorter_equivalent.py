@@ -4,50 +4,74 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
+from patlint.language import Language
+from patlint.rewrite.shorten import suggest
 from patlint.rules.finding import Example, Finding, Keeps, Rule, Suggestion
 from patlint.rules.subject import Subject
 from patlint.source.sites import SCANNING, Mode
+from patlint.syntax.parser import parse
 
 
 def check(subject: Subject) -> Iterator[Finding]:
     if not subject.exact:
         return
-    try:
-        from patlint.rewrite.shorten import suggest
-    except ImportError:
+    modes, keeps = _needed(subject)
+    # What holds for search in every surrounding holds for match; fullmatch is asked apart.
+    mode: Mode = next(mode for mode in ("search", "match", "fullmatch") if mode in modes)
+    proposal = suggest(subject.pattern, mode, keeps, subject.target, subject.limits)
+    if proposal is None or ("fullmatch" in modes and not _same_in_full(subject, proposal.pattern)):
         return
-    modes: dict[Mode, None] = {}
+    before, after = subject.site.pattern, proposal.pattern
+    start, end = changed_part(before, after)
+    yield Finding(
+        RULE.name,
+        RULE.level,
+        (start, end),
+        f"{len(before) - len(after)} characters shorter with the same {_KEPT[proposal.keeps]}",
+        mode=mode,
+        proof="both patterns have the same minimal automata",
+        evidence="proven by comparing minimal automata",
+        way_out=_shown(after),
+        suggestion=Suggestion(after, proposal.keeps),
+    )
+
+
+_KEPT = {"language": "language", "spans": "language and spans", "groups": "language, spans and groups"}
+
+
+def _needed(subject: Subject) -> tuple[set[Mode], Keeps]:
+    """The modes in which the pattern may be used, and what has to stay."""
+    modes: set[Mode] = set()
     keeps: Keeps = "language"
     for use in subject.uses:
-        modes["search" if use.positioned and use.mode == "match" else use.mode] = None
+        modes.add("search" if use.positioned and use.mode == "match" else use.mode)
         if use.looks_at in ("groups", "unknown"):
             keeps = "groups"
         elif (use.looks_at == "span" or use.function in SCANNING) and keeps == "language":
             keeps = "spans"
     if not subject.site.uses_seen or not modes:
-        keeps = "groups"
-        modes |= dict.fromkeys(("search", "fullmatch"))
-    proposal = suggest(subject.pattern, tuple(modes), keeps, subject.target, subject.limits)
-    if proposal is None:
-        return
-    before, after = len(subject.site.pattern), len(proposal.pattern)
-    kept = {"language": "language", "spans": "language and spans", "groups": "language, spans and groups"}
-    yield Finding(
-        RULE.name,
-        RULE.level,
-        proposal.span,
-        f"{before - after} characters shorter with the same {kept[proposal.keeps]}: {_shown(proposal.pattern)}",
-        mode=next(iter(modes)),
-        proof="both patterns have the same minimal automata",
-        evidence="both have the same minimal automaton",
-        way_out="",
-        suggestion=Suggestion(proposal.pattern, proposal.keeps),
-    )
+        return modes | {"search", "fullmatch"}, "groups"
+    return modes, keeps
+
+
+def _same_in_full(subject: Subject, pattern: str | bytes) -> bool:
+    parsed = parse(pattern, subject.site.flags, subject.target, subject.limits)
+    other = Language(parsed, mode="fullmatch", limits=subject.limits)
+    return other.exact and other == subject.language("fullmatch")
+
+
+def changed_part(before: str | bytes, after: str | bytes) -> tuple[int, int]:
+    """The part of `before` that differs from `after`, without their common beginning and end."""
+    most = min(len(before), len(after))
+    start = next((i for i in range(most) if before[i] != after[i]), most)
+    left = most - start
+    tail = next((i for i in range(left) if before[-1 - i] != after[-1 - i]), left)
+    return start, len(before) - tail
 
 
 def _shown(pattern: str | bytes) -> str:
     text = pattern.decode("latin-1") if isinstance(pattern, bytes) else pattern
-    return text if text.isprintable() else ascii(text)[1:-1]
+    return f"write {text if text.isprintable() else ascii(text)}"
 
 
 RULE = Rule(

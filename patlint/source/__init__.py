@@ -1,7 +1,7 @@
 """Python text -> the patterns in it: the only package that knows `ast` and libcst.
 
-`read_module(data, path)` gives a `Module` with sites, unresolved calls and waivers; `find_patterns(text, path)`
-the sites alone. What cannot be decoded or parsed is a `SourceError`.
+`read_module(data, path)` gives a `Module`: sites, unresolved calls, waivers; `find_patterns(text, path)` the
+sites alone. What cannot be decoded or parsed is a `SourceError`.
 """
 
 from patlint.source.decode import SourceError

@@ -20,7 +20,8 @@ if TYPE_CHECKING:
     from patlint.source.constants import Constants, Environment, Value
 
 _PURE_METHODS = frozenset(
-    "strip lstrip rstrip replace lower upper encode decode removeprefix removesuffix".split()
+    {"strip", "lstrip", "rstrip", "replace", "lower", "upper", "encode", "decode"}
+    | {"removeprefix", "removesuffix"}
 )
 _TO_SEQUENCE = frozenset({"list", "tuple", "reversed", "sorted"})
 
@@ -52,11 +53,13 @@ def evaluate_call(
 def _escape(value: Value) -> Spelled:
     if not isinstance(value, Spelled):
         raise Opaque(reasons.CALL)
-    escaped = re.escape(value.value)
-    if escaped == value.value:
+    if _escaped(value.value) == value.value:
         return value
-    parts = [without_spelling(re.escape(run.text), run.whole) for run in value.runs]
-    return join(parts)
+    return join(without_spelling(_escaped(run.text), run.whole) for run in value.runs)
+
+
+def _escaped(text: str | bytes) -> str | bytes:
+    return re.escape(text) if isinstance(text, str) else re.escape(text)
 
 
 def _builtin(
@@ -129,7 +132,8 @@ def _method(
         raise Opaque(reasons.STARRED)
     positional = [constants.evaluate(argument, scope, env, depth + 1) for argument in node.args]
     named = {
-        str(keyword.arg): constants.evaluate(keyword.value, scope, env, depth + 1) for keyword in node.keywords
+        str(keyword.arg): constants.evaluate(keyword.value, scope, env, depth + 1)
+        for keyword in node.keywords
     }
     if name == "format":
         return braces(base, positional, named)

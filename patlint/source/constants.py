@@ -13,20 +13,21 @@ from __future__ import annotations
 import ast
 import string
 from collections.abc import Sequence
-from typing import TypeAlias, Union
+from typing import TypeAlias
 
 from patlint.source import calls, reasons
 from patlint.source.engine import Engine
 from patlint.source.finder import Hole, Unspelled, read_literal
 from patlint.source.formatting import percent, replacement_field
-from patlint.source.index import AttributeUse, Index
+from patlint.source.index import Index
 from patlint.source.literals import Run
+from patlint.source.names import Names
 from patlint.source.places import Text
 from patlint.source.reasons import Opaque
-from patlint.source.scopes import Binding, Scope
-from patlint.source.spelled import Spelled, join, repeat, without_spelling
+from patlint.source.scopes import Scope
+from patlint.source.spelled import Spelled, cut, join, repeat, without_spelling
 
-Value: TypeAlias = Union[Spelled, int, tuple["Value", ...], dict[str, "Value"]]
+Value: TypeAlias = Spelled | int | tuple["Value", ...] | dict[str, "Value"]
 Environment: TypeAlias = dict[str, Value]
 
 DEEPEST = 80
@@ -34,11 +35,10 @@ DEEPEST = 80
 MOST_STEPS = 50_000
 """Expressions evaluated for one file's pattern. A table of 5,000 words takes 5,000."""
 _STRING_MODULE = frozenset(
-    "ascii_letters ascii_lowercase ascii_uppercase digits hexdigits octdigits punctuation whitespace printable".split()
+    {"ascii_letters", "ascii_lowercase", "ascii_uppercase", "digits", "hexdigits", "octdigits", "punctuation"}
+    | {"whitespace", "printable"}
 )
 _MUTABLE = (ast.List, ast.Dict, ast.Set, ast.ListComp)
-_READING = frozenset({"join", "items", "keys", "values", "get", "copy", "index", "count"})
-_HARMLESS = frozenset({"len", "sorted", "tuple", "list", "set", "frozenset", "map", "any", "all", "enumerate", "zip"})
 
 
 class Constants:
@@ -48,6 +48,7 @@ class Constants:
         self.index = index
         self.text = text
         self.engine = engine
+        self.names = Names(index, engine)
         self._steps = 0
         self._active: set[ast.AST] = set()
         self._known: dict[ast.AST, Value | Opaque] = {}
@@ -103,13 +104,19 @@ class Constants:
                 return calls.evaluate_call(self, node, scope, env, depth)
             case ast.Attribute():
                 return self._attribute(node, scope, depth)
+            case ast.BinOp():
+                return _arithmetic(
+                    node.op,
+                    self.evaluate(node.left, scope, env, depth + 1),
+                    self.evaluate(node.right, scope, env, depth + 1),
+                )
             case ast.UnaryOp(op=ast.USub()):
                 value = self.evaluate(node.operand, scope, env, depth + 1)
                 if isinstance(value, int):
                     return -value
                 raise Opaque(reasons.EXPRESSION)
             case ast.Subscript():
-                raise Opaque(reasons.ELEMENT)
+                return self._subscript(node, scope, env, depth)
             case ast.Lambda():
                 raise Opaque(reasons.NOT_TEXT)
             case _:
@@ -198,46 +205,12 @@ class Constants:
 
     # names
 
-    def definitions(self, node: ast.Name | ast.Attribute, scope: Scope) -> list[tuple[ast.expr, Scope]]:
-        """Every expression that the name may stand for, with the scope to read it in.
-
-        Errors: `Opaque` where one of them is not known, or not a plain assignment.
-        """
-        if isinstance(node, ast.Attribute):
-            return self._class_attribute(node, scope)
-        owner = scope.find(node.id)
-        if owner is None:
-            raise Opaque(reasons.IMPORTED if self.index.star_lines else reasons.UNBOUND)
-        return self._owned(owner, node.id)
-
-    def _owned(self, owner: Scope, name: str) -> list[tuple[ast.expr, Scope]]:
-        bindings = owner.bindings[name]
-        if not bindings:
-            raise Opaque(reasons.UNBOUND)
-        for binding in bindings:
-            reason = _KIND_REASONS.get(binding.kind)
-            if reason:
-                raise Opaque(reason if len(bindings) == 1 else reasons.REASSIGNED)
-        if owner.kind == "module":
-            self._check_module_name(bindings)
-        if owner.kind == "class" and name in self.index.module.bindings:
-            raise Opaque(reasons.REASSIGNED)  # which of the two is read depends on the order
-        return [(binding.value, binding.scope) for binding in bindings if binding.value is not None]
-
-    def _check_module_name(self, bindings: list[Binding]) -> None:
-        if self.index.dynamic:
-            raise Opaque(reasons.DYNAMIC)
-        for binding in bindings:
-            for line in self.index.star_lines:
-                if line > binding.line or binding.scope.kind not in ("module", "class"):
-                    raise Opaque(reasons.STAR_IMPORT)
-
     def _definition(self, node: ast.Name, scope: Scope, depth: int) -> Value:
         values: list[Value] = []
-        definitions = self.definitions(node, scope)
+        definitions = self.names.definitions(node, scope)
         for expression, inner in definitions:
-            if isinstance(expression, _MUTABLE) and not self._unchanged(node.id, scope):
-                raise Opaque(reasons.ELEMENT)
+            if isinstance(expression, _MUTABLE) and not self.names.unchanged(node.id, scope):
+                raise Opaque(reasons.CHANGED)
             values.append(self._remembered(expression, inner, depth))
             if not _same(values[0], values[-1]):
                 raise Opaque(reasons.REASSIGNED)
@@ -262,34 +235,12 @@ class Constants:
             raise Opaque(known.reason)
         return known
 
-    def _unchanged(self, name: str, scope: Scope) -> bool:
-        """No read of the name in the file could change the list or dict that it stands for."""
-        owner = scope.find(name)
-        assert owner is not None
-        parents = self.index.parents
-        for read, _ in owner.reads(name):
-            parent = parents.get(read)
-            match parent:
-                case ast.Attribute() if parent.attr in _READING:
-                    continue
-                case ast.Call(func=ast.Attribute(attr="join" | "escape")):
-                    continue
-                case ast.Call(func=ast.Name(id=function)) if function in _HARMLESS:
-                    continue
-                case ast.comprehension() | ast.For() | ast.Compare() | ast.BinOp() | ast.Starred():
-                    continue
-                case ast.Subscript(ctx=ast.Load()) if isinstance(parents.get(parent), ast.expr):
-                    continue
-                case _:
-                    return False
-        return True
-
     def _attribute(self, node: ast.Attribute, scope: Scope, depth: int) -> Value:
         denoted = self.engine.denotes(node, scope)
         if denoted is not None:
             raise Opaque(reasons.NOT_TEXT)
         if node.attr == "pattern":
-            made = self.maker(node.value, scope)
+            made = self.names.maker(node.value, scope)
             if made is not None:
                 argument = calls.pattern_argument(made[0])
                 return self._remembered(argument, made[1], depth) if argument else self._fail()
@@ -298,7 +249,7 @@ class Constants:
             bindings = owner.bindings[node.value.id] if owner else []
             if bindings and all(b.module == "string" and b.member is None for b in bindings):
                 return without_spelling(str(getattr(string, node.attr)), self.text.place(node))
-        definitions = self._class_attribute(node, scope)
+        definitions = self.names.class_attribute(node, scope)
         values = [self._remembered(expression, inner, depth) for expression, inner in definitions]
         if all(_same(values[0], value) for value in values):
             return values[0]
@@ -306,90 +257,6 @@ class Constants:
 
     def _fail(self) -> Value:
         raise Opaque(reasons.CALL)
-
-    def maker(self, node: ast.expr, scope: Scope) -> tuple[ast.Call, Scope] | None:
-        """The one call of `re.compile` that a name or attribute stands for, if it is that."""
-        try:
-            match node:
-                case ast.Call():
-                    return (node, scope) if self.engine.denotes(node.func, scope) == "re.compile" else None
-                case ast.Name():
-                    definitions = self.definitions(node, scope)
-                case ast.Attribute():
-                    definitions = self._self_attribute(node, scope) or self._class_attribute(node, scope)
-                case _:
-                    return None
-        except Opaque:
-            return None
-        made = [(value, inner) for value, inner in definitions if not _is_none(value)]
-        if len(made) == 1 and isinstance(made[0][0], ast.Call):
-            call, inner = made[0]
-            assert isinstance(call, ast.Call)
-            try:
-                if self.engine.denotes(call.func, inner) == "re.compile":
-                    return call, inner
-            except Opaque:
-                return None
-        return None
-
-    def _self_attribute(self, node: ast.Attribute, scope: Scope) -> list[tuple[ast.expr, Scope]]:
-        """What the class stores in an attribute of its own object, and nothing else stores there."""
-        owner = self.class_of(node.value, scope)
-        if owner is None:
-            return []
-        found = [(b.value, b.scope) for b in owner.bindings.get(node.attr, ()) if b.value is not None]
-        for use in self.index.stores.get(node.attr, ()):
-            if use.value is None or self.class_of(use.node.value, use.scope) is not owner:
-                return []
-            found.append((use.value, use.scope))
-        return found
-
-    def class_of(self, node: ast.expr, scope: Scope) -> Scope | None:
-        """The class whose object (`self`), or which itself (`cls`, its name), `node` is."""
-        match node:
-            case ast.Name():
-                owner = scope.find(node.id)
-                if owner is None:
-                    return None
-                bindings = owner.bindings[node.id]
-                if len(bindings) != 1:
-                    return None
-                if isinstance(bindings[0].node, ast.ClassDef):
-                    return self.index.classes.get(bindings[0].node)
-                function = owner.node
-                if not isinstance(function, (ast.FunctionDef, ast.AsyncFunctionDef)):
-                    return None
-                arguments = [*function.args.posonlyargs, *function.args.args]
-                if not arguments or arguments[0].arg != node.id or owner.parent is None:
-                    return None
-                static = any(isinstance(d, ast.Name) and d.id == "staticmethod" for d in function.decorator_list)
-                return owner.parent if owner.parent.kind == "class" and not static else None
-            case ast.Attribute(attr="__class__"):
-                return self.class_of(node.value, scope)
-            case ast.Call(func=ast.Name(id="type"), args=[argument]):
-                return self.class_of(argument, scope)
-            case _:
-                return None
-
-    def _class_attribute(self, node: ast.Attribute, scope: Scope) -> list[tuple[ast.expr, Scope]]:
-        """`Name.attribute` of a plain class of this file, or a private `self.__attribute`."""
-        owner = self.class_of(node.value, scope)
-        if owner is None:
-            raise Opaque(reasons.ATTRIBUTE)
-        assert isinstance(owner.node, ast.ClassDef)
-        definition = owner.node
-        named = isinstance(node.value, ast.Name) and node.value.id == definition.name
-        private = node.attr.startswith("__") and not node.attr.endswith("__")
-        bases = [base for base in definition.bases if not (isinstance(base, ast.Name) and base.id == "object")]
-        if not (named and not bases and not definition.decorator_list or private) or definition.keywords:
-            raise Opaque(reasons.ATTRIBUTE)
-        stores: list[AttributeUse] = self.index.stores.get(node.attr, [])
-        if stores or node.attr not in owner.bindings:
-            raise Opaque(reasons.ATTRIBUTE)
-        for binding in owner.bindings[node.attr]:
-            if binding.kind != "value":
-                raise Opaque(reasons.ATTRIBUTE)
-        return [(b.value, b.scope) for b in owner.bindings[node.attr] if b.value is not None]
 
     # putting together
 
@@ -420,7 +287,40 @@ class Constants:
                 return repeat(left, right)
             case (int(), Spelled()):
                 return repeat(right, left)
+            case (int(), int()):
+                return _small(left * right)
         raise Opaque(reasons.EXPRESSION)
+
+    def _subscript(self, node: ast.Subscript, scope: Scope, env: Environment | None, depth: int) -> Value:
+        base = self.evaluate(node.value, scope, env, depth + 1)
+        match base, node.slice:
+            case (Spelled() | tuple(), ast.Slice(step=None)):
+                bounds = [
+                    self._bound(part, scope, env, depth) for part in (node.slice.lower, node.slice.upper)
+                ]
+                start, end, _ = slice(*bounds).indices(len(base.value if isinstance(base, Spelled) else base))
+                return cut(base, start, max(start, end)) if isinstance(base, Spelled) else base[start:end]
+            case (_, ast.Slice()):
+                raise Opaque(reasons.ELEMENT)
+        key = self.evaluate(node.slice, scope, env, depth + 1)
+        try:
+            match base, key:
+                case (tuple(), int()):
+                    return base[key]
+                case (dict(), Spelled(value=str() as name)):
+                    return base[name]
+                case (Spelled(value=str() as text), int()):
+                    at = range(len(text))[key]
+                    return cut(base, at, at + 1)
+        except LookupError:
+            pass
+        raise Opaque(reasons.ELEMENT)
+
+    def _bound(self, node: ast.expr | None, scope: Scope, env: Environment | None, depth: int) -> int | None:
+        value = self.evaluate(node, scope, env, depth + 1) if node is not None else None
+        if value is None or isinstance(value, int):
+            return value
+        raise Opaque(reasons.ELEMENT)
 
     def _items(
         self, nodes: Sequence[ast.expr], scope: Scope, env: Environment | None, depth: int
@@ -438,7 +338,7 @@ class Constants:
 
     def _dict(self, node: ast.Dict, scope: Scope, env: Environment | None, depth: int) -> Value:
         entries: dict[str, Value] = {}
-        for key, value in zip(node.keys, node.values):
+        for key, value in zip(node.keys, node.values, strict=True):
             if not (isinstance(key, ast.Constant) and isinstance(key.value, str)):
                 raise Opaque(reasons.EXPRESSION)
             entries[key.value] = self.evaluate(value, scope, env, depth + 1)
@@ -456,20 +356,28 @@ class Constants:
         if not isinstance(items, tuple):
             raise Opaque(reasons.EXPRESSION)
         name = generator.target.id
-        return tuple(
-            self.evaluate(node.elt, scope, {**(env or {}), name: item}, depth + 1) for item in items
-        )
+        return tuple(self.evaluate(node.elt, scope, {**(env or {}), name: item}, depth + 1) for item in items)
 
 
-_KIND_REASONS = {
-    "import": reasons.IMPORTED,
-    "parameter": reasons.PARAMETER,
-    "loop": reasons.LOOP_VARIABLE,
-    "augmented": reasons.REASSIGNED,
-    "deleted": reasons.REASSIGNED,
-    "definition": reasons.NOT_TEXT,
-    "unpacked": reasons.UNPACKED,
-}
+def _arithmetic(op: ast.operator, left: Value, right: Value) -> Value:
+    if isinstance(left, int) and isinstance(right, int):
+        match op:
+            case ast.Sub():
+                return _small(left - right)
+            case ast.Pow() if 0 <= right <= 64 and abs(left) < 1 << 16:
+                return _small(left**right)
+            case ast.LShift() if 0 <= right <= 64:
+                return _small(left << right)
+            case ast.FloorDiv() if right:
+                return left // right
+    raise Opaque(reasons.EXPRESSION)
+
+
+def _small(number: int) -> int:
+    """Numbers of a size that a pattern can hold; others would only cost time."""
+    if abs(number) >> 128:
+        raise Opaque(reasons.TOO_LONG)
+    return number
 
 
 def _same(left: Value, right: Value) -> bool:
@@ -480,11 +388,9 @@ def _same(left: Value, right: Value) -> bool:
             return len(left) == len(right) and all(map(_same, left, right))
         case (int(), int()):
             return left == right
+        case (dict(), dict()):
+            return left.keys() == right.keys() and all(_same(left[key], right[key]) for key in left)
     return False
-
-
-def _is_none(node: ast.expr) -> bool:
-    return isinstance(node, ast.Constant) and node.value is None
 
 
 def _constant_spec(spec: ast.expr | None) -> str:

@@ -1,4 +1,4 @@
-"""What belongs to `re`: which names stand for the module and its functions, and how their arguments are given.
+"""What belongs to `re`: its names in a file, and the arguments of its functions.
 
 `Engine.denotes(node, scope)` answers "re" for the module, "re.match" for a member, None for anything else.
 Imports under other names, from-imports, imports in functions and in try blocks, and plain aliases
@@ -40,10 +40,10 @@ METHODS: dict[str, tuple[str, ...]] = {
     "sub": ("repl", "string", "count"),
     "subn": ("repl", "string", "count"),
 }
-STARRED_NAMES = frozenset(
-    "match fullmatch search sub subn split findall finditer compile purge escape error Pattern Match A I L M S X "
-    "U ASCII IGNORECASE LOCALE MULTILINE DOTALL VERBOSE UNICODE NOFLAG RegexFlag".split()
-)
+STARRED_NAMES = frozenset(FUNCTIONS) | {
+    *("purge", "escape", "error", "Pattern", "Match", "RegexFlag", "A", "I", "L", "M", "S", "X", "U"),
+    *("ASCII", "IGNORECASE", "LOCALE", "MULTILINE", "DOTALL", "VERBOSE", "UNICODE", "NOFLAG"),
+}
 """What `from re import *` gives."""
 _MOST_ALIASES = 20
 
@@ -117,9 +117,8 @@ class Engine:
         return known
 
     def _owned(self, owner: Scope, name: str, depth: int) -> str | None:
-        found = {
-            self._binding(binding, depth) for binding in owner.bindings[name] if not binding.is_none
-        }
+        bindings = [b for b in owner.bindings[name] if not b.is_none and b.kind != "deleted"]
+        found = {self._binding(binding, depth) for binding in bindings}
         if len(found) == 1:
             return found.pop()
         if any(found):

@@ -22,7 +22,7 @@ from patlint.source.places import Position, advance, place_between
 from patlint.source.sites import Place
 
 MOST_TOKENS = 1_000
-"""Adjacent literals of one expression; each is a level of nesting for libcst. Long tables have a few hundred."""
+"""Adjacent literals of one expression; each is a level of nesting for libcst. Long ones have hundreds."""
 
 
 class Unspelled(Exception):
@@ -82,9 +82,7 @@ class _Finder(cst.CSTVisitor):
         self._pass(node.start)
         for part in node.parts:
             if isinstance(part, cst.FormattedStringText):
-                self.parts.append(
-                    read_body(part.value, self.position, raw=raw, is_bytes=False, doubled=True)
-                )
+                self.parts.append(read_body(part.value, self.position, raw=raw, is_bytes=False, doubled=True))
                 self._pass(part.value)
             else:
                 before = self.position

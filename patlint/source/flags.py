@@ -35,11 +35,12 @@ def evaluate_flags(node: ast.expr | None, scope: Scope, constants: Constants, de
     """Errors: `Opaque(reasons.FLAGS)`."""
     if node is None:
         return 0
+    constants.step()
     if depth > _DEEPEST:
         raise Opaque(reasons.FLAGS)
     match node:
-        case ast.Constant(value=bool() | int()):
-            return int(node.value)
+        case ast.Constant(value=int() as number):
+            return int(number)
         case ast.BinOp(op=ast.BitOr() | ast.BitAnd() | ast.Add() | ast.BitXor() | ast.Sub()):
             left = evaluate_flags(node.left, scope, constants, depth + 1)
             right = evaluate_flags(node.right, scope, constants, depth + 1)
@@ -78,7 +79,7 @@ def _named(node: ast.Name | ast.Attribute, scope: Scope, constants: Constants, d
             return VALUES[parts[1]]
         raise Opaque(reasons.FLAGS)
     try:
-        definitions = constants.definitions(node, scope)
+        definitions = constants.names.definitions(node, scope)
     except Opaque:
         raise Opaque(reasons.FLAGS) from None
     found = {evaluate_flags(value, inner, constants, depth + 1) for value, inner in definitions}

@@ -1,8 +1,8 @@
 """A compiled pattern -> its uses in the same file, and whether these are all that there can be.
 
-`Follower.follow(call, scope, pattern)` begins at the expression that makes the pattern object and goes with the
-value: through methods called on it at once, names, attributes of `self` and of the class, and bound methods
-kept under a name. Where the value goes where it cannot be followed, or where it is bound to a name that
+`Follower.follow(call, scope, pattern)` begins at the expression that makes the pattern object and goes with
+the value: through methods called on it at once, names, attributes of `self` and of the class, and bound
+methods kept under a name. Where it goes where it cannot be followed, or where it is bound to a name that
 other files may use, the uses that were found are not all.
 
 A name that begins with `_` is taken for private to its file, unless the file also spells it in a string.
@@ -16,18 +16,16 @@ from dataclasses import dataclass, field
 from typing import cast
 
 from patlint.source.constants import Constants
-from patlint.source.engine import METHODS, Engine, bind_arguments
+from patlint.source.engine import METHODS, Engine
 from patlint.source.index import Index
-from patlint.source.outcome import Outcomes
 from patlint.source.places import Text
+from patlint.source.reaching import reached_reads
 from patlint.source.reasons import Opaque
 from patlint.source.scopes import Scope
 from patlint.source.sites import Function, Use
 from patlint.source.usage import Uses
 
-_MAKERS = frozenset(
-    {"match", "fullmatch", "search", "findall", "finditer", "split", "sub", "subn"}
-)
+_MAKERS = frozenset({"match", "fullmatch", "search", "findall", "finditer", "split", "sub", "subn"})
 
 
 @dataclass(slots=True)
@@ -51,9 +49,8 @@ class Follower:
         self.text = text
         self.source = source
         self.engine = engine
-        self.constants = constants
+        self.names = constants.names
         self.uses = uses
-        self.outcomes = Outcomes(index)
         self._quoted: dict[str, bool] = {}
 
     def follow(self, call: ast.Call, scope: Scope, pattern: str | bytes) -> Followed:
@@ -140,7 +137,9 @@ class Follower:
         match target:
             case ast.Name():
                 found.name = found.name or target.id
-                owner = scope if scope.kind == "class" and target.id in scope.bindings else scope.find(target.id)
+                owner = (
+                    scope if scope.kind == "class" and target.id in scope.bindings else scope.find(target.id)
+                )
                 if owner is None:
                     found.seen = False
                 elif owner.kind == "class":
@@ -149,7 +148,7 @@ class Follower:
                     self._name(owner, target.id, statement, method, found)
             case ast.Attribute():
                 found.name = found.name or target.attr
-                owner = self.constants.class_of(target.value, scope)
+                owner = self.names.class_of(target.value, scope)
                 if owner is None:
                     found.seen = False
                 else:
@@ -157,9 +156,7 @@ class Follower:
             case _:
                 found.seen = False
 
-    def _name(
-        self, owner: Scope, name: str, statement: ast.AST, method: str | None, found: Followed
-    ) -> None:
+    def _name(self, owner: Scope, name: str, statement: ast.AST, method: str | None, found: Followed) -> None:
         if (owner, name, method) in found.visited:
             return
         found.visited.add((owner, name, method))
@@ -169,7 +166,7 @@ class Follower:
         reached = None
         if len(others) > 1:
             if isinstance(statement, ast.stmt) and owner.kind == "function":
-                reached = self.outcomes.reached(name, statement, owner)
+                reached = reached_reads(name, statement, owner, self.index)
             if reached is None:
                 found.seen = False
         for read, scope in owner.reads(name):
@@ -191,20 +188,20 @@ class Follower:
         for read, scope in owner.reads(name):
             self._flow(read, scope, method, found)
         for use in self.index.reads.get(name, ()):
-            if self.constants.class_of(use.node.value, use.scope) is owner:
+            if self.names.class_of(use.node.value, use.scope) is owner:
                 self._flow(use.node, use.scope, method, found)
             elif self._may_be(use.node, use.scope, owner, name):
                 found.seen = False
 
     def _may_be(self, node: ast.Attribute, scope: Scope, owner: Scope, name: str) -> bool:
         """Whether an attribute may be that of `owner`: not where it is another class's own."""
-        other = self.constants.class_of(node.value, scope)
+        other = self.names.class_of(node.value, scope)
         if other is None or other is owner:
             return True
         if name in other.bindings:
             return False
         return not any(
-            self.constants.class_of(use.node.value, use.scope) is other for use in self.index.stores.get(name, ())
+            self.names.class_of(use.node.value, use.scope) is other for use in self.index.stores.get(name, ())
         )
 
     def _is_private(self, name: str) -> bool:

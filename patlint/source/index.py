@@ -1,8 +1,8 @@
 """One walk over the syntax tree of a file: who binds which name, where names and attributes are read.
 
-`build_index(tree)` gives an `Index`: the tree of scopes with their bindings and reads, the attributes that are
-read and stored, the parent of every node. All questions of the package (what is this name, what happens to
-this value) are answered from it without walking again.
+`build_index(tree)` gives an `Index`: the tree of scopes with their bindings and reads, the attributes
+that are read and stored, the parent of every node. All questions of the package
+(what is this name, what happens to this value) are answered from it without walking again.
 
 The walk is iterative and flat, since it decides what the whole package costs: about one `ast.parse` for the
 files that mention `re` at all, nothing for the others.
@@ -11,6 +11,7 @@ files that mention `re` at all, nothing for the others.
 from __future__ import annotations
 
 import ast
+from collections.abc import Callable
 from dataclasses import dataclass, field
 
 from patlint.source.scopes import Binding, Scope, bind_target
@@ -219,9 +220,8 @@ def _comprehension(node: ast.AST, scope: Scope, index: Index) -> Scope:
         own = _present(generator.target, generator.ifs, generator.iter if generator is not first else None)
         _adopt(generator, own, index)
         inner.pending.extend(own)
-    heads = [node.key, node.value] if isinstance(node, ast.DictComp) else [node.elt]
-    heads = _present(heads)  # type: ignore[assignment]
-    _adopt(node, heads, index)  # type: ignore[arg-type]
+    heads = _present([node.key, node.value] if isinstance(node, ast.DictComp) else node.elt)
+    _adopt(node, heads, index)
     inner.pending.extend(heads)
     return inner
 
@@ -283,6 +283,12 @@ def _import_from(node: ast.AST, scope: Scope, index: Index) -> None:
             scope.bind(name, Binding("import", node, scope, module=module, member=alias.name))
 
 
+def _type_alias(node: ast.AST, scope: Scope, index: Index) -> None:
+    name = getattr(node, "name", None)
+    if isinstance(name, ast.Name):
+        scope.bind(name.id, Binding("definition", node, scope))
+
+
 def _global(node: ast.AST, scope: Scope, index: Index) -> None:
     assert isinstance(node, ast.Global)
     scope.globals.update(node.names)
@@ -314,7 +320,7 @@ def _capture(node: ast.AST, scope: Scope, index: Index) -> None:
         scope.bind(name, Binding("unpacked", node, scope))
 
 
-_HANDLERS = {
+_HANDLERS: dict[type[ast.AST], Callable[[ast.AST, Scope, Index], Scope | None]] = {
     ast.FunctionDef: _function,
     ast.AsyncFunctionDef: _function,
     ast.Lambda: _function,
@@ -334,6 +340,8 @@ _HANDLERS = {
     ast.MatchStar: _capture,
     ast.MatchMapping: _capture,
 }
+if hasattr(ast, "TypeAlias"):  # since Python 3.12
+    _HANDLERS[ast.TypeAlias] = _type_alias
 
 
 def _is_dynamic(index: Index, everything: list[Scope]) -> bool:
@@ -348,6 +356,8 @@ def _is_dynamic(index: Index, everything: list[Scope]) -> bool:
                 call = index.parents.get(node)
                 above = index.parents.get(call) if call is not None else None
                 stored = isinstance(above, ast.Subscript) and not isinstance(above.ctx, ast.Load)
-                if stored or (isinstance(above, ast.Attribute) and above.attr in ("update", "setdefault", "pop")):
+                if stored or (
+                    isinstance(above, ast.Attribute) and above.attr in ("update", "setdefault", "pop")
+                ):
                     return True
     return False

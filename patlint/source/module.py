@@ -108,7 +108,8 @@ class _Reader:
         return tuple(sites), tuple(sorted(self.unresolved, key=lambda call: call.place))
 
     def read(self) -> None:
-        for node, scope in self._members():
+        members = sorted(self._members(), key=lambda member: (member[0].lineno, member[0].col_offset))
+        for node, scope in members:
             try:
                 denoted = self.engine.denotes(node, scope)
             except Opaque as opaque:
@@ -136,7 +137,7 @@ class _Reader:
         while stack:
             scope = stack.pop()
             stack.extend(scope.children)
-            for name in names & scope.loads.keys() if not starred else scope.loads.keys():
+            for name in sorted(scope.loads.keys() if starred else names & scope.loads.keys()):
                 for node in scope.loads[name]:
                     parent = parents.get(node)
                     if isinstance(parent, ast.Attribute) and parent.value is node:
@@ -199,7 +200,7 @@ class _Reader:
         try:
             if argument is None:
                 raise Opaque(reasons.STARRED if arguments.loose else reasons.MISSING)
-            if self.constants.maker(argument, scope) is not None:
+            if self.constants.names.maker(argument, scope) is not None:
                 return  # a pattern object: its site is where it is made
             pattern = self.constants.text_of(argument, scope)
             if arguments.loose and "flags" not in arguments.given:
@@ -217,7 +218,8 @@ class _Reader:
         uses: tuple[Use, ...]
         if function == "compile":
             found = self.follower.follow(call, scope, pattern.value)
-            uses, seen, name = tuple(found.uses), found.seen, found.name
+            uses = tuple(sorted(found.uses, key=lambda use: use.place))
+            seen, name = found.seen, found.name
         else:
             uses = (self.uses.call(call, scope, cast(Function, function), False, pattern.value),)
             seen, name = True, None
@@ -242,7 +244,7 @@ class _Reader:
         for _ in range(20):
             if not isinstance(argument, ast.Name):
                 break
-            definitions = self.constants.definitions(argument, scope)
+            definitions = self.constants.names.definitions(argument, scope)
             argument, scope = definitions[0]
         statement = self.index.statement(argument)
         line = statement.lineno if statement is not None else argument.lineno

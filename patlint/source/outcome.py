@@ -14,6 +14,7 @@ import ast
 from dataclasses import dataclass, field
 
 from patlint.source.index import Index
+from patlint.source.reaching import reached_reads
 from patlint.source.scopes import Scope
 from patlint.source.sites import LooksAt
 
@@ -21,7 +22,8 @@ _ORDER: tuple[LooksAt, ...] = ("truth", "span", "groups", "unknown")
 _GROUP_ATTRIBUTES = frozenset({"groups", "groupdict", "expand", "lastgroup", "lastindex", "regs"})
 _SPAN_ATTRIBUTES = frozenset({"string", "pos", "endpos"})
 _BY_GROUP = frozenset({"group", "start", "end", "span"})
-_TESTS = (ast.If, ast.While, ast.IfExp, ast.Assert)
+_UNITTEST = frozenset({"assertTrue", "assertFalse", "assertIsNone", "assertIsNotNone"})
+"""Methods of the standard library's `unittest.TestCase` that test a truth."""
 _DEEPEST = 40
 
 
@@ -39,7 +41,7 @@ class Outcome:
 
     @property
     def looks_at(self) -> LooksAt:
-        """"unknown" also where nothing at all is looked at: such a call tells nothing about its author."""
+        """ "unknown" also where nothing at all is looked at: such a call tells nothing about its author."""
         return _ORDER[self.level] if self.level >= 0 else "unknown"
 
 
@@ -96,6 +98,8 @@ class Outcomes:
                 return True
             case ast.Call(func=ast.Name(id="bool"), args=[only]):
                 return only is node
+            case ast.Call(func=ast.Attribute(attr=method), args=[first, *_]):
+                return first is node and method in _UNITTEST
             case ast.comprehension():
                 return node in parent.ifs
             case _:
@@ -141,7 +145,9 @@ class Outcomes:
                 self._element(parent, outcome)
             case ast.Lambda() if parent.body is node:
                 above = self.index.parents.get(parent)
-                filtered = isinstance(above, ast.Call) and _is_called(above, ("filter",)) and above.args[0] is parent
+                filtered = (
+                    isinstance(above, ast.Call) and _is_called(above, ("filter",)) and above.args[0] is parent
+                )
                 outcome.saw("truth" if filtered else "unknown")
             case _:
                 outcome.saw("unknown")
@@ -216,7 +222,7 @@ class Outcomes:
             outcome.saw("unknown")  # a global or class name: others may read it
             if owner is None:
                 return
-        reached = self.reached(target.id, statement, owner)
+        reached = reached_reads(target.id, statement, owner, self.index)
         self._name(target.id, owner, outcome, seen, depth, reached)
 
     def _name(
@@ -234,44 +240,6 @@ class Outcomes:
         for read, scope in owner.reads(name):
             if only is None or read in only:
                 self._match(read, scope, outcome, seen | {(owner, name)}, depth + 1)
-
-    def reached(self, name: str, statement: ast.stmt, owner: Scope) -> set[ast.AST] | None:
-        """The reads of `name` that an assignment reaches, where the next one in the same block ends its life.
-
-        None where that cannot be told: the value may reach any read.
-        """
-        if len(owner.bindings.get(name, ())) < 2:
-            return None
-        block = self._block(statement)
-        if block is None:
-            return None
-        found: set[ast.AST] = set()
-        for following in block[block.index(statement) + 1 :]:
-            kills = isinstance(following, ast.Assign) and any(
-                isinstance(target, ast.Name) and target.id == name for target in following.targets
-            )
-            for inner in ast.walk(following):
-                if isinstance(inner, (ast.Break, ast.Continue, ast.Lambda, ast.FunctionDef, ast.AsyncFunctionDef)):
-                    return None
-                if isinstance(inner, ast.Name) and inner.id == name and isinstance(inner.ctx, ast.Load):
-                    found.add(inner)
-            if kills:
-                return found
-        return None
-
-    def _block(self, statement: ast.stmt) -> list[ast.stmt] | None:
-        """The list of statements that holds `statement`, None within a `try`, whose ways out are many."""
-        above = self.index.parents.get(statement)
-        current = above
-        while current is not None and not isinstance(current, (ast.FunctionDef, ast.AsyncFunctionDef, ast.Module)):
-            if isinstance(current, ast.Try) or type(current).__name__ == "TryStar":
-                return None
-            current = self.index.parents.get(current)
-        for name in ("body", "orelse", "finalbody"):
-            block = getattr(above, name, None)
-            if isinstance(block, list) and statement in block:
-                return block
-        return None
 
 
 def _is_zero(node: ast.expr) -> bool:

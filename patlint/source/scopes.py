@@ -140,7 +140,7 @@ def bind_target(target: ast.expr, value: ast.expr, node: ast.AST, scope: Scope) 
                 and not starred
                 and not any(isinstance(item, ast.Starred) for item in value.elts)
             ):
-                for inner, part in zip(targets, value.elts):
+                for inner, part in zip(targets, value.elts, strict=True):
                     bind_target(inner, part, node, scope)
             else:
                 for inner in targets:

@@ -174,7 +174,7 @@ class Module:
     unresolved: tuple[Unresolved, ...]
     waivers: tuple[Waiver, ...]
     lines: tuple[str, ...]
-    """The lines of the decoded text with their ends; joined they give the text without its byte order mark."""
+    """The lines of the decoded text with their ends; joined they give the text without a byte order mark."""
     bad_waivers: tuple[tuple[Place, str], ...] = ()
     """Comments that begin like a waiver and are none, with what is wrong about each."""
     encoding: str = "utf-8"

@@ -7,6 +7,7 @@ import re
 
 from patlint.source.constants import Constants
 from patlint.source.engine import FUNCTIONS, METHODS, Arguments, bind_arguments
+from patlint.source.flags import evaluate_flags
 from patlint.source.index import Index
 from patlint.source.outcome import Outcome, Outcomes
 from patlint.source.places import Text
@@ -44,7 +45,8 @@ class Uses:
         """`call` runs `pattern` by a function of `re` or, with `method`, by one of a pattern object."""
         arguments = bind_arguments(call, METHODS[function] if method else FUNCTIONS[function])
         given = arguments.given
-        positioned = method and ("pos" in given or "endpos" in given or (arguments.loose and "split sub subn".find(function) < 0))
+        movable = method and "pos" in METHODS[function]
+        positioned = movable and ("pos" in given or "endpos" in given or arguments.loose)
         replacement, looks_at, outcome = self._outcome(call, scope, function, given, arguments, pattern)
         limit = given.get("maxsplit") if function == "split" else given.get("count")
         return Use(
@@ -80,13 +82,13 @@ class Uses:
             case "findall" | "split":
                 outcome = self.outcomes.of_list(call, has_groups(pattern))
             case "sub" | "subn":
-                replacement = self._replacement(given.get("repl"), scope)
+                replacement = self._text(given.get("repl"), scope)
                 return replacement, _replacement_looks_at(replacement), None
             case _:
                 return None, "unknown", None
         return None, outcome.looks_at, outcome
 
-    def _replacement(self, node: ast.expr | None, scope: Scope) -> str | bytes | None:
+    def _text(self, node: ast.expr | None, scope: Scope) -> str | bytes | None:
         if node is None:
             return None
         try:
@@ -98,8 +100,6 @@ class Uses:
     def _number(self, node: ast.expr | None, scope: Scope) -> int | None:
         if node is None:
             return None
-        from patlint.source.flags import evaluate_flags
-
         try:
             return evaluate_flags(node, scope, self.constants)
         except Opaque:
@@ -119,11 +119,8 @@ class Uses:
             case ast.Constant(value=str() | bytes() as value):
                 return len(value)
             case ast.Name() | ast.BinOp() | ast.JoinedStr():
-                try:
-                    value = self.constants.evaluate(node, scope)
-                except Opaque:
-                    return None
-                return len(value.value) if isinstance(value, Spelled) else None
+                known = self._text(node, scope)
+                return len(known) if known is not None else None
             case _:
                 return None
 

@@ -1,7 +1,7 @@
 """Comments that waive findings: `# patlint: waive RULE[, RULE] -- reason`.
 
-Only files that spell `patlint:` are looked at; their comments are found by `tokenize`, so that text in strings
-is none. A waiver counts for its own line and, where it stands alone on a line, for the next line of code.
+Only files that spell `patlint:` are looked at; comments are found by `tokenize`, so that text in strings is
+none. A waiver counts for its own line and, where it stands alone on a line, for the next line of code.
 """
 
 from __future__ import annotations

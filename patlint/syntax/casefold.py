@@ -72,7 +72,8 @@ def orbit(code: int, ascii_only: bool = False) -> CharSet:
     """
     fold = folding(ascii_only)
     low = fold.low.get(code, code)
-    return fold.takes(CharSet.of_codes((low, *fold.kin.get(low, ()))))
+    family = (low, *fold.kin.get(low, ()))
+    return CharSet.of_codes(member for lower in family for member in fold.sources.get(lower, (lower,)))
 
 
 def is_cased(code: int, ascii_only: bool = False) -> bool:

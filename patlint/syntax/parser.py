@@ -112,8 +112,7 @@ class _Parser:
         self.first_inner_group: int | None = None
         self.conditions: dict[int, int] = {}
         self.has_repeat = False
-        self.look_behind_problem: str | None = None
-        self.look_behind_kind = "error"
+        self.late_refusal: PatternError | None = None
 
     def pattern(self) -> Pattern:
         flags = self.flags
@@ -126,8 +125,8 @@ class _Parser:
                 raise PatternError(f"there is no group {index}", position)
         if self.dialect.template_flag and self.flags & TEMPLATE and self.has_repeat:
             raise PatternError("the TEMPLATE flag forbids repeats")
-        if self.look_behind_problem is not None:
-            raise PatternError(self.look_behind_problem, None, self.look_behind_kind)
+        if self.late_refusal is not None:
+            raise self.late_refusal
         return Pattern(self.text, root, self.flags, self.inline, len(self.bodies) - 1, self.names)
 
     def check_flags(self) -> None:
@@ -362,11 +361,10 @@ class _Parser:
         low, high = width(body, self.widths)
         # `re` finds this only after it has read the whole pattern.
         if low != high:
-            self.look_behind_problem = "a look-behind needs a fixed width"
-        elif low > self.dialect.widest_look_behind:
-            self.look_behind_problem = "a look-behind is too wide"
-            if low <= self.dialect.faulty_look_behind:
-                self.look_behind_kind = "RuntimeError"
+            self.late_refusal = PatternError("a look-behind needs a fixed width")
+        elif low > self.dialect.widest_look_behind and self.late_refusal is None:
+            kind = "RuntimeError" if low <= self.dialect.faulty_look_behind else "error"
+            self.late_refusal = PatternError("a look-behind is too wide", None, kind)
         return low
 
     def conditional(self, start: int, flags: int, verbose: bool, depth: int) -> Node:

@@ -16,9 +16,9 @@ from pathlib import Path
 
 # fmt: off
 PACKAGES = (
-    "pygments", "django", "sphinx", "docutils", "setuptools", "babel", "nltk", "markdown", "mistune", "sqlparse",
-    "dateparser", "bleach", "tornado", "aiohttp", "urllib3", "jinja2", "werkzeug", "click", "pip", "packaging",
-    "textile", "feedparser", "validators",
+    "pygments", "django", "sphinx", "docutils", "setuptools", "babel", "nltk", "markdown", "mistune",
+    "sqlparse", "dateparser", "bleach", "tornado", "aiohttp", "urllib3", "jinja2", "werkzeug", "click", "pip",
+    "packaging", "textile", "feedparser", "validators",
 )
 # fmt: on
 LEFT_OUT = frozenset({"test", "tests", "idle_test", "site-packages", "dist-packages", "__pycache__"})

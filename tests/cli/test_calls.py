@@ -18,7 +18,7 @@ Patlint = Callable[..., Ran]
 
 WRONG = [
     ((), "no command; see patlint --help"),
-    (("lnit",), "unknown command 'lnit'; the nearest is lint"),
+    (("lintt",), "unknown command 'lintt'; the nearest is lint"),
     (("xyz",), "unknown command 'xyz'"),
     (("--versoin",), "unknown option '--versoin'; the nearest is --version"),
     (("lint", "--fromat", "json"), "unknown option '--fromat'; the nearest is --format"),

@@ -39,7 +39,7 @@ def test_json(patlint: Patlint) -> None:
             "line": 2,
             "column": 13,
             "end_line": 2,
-            "end_column": 25,
+            "end_column": 24,
             "pattern": "(?i)\\d+'",
             "bytes": False,
             "flags": ["IGNORECASE", "DOTALL"],

@@ -44,7 +44,7 @@ def test_one_line_and_the_others_still(patlint: Patlint, command: str, content: 
         assert ran.out.endswith("1 skipped\n")
 
 
-HARD: list[tuple[str, bytes, int]] = [
+HARD: list[tuple[str, bytes, int | None]] = [
     ("empty", b"", 0),
     ("a byte order mark", b"\xef\xbb\xbfimport re\nre.compile('ab')\n", 1),
     (
@@ -52,10 +52,10 @@ HARD: list[tuple[str, bytes, int]] = [
         b"import re\nx = '" + b"y" * 10_000_000 + b"'\nre.compile('ab')\n",
         1,
     ),
-    ("a pattern of a million characters", b"import re\nre.compile('" + b"ab" * 500_000 + b"')\n", 1),
+    ("a pattern of a hundred thousand characters", b"import re\nre.compile('" + b"ab" * 50_000 + b"')\n", 1),
     ("nested groups", b"import re\nre.compile('" + b"(" * 5_000 + b"a" + b")" * 5_000 + b"')\n", 1),
     ("nested unclosed groups", b"import re\nre.compile('" + b"(" * 5_000 + b"')\n", 1),
-    ("a long sum", b"import re\nre.compile(" + b"'a' + " * 5_000 + b"'a')\n", None),  # type: ignore[list-item]
+    ("a long sum", b"import re\nre.compile(" + b"'a' + " * 5_000 + b"'a')\n", None),
     ("many branches", b"import re\nre.compile('" + b"|".join(b"w%d" % n for n in range(5_000)) + b"')\n", 1),
 ]
 

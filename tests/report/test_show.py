@@ -58,8 +58,9 @@ def test_pattern_expression_is_raw_where_that_helps() -> None:
 
 SLOW = [
     (SlowWitness("", "a", "!", "exponential"), "'a' * 30 + '!'"),
-    (SlowWitness("<", "ab", "", 2, ((10, 5), (40, 90))), "'<' + 'ab' * 40"),
-    (SlowWitness(b"", b"a", b"!", 3), "b'a' * 30 + b'!'"),
+    (SlowWitness("<", "ab", "", 2, ((10, 5), (40, 90))), "'<' + 'ab' * 10000"),
+    (SlowWitness(b"", b"a", b"!", 3), "b'a' * 1000 + b'!'"),
+    (SlowWitness("", "a", "!", 7), "'a' * 150 + '!'"),
 ]
 
 

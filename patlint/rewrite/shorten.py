@@ -1,0 +1,333 @@
+r"""A shorter pattern that may stand for another, proven.
+
+>>> shorten("(?:0[0-9]|1[0-9]|2[0-3]):[0-5][0-9]")
+'(?:[01][0-9]|2[0-3]):[0-5][0-9]'
+>>> shorten("x(a|a)y", keeps="groups") is None  # the group's text is kept, its inside may change
+False
+>>> shorten("[0-9]{4}-[0-9]{2}") is None
+True
+
+Candidates come from the laws of expressions and from the automata of islands (`islands`), written with the author's
+habits (`spelling`). None is trusted: each is parsed again, must differ from the original in its islands only, must
+have the same groups, must not be deeper nested or have more operators, must not be slower to match, and
+
+- keeps="groups": each island ends at the same places in the same order (`proof.ends`), so that nothing changes at all;
+- keeps="spans": that, or the spans of the whole pattern are proven equal;
+- keeps="language": that, or the languages in `mode` are proven equal. Then optional parts at the ends may go too,
+  where they decide nothing, and unnamed groups with the island in which they stand.
+
+Limits: patterns up to `LONGEST` characters; automata up to `ATTEMPTS` islands. A limit that is met gives no suggestion.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass, field, replace
+from typing import Literal, TypeAlias
+
+from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
+from patlint.machine.algebra import BESIDE, LOOSE, TIGHT, Algebra, Chain, Expr, Times, nullable
+from patlint.machine.determinise import Mode
+from patlint.machine.dfa import Dfa, canonical
+from patlint.machine.expression import expression
+from patlint.machine.program import compile_tree
+from patlint.machine.slow_text import Growth, ambiguity_of
+from patlint.rewrite.islands import (
+    Island,
+    complexity,
+    expression_of,
+    has_comment,
+    inner_islands,
+    islands,
+    shape,
+    splice,
+)
+from patlint.rewrite.proof import ends, part_language, same_language, same_spans
+from patlint.rewrite.spelling import Habits, habits_of
+from patlint.rewrite.worth import worth_a_try
+from patlint.syntax import tree as t
+from patlint.syntax.charset import CharSet
+from patlint.syntax.parser import PatternError, parse
+
+Keeps: TypeAlias = Literal["language", "spans", "groups"]
+
+LONGEST = 300
+"""Characters of a pattern for which a shorter one is looked for."""
+ATTEMPTS = 6
+"""Islands of one pattern of which the automaton is turned into an expression, a few milliseconds each."""
+LEAST_SAVING = 2
+LEAST_SHARE = 0.1
+"""A suggestion saves at least so many characters, and this share of the pattern's length."""
+
+_BINDINGS = {"loose": LOOSE, "beside": BESIDE, "tight": TIGHT}
+_SMALL = {"states": 300, "work": 30_000, "turns": 20_000}
+
+
+@dataclass(frozen=True, slots=True)
+class Proposal:
+    """`pattern` may stand for the original; `keeps` is what is proven to stay the same."""
+
+    pattern: str | bytes
+    keeps: Keeps
+    saved: int
+
+
+@dataclass(frozen=True, slots=True)
+class _Edit:
+    """A new text for an island; `certain` where its ends are proven to come in the same order."""
+
+    island: Island
+    text: str
+    node: t.Node
+    certain: bool
+    saved: int
+
+
+def shorten(
+    pattern: str | bytes,
+    flags: int = 0,
+    mode: Mode = "fullmatch",
+    keeps: Keeps = "language",
+    target: tuple[int, int] | None = None,
+    limits: Limits = DEFAULT_LIMITS,
+) -> str | bytes | None:
+    """A shorter pattern for use in `mode` that keeps the language, spans or groups; None where none was found.
+
+    Raises PatternError where `re` refuses the pattern.
+    """
+    found = suggest(parse(pattern, flags, target, limits), mode, keeps, target, limits)
+    return None if found is None else found.pattern
+
+
+def suggest(
+    parsed: t.Pattern,
+    mode: Mode = "fullmatch",
+    keeps: Keeps = "language",
+    target: tuple[int, int] | None = None,
+    limits: Limits = DEFAULT_LIMITS,
+    *,
+    least_saving: int = LEAST_SAVING,
+    least_share: float = LEAST_SHARE,
+) -> Proposal | None:
+    """As `shorten`, for a parsed pattern."""
+    if not least_saving < len(parsed.text) <= LONGEST or parsed.flags & t.LOCALE:
+        return None
+    truth = keeps == "language" and mode != "fullmatch"
+    if not worth_a_try(parsed, truth):
+        return None
+    small = replace(
+        limits, **{name: min(value, getattr(limits, name)) for name, value in _SMALL.items()}  # type: ignore[arg-type]
+    )
+    search = _Search(parsed, mode, keeps, target, small)
+    least = max(least_saving, least_share * len(parsed.text))
+    for edits in search.ways():
+        if sum(edit.saved for edit in edits) < least:
+            continue
+        found = search.proven(edits)
+        if found is not None:
+            return found
+    return None
+
+
+@dataclass(slots=True)
+class _Search:
+    parsed: t.Pattern
+    mode: Mode
+    keeps: Keeps
+    target: tuple[int, int] | None
+    limits: Limits
+    attempts: int = 0
+    text: str = ""
+    habits: Habits = field(init=False)
+    tried: dict[tuple[t.Span, bool], list[_Edit]] = field(default_factory=dict)
+
+    def __post_init__(self) -> None:
+        text = self.parsed.text
+        self.text = text if isinstance(text, str) else text.decode("latin-1")
+        self.habits = habits_of(self.parsed)
+
+    def ways(self) -> Iterator[list[_Edit]]:
+        """Sets of edits, the boldest first."""
+        if self.keeps == "language":
+            if self.parsed.groups and not self.refers():
+                yield [edit for island in islands(self.parsed, True) for edit in self.best(island, False)]
+            if self.mode != "fullmatch":
+                yield [edit for island in islands(self.parsed) for edit in self.trimmed(island)]
+        if self.keeps != "groups":
+            yield [edit for island in islands(self.parsed) for edit in self.best(island, False)]
+        yield [edit for island in islands(self.parsed) for edit in self.best(island, True)]
+
+    def refers(self) -> bool:
+        return any(isinstance(node, t.BackReference | t.Conditional) for node in t.walk(self.parsed.root))
+
+    def best(self, island: Island, certain: bool) -> list[_Edit]:
+        """The edits in an island that save most; `certain` asks for proof that needs no look at the rest."""
+        whole = [edit for edit in self.attempt(island) if edit.certain or not certain]
+        whole = [max(whole, key=lambda edit: (edit.saved, edit.certain))] if whole else []
+        if not t.children(island.node):
+            return whole
+        parts = [
+            edit
+            for inner in inner_islands(island, self.parsed.is_bytes, True)
+            for edit in self.best(inner, certain)
+        ]
+        return whole if sum(edit.saved for edit in whole) > sum(edit.saved for edit in parts) else parts
+
+    def attempt(self, island: Island) -> list[_Edit]:
+        key = (island.span, island.branches)
+        found = self.tried.get(key)
+        if found is None:
+            found = self.tried[key] = list(self.edits(island))
+        return found
+
+    def edits(self, island: Island) -> Iterator[_Edit]:
+        start, end = island.span
+        old = self.text[start:end]
+        if len(old) < 2 or has_comment(old, self.habits.verbose):
+            return
+        node = island.node
+        captures = sum(isinstance(each, t.Group) and each.index is not None for each in t.walk(node))
+        room = len(old) - 2 * captures
+        texts: dict[str, None] = {}
+        for ordered in (True, False):
+            algebra = self.algebra(island.flags, ordered)
+            short = expression_of(node, algebra, self.parsed.is_bytes)
+            texts[algebra.text(short, _BINDINGS[island.place])] = None
+        old_language: Dfa | None = None
+        try:
+            if self.attempts < ATTEMPTS and _is_involved(node):
+                self.attempts += 1
+                old_language = part_language(self.parsed, node, self.limits)
+                made = expression(old_language, algebra, room)
+                if made is not None:
+                    texts[algebra.text(made, _BINDINGS[island.place])] = None
+        except LimitReached:
+            pass
+        depth, operators = complexity(node)
+        old_ends: Dfa | None = None
+        bare = 10**9
+        for text in sorted(texts, key=len):
+            if len(text) >= room or not text:
+                continue
+            read = self.read(text, island)
+            if read is None:
+                continue
+            new_depth, new_operators = complexity(read.root)
+            if new_depth > depth or new_operators > operators:
+                continue
+            certain = False
+            try:
+                if not captures:
+                    if old_ends is None:
+                        old_ends = ends(self.parsed, node, self.limits)
+                    certain = ends(read, read.root, self.limits) == old_ends
+                if not certain:
+                    if len(text) >= bare:
+                        continue
+                    if old_language is None:
+                        old_language = part_language(self.parsed, node, self.limits)
+                    if canonical(part_language(read, read.root, self.limits)) != canonical(old_language):
+                        continue
+                    bare = len(text)
+            except LimitReached:
+                continue
+            yield _Edit(island, text, read.root, certain, len(old) - len(text))
+            if certain:
+                return
+
+    def trimmed(self, island: Island) -> list[_Edit]:
+        """As `best`, without what may be missing at the ends of the pattern."""
+        left = island.first and self.mode == "search"
+        start, end = island.span
+        if not (left or island.last) or has_comment(self.text[start:end], self.habits.verbose):
+            return self.best(island, False)
+        algebra = self.algebra(island.flags, False)
+        expr = expression_of(island.node, algebra, self.parsed.is_bytes)
+        cut = _trim(expr, algebra, left, island.last)
+        if cut == expr:
+            return self.best(island, False)
+        text = algebra.text(cut, _BINDINGS[island.place])
+        read = self.read(text, island)
+        if read is None or (not text and island.branches):
+            return self.best(island, False)
+        return [_Edit(island, text, read.root, False, end - start - len(text))]
+
+    def algebra(self, flags: int, ordered: bool) -> Algebra:
+        def spell(chars: CharSet) -> str:
+            return self.habits.spell(chars, flags)
+
+        return Algebra(spell, ordered, self.habits.braces, words=True)
+
+    def read(self, text: str, island: Island) -> t.Pattern | None:
+        """An island's new text as a pattern of its own."""
+        flags = island.flags | (t.VERBOSE if self.habits.verbose else 0)
+        try:
+            return parse(self.typed(text), flags, self.target, self.limits)
+        except (PatternError, LimitReached):
+            return None
+
+    def typed(self, text: str) -> str | bytes:
+        return text.encode("latin-1") if self.parsed.is_bytes else text
+
+    def proven(self, edits: list[_Edit]) -> Proposal | None:
+        old = self.parsed
+        text = splice(self.text, [(edit.island.span, edit.text) for edit in edits])
+        try:
+            new = parse(self.typed(text), old.flags & ~old.inline, self.target, self.limits)
+        except (PatternError, LimitReached):
+            return None
+        swaps = {id(edit.island.nodes[0]): (len(edit.island.nodes), edit.node) for edit in edits}
+        if new.flags != old.flags or new.inline != old.inline or shape(new.root) != shape(old.root, swaps):
+            return None
+        same_groups = (new.groups, new.names) == (old.groups, old.names)
+        keeps: Keeps
+        if same_groups and all(edit.certain for edit in edits):
+            keeps = "groups"
+        elif same_groups and self.keeps == "spans" and same_spans(old, new, self.mode == "search", self.limits):
+            keeps = "spans"
+        elif self.keeps == "language" and same_language(old, new, self.mode, self.limits):
+            keeps = "language"
+        else:
+            return None
+        if self.is_slower(new):
+            return None
+        return Proposal(self.typed(text), keeps, len(self.text) - len(text))
+
+    def is_slower(self, new: t.Pattern) -> bool:
+        now = ambiguity_of(compile_tree(new, self.limits), self.mode, self.limits)
+        if now.growth is None and now.undecided is None:
+            return False
+        before = ambiguity_of(compile_tree(self.parsed, self.limits), self.mode, self.limits)
+        if now.undecided is not None and before.undecided is None:
+            return True
+        return _degree(now.growth) > _degree(before.growth)
+
+
+def _degree(growth: Growth | None) -> int:
+    return 1 if growth is None else 1_000 if growth == "exponential" else growth
+
+
+def _is_involved(node: t.Node) -> bool:
+    """Whether an automaton may know more than the laws: alternatives, or repeats in repeats."""
+    for each in t.walk(node):
+        if isinstance(each, t.Alternation):
+            return True
+        if isinstance(each, t.Repeat) and any(isinstance(below, t.Repeat) for below in t.walk(each.body)):
+            return True
+    return False
+
+
+def _trim(expr: Expr, algebra: Algebra, left: bool, right: bool) -> Expr:
+    """`expr` without what may be missing at its left or right end."""
+    items = list(expr.items) if isinstance(expr, Chain) else [expr]
+    for at_end in [True] * right + [False] * left:
+        while items:
+            place = -1 if at_end else 0
+            item = items[place]
+            if nullable(item):
+                del items[place]
+            elif isinstance(item, Times) and item.low != item.high:
+                items[place] = algebra.times(item.body, item.low, item.low)
+            else:
+                break
+    return algebra.chain(items)

@@ -1,0 +1,72 @@
+"""A quick look at a pattern: is there anything that might be written shorter?
+
+Most patterns are plain sequences in which nothing can be saved; they are to cost next to nothing. True means only
+that a closer look is worth its time.
+"""
+
+from __future__ import annotations
+
+from patlint.machine.engine_tree import same
+from patlint.rewrite.spelling import reduced_set
+from patlint.syntax import tree as t
+
+_LONG_RUN = 5
+"""So many equal characters in a row are shorter as a repeat."""
+
+
+def worth_a_try(pattern: t.Pattern, truth: bool = False) -> bool:
+    """`truth`: optional parts at the ends count as well."""
+    text = pattern.text if isinstance(pattern.text, str) else pattern.text.decode("latin-1")
+    if truth and _has_loose_end(pattern.root):
+        return True
+    return any(_is_suspect(node, text, pattern.is_bytes) for node in t.walk(pattern.root))
+
+
+def _has_loose_end(root: t.Node) -> bool:
+    items = root.items if isinstance(root, t.Sequence) else (root,)
+    return bool(items) and any(isinstance(item, t.Repeat) for item in (items[0], items[-1]))
+
+
+def _is_suspect(node: t.Node, text: str, is_bytes: bool) -> bool:
+    match node:
+        case t.Alternation():
+            return True
+        case t.Set():
+            return reduced_set(node, text, is_bytes) is not None
+        case t.Group():
+            return node.index is None and not isinstance(node.body, t.Alternation | t.Sequence)
+        case t.Repeat():
+            written = text[node.body.span[1] : node.span[1]].rstrip("?+")
+            return _inner_repeat(node.body) or (node.minimum, node.maximum) in _OWN_MARKS and written[-1:] == "}"
+        case t.Sequence():
+            return _repeats_itself(node.items)
+        case _:
+            return False
+
+
+_OWN_MARKS = ((0, None), (1, None), (0, 1), (1, 1), (0, 0))
+
+
+def _inner_repeat(body: t.Node) -> bool:
+    if isinstance(body, t.Group) and body.index is None:
+        return isinstance(body.body, t.Repeat) or (
+            isinstance(body.body, t.Sequence) and any(isinstance(item, t.Repeat) for item in body.body.items)
+        )
+    return False
+
+
+def _repeats_itself(items: tuple[t.Node, ...]) -> bool:
+    run = 1
+    for before, item in zip(items, items[1:], strict=False):
+        if isinstance(item, t.Group) and item.index is None and not (item.add_flags or item.del_flags):
+            if not isinstance(item.body, t.Alternation):
+                return True
+        a = before.body if isinstance(before, t.Repeat) else before
+        b = item.body if isinstance(item, t.Repeat) else item
+        if type(a) is type(b) and same(a, b):
+            run += 1
+            if a is not before or b is not item or isinstance(a, t.Set) or run >= _LONG_RUN:
+                return True
+        else:
+            run = 1
+    return False

@@ -1,0 +1,138 @@
+"""unreachable-part and equal-siblings: what they call dead can be taken out, says `re`.
+
+The twin is `re` itself: the pattern without the part is compared on every short text, spans of match and
+search and all that finditer finds. Cases by hand stand beside: parts that are dead, and parts that are used.
+"""
+
+from __future__ import annotations
+
+import itertools
+import random
+import re
+import warnings
+
+import pytest
+
+from patlint.rules.finding import Finding
+from patlint.source.sites import Function
+from patlint.syntax import tree as t
+from patlint.syntax.parser import parse
+from tests.rules.support import findings, site
+
+TEXTS = ["".join(text) for size in range(6) for text in itertools.product("ab\n", repeat=size)]
+
+
+def without(pattern: str, finding: Finding) -> str:
+    """The pattern with a part deleted: a branch with its bar, anything else as it stands."""
+    start, end = span = finding.span
+    for node in t.walk(parse(pattern).root):
+        if isinstance(node, t.Alternation) and "branch" in finding.message:
+            for index, branch in enumerate(node.branches):
+                if branch.span == span:
+                    return pattern[: start - 1] + pattern[end:] if index else pattern[:start] + pattern[end + 1 :]
+    return pattern[:start] + pattern[end:]
+
+
+def outcome(compiled: re.Pattern[str], text: str, function: Function) -> object:
+    if function == "finditer":
+        return [found.span() for found in compiled.finditer(text)]
+    found = getattr(compiled, function)(text)
+    return found and found.span()
+
+
+def random_pattern(generator: random.Random, depth: int) -> str:
+    if depth == 0 or generator.random() < 0.2:
+        return generator.choice(["a", "b", "a", "b", "ab", ".", "[ab]", "", "^", "$", r"\b", "(?=a)", "(?!b)", r"\n"])
+    inner = [random_pattern(generator, depth - 1) for _ in range(2)]
+    return generator.choice(
+        [
+            f"{inner[0]}{inner[1]}",
+            f"(?:{inner[0]}|{inner[1]})",
+            f"(?:{inner[0]}|{inner[1]})",
+            f"(?:{inner[0]})" + generator.choice(["*", "+", "?", "*?", "+?", "??", "{2}", "{0,2}", "{1,2}?"]),
+        ]
+    )
+
+
+@pytest.mark.parametrize("function", ["match", "fullmatch", "search", "finditer"])
+def test_what_is_called_dead_can_be_deleted(function: Function) -> None:
+    generator = random.Random(20260113)
+    judged = 0
+    for _ in range(1_500):
+        pattern = random_pattern(generator, 4)
+        try:
+            with warnings.catch_warnings():
+                warnings.simplefilter("ignore")
+                compiled = re.compile(pattern)
+        except re.error:
+            continue
+        dead: list[Finding] = [
+            finding
+            for finding in findings(site(pattern, function, "span"))
+            if finding.rule in ("unreachable-part", "equal-siblings")
+        ]
+        for finding in dead:
+            shorter = without(pattern, finding)
+            try:
+                other = re.compile(shorter)
+            except re.error:
+                continue  # nothing left to repeat
+            judged += 1
+            for text in TEXTS:
+                assert outcome(compiled, text, function) == outcome(other, text, function), (
+                    pattern,
+                    shorter,
+                    text,
+                    finding.rule,
+                )
+    assert judged >= 150
+
+
+DEAD: list[tuple[str, Function, str]] = [
+    ("east|eastern", "match", "eastern"),
+    ("east|eastern", "search", "eastern"),
+    ("(?:in|into) hold|in", "search", ""),
+    ("x.*?", "search", ".*?"),
+    ("x.*?", "fullmatch", ""),
+    ("east|eastern", "fullmatch", ""),
+    ("[a-z]|b", "match", "b"),
+    ("(?:b|[a-z])x", "match", ""),
+    ("|a", "match", "a"),
+    ("|a", "finditer", ""),
+    ("a??", "match", "a??"),
+    ("a??", "findall", ""),
+    ("ab?c*|ab", "search", "ab"),
+    (r"(?:\d+|\d+\.\d+)kg", "match", ""),
+    (r"\d+|\d+\.\d+", "match", r"\d+\.\d+"),
+    ("a$b?", "match", "b?"),
+    ("(?:a|b)*?", "search", "(?:a|b)*?"),
+    (r"(a)\1|ab", "match", ""),
+]
+"""(pattern, function, the part that is never taken or "" where every part is): worked out by hand."""
+
+
+@pytest.mark.parametrize(("pattern", "function", "dead"), DEAD)
+def test_parts_by_hand(pattern: str, function: Function, dead: str) -> None:
+    found = findings(site(pattern, function, "span"), "unreachable-part")
+    assert [pattern[slice(*finding.span)] for finding in found] == ([dead] if dead else [])
+
+
+EQUAL: list[tuple[str, str]] = [
+    ("a|b|a", "a"),
+    ("kg|t|kg", "kg"),
+    ("[0-9][0-9]|x|[0-9]{2}", "[0-9]{2}"),
+    ("(?:jpg|jpeg)|jpe?g", "jpe?g"),
+    ("(?i:kgs?|t|KGS?)", "KGS?"),
+    ("a+|aa*", "aa*"),
+    ("a|(a)", "(a)"),
+    (r"\bgate|gate", ""),
+    ("a|b|c", ""),
+    ("a||b|", ""),
+    ("(?=x)x|(?=x)x", "(?=x)x"),
+]
+
+
+@pytest.mark.parametrize(("pattern", "twin"), EQUAL)
+def test_siblings_by_hand(pattern: str, twin: str) -> None:
+    found = findings(site(pattern, "fullmatch", "span"), "equal-siblings")
+    assert [pattern[slice(*finding.span)] for finding in found] == ([twin] if twin else [])

@@ -23,10 +23,23 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from typing import TypeAlias
 
-from patlint.machine.algebra import EMPTY, NOTHING, Algebra, Chain, Chars, Choice, Expr, Opaque, Times, reverse
+from patlint.machine.algebra import (
+    EMPTY,
+    NOTHING,
+    Algebra,
+    Chain,
+    Chars,
+    Choice,
+    Expr,
+    Opaque,
+    Times,
+    nullable,
+    reverse,
+)
 from patlint.machine.dfa import Dfa, minimal
 from patlint.machine.words import distances
 from patlint.syntax import tree as t
+from patlint.syntax.charset import EMPTY as NO_CHARS
 from patlint.syntax.charset import CharSet
 from patlint.syntax.render import char_node, render_set
 
@@ -79,6 +92,43 @@ def to_tree(expr: Expr, flags: int, is_bytes: bool) -> t.Node:
             return t.Repeat(nowhere, body, expr.low, expr.high, "lazy" if expr.lazy else "greedy")
         case Opaque():
             raise ValueError(f"{expr.written!r} has no tree")
+
+
+def in_order(expr: Expr, leaves: list[CharSet]) -> Expr:
+    """`expr` with its branches in the order in which their first characters come in `leaves`."""
+    match expr:
+        case Chain():
+            return Chain(tuple(in_order(item, leaves) for item in expr.items))
+        case Choice():
+            branches = [in_order(branch, leaves) for branch in expr.branches]
+            return Choice(tuple(sorted(branches, key=lambda branch: _place(branch, leaves))))
+        case Times():
+            return Times(in_order(expr.body, leaves), expr.low, expr.high, expr.lazy)
+        case _:
+            return expr
+
+
+def _place(expr: Expr, leaves: list[CharSet]) -> int:
+    first = _first(expr)
+    return next((place for place, chars in enumerate(leaves) if not chars.isdisjoint(first)), len(leaves))
+
+
+def _first(expr: Expr) -> CharSet:
+    """Characters with which a text of `expr` may begin."""
+    match expr:
+        case Chars():
+            return expr.chars
+        case Opaque():
+            return NO_CHARS
+        case Chain() | Choice():
+            found = NO_CHARS
+            for part in expr.items if isinstance(expr, Chain) else expr.branches:
+                found = found | _first(part)
+                if isinstance(expr, Chain) and not nullable(part):
+                    break
+            return found
+        case Times():
+            return _first(expr.body)
 
 
 def rank(expr: Expr, algebra: Algebra) -> tuple[int, int, int, str]:

@@ -187,11 +187,13 @@ class _Run:
         members, slots, trail = self.matcher.members, self.slots, self.trail
         choices: list[tuple[int, int, int, int]] = []
         base = len(trail)
+        turns, steps = self.turns, self.steps  # written back wherever this frame is left
         while True:
-            self.turns -= 1
-            if self.turns < 0:
+            turns -= 1
+            if turns < 0:
+                self.steps = steps
                 raise _OutOfTurns
-            self.steps += 1
+            steps += 1
             op = code[pc]
             match op:
                 case p.Char():
@@ -209,7 +211,7 @@ class _Run:
                         end = pos + op.maximum
                     least = pos + op.minimum
                     lazy = op.kind == "lazy"
-                    self.steps += min(least, end) - pos if lazy else 0 if op.any_char else end - pos
+                    steps += min(least, end) - pos if lazy else 0 if op.any_char else end - pos
                     if least <= end:
                         if least < end and op.kind != "possessive":
                             choices.append(
@@ -219,6 +221,7 @@ class _Run:
                         continue
                 case p.Accept():
                     if (not full or pos == length) and pos != forbidden:
+                        self.turns, self.steps = turns, steps
                         return pos
                 case p.Save():
                     trail.append((op.slot, slots[op.slot]))
@@ -251,19 +254,24 @@ class _Run:
                 case p.Look():
                     start = pos if op.ahead else pos - op.width
                     mark = len(trail)
+                    self.turns, self.steps = turns, steps
                     end = self.attempt(op.body, start, False, -1) if start >= 0 else -1
+                    turns, steps = self.turns, self.steps
                     if op.negated:
                         self.undo(mark)
                     if (end >= 0) != op.negated:
                         pc = op.next
                         continue
                 case p.Atomic():
+                    self.turns, self.steps = turns, steps
                     end = self.attempt(op.body, pos, False, -1)
+                    turns, steps = self.turns, self.steps
                     if end >= 0:
                         pos, pc = end, op.next
                         continue
                 case p.Back():
                     end = self.same_text(op, pos)
+                    steps += max(slots[2 * op.group + 1] - slots[2 * op.group], 0)
                     if end >= 0:
                         pos, pc = end, op.next
                         continue
@@ -272,10 +280,12 @@ class _Run:
                     continue
             while True:  # failed: go back to the last choice
                 if not choices:
+                    self.turns, self.steps = turns, steps
                     self.undo(base)
                     return -1
                 pc, pos, bound, mark = choices.pop()
-                self.undo(mark)
+                if len(trail) > mark:
+                    self.undo(mark)
                 if bound == -1:
                     break
                 op = code[pc]
@@ -287,7 +297,7 @@ class _Run:
                     break
                 assert isinstance(op, p.Run)
                 if op.kind == "lazy":
-                    self.steps += 1
+                    steps += 1
                     if pos < bound:
                         choices.append((pc, pos + 1, bound, mark))
                     pc = op.next
@@ -297,9 +307,9 @@ class _Run:
                 if isinstance(follow, p.Char):
                     place = self.last_place(follow.chars)[bound]
                     if place < pos:
-                        self.steps += bound - pos + 1
+                        steps += bound - pos + 1
                         continue
-                self.steps += bound - place + 1
+                steps += bound - place + 1
                 if place > pos:
                     choices.append((pc, pos, place - 1, mark))
                 pc, pos = op.next, place
@@ -341,7 +351,6 @@ class _Run:
         if end < 0:
             return -1
         size = end - start
-        self.steps += size
         text = self.text
         if op.fold == "exact":
             return pos + size if text[pos : pos + size] == text[start:end] else -1

@@ -206,3 +206,82 @@ def used_positions(nfa: Nfa, mode: str, not_empty: bool) -> set[int]:
                 waiting.append(source)
                 used.add(order[source[0]][source[1]][0])
     return used
+
+
+def shown_used(nfa: Nfa, mode: str, wanted: Iterable[int]) -> set[int]:
+    """Positions that a match reads, shown by one text for each of `wanted`: quick, and not all.
+
+    For each position a shortest way through it is spelled and run; what its winning thread reads is used.
+    """
+    back, onward = _ways(nfa)
+    start = _start(nfa, nfa.start_context, False, mode != "fullmatch")
+    used: set[int] = set()
+    for position in wanted:
+        if position in used or position not in back or position not in onward:
+            continue
+        way = [position]
+        while (before := back[way[-1]]) is not None:
+            way.append(before)
+        way.reverse()
+        while (after := onward[way[-1]]) is not None:
+            way.append(after)
+        used |= _winner(nfa, mode != "fullmatch", start, [_some_minterm(nfa, each) for each in way])
+    return used
+
+
+def _some_minterm(nfa: Nfa, position: int) -> int:
+    mask = nfa.reads[position]
+    return (mask & -mask).bit_length() - 1
+
+
+def _ways(nfa: Nfa) -> tuple[dict[int, int | None], dict[int, int | None]]:
+    """For each position the one before it on a shortest way from the start, and the next one to the end.
+
+    Obligations and contexts are not heeded: a text may turn out to lead elsewhere, and then shows less.
+    """
+    back: dict[int, int | None] = {position: None for position, _ in nfa.initial(nfa.start_context)}
+    sources: dict[int, list[int]] = {}
+    order = list(back)
+    for position in order:
+        if position == nfa.accept or not nfa.reads[position]:
+            continue
+        for after, _ in nfa.after(position, nfa.contexts[_some_minterm(nfa, position)]):
+            sources.setdefault(after, []).append(position)
+            if after not in back:
+                back[after] = position
+                order.append(after)
+    onward: dict[int, int | None] = {}
+    layer = [nfa.accept]
+    for target in layer:
+        for source in sources.get(target, ()):
+            if source not in onward:
+                onward[source] = None if target == nfa.accept else target
+                layer.append(source)
+    return back, onward
+
+
+def _winner(nfa: Nfa, cut: bool, threads: Threads, minterms: list[int]) -> set[int]:
+    """The positions that the winning thread reads on a text given by minterms; nothing where that is not sure."""
+    layers: list[tuple[Threads, tuple[int, ...]]] = [(threads, ())]
+    for minterm in minterms:
+        threads, origins = _ordered(nfa, _steps(nfa, threads, minterm, False), cut)
+        if not threads:
+            break
+        layers.append((threads, origins))
+    if not cut and len(layers) <= len(minterms):
+        return set()
+    last = len(layers) - 1
+    for index in range(last, -1, -1) if cut else (last,):
+        for place, (position, duty) in enumerate(layers[index][0]):
+            if position != nfa.accept:
+                continue
+            if duty and not (index == last == len(minterms) and nfa.obligations.holds_at_end(duty)):
+                return set()
+            used = set()
+            while index:
+                threads, origins = layers[index]
+                place = origins[place]
+                index -= 1
+                used.add(layers[index][0][place][0])
+            return used
+    return set()

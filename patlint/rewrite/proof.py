@@ -92,12 +92,13 @@ def _bits(mask: int) -> list[int]:
 
 
 def part_language(pattern: t.Pattern, part: t.Node, limits: Limits) -> Dfa:
-    """The minimal automaton of the texts that `part`, which must not look outside itself, takes as a whole."""
-    return language(Nfa(compile_tree(pattern, limits, root=part), limits), "fullmatch")
+    """The canonical automaton of the texts that `part`, which must not look outside itself, takes as a whole."""
+    return canonical(language(Nfa(compile_tree(pattern, limits, root=part), limits), "fullmatch"))
 
 
 def same_language(old: t.Pattern, new: t.Pattern, mode: Mode, limits: Limits) -> bool:
-    """Whether both take the same texts in `mode`; False where one is not said exactly, or a limit is met."""
+    """Whether both take the same texts in `mode`, neither all nor none; False where one is not said exactly, or a
+    limit is met."""
     try:
         automata = []
         for pattern in (old, new):
@@ -107,7 +108,7 @@ def same_language(old: t.Pattern, new: t.Pattern, mode: Mode, limits: Limits) ->
             automata.append(canonical(language(nfa, mode)))
     except LimitReached:
         return False
-    return automata[0] == automata[1]
+    return automata[0] == automata[1] and len(automata[0]) > 1
 
 
 def same_spans(old: t.Pattern, new: t.Pattern, scanning: bool, limits: Limits) -> bool:

@@ -28,13 +28,12 @@ from typing import Literal, TypeAlias
 from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
 from patlint.machine.algebra import BESIDE, LOOSE, TIGHT, Algebra, Chain, Expr, Times, nullable
 from patlint.machine.determinise import Mode
-from patlint.machine.dfa import Dfa, canonical
-from patlint.machine.expression import expression
+from patlint.machine.dfa import Dfa
+from patlint.machine.expression import expression, in_order
 from patlint.machine.program import compile_tree
 from patlint.machine.slow_text import Growth, ambiguity_of
 from patlint.rewrite.islands import (
     Island,
-    complexity,
     expression_of,
     has_comment,
     inner_islands,
@@ -44,9 +43,11 @@ from patlint.rewrite.islands import (
 )
 from patlint.rewrite.proof import ends, part_language, same_language, same_spans
 from patlint.rewrite.spelling import Habits, habits_of
-from patlint.rewrite.worth import worth_a_try
+from patlint.rewrite.taste import is_readable, runs_for_loops
+from patlint.rewrite.worth import is_involved, worth_a_try
 from patlint.syntax import tree as t
 from patlint.syntax.charset import CharSet
+from patlint.syntax.classes import char_set
 from patlint.syntax.parser import PatternError, parse
 
 Keeps: TypeAlias = Literal["language", "spans", "groups"]
@@ -57,7 +58,8 @@ ATTEMPTS = 6
 """Islands of one pattern of which the automaton is turned into an expression, a few milliseconds each."""
 LEAST_SAVING = 2
 LEAST_SHARE = 0.1
-"""A suggestion saves at least so many characters, and this share of the pattern's length."""
+"""A suggestion saves at least so many characters, and this share of the pattern's length; one character is enough
+where the new pattern is of lower growth (`(?:[a-z] ?)+` for `(?:[a-z]+ ?)+`)."""
 
 _BINDINGS = {"loose": LOOSE, "beside": BESIDE, "tight": TIGHT}
 _SMALL = {"states": 300, "work": 30_000, "turns": 20_000}
@@ -121,12 +123,37 @@ def suggest(
     search = _Search(parsed, mode, keeps, target, small)
     least = max(least_saving, least_share * len(parsed.text))
     for edits in search.ways():
-        if sum(edit.saved for edit in edits) < least:
+        saved = sum(edit.saved for edit in edits)
+        suspicious = any(runs_for_loops(edit.island.node, edit.node) for edit in edits)
+        if saved < 1 or (saved < least and not suspicious):
             continue
-        found = search.proven(edits)
+        found = search.proven(edits, suspicious)
         if found is not None:
             return found
     return None
+
+
+@dataclass(slots=True)
+class _Known:
+    """What is to be known about an island once."""
+
+    pattern: t.Pattern
+    node: t.Node
+    limits: Limits
+    _language: Dfa | None = None
+    _ends: Dfa | None = None
+
+    @property
+    def language(self) -> Dfa:
+        if self._language is None:
+            self._language = part_language(self.pattern, self.node, self.limits)
+        return self._language
+
+    @property
+    def ends(self) -> Dfa:
+        if self._ends is None:
+            self._ends = ends(self.pattern, self.node, self.limits)
+        return self._ends
 
 
 @dataclass(slots=True)
@@ -188,45 +215,18 @@ class _Search:
         node = island.node
         captures = sum(isinstance(each, t.Group) and each.index is not None for each in t.walk(node))
         room = len(old) - 2 * captures
-        texts: dict[str, None] = {}
-        for ordered in (True, False):
-            algebra = self.algebra(island.flags, ordered)
-            short = expression_of(node, algebra, self.parsed.is_bytes)
-            texts[algebra.text(short, _BINDINGS[island.place])] = None
-        old_language: Dfa | None = None
-        try:
-            if self.attempts < ATTEMPTS and _is_involved(node):
-                self.attempts += 1
-                old_language = part_language(self.parsed, node, self.limits)
-                made = expression(old_language, algebra, room)
-                if made is not None:
-                    texts[algebra.text(made, _BINDINGS[island.place])] = None
-        except LimitReached:
-            pass
-        depth, operators = complexity(node)
-        old_ends: Dfa | None = None
-        bare = 10**9
-        for text in sorted(texts, key=len):
+        old_parts = _Known(self.parsed, node, self.limits)
+        bare = room
+        for text, turned in sorted(self.texts(island, room, old_parts).items(), key=lambda row: len(row[0])):
             if len(text) >= room or not text:
                 continue
             read = self.read(text, island)
-            if read is None:
+            if read is None or not is_readable(node, read.root, (len(old), len(text)), turned, read.is_bytes):
                 continue
-            new_depth, new_operators = complexity(read.root)
-            if new_depth > depth or new_operators > operators:
-                continue
-            certain = False
             try:
-                if not captures:
-                    if old_ends is None:
-                        old_ends = ends(self.parsed, node, self.limits)
-                    certain = ends(read, read.root, self.limits) == old_ends
+                certain = not captures and ends(read, read.root, self.limits) == old_parts.ends
                 if not certain:
-                    if len(text) >= bare:
-                        continue
-                    if old_language is None:
-                        old_language = part_language(self.parsed, node, self.limits)
-                    if canonical(part_language(read, read.root, self.limits)) != canonical(old_language):
+                    if len(text) >= bare or part_language(read, read.root, self.limits) != old_parts.language:
                         continue
                     bare = len(text)
             except LimitReached:
@@ -234,6 +234,29 @@ class _Search:
             yield _Edit(island, text, read.root, certain, len(old) - len(text))
             if certain:
                 return
+
+    def texts(self, island: Island, room: int, old: _Known) -> dict[str, bool]:
+        """Candidates for an island; True for those that are written anew from the automaton."""
+        node, binding = island.node, _BINDINGS[island.place]
+        found: dict[str, bool] = {}
+        for ordered in (True, False):
+            algebra = self.algebra(island.flags, ordered)
+            short = expression_of(node, algebra, self.parsed.is_bytes)
+            found[algebra.text(short, binding)] = False
+        if self.attempts < ATTEMPTS and is_involved(node):
+            self.attempts += 1
+            try:
+                made = expression(old.language, algebra, room)
+            except LimitReached:
+                made = None
+            if made is not None:
+                leaves = [
+                    char_set(each, self.parsed.is_bytes)
+                    for each in t.walk(node)
+                    if isinstance(each, t.Literal | t.Dot | t.ClassEscape | t.Set)
+                ]
+                found.setdefault(algebra.text(in_order(made, leaves), binding), True)
+        return found
 
     def trimmed(self, island: Island) -> list[_Edit]:
         """As `best`, without what may be missing at the ends of the pattern."""
@@ -269,7 +292,8 @@ class _Search:
     def typed(self, text: str) -> str | bytes:
         return text.encode("latin-1") if self.parsed.is_bytes else text
 
-    def proven(self, edits: list[_Edit]) -> Proposal | None:
+    def proven(self, edits: list[_Edit], suspicious: bool) -> Proposal | None:
+        """The pattern with `edits`, if it is proven; where `suspicious`, also that it is quicker to match."""
         old = self.parsed
         text = splice(self.text, [(edit.island.span, edit.text) for edit in edits])
         try:
@@ -283,38 +307,34 @@ class _Search:
         keeps: Keeps
         if same_groups and all(edit.certain for edit in edits):
             keeps = "groups"
-        elif same_groups and self.keeps == "spans" and same_spans(old, new, self.mode == "search", self.limits):
+        elif same_groups and self.keeps == "spans" and self.same_spans(new):
             keeps = "spans"
         elif self.keeps == "language" and same_language(old, new, self.mode, self.limits):
             keeps = "language"
         else:
             return None
-        if self.is_slower(new):
+        if not text or self.is_slower(new, suspicious):
             return None
         return Proposal(self.typed(text), keeps, len(self.text) - len(text))
 
-    def is_slower(self, new: t.Pattern) -> bool:
+    def same_spans(self, new: t.Pattern) -> bool:
+        if self.mode == "fullmatch" and same_language(self.parsed, new, "fullmatch", self.limits):
+            return True  # the whole text or nothing
+        return same_spans(self.parsed, new, self.mode == "search", self.limits)
+
+    def is_slower(self, new: t.Pattern, suspicious: bool) -> bool:
+        """Whether matching may take longer; where `suspicious`, unless it is certainly quicker."""
         now = ambiguity_of(compile_tree(new, self.limits), self.mode, self.limits)
-        if now.growth is None and now.undecided is None:
+        if now.growth is None and now.undecided is None and not suspicious:
             return False
         before = ambiguity_of(compile_tree(self.parsed, self.limits), self.mode, self.limits)
-        if now.undecided is not None and before.undecided is None:
+        if now.undecided is not None and (suspicious or before.undecided is None):
             return True
-        return _degree(now.growth) > _degree(before.growth)
+        return _degree(now.growth) + suspicious > _degree(before.growth)
 
 
 def _degree(growth: Growth | None) -> int:
     return 1 if growth is None else 1_000 if growth == "exponential" else growth
-
-
-def _is_involved(node: t.Node) -> bool:
-    """Whether an automaton may know more than the laws: alternatives, or repeats in repeats."""
-    for each in t.walk(node):
-        if isinstance(each, t.Alternation):
-            return True
-        if isinstance(each, t.Repeat) and any(isinstance(below, t.Repeat) for below in t.walk(each.body)):
-            return True
-    return False
 
 
 def _trim(expr: Expr, algebra: Algebra, left: bool, right: bool) -> Expr:

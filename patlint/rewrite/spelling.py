@@ -14,6 +14,7 @@ nobody reads `[!-/]`. Needless escapes are kept.
 
 from __future__ import annotations
 
+from bisect import bisect_right
 from collections.abc import Iterable
 from dataclasses import dataclass, field, replace
 from functools import lru_cache
@@ -26,11 +27,20 @@ from patlint.syntax.render import char_node, render
 from patlint.syntax.spelling import char_text, member_text, set_text
 
 RUN = 4
-"""So many neighbouring characters of one alphabet are written as a range."""
+"""So many neighbouring characters of one alphabet are written as a range; one less for digits, twice as many
+for control characters, of which some are known by name."""
 _MOST_ITEMS = 24
+_SCATTERED = 200
+UNREADABLE = "." * 1000
+"""Stands for a set of hundreds of ranges that the author did not name; longer than any pattern looked at."""
+_ESCAPED = frozenset(b"\\]")
+_CATEGORIES = frozenset((r"\d", r"\D", r"\s", r"\S", r"\w", r"\W"))
+_LATE = frozenset(b"-^[")
 _ASCII_PRINTABLE = CharSet.of_range(32, 126)
+_DIGITS = CharSet.of_range(48, 57)
+_CONTROLS = CharSet.of_range(0, 31)
 _ALPHABETS = (
-    CharSet.of_range(48, 57),
+    _DIGITS,
     CharSet.of_range(65, 90),
     CharSet.of_range(97, 122),
     ALL_CODES - _ASCII_PRINTABLE,
@@ -71,13 +81,17 @@ class Habits:
         if chars.size() == 1 and not flags & t.IGNORECASE:
             return char_text(chars.bounds[0], self.is_bytes, self.verbose)
         rest, used = chars, []
-        usable = [piece for piece in self.pieces.get(flags, {}).values() if piece.chars <= chars]
-        for piece in sorted(usable, key=lambda piece: (-piece.chars.size(), piece.place)):
-            if not piece.chars.isdisjoint(rest):
-                used.append(piece)
+        for piece in sorted(self.pieces.get(flags, {}).values(), key=lambda piece: (-piece.chars.size(), piece.place)):
+            if not _lies_in(piece.chars, chars) or any(_lies_in(piece.chars, other.chars) for other in used):
+                continue
+            if len(piece.chars.bounds) > 2:
+                if piece.chars.isdisjoint(rest):
+                    continue
                 rest = rest - piece.chars
+            used.append(piece)
+        rest = rest - _union(piece.chars for piece in used if len(piece.chars.bounds) == 2)
         if len(rest.bounds) > _MOST_ITEMS or len(used) > _MOST_ITEMS:
-            return None
+            return None if len(chars.bounds) < _SCATTERED else UNREADABLE
         used += [_Piece(part, _item_text(part, self.is_bytes), 10**6) for part in _parts(rest, 2)]
         used.sort(key=lambda piece: piece.place)
         text = _assembled(_rolled(used, self.is_bytes), False)
@@ -184,7 +198,7 @@ def reduced(node: t.Set, texts: tuple[str, ...], is_bytes: bool) -> str | None:
             plain = CharSet((item.code, item.code + 1))
         pieces.append(_Piece(chars[index] if plain is None else plain, texts[index], index))
     text = _assembled(_rolled(pieces, is_bytes), node.negated)
-    if len(text) >= len(_assembled(texts, node.negated)) or _reads_as(text, node.flags, is_bytes) != whole:
+    if len(kept) == len(texts) and len(text) >= len(_assembled(texts, node.negated)) or _reads_as(text, node.flags, is_bytes) != whole:
         return None
     return text
 
@@ -192,12 +206,13 @@ def reduced(node: t.Set, texts: tuple[str, ...], is_bytes: bool) -> str | None:
 def _rolled(pieces: list[_Piece], is_bytes: bool) -> list[str]:
     """The texts of pieces, those that lie side by side within one alphabet put together as ranges."""
     out: dict[int, str] = {index: piece.text for index, piece in enumerate(pieces)}
-    for alphabet in _ALPHABETS:
+    for alphabet in (*_ALPHABETS[:3], _CONTROLS):
         mine = [index for index, piece in enumerate(pieces) if piece.chars <= alphabet and len(piece.chars.bounds) == 2]
         joined = _union([pieces[index].chars for index in mine])
         for low, high in joined.ranges():
             inside = [index for index in mine if low <= pieces[index].chars.bounds[0] <= high]
-            if len(inside) < 2 or high - low + 1 < RUN:
+            least = RUN - 1 if alphabet is _DIGITS else 2 * RUN if alphabet is _CONTROLS else RUN
+            if len(inside) < 2 or high - low + 1 < least:
                 continue
             ends = [
                 next((pieces[i].text for i in inside if pieces[i].chars == CharSet((code, code + 1))), None)
@@ -205,7 +220,7 @@ def _rolled(pieces: list[_Piece], is_bytes: bool) -> list[str]:
                 for code in (low, high)
             ]
             text = f"{ends[0]}-{ends[1]}"
-            if len(text) < sum(len(out[index]) for index in inside):
+            if len(text) <= sum(len(out[index]) for index in inside):
                 for index in inside:
                     del out[index]
                 out[inside[0]] = text
@@ -224,6 +239,8 @@ def _assembled(texts: Iterable[str], negated: bool) -> str:
         items.insert(0, "]")
     if items == ["^"] and not negated:
         return r"\^"
+    if len(items) == 1 and items[0] in _CATEGORIES:
+        return items[0].swapcase() if negated else items[0]
     return ("[^" if negated else "[") + "".join(items) + "]"
 
 
@@ -248,8 +265,16 @@ def _item_text(chars: CharSet, is_bytes: bool) -> str:
     return f"{member_text(low, is_bytes)}-{member_text(high, is_bytes)}"
 
 
+def _lies_in(part: CharSet, whole: CharSet) -> bool:
+    """`part <= whole`, quick where `part` is one range or plainly sticks out."""
+    place = bisect_right(whole.bounds, part.bounds[0])
+    if not place & 1 or part.bounds[-1] > whole.bounds[-1]:
+        return False
+    return part.bounds[-1] <= whole.bounds[place] or (len(part.bounds) > 2 and part <= whole)
+
+
 def _inside(code: int, is_bytes: bool) -> str:
-    return "\\" + chr(code) if code in b"\\]" else member_text(code, is_bytes)
+    return "\\" + chr(code) if code in _ESCAPED else member_text(code, is_bytes)
 
 
 def _union(sets: Iterable[CharSet]) -> CharSet:
@@ -290,6 +315,6 @@ def _plain(chars: CharSet, is_bytes: bool) -> str | None:
         for part in _parts(wanted, 2):
             low, high = part.bounds[0], part.bounds[-1] - 1
             items.append(t.Literal((0, 0), low) if low == high else t.Range((0, 0), low, high))
-        items.sort(key=lambda item: isinstance(item, t.Literal) and item.code in b"-^[")
+        items.sort(key=lambda item: isinstance(item, t.Literal) and item.code in _LATE)
         texts.append(set_text(t.Set((0, 0), tuple(items), negated), is_bytes))
     return min(texts, key=len, default=None)

@@ -63,6 +63,8 @@ def _repeats_itself(items: tuple[t.Node, ...]) -> bool:
                 return True
         a = before.body if isinstance(before, t.Repeat) else before
         b = item.body if isinstance(item, t.Repeat) else item
+        if _ends_like(before, item) or _ends_like(item, before):
+            return True
         if type(a) is type(b) and same(a, b):
             run += 1
             if a is not before or b is not item or isinstance(a, t.Set) or run >= _LONG_RUN:
@@ -70,3 +72,34 @@ def _repeats_itself(items: tuple[t.Node, ...]) -> bool:
         else:
             run = 1
     return False
+
+
+def _ends_like(loop: t.Node, other: t.Node) -> bool:
+    """Whether a repeat of several items is next to an item like one of its own."""
+    if isinstance(loop, t.Repeat) and isinstance(loop.body, t.Group) and isinstance(loop.body.body, t.Sequence):
+        items = loop.body.body.items
+        return any(type(item) is type(other) and same(item, other) for item in (items[0], items[-1]))
+    return False
+
+
+def is_involved(node: t.Node) -> bool:
+    """Whether an automaton may know more than the laws: alternatives other than words, or repeats in repeats."""
+    for each in t.walk(node):
+        match each:
+            case t.Alternation():
+                words = sum(_is_word(branch) for branch in each.branches)
+                if words < len(each.branches) or words < 4:
+                    return True
+            case t.Repeat() if any(isinstance(below, t.Repeat) for below in t.walk(each.body)):
+                return True
+            case _:
+                pass
+    return False
+
+
+def _is_word(branch: t.Node) -> bool:
+    return (
+        isinstance(branch, t.Sequence)
+        and len(branch.items) > 2
+        and all(isinstance(item, t.Literal) for item in branch.items)
+    )

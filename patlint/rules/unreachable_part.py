@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from bisect import bisect_left
 from collections.abc import Iterator
 from dataclasses import dataclass
 
+from patlint.machine.priority import shown_used
 from patlint.rules.equal_siblings import equal_branches
 from patlint.rules.finding import Example, Finding, Rule
 from patlint.rules.never import is_spelled_never
@@ -27,14 +29,17 @@ def check(subject: Subject) -> Iterator[Finding]:
     parts = list(_parts(pattern.root))
     if not parts or subject.written.inexact:
         return
+    shown = _shown(subject, parts)
+    parts = [part for part in parts if not _is_read(part, shown)]
+    if not parts:
+        return
     used = _used_spans(subject)
-    taken = [b.branches[later].span for b, _, later in equal_branches(pattern, subject.limits)]
-    reported: list[t.Span] = taken
+    reported = [b.branches[later].span for b, _, later in equal_branches(pattern, subject.limits)]
     for part in parts:
         start, end = part.node.span
-        if any(low >= start and high <= end for low, high in used):
+        if _is_read(part, used) or is_spelled_never(part.node):
             continue
-        if is_spelled_never(part.node) or any(low <= start and end <= high for low, high in reported):
+        if any(low <= start and end <= high for low, high in reported):
             continue
         reported.append(part.node.span)
         yield Finding(
@@ -48,14 +53,19 @@ def check(subject: Subject) -> Iterator[Finding]:
         )
 
 
+def _is_read(part: _Part, used: set[t.Span]) -> bool:
+    start, end = part.node.span
+    return any(low >= start and high <= end for low, high in used)
+
+
 def _way_out(part: _Part) -> str:
     if part.kind == "branch":
         return "delete it, or move it before the branch that always wins (the longer alternative first)"
     return "delete it, or say what has to follow it"
 
 
-def _used_spans(subject: Subject) -> set[t.Span]:
-    """The spans of the characters that some winning match reads, over all uses that may be."""
+def _asked(subject: Subject) -> set[tuple[Mode, bool]]:
+    """The modes in which the pattern may be used, and whether it goes on after an empty match."""
     site = subject.site
     asked: set[tuple[Mode, bool]] = set()
     for use in site.uses:
@@ -63,9 +73,35 @@ def _used_spans(subject: Subject) -> set[t.Span]:
         asked.add((mode, use.function in SCANNING))
     if not site.uses_seen or not asked:
         asked |= {("search", True), ("fullmatch", False)}
+    return asked
+
+
+def _spans_of(subject: Subject, positions: set[int]) -> set[t.Span]:
     nfa = subject.written
-    spans = nfa.program.spans
-    return {spans[nfa.pc_of[q]] for mode, not_empty in asked for q in subject.used(mode, not_empty)}
+    return {nfa.program.spans[nfa.pc_of[position]] for position in positions}
+
+
+def _shown(subject: Subject, parts: list[_Part]) -> set[t.Span]:
+    """The spans of some characters that matches read: a quick look that mostly settles the question."""
+    nfa = subject.written
+    places = sorted((nfa.program.spans[pc], position) for pc, position in nfa.first.items())
+    starts = [span for span, _ in places]
+    wanted = []
+    for part in parts:
+        # The first position of the part; a longer span that begins there is a repeat around it.
+        index = bisect_left(starts, part.node.span[0], key=lambda span: span[0])
+        if index < len(places):
+            wanted.append(places[index][1])
+    # What match takes from a text's start search takes too.
+    mode = "fullmatch" if all(mode == "fullmatch" for mode, _ in _asked(subject)) else "match"
+    return _spans_of(subject, shown_used(nfa, mode, wanted))
+
+
+def _used_spans(subject: Subject) -> set[t.Span]:
+    """The spans of the characters that some winning match reads, over all uses that may be."""
+    return _spans_of(
+        subject, {q for mode, not_empty in _asked(subject) for q in subject.used(mode, not_empty)}
+    )
 
 
 def _parts(node: t.Node, optional: bool = False) -> Iterator[_Part]:

@@ -90,78 +90,77 @@ class _Context:
 
 
 def _text(node: Node, context: _Context, binding: int) -> str:
+    """`node` where it is held together at least as tightly as `binding` asks.
+
+    One call a node and no other in between: 100 nested groups must fit into Python's stack.
+    """
+    own = _TIGHT
     match node:
         case Literal() | Dot() | ClassEscape() | Set() | Anchor() | BackReference():
             opening = _flag_change(node, context)
+            text = _leaf(node, context, binding)
             if opening:
-                return f"{opening}{_leaf(node, context, binding)})"
-            if binding == _TIGHT and isinstance(node, Anchor):
-                return f"(?:{_leaf(node, context, binding)})"
-            return _leaf(node, context, binding)
+                text = f"{opening}{text})"
+            elif isinstance(node, Anchor):
+                own = _BESIDE
         case Sequence():
-            if binding == _TIGHT:
-                return f"(?:{_sequence(node, context)})"
-            return _sequence(node, context)
+            pieces = []
+            for item in _flat(node):
+                opening = _flag_change(item, context)
+                inner = _leaf(item, context, _BESIDE) if opening else _text(item, context, _BESIDE)
+                pieces.append((opening, inner, item))
+            text, own = _side_by_side(pieces), _BESIDE
         case Alternation():
-            text = "|".join(
-                _text(branch, context, _LOOSE if isinstance(branch, Alternation) else _BESIDE)
-                for branch in node.branches
-            )
-            return text if binding == _LOOSE else f"(?:{text})"
+            text, own = "", _LOOSE
+            for number, branch in enumerate(node.branches):
+                text += "|" if number else ""
+                text += _text(branch, context, _LOOSE if isinstance(branch, Alternation) else _BESIDE)
         case Repeat():
             text = _text(node.body, context, _TIGHT) + _counts(node.minimum, node.maximum)
-            text += _REPEAT_MARKS[node.kind]
-            return text if binding != _TIGHT else f"(?:{text})"
-        case _:
-            return _bracketed(node, context)
-
-
-def _bracketed(node: Group | Look | Atomic | Conditional, context: _Context) -> str:
-    match node:
-        case Group():
-            return _group(node, context)
-        case Look():
-            opening = "(?" + ("" if node.ahead else "<") + ("!" if node.negated else "=")
-            return f"{opening}{_text(node.body, context, _LOOSE)})"
-        case Atomic():
-            return f"(?>{_text(node.body, context, _LOOSE)})"
+            text, own = text + _REPEAT_MARKS[node.kind], _BESIDE
         case Conditional():
             text = f"(?({node.name or node.index}){_text(node.yes, context, _BESIDE)}"
             if node.no is not None:
                 text += "|" + _text(node.no, context, _BESIDE)
-            return text + ")"
+            text += ")"
+        case Group() | Look() | Atomic():
+            text = f"{_group_opening(node)}{_text(node.body, _inside(node, context), _LOOSE)})"
+    return f"(?:{text})" if binding > own else text
 
 
-def _group(node: Group, context: _Context) -> str:
-    if node.index is not None:
-        opening = "(" if node.name is None else f"(?P<{node.name}>"
-        return f"{opening}{_text(node.body, context, _LOOSE)})"
-    # What is verbose around stays so, what is not stays plain: blanks are written out in either case.
-    add, remove = node.add_flags & ~VERBOSE, node.del_flags & ~VERBOSE
-    flags = context.flags & ~_TYPE_FLAGS if add & _TYPE_FLAGS else context.flags
-    inner = replace(context, flags=(flags | add) & ~remove)
-    return f"{_opening(add, remove)}{_text(node.body, inner, _LOOSE)})"
+def _group_opening(node: Group | Look | Atomic) -> str:
+    match node:
+        case Group(index=None):
+            return _opening(node.add_flags & ~VERBOSE, node.del_flags & ~VERBOSE)
+        case Group():
+            return "(" if node.name is None else f"(?P<{node.name}>"
+        case Look():
+            return "(?" + ("" if node.ahead else "<") + ("!" if node.negated else "=")
+        case Atomic():
+            return "(?>"
 
 
-def _sequence(node: Sequence, context: _Context) -> str:
-    """The items side by side; neighbours that ask for the same change of flags share a group."""
-    runs: list[tuple[str, list[Node]]] = []
-    for item in _flat(node):
-        opening = _flag_change(item, context)
-        if opening and runs and runs[-1][0] == opening:
-            runs[-1][1].append(item)
-        else:
-            runs.append((opening, [item]))
-    text = ""
-    for opening, items in reversed(runs):
+def _inside(node: Group | Look | Atomic, context: _Context) -> _Context:
+    """The context in a group. VERBOSE stays as it is around: blanks are written accordingly."""
+    if not isinstance(node, Group) or not (node.add_flags or node.del_flags):
+        return context
+    flags = context.flags & ~_TYPE_FLAGS if node.add_flags & _TYPE_FLAGS else context.flags
+    flags = (flags | node.add_flags & ~VERBOSE) & ~(node.del_flags & ~VERBOSE)
+    return replace(context, flags=flags)
+
+
+def _side_by_side(pieces: list[tuple[str, str, Node]]) -> str:
+    """The pieces (change of flags, text, node) in a row; neighbours with the same change share a group."""
+    text = run = group = ""
+    for opening, piece, node in reversed(pieces):
+        if opening != group:
+            text = f"{group}{run}){text}" if group else text
+            run, group = "", opening
         if opening:
-            inside = ""
-            for item in reversed(items):
-                inside = _join(_leaf(item, context, _BESIDE), item, inside)
-            text = f"{opening}{inside}){text}"
+            run = _join(piece, node, run)
         else:
-            text = _join(_text(items[0], context, _BESIDE), items[0], text)
-    return text
+            text = _join(piece, node, text)
+    return f"{group}{run}){text}" if group else text
 
 
 def _flat(node: Sequence) -> list[Node]:

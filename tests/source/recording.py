@@ -1,4 +1,7 @@
-"""A stand-in for `re` that records what it is given, for running our own snippets (linted code is never run)."""
+"""A stand-in for `re` that records what it is given, for running our own snippets.
+
+Linted code is never run, by the tests neither.
+"""
 
 from __future__ import annotations
 
@@ -54,7 +57,11 @@ def run(source: str, names: dict[str, Any] | None = None) -> list[tuple[str, str
     def importing(name: str, *args: Any, **kwargs: Any) -> Any:
         return fake if name == "re" else real_import(name, *args, **kwargs)
 
-    scope = {"__name__": "snippet", "__builtins__": {**vars(builtins), "__import__": importing}, **(names or {})}
+    scope = {
+        "__name__": "snippet",
+        "__builtins__": {**vars(builtins), "__import__": importing},
+        **(names or {}),
+    }
     try:
         exec(compile(source, "snippet", "exec"), scope)
     except Exception as error:

@@ -1,7 +1,7 @@
 """Random programs: whatever is resolved is what `re` is given, on every way through the program.
 
-A program has one call of `re` among assignments, branches, loops, tries and nested functions that fight over two
-names. It is run with many outcomes of its conditions; where the call was resolved, every run must have given
+A program has one call of `re` among assignments, branches, loops, tries and nested functions that fight over
+two names. It is run with many outcomes of its conditions; where the call was resolved, every run must have given
 `re` that text and those flags.
 """
 
@@ -106,7 +106,7 @@ class Maker:
         return [*lines, f"{indent}{inside}()"]
 
     def program(self) -> str:
-        lines = ["import re", "F = re.M"]
+        lines = ["import re", "F = re.M", *self.choices.choice([["p = 's'", "q = 't'"], ["q = 'u'"], []])]
         lines += self.block("", 0, "g")
         if self.choices.random() < 0.7:
             lines += ["def main():", *self.block(" ", 1, "h"), "main()"]

@@ -13,7 +13,20 @@ from patlint.syntax.casefold import all_characters, folding
 from patlint.syntax.charset import ALL_BYTES, ALL_CODES, CharSet
 from patlint.syntax.classes import category, char_set, is_locale_dependent, universe, word_set
 from patlint.syntax.parser import parse
-from patlint.syntax.tree import ASCII, DOTALL, IGNORECASE, LOCALE, ClassEscape, Dot, Literal, Node, Range, Set
+from patlint.syntax.tree import (
+    ASCII,
+    DOTALL,
+    IGNORECASE,
+    LOCALE,
+    ClassEscape,
+    Dot,
+    Group,
+    Literal,
+    Node,
+    Range,
+    Set,
+    walk,
+)
 
 I, A, S = IGNORECASE, ASCII, DOTALL  # noqa: E741 the letters of re
 BYTES = bytes(range(256))
@@ -60,6 +73,22 @@ def test_written_leaves_over_all_code_points() -> None:
     assert wrong == []
     assert len(CASES) > 250
     assert ours(".", S) == found_by_re(".", S) == ALL_CODES
+
+
+# One leaf each, inside scopes that change its flags.
+SCOPED = [
+    ("(?i:k)", 0), ("(?i:(?-i:k))", 0), ("(?-i:k)", I), ("(?-i:(?i:k))", I), ("(?i)(?-i:k)", 0),
+    ("(?a:k)", I), ("(?ai:k)", 0), ("(?u:k)", A | I), ("(?i:(?a:(?u:k)))", 0), (r"(?a:\w)", 0),
+    (r"(?u:\w)", A), (r"(?a:(?u:\d))", 0), (r"(?a:(?i:[^\W\d]))", 0), ("(?s:.)", 0), ("(?-s:.)", S),
+    ("(?s:(?-s:(?i:.)))", 0), ("(?i-s:[^k])", S), (b"(?i:k)", 0), (b"(?a:\\w)", 0), (b"(?-i:k)", I),
+]  # fmt: skip
+
+
+@pytest.mark.parametrize(("text", "flags"), SCOPED)
+def test_leaves_carry_the_flags_of_their_scope(text: str | bytes, flags: int) -> None:
+    leaf = next(node for node in walk(parse(text, flags).root) if not isinstance(node, Group))
+    assert isinstance(leaf, (Literal, Dot, ClassEscape, Set))
+    assert char_set(leaf, isinstance(text, bytes)) == found_by_re(text, flags)
 
 
 def random_set(rng: random.Random, cased: list[int], top: int) -> str:

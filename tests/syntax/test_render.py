@@ -34,6 +34,7 @@ from patlint.syntax.tree import (
     Sequence,
     Set,
 )
+from patlint.syntax.width import width
 
 from .awkward import awkward
 from .generate import patterns
@@ -192,6 +193,15 @@ def test_an_unnamed_reference_above_99_cannot_be_written() -> None:
     with pytest.raises(ValueError, match="group 100 cannot be written without a name"):
         render(BackReference((0, 0), 100), 0, False)
     assert render(BackReference((0, 0), 100, "n"), 0, False) == "(?P=n)"
+
+
+def test_deep_trees_fit_into_the_stack() -> None:
+    """The deepest tree that the parser gives: each level a group, a repeat, a sequence, an alternation."""
+    text = "x"
+    for _ in range(100):
+        text = f"(?:a|b{text}c)*"
+    assert render_pattern(parse(text)) == text
+    assert width(parse(text).root) == (0, None)
 
 
 LEAF_FLAGS = st.sampled_from([0, IGNORECASE, DOTALL | MULTILINE, ASCII, ASCII | IGNORECASE]).map(

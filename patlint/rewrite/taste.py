@@ -1,0 +1,156 @@
+r"""What a maintainer would rather not read, although it is shorter.
+
+- deeper nesting or more operators than before;
+- lists of words and symbols taken apart: `foo|ba[rz]` for `foo|bar|baz`, `===?|!=` for `===|==|!=`. A word may get
+  an optional last letter (`https?`), and lists that become one plain sequence may go where much is saved
+  (`L1|L2|L3|R1|R2|R3` is `[LR][1-3]`);
+- sets that mix what the author kept apart: `[a-z=]=` for `[a-z]=|==`;
+- a pattern turned inside out for the sake of a few characters.
+
+Examples are from reading what is proposed for the patterns of the standard library; common practice, no source.
+`runs_for_loops` finds what may be slower to match: a run over one set of characters that became a part of a loop,
+such as `(?:[^"\\]|\\.)*` for `[^"\\]*(?:\\.[^"\\]*)*`, which people write on purpose.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import replace
+from typing import TypeAlias
+
+from patlint.machine.program import one_character
+from patlint.rewrite.islands import complexity
+from patlint.syntax import tree as t
+from patlint.syntax.charset import EMPTY, CharSet
+from patlint.syntax.classes import char_set
+
+Word: TypeAlias = tuple[int, ...]
+
+LIST = 3
+"""So many words make a list."""
+LIST_SAVING = 0.4
+"""A list that becomes one sequence must be shortened by this share."""
+TURNED_SAVING = 0.2
+"""So must a part that is written anew from its automaton."""
+SMALL_SET = 10
+"""New sets up to so many characters are fine."""
+
+
+def is_readable(old: t.Node, new: t.Node, lengths: tuple[int, int], turned: bool, is_bytes: bool) -> bool:
+    """Whether `new` may be shown in place of `old`; `lengths` are those of the texts, `turned` says that it was
+    written anew from the automaton."""
+    old_depth, old_operators = complexity(old)
+    depth, operators = complexity(new)
+    if depth > old_depth or operators > old_operators:
+        return False
+    before, after = lengths
+    if turned and (operators >= old_operators or before - after < TURNED_SAVING * before):
+        return False
+    return _keeps_sets(old, new, is_bytes) and _keeps_words(old, new, before - after)
+
+
+def runs_for_loops(old: t.Node, new: t.Node) -> bool:
+    """Whether runs of one set of characters were given up although a loop of more is left."""
+    old_runs, _ = _loops(old)
+    new_runs, new_loops = _loops(new)
+    return new_runs < old_runs and new_loops > 0
+
+
+def _loops(node: t.Node) -> tuple[int, int]:
+    runs = loops = 0
+    for each in t.walk(node):
+        if isinstance(each, t.Repeat) and each.maximum is None:
+            if one_character(each.body) is not None:
+                runs += 1
+            else:
+                loops += 1
+    return runs, loops
+
+
+def _leaf_sets(node: t.Node, is_bytes: bool) -> set[CharSet]:
+    return {
+        char_set(each, is_bytes)
+        for each in t.walk(node)
+        if isinstance(each, t.Literal | t.Dot | t.ClassEscape | t.Set)
+    }
+
+
+def _keeps_sets(old: t.Node, new: t.Node, is_bytes: bool) -> bool:
+    fresh = {chars for chars in _leaf_sets(new, is_bytes) if chars.size() > SMALL_SET} - _leaf_sets(old, is_bytes)
+    if not fresh:
+        return True
+    for each in t.walk(old):
+        if isinstance(each, t.Alternation):
+            whole = EMPTY
+            for branch in each.branches:
+                body = branch.body if isinstance(branch, t.Repeat) else branch
+                leaf = one_character(body)
+                if leaf is not None:
+                    whole = whole | char_set(leaf, is_bytes)
+            fresh.discard(whole)
+    return not fresh
+
+
+def _keeps_words(old: t.Node, new: t.Node, saved: int) -> bool:
+    words = {word for row in _lists(old) for word in row}
+    if not words:
+        return True
+    lost = words - {word for row in _lists(new, 2) for word in row} - _single_words(new)
+    if not lost:
+        return True
+    if _operators(new) <= _operators(old):
+        return True  # something went, nothing came
+    if any(map(_is_spoken, lost)):
+        return False
+    return saved >= LIST_SAVING * sum(len(word) + 1 for word in lost)
+
+
+def _lists(node: t.Node, least: int = LIST) -> Iterator[list[Word]]:
+    """The words of each alternation that has enough of them."""
+    for each in t.walk(node):
+        if isinstance(each, t.Alternation):
+            words = [word for branch in each.branches for word in _words(branch)]
+            if len(words) >= least:
+                yield words
+
+
+def _single_words(node: t.Node) -> set[Word]:
+    return set(_words(node))
+
+
+def _words(node: t.Node) -> list[Word]:
+    """The word that a branch is; two where its last letter is optional."""
+    while isinstance(node, t.Group) and node.index is None:
+        node = node.body
+    items = node.items if isinstance(node, t.Sequence) else ()
+    codes: list[int] = []
+    for item in items:
+        if isinstance(item, t.Literal):
+            codes.append(item.code)
+        elif item is items[-1] and len(codes) >= 3 and isinstance(item, t.Repeat):
+            if (item.minimum, item.maximum) == (0, 1) and isinstance(item.body, t.Literal):
+                return [tuple(codes), (*codes, item.body.code)]
+            return []
+        else:
+            return []
+    return [tuple(codes)] if len(codes) > 1 else []
+
+
+def _is_spoken(word: Word) -> bool:
+    """Whether a word has three letters or more, or is made of symbols."""
+    text = "".join(map(chr, word))
+    return sum(map(str.isalpha, text)) >= 3 or not any(map(str.isalnum, text))
+
+
+def _operators(node: t.Node) -> set[object]:
+    """Sets, and repeats of what is one character, up to their place."""
+    found: set[object] = set()
+    for each in t.walk(node):
+        match each:
+            case t.Set():
+                found.add((each.negated, tuple(replace(item, span=(0, 0)) for item in each.items)))
+            case t.Repeat():
+                found.add((each.minimum, each.maximum, each.kind))
+            case _:
+                pass
+    return found

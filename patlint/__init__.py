@@ -9,16 +9,24 @@ from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
     from patlint.language import Language as Language
+    from patlint.language import ambiguity as ambiguity
+    from patlint.language import relate as relate
+    from patlint.rewrite import shorten as shorten
     from patlint.run import lint_source as lint_source
+    from patlint.source import find_patterns as find_patterns
 
 __version__ = "0.1.0"
 
 _HOMES = {
     "Language": "patlint.language",
+    "ambiguity": "patlint.language",
+    "find_patterns": "patlint.source",
     "lint_source": "patlint.run",
+    "relate": "patlint.language",
+    "shorten": "patlint.rewrite",
 }
 
-__all__ = ["Language", "__version__", "lint_source"]
+__all__ = ["Language", "__version__", "ambiguity", "find_patterns", "lint_source", "relate", "shorten"]
 
 
 def __getattr__(name: str) -> object:

@@ -28,6 +28,7 @@ from patlint.machine.determinise import Mode, language
 from patlint.machine.dfa import Dfa, canonical
 from patlint.machine.nfa import Nfa
 from patlint.machine.program import compile_tree
+from patlint.machine.slow_text import Ambiguity, Manner, ambiguity_of
 from patlint.syntax.parser import parse
 from patlint.syntax.tree import Pattern
 
@@ -258,3 +259,23 @@ def relate(
     Raises PatternError, LimitReached, and Undecided where one is only a superset.
     """
     return Language(first, flags, mode, target).relation(Language(second, flags, mode, target))
+
+
+def ambiguity(
+    pattern: str | bytes,
+    flags: int = 0,
+    mode: Manner = "search",
+    target: Target | None = None,
+    limits: Limits = DEFAULT_LIMITS,
+) -> Ambiguity:
+    """How matching time can grow with the text: `growth` is None, "exponential" or a degree (2: square).
+
+    `mode` may also be "scan", for findall, finditer, split and sub. None says that no growth beyond linear was
+    confirmed; it is no proof where `undecided` names a limit. Raises PatternError, and LimitReached("nesting")
+    or ("instructions").
+
+    >>> found = ambiguity("(a+)+$", mode="match")
+    >>> found.growth, found.slow.pump, found.slow.text(3)
+    ('exponential', 'a', 'aaab')
+    """
+    return ambiguity_of(compile_tree(parse(pattern, flags, target, limits), limits), mode, limits)

@@ -36,7 +36,9 @@ class Parser(argparse.ArgumentParser):
 
     def read(self, given: Sequence[str]) -> argparse.Namespace:
         """The arguments; an option that does not exist is told with the nearest one."""
-        known, rest = self.parse_known_intermixed_args(list(given))
+        # Options may stand among the paths; after `--` nothing is one.
+        parse = self.parse_known_args if "--" in given else self.parse_known_intermixed_args
+        known, rest = parse(list(given))
         for word in rest:
             if word.startswith("-") and word != "-":
                 name = word.partition("=")[0]

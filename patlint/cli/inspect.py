@@ -16,8 +16,6 @@ if TYPE_CHECKING:
 LABEL: Final = 10
 EXACT_DIGITS: Final = 16
 """Numbers with more digits are shown as a power of ten."""
-JSON_DIGITS: Final = 4_000
-"""Longer numbers are null in JSON, for Python reads no integers of more than 4,300 digits."""
 
 
 def parser() -> Parser:
@@ -195,9 +193,6 @@ def _object(portrait: Portrait) -> dict[str, Any]:
     from patlint.report.json import as_text, finding_object, witness_object
 
     refused = portrait.refused
-    total = portrait.total
-    if total is not None and total >= 10**JSON_DIGITS:
-        total = None
     return {
         "pattern": as_text(portrait.pattern),
         "bytes": isinstance(portrait.pattern, bytes),
@@ -215,7 +210,7 @@ def _object(portrait: Portrait) -> dict[str, Any]:
         "empty": portrait.empty,
         "universal": portrait.universal,
         "endless": portrait.endless,
-        "total": total,
+        "total": portrait.total,
         "shortest": None if portrait.shortest is None else as_text(portrait.shortest),
         "words": None if portrait.words is None else [as_text(each) for each in portrait.words],
         "counts": None if portrait.counts is None else list(portrait.counts),

@@ -181,6 +181,8 @@ class Algebra:
 
     def _merged(self, a: Expr, b: Expr) -> Expr | None:
         """`ab` as one repeat, where both repeat the same."""
+        if isinstance(a, Chars) and isinstance(b, Chars):
+            return self.times(a, 2, 2) if a == b else None
         for first, second in ((_as_times(a), _as_times(b)), (_once(a), _as_times(b)), (_as_times(a), _once(b))):
             if first.body != second.body or isinstance(first.body, Opaque):
                 continue
@@ -191,6 +193,38 @@ class Algebra:
             high = None if first.high is None or second.high is None else first.high + second.high
             return self.times(first.body, first.low + second.low, high, lazy)
         return None
+
+    def counted(self, expr: Expr) -> Expr:
+        """`expr` with runs of several items written once and counted, where that is shorter: `(?:a.){3}`."""
+        match expr:
+            case Chain():
+                items = [self.counted(item) for item in expr.items]
+                for width in range(2, min(6, len(items) // 2) + 1):
+                    items = self._counted_runs(items, width)
+                return self.chain(items)
+            case Choice():
+                return Choice(tuple(map(self.counted, expr.branches)))
+            case Times():
+                return Times(self.counted(expr.body), expr.low, expr.high, expr.lazy)
+            case _:
+                return expr
+
+    def _counted_runs(self, items: list[Expr], width: int) -> list[Expr]:
+        out: list[Expr] = []
+        place = 0
+        while place < len(items):
+            block = items[place : place + width]
+            count = 1
+            while items[place + count * width : place + (count + 1) * width] == block:
+                count += 1
+            run = Times(Chain(tuple(block)), count, count)
+            if count > 1 and self.size(run) < self.size(Chain(tuple(block))) * count:
+                out.append(run)
+                place += width * count
+            else:
+                out.append(items[place])
+                place += 1
+        return out
 
     def star(self, body: Expr) -> Expr:
         return self.times(body, 0, None)

@@ -78,7 +78,7 @@ def ambiguity_of(program: p.Program, manner: Manner, limits: Limits) -> Ambiguit
     """The worst confirmed growth of `program` (as the engine runs it) used in this manner."""
     undecided = None
     tried = confirmed = 0
-    budget = [limits.turns * 4]
+    budget = [limits.turns * 2]
     best: SlowText | None = None
     try:
         nfa = Nfa(program, limits)

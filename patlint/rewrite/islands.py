@@ -15,11 +15,13 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, replace
 from typing import Literal, TypeAlias
 
-from patlint.machine.algebra import Algebra, Expr
+from patlint.machine.algebra import Algebra, Expr, Opaque
 from patlint.syntax import tree as t
 from patlint.syntax.classes import char_set
 
 Place: TypeAlias = Literal["loose", "beside", "tight"]
+Through: TypeAlias = Literal["plain", "anchors", "groups"]
+"""What an island may hold beside what looks at nothing: nothing else, anchors, or unnamed groups."""
 _TYPE_FLAGS = t.ASCII | t.LOCALE | t.UNICODE
 _LEAF_FLAGS = t.IGNORECASE | t.LOCALE | t.MULTILINE | t.DOTALL | t.UNICODE | t.ASCII
 _BLANKS = " \t\n\r\v\f#"
@@ -48,31 +50,33 @@ class Island:
         return t.Alternation(self.span, self.nodes) if self.branches else t.Sequence(self.span, self.nodes)
 
 
-def is_pure(node: t.Node, is_bytes: bool, groups_too: bool = False) -> bool:
-    """Whether `node` neither looks outside itself nor sets groups; with `groups_too` unnamed groups are let pass."""
+def is_pure(node: t.Node, is_bytes: bool, through: Through = "plain") -> bool:
+    """Whether `node` neither looks outside itself nor sets groups, but for what is let `through`."""
     match node:
         case t.Literal() | t.Dot() | t.ClassEscape():
             return True
         case t.Set():
             return bool(char_set(node, is_bytes))
         case t.Sequence() | t.Alternation():
-            return all(is_pure(part, is_bytes, groups_too) for part in t.children(node))
+            return all(is_pure(part, is_bytes, through) for part in t.children(node))
         case t.Group():
             plain = node.index is None and not (node.add_flags | node.del_flags) & (t.VERBOSE | t.LOCALE)
-            return (plain or (groups_too and node.name is None)) and is_pure(node.body, is_bytes, groups_too)
+            return (plain or (through == "groups" and node.name is None)) and is_pure(node.body, is_bytes, through)
         case t.Repeat():
-            return node.kind != "possessive" and node.maximum != 0 and is_pure(node.body, is_bytes, groups_too)
+            return node.kind != "possessive" and node.maximum != 0 and is_pure(node.body, is_bytes, through)
+        case t.Anchor():
+            return through == "anchors"
         case _:
             return False
 
 
-def islands(pattern: t.Pattern, groups_too: bool = False) -> Iterator[Island]:
+def islands(pattern: t.Pattern, through: Through = "plain") -> Iterator[Island]:
     """The largest islands of `pattern`, from left to right."""
     flags = pattern.flags & _LEAF_FLAGS
-    yield from _below(pattern.root, "loose", flags, True, True, pattern.is_bytes, groups_too)
+    yield from _below(pattern.root, "loose", flags, True, True, pattern.is_bytes, through)
 
 
-def inner_islands(island: Island, is_bytes: bool, groups_too: bool = False) -> Iterator[Island]:
+def inner_islands(island: Island, is_bytes: bool, through: Through = "plain") -> Iterator[Island]:
     """The islands directly below the nodes of `island`."""
     count = len(island.nodes)
     for index, node in enumerate(island.nodes):
@@ -82,30 +86,30 @@ def inner_islands(island: Island, is_bytes: bool, groups_too: bool = False) -> I
             place: Place = "loose" if island.branches else "beside"
             yield Island((node,), False, place, island.flags, first, last)
         else:
-            yield from _inside(node, island.place, island.flags, first, last, is_bytes, groups_too)
+            yield from _inside(node, island.place, island.flags, first, last, is_bytes, through)
 
 
 def _below(
-    node: t.Node, place: Place, flags: int, first: bool, last: bool, is_bytes: bool, groups_too: bool
+    node: t.Node, place: Place, flags: int, first: bool, last: bool, is_bytes: bool, through: Through
 ) -> Iterator[Island]:
-    if is_pure(node, is_bytes, groups_too):
+    if is_pure(node, is_bytes, through):
         yield Island((node,), False, place, flags, first, last)
     else:
-        yield from _inside(node, place, flags, first, last, is_bytes, groups_too)
+        yield from _inside(node, place, flags, first, last, is_bytes, through)
 
 
 def _inside(
-    node: t.Node, place: Place, flags: int, first: bool, last: bool, is_bytes: bool, groups_too: bool
+    node: t.Node, place: Place, flags: int, first: bool, last: bool, is_bytes: bool, through: Through
 ) -> Iterator[Island]:
     match node:
         case t.Sequence() | t.Alternation():
             parts = t.children(node)
             branches = isinstance(node, t.Alternation)
-            whole_is_pure = is_pure(node, is_bytes, groups_too)
+            whole_is_pure = is_pure(node, is_bytes, through)
             run: list[t.Node] = []
             begin = 0
             for index, part in enumerate((*parts, None)):
-                if part is not None and not whole_is_pure and is_pure(part, is_bytes, groups_too):
+                if part is not None and not whole_is_pure and is_pure(part, is_bytes, through):
                     begin = begin if run else index
                     run.append(part)
                     continue
@@ -118,18 +122,18 @@ def _inside(
                     at_start = first and (branches or index == 0)
                     at_end = last and (branches or index == len(parts) - 1)
                     inner: Place = "loose" if branches else "beside"
-                    yield from _below(part, inner, flags, at_start, at_end, is_bytes, groups_too)
+                    yield from _below(part, inner, flags, at_start, at_end, is_bytes, through)
         case t.Group():
             if (node.add_flags | node.del_flags) & (t.VERBOSE | t.LOCALE):
                 return
             if node.add_flags & _TYPE_FLAGS:
                 flags &= ~_TYPE_FLAGS
             flags = (flags | node.add_flags) & ~node.del_flags & _LEAF_FLAGS
-            yield from _below(node.body, "loose", flags, first, last, is_bytes, groups_too)
+            yield from _below(node.body, "loose", flags, first, last, is_bytes, through)
         case t.Repeat():
-            yield from _below(node.body, "tight", flags, False, False, is_bytes, groups_too)
+            yield from _below(node.body, "tight", flags, False, False, is_bytes, through)
         case t.Look() | t.Atomic():
-            yield from _below(node.body, "loose", flags, False, False, is_bytes, groups_too)
+            yield from _below(node.body, "loose", flags, False, False, is_bytes, through)
         case _:
             return
 
@@ -140,7 +144,7 @@ def has_comment(text: str, verbose: bool) -> bool:
 
 
 def expression_of(node: t.Node, algebra: Algebra, is_bytes: bool) -> Expr:
-    """The expression of a pure node; capturing groups count as plain ones."""
+    """The expression of a pure node; capturing groups count as plain ones, anchors as texts that stay."""
     match node:
         case t.Literal() | t.Dot() | t.ClassEscape() | t.Set():
             return algebra.chars(char_set(node, is_bytes))
@@ -153,6 +157,8 @@ def expression_of(node: t.Node, algebra: Algebra, is_bytes: bool) -> Expr:
         case t.Repeat():
             body = expression_of(node.body, algebra, is_bytes)
             return algebra.times(body, node.minimum, node.maximum, node.kind == "lazy")
+        case t.Anchor():
+            return Opaque(node.kind)
     raise ValueError(f"{type(node).__name__} belongs to no island")
 
 

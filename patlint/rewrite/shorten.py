@@ -34,6 +34,7 @@ from patlint.machine.program import compile_tree
 from patlint.machine.slow_text import Growth, ambiguity_of
 from patlint.rewrite.islands import (
     Island,
+    Through,
     expression_of,
     has_comment,
     inner_islands,
@@ -44,7 +45,7 @@ from patlint.rewrite.islands import (
 from patlint.rewrite.proof import ends, part_language, same_language, same_spans
 from patlint.rewrite.spelling import Habits, habits_of
 from patlint.rewrite.taste import is_readable, runs_for_loops
-from patlint.rewrite.worth import is_involved, worth_a_try
+from patlint.rewrite.worth import is_involved, is_word, worth_a_try
 from patlint.syntax import tree as t
 from patlint.syntax.charset import CharSet
 from patlint.syntax.classes import char_set
@@ -177,26 +178,38 @@ class _Search:
         """Sets of edits, the boldest first."""
         if self.keeps == "language":
             if self.parsed.groups and not self.refers():
-                yield [edit for island in islands(self.parsed, True) for edit in self.best(island, False)]
+                yield self.everywhere("groups")
             if self.mode != "fullmatch":
                 yield [edit for island in islands(self.parsed) for edit in self.trimmed(island)]
         if self.keeps != "groups":
-            yield [edit for island in islands(self.parsed) for edit in self.best(island, False)]
-        yield [edit for island in islands(self.parsed) for edit in self.best(island, True)]
+            if self.has_bound_branches():
+                yield self.everywhere("anchors")
+            yield self.everywhere("plain")
+        yield self.everywhere("plain", certain=True)
+
+    def everywhere(self, through: Through, certain: bool = False) -> list[_Edit]:
+        return [edit for island in islands(self.parsed, through) for edit in self.best(island, through, certain)]
+
+    def has_bound_branches(self) -> bool:
+        """Whether an alternation holds anchors."""
+        return any(
+            isinstance(node, t.Alternation) and any(isinstance(below, t.Anchor) for below in t.walk(node))
+            for node in t.walk(self.parsed.root)
+        )
 
     def refers(self) -> bool:
         return any(isinstance(node, t.BackReference | t.Conditional) for node in t.walk(self.parsed.root))
 
-    def best(self, island: Island, certain: bool) -> list[_Edit]:
+    def best(self, island: Island, through: Through = "plain", certain: bool = False) -> list[_Edit]:
         """The edits in an island that save most; `certain` asks for proof that needs no look at the rest."""
         whole = [edit for edit in self.attempt(island) if edit.certain or not certain]
         whole = [max(whole, key=lambda edit: (edit.saved, edit.certain))] if whole else []
-        if not t.children(island.node):
+        if not t.children(island.node) or is_word(island.node):
             return whole
         parts = [
             edit
-            for inner in inner_islands(island, self.parsed.is_bytes, True)
-            for edit in self.best(inner, certain)
+            for inner in inner_islands(island, self.parsed.is_bytes, through)
+            for edit in self.best(inner, through, certain)
         ]
         return whole if sum(edit.saved for edit in whole) > sum(edit.saved for edit in parts) else parts
 
@@ -210,19 +223,23 @@ class _Search:
     def edits(self, island: Island) -> Iterator[_Edit]:
         start, end = island.span
         old = self.text[start:end]
-        if len(old) < 2 or has_comment(old, self.habits.verbose):
-            return
         node = island.node
+        if len(old) < 2 or is_word(node) or has_comment(old, self.habits.verbose):
+            return
+        anchored = any(isinstance(each, t.Anchor) for each in t.walk(node))
         captures = sum(isinstance(each, t.Group) and each.index is not None for each in t.walk(node))
         room = len(old) - 2 * captures
         old_parts = _Known(self.parsed, node, self.limits)
         bare = room
-        for text, turned in sorted(self.texts(island, room, old_parts).items(), key=lambda row: len(row[0])):
+        for text, turned in sorted(self.texts(island, 0 if anchored else room, old_parts).items(), key=lambda row: len(row[0])):
             if len(text) >= room or not text:
                 continue
             read = self.read(text, island)
             if read is None or not is_readable(node, read.root, (len(old), len(text)), turned, read.is_bytes):
                 continue
+            if anchored:
+                yield _Edit(island, text, read.root, False, len(old) - len(text))  # only the whole can tell
+                return
             try:
                 certain = not captures and ends(read, read.root, self.limits) == old_parts.ends
                 if not certain:
@@ -243,7 +260,9 @@ class _Search:
             algebra = self.algebra(island.flags, ordered)
             short = expression_of(node, algebra, self.parsed.is_bytes)
             found[algebra.text(short, binding)] = False
-        if self.attempts < ATTEMPTS and is_involved(node):
+            counted = algebra.counted(short)
+            found.setdefault(algebra.text(counted, binding), False)
+        if room and self.attempts < ATTEMPTS and is_involved(node):
             self.attempts += 1
             try:
                 made = expression(old.language, algebra, room)
@@ -263,16 +282,16 @@ class _Search:
         left = island.first and self.mode == "search"
         start, end = island.span
         if not (left or island.last) or has_comment(self.text[start:end], self.habits.verbose):
-            return self.best(island, False)
+            return self.best(island)
         algebra = self.algebra(island.flags, False)
         expr = expression_of(island.node, algebra, self.parsed.is_bytes)
         cut = _trim(expr, algebra, left, island.last)
         if cut == expr:
-            return self.best(island, False)
+            return self.best(island)
         text = algebra.text(cut, _BINDINGS[island.place])
         read = self.read(text, island)
         if read is None or (not text and island.branches):
-            return self.best(island, False)
+            return self.best(island)
         return [_Edit(island, text, read.root, False, end - start - len(text))]
 
     def algebra(self, flags: int, ordered: bool) -> Algebra:

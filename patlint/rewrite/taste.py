@@ -1,6 +1,6 @@
 r"""What a maintainer would rather not read, although it is shorter.
 
-- deeper nesting or more operators than before;
+- more operators than before, or deeper nesting unless much is saved;
 - lists of words and symbols taken apart: `foo|ba[rz]` for `foo|bar|baz`, `===?|!=` for `===|==|!=`. A word may get
   an optional last letter (`https?`), and lists that become one plain sequence may go where much is saved
   (`L1|L2|L3|R1|R2|R3` is `[LR][1-3]`);
@@ -32,6 +32,9 @@ LIST_SAVING = 0.4
 """A list that becomes one sequence must be shortened by this share."""
 TURNED_SAVING = 0.2
 """So must a part that is written anew from its automaton."""
+DEEPER_SAVING = 0.2
+DEEPER_OPERATORS = 0.67
+"""One level of nesting more is fine where this much is saved, as by `(?:[0-9a-f]{2}:){5}[0-9a-f]{2}`."""
 SMALL_SET = 10
 """New sets up to so many characters are fine."""
 
@@ -41,9 +44,10 @@ def is_readable(old: t.Node, new: t.Node, lengths: tuple[int, int], turned: bool
     written anew from the automaton."""
     old_depth, old_operators = complexity(old)
     depth, operators = complexity(new)
-    if depth > old_depth or operators > old_operators:
-        return False
     before, after = lengths
+    plainer = operators <= DEEPER_OPERATORS * old_operators and before - after >= DEEPER_SAVING * before
+    if operators > old_operators or depth > old_depth + plainer:
+        return False
     if turned and (operators >= old_operators or before - after < TURNED_SAVING * before):
         return False
     return _keeps_sets(old, new, is_bytes) and _keeps_words(old, new, before - after)

@@ -12,6 +12,7 @@ from patlint.syntax import tree as t
 
 _LONG_RUN = 5
 """So many equal characters in a row are shorter as a repeat."""
+_MANY_WORDS = 4
 
 
 def worth_a_try(pattern: t.Pattern, truth: bool = False) -> bool:
@@ -39,7 +40,7 @@ def _is_suspect(node: t.Node, text: str, is_bytes: bool) -> bool:
             written = text[node.body.span[1] : node.span[1]].rstrip("?+")
             return _inner_repeat(node.body) or (node.minimum, node.maximum) in _OWN_MARKS and written[-1:] == "}"
         case t.Sequence():
-            return _repeats_itself(node.items)
+            return _repeats_itself(node.items) or _has_runs(node.items, text)
         case _:
             return False
 
@@ -74,21 +75,35 @@ def _repeats_itself(items: tuple[t.Node, ...]) -> bool:
     return False
 
 
+def _has_runs(items: tuple[t.Node, ...], text: str) -> bool:
+    """Whether several items stand there three times in a row, and are long enough to be counted."""
+    if len(items) < 5:
+        return False
+    texts = [text[item.span[0] : item.span[1]] for item in items]
+    for width in range(2, min(6, len(items) // 2) + 1):
+        run = 0
+        for place in range(len(items) - width):
+            run = run + 1 if texts[place] == texts[place + width] else 0
+            if run >= width and sum(map(len, texts[place + 1 - width : place + 1])) * (run // width) > 6:
+                return True
+    return False
+
+
 def _ends_like(loop: t.Node, other: t.Node) -> bool:
     """Whether a repeat of several items is next to an item like one of its own."""
     if isinstance(loop, t.Repeat) and isinstance(loop.body, t.Group) and isinstance(loop.body.body, t.Sequence):
-        items = loop.body.body.items
+        items = loop.body.body.items or (loop,)
         return any(type(item) is type(other) and same(item, other) for item in (items[0], items[-1]))
     return False
 
 
 def is_involved(node: t.Node) -> bool:
-    """Whether an automaton may know more than the laws: alternatives other than words, or repeats in repeats."""
+    """Whether an automaton may know more than the laws: alternatives other than long lists of words, or repeats in
+    repeats."""
     for each in t.walk(node):
         match each:
             case t.Alternation():
-                words = sum(_is_word(branch) for branch in each.branches)
-                if words < len(each.branches) or words < 4:
+                if len(each.branches) <= _MANY_WORDS or not all(map(is_word, each.branches)):
                     return True
             case t.Repeat() if any(isinstance(below, t.Repeat) for below in t.walk(each.body)):
                 return True
@@ -97,9 +112,11 @@ def is_involved(node: t.Node) -> bool:
     return False
 
 
-def _is_word(branch: t.Node) -> bool:
-    return (
-        isinstance(branch, t.Sequence)
-        and len(branch.items) > 2
-        and all(isinstance(item, t.Literal) for item in branch.items)
-    )
+def is_word(node: t.Node) -> bool:
+    """Whether `node` is a row of characters in which nothing can be saved."""
+    items = node.items if isinstance(node, t.Sequence) else (node,)
+    return all(isinstance(item, t.Literal) for item in items) and not _has_long_run(items)
+
+
+def _has_long_run(items: tuple[t.Node, ...]) -> bool:
+    return len(items) >= _LONG_RUN and _repeats_itself(items)

@@ -49,6 +49,8 @@ def _judge(subject: Subject, offset: int, spelled: str) -> Finding | None:
         return None
     if same(subject.pattern.root, other.root):
         return None
+    if spelled == "\\b" and not _beside_word(pattern, offset):
+        return None
     mode = subject.uses[0].mode if subject.uses else "search"
     try:
         text = text_between(subject, other, mode)
@@ -68,6 +70,16 @@ def _judge(subject: Subject, offset: int, spelled: str) -> Finding | None:
         evidence="on this text the outcome would be another with the escape left for re" if text is not None else "",
         way_out="write the pattern as a raw literal, or double the backslash",
     )
+
+
+def _beside_word(pattern: str | bytes, offset: int) -> bool:
+    """Whether a word boundary would make sense here: beside a letter, a digit, a group or a class escape.
+
+    Overstriking is undone with a real backspace, as in `sub(".\\b", "", text)` and `"_\\b"`.
+    """
+    text = pattern.decode("latin-1") if isinstance(pattern, bytes) else pattern
+    before, after = text[:offset][-1:], text[offset + 1 :][:1]
+    return before.isalnum() or after.isalnum() or after in ("(", "[", "\\") or before in (")", "]", "+", "*")
 
 
 def _name(code: int) -> str:

@@ -13,7 +13,7 @@ from typing import Any
 from patlint.source import reasons
 from patlint.source.literals import Run
 from patlint.source.reasons import Opaque
-from patlint.source.spelled import Spelled, check_length, cut, join, merged
+from patlint.source.spelled import Listed, Spelled, check_length, cut, join, merged
 
 _PERCENT = re.compile(r"%(?:\(([^()]*)\))?([#0 +-]*)(\d*)((?:\.\d*)?)[hlL]?(.)", re.DOTALL)
 _FIELD = re.compile(r"\{\{|\}\}|\{([A-Za-z0-9_]*)((?:![rsa])?)((?::[^{}]*)?)\}|[{}]")
@@ -38,6 +38,8 @@ def percent(template: Spelled, arguments: object) -> Spelled:
     """`template % arguments`; `arguments` is a text, an int, or a tuple or dict of them."""
     is_bytes = isinstance(template.value, bytes)
     text = template.value.decode("latin-1") if isinstance(template.value, bytes) else template.value
+    if isinstance(arguments, Listed):
+        raise Opaque(reasons.FORMATTED)
     queue = list(arguments) if isinstance(arguments, tuple) else [arguments]
     parts: list[Spelled] = []
     at = 0
@@ -73,7 +75,7 @@ def _percent_one(field: Spelled, conversion: str, value: object, is_bytes: bool)
     if simple and isinstance(value, Spelled) and isinstance(value.value, bytes) == is_bytes:
         return value
     given: str | bytes = conversion.encode("latin-1") if is_bytes else conversion
-    return _computed(field, lambda: given % (plain(value),))
+    return _computed(field, lambda: given % (_formattable(value),))
 
 
 def braces(template: Spelled, positional: Sequence[object], named: Mapping[str, object]) -> Spelled:
@@ -107,8 +109,10 @@ def braces(template: Spelled, positional: Sequence[object], named: Mapping[str, 
             parts.append(value)
         else:
             bare = "{" + conversion + spec + "}"
-            parts.append(_computed(field, lambda bare=bare, value=value: bare.format(plain(value))))
+            parts.append(_computed(field, lambda bare=bare, value=value: bare.format(_formattable(value))))
     parts.append(cut(template, at, len(text)))
+    for given in (*positional, *named.values()):
+        _formattable(given)
     arguments = [plain(value) for value in positional]
     keywords = {name: plain(value) for name, value in named.items()}
     return _checked(join(parts), lambda: text.format(*arguments, **keywords))
@@ -124,17 +128,26 @@ def replacement_field(place_of: Spelled, value: object, conversion: int, spec: s
     bare = "{" + ("" if conversion == -1 else "!" + chr(conversion)) + "}"
     if spec:
         bare = bare[:-1] + ":" + spec + "}"
-    return _computed(place_of, lambda: bare.format(plain(value)))
+    return _computed(place_of, lambda: bare.format(_formattable(value)))
 
 
 def _is_str(value: object) -> bool:
     return isinstance(value, Spelled) and isinstance(value.value, str)
 
 
+def _formattable(value: object) -> Any:
+    """A text or number as Python has it; how a sequence is written is not followed."""
+    if isinstance(value, (Spelled, int)):
+        return plain(value)
+    raise Opaque(reasons.FORMATTED)
+
+
 def _computed(field: Spelled, compute: Any) -> Spelled:
     """A text that Python makes, standing at the place of `field`."""
     try:
         value = compute()
+    except Opaque:
+        raise
     except Exception:  # a format of any value may raise anything
         raise Opaque(reasons.FORMATTED) from None
     check_length(len(value))

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass
+from typing import Any
 
 from patlint.source import reasons
 from patlint.source.literals import Run
@@ -32,6 +33,12 @@ class Spelled:
             pieces.append(Piece(start, run.whole, run.raw, run.places, run.spellings))
             start += len(run.text)
         return tuple(pieces)
+
+
+class Listed(tuple[Any, ...]):
+    """The items of a list, or of something that gives them one by one: no operand of `%`, no text."""
+
+    __slots__ = ()
 
 
 def without_spelling(value: str | bytes, place: Place) -> Spelled:

@@ -27,7 +27,7 @@ from dataclasses import dataclass
 from patlint.machine import program as p
 from patlint.machine.alphabet import minterms, universe
 from patlint.syntax.casefold import folding
-from patlint.syntax.charset import NEWLINE, CharSet
+from patlint.syntax.charset import NEWLINE
 
 NEVER = 1 << 62
 
@@ -63,10 +63,14 @@ class Matcher:
         distinct = tuple(dict.fromkeys([*sets, NEWLINE]))
         self.alphabet, masks = minterms(distinct, universe(program.is_bytes))
         width = len(self.alphabet)
-        self.members: dict[CharSet, tuple[bool, ...]] = {
-            chars: tuple(bool(mask >> i & 1) for i in range(width))
-            for chars, mask in zip(distinct, masks, strict=True)
-        }
+        index = {chars: number for number, chars in enumerate(distinct)}
+        self.members = [tuple(bool(mask >> i & 1) for i in range(width)) for mask in masks]
+        """For each distinct set whether a minterm belongs to it."""
+        self.set_of = [
+            index[i.chars] if isinstance(i, p.Char | p.Run) else index[i.words] if isinstance(i, p.Assert) else 0
+            for i in program.code
+        ]
+        """The number of the set that an instruction asks for; 0 where it asks for none."""
         self.class_of: dict[int, int] = {}
 
     def classes(self, text: str | bytes) -> list[int]:
@@ -122,8 +126,8 @@ class _Run:
         self.first_loop = 2 * matcher.program.groups + 2
         self.slots = [-1] * (self.first_loop + matcher.program.loops)
         self.trail: list[tuple[int, int]] = []
-        self.run_ends: dict[CharSet, list[int]] = {}
-        self.last_places: dict[CharSet, list[int]] = {}
+        self.run_ends: list[list[int] | None] = [None] * len(matcher.members)
+        self.last_places: list[list[int] | None] = [None] * len(matcher.members)
 
     def at(self, pos: int, full: bool = False, not_empty: bool = False) -> Outcome:
         self.slots = [-1] * len(self.slots)
@@ -146,32 +150,28 @@ class _Run:
             outcome = self.at(pos)
         return outcome
 
-    def run_end(self, chars: CharSet) -> list[int]:
-        """For each place the first one from there whose character is not in `chars`."""
-        ends = self.run_ends.get(chars)
-        if ends is None:
-            inside = self.matcher.members[chars]
-            ends = [self.length] * (self.length + 1)
-            end = self.length
-            for place in range(self.length - 1, -1, -1):
-                if not inside[self.classes[place]]:
-                    end = place
-                ends[place] = end
-            self.run_ends[chars] = ends
+    def run_end(self, chars: int) -> list[int]:
+        """For each place the first one from there whose character is not in the set of that number."""
+        inside = self.matcher.members[chars]
+        ends = [self.length] * (self.length + 1)
+        end = self.length
+        for place in range(self.length - 1, -1, -1):
+            if not inside[self.classes[place]]:
+                end = place
+            ends[place] = end
+        self.run_ends[chars] = ends
         return ends
 
-    def last_place(self, chars: CharSet) -> list[int]:
-        """For each place the last one up to there whose character is in `chars`, else -1."""
-        places = self.last_places.get(chars)
-        if places is None:
-            inside = self.matcher.members[chars]
-            places, last = [], -1
-            for place, cls in enumerate(self.classes):
-                if inside[cls]:
-                    last = place
-                places.append(last)
+    def last_place(self, chars: int) -> list[int]:
+        """For each place the last one up to there whose character is in the set of that number, else -1."""
+        inside = self.matcher.members[chars]
+        places, last = [], -1
+        for place, cls in enumerate(self.classes):
+            if inside[cls]:
+                last = place
             places.append(last)
-            self.last_places[chars] = places
+        places.append(last)
+        self.last_places[chars] = places
         return places
 
     def attempt(self, pc: int, pos: int, full: bool, forbidden: int) -> int:
@@ -184,7 +184,8 @@ class _Run:
         at pc; else pc is a Run that may also end anywhere from place to bound.
         """
         code, classes, length = self.code, self.classes, self.length
-        members, slots, trail = self.matcher.members, self.slots, self.trail
+        members, set_of = self.matcher.members, self.matcher.set_of
+        run_ends, last_places, slots, trail = self.run_ends, self.last_places, self.slots, self.trail
         choices: list[tuple[int, int, int, int]] = []
         base = len(trail)
         turns, steps = self.turns, self.steps  # written back wherever this frame is left
@@ -197,7 +198,7 @@ class _Run:
             op = code[pc]
             match op:
                 case p.Char():
-                    if pos < length and members[op.chars][classes[pos]]:
+                    if pos < length and members[set_of[pc]][classes[pos]]:
                         pos += 1
                         pc = op.next
                         continue
@@ -206,7 +207,8 @@ class _Run:
                     pc = op.first
                     continue
                 case p.Run():
-                    end = self.run_end(op.chars)[pos]
+                    chars = set_of[pc]
+                    end = (run_ends[chars] or self.run_end(chars))[pos]
                     if op.maximum is not None and end - pos > op.maximum:
                         end = pos + op.maximum
                     least = pos + op.minimum
@@ -248,7 +250,7 @@ class _Run:
                         pc = op.body
                     continue
                 case p.Assert():
-                    if self.holds(op, pos):
+                    if self.holds(pc, op, pos):
                         pc = op.next
                         continue
                 case p.Look():
@@ -305,7 +307,8 @@ class _Run:
                 place = bound
                 follow = code[op.next]
                 if isinstance(follow, p.Char):
-                    place = self.last_place(follow.chars)[bound]
+                    chars = set_of[op.next]
+                    place = (last_places[chars] or self.last_place(chars))[bound]
                     if place < pos:
                         steps += bound - pos + 1
                         continue
@@ -321,7 +324,7 @@ class _Run:
             slot, old = trail.pop()
             slots[slot] = old
 
-    def holds(self, op: p.Assert, pos: int) -> bool:
+    def holds(self, pc: int, op: p.Assert, pos: int) -> bool:
         length = self.length
         match op.kind:
             case "start":
@@ -337,7 +340,7 @@ class _Run:
             case _:
                 if not length:
                     return False  # both \b and \B fail on the empty text
-                inside = self.matcher.members[op.words]
+                inside = self.matcher.members[self.matcher.set_of[pc]]
                 before = pos > 0 and inside[self.classes[pos - 1]]
                 after = pos < length and inside[self.classes[pos]]
                 return (before != after) == (op.kind == "word")

@@ -14,7 +14,7 @@ from patlint.source.engine import FUNCTIONS, bind_arguments
 from patlint.source.formatting import braces, plain
 from patlint.source.reasons import Opaque
 from patlint.source.scopes import Scope
-from patlint.source.spelled import Spelled, join, without_spelling
+from patlint.source.spelled import Listed, Spelled, join, without_spelling
 
 if TYPE_CHECKING:
     from patlint.source.constants import Constants, Environment, Value
@@ -43,7 +43,7 @@ def evaluate_call(
     if denoted is not None:
         raise Opaque(reasons.CALL)
     match node.func:
-        case ast.Name(id=name) if scope.find(name) is None:
+        case ast.Name(id=name) if scope.find(name) is None and not constants.index.star_lines:
             return _builtin(constants, name, node, scope, env, depth)
         case ast.Attribute():
             return _method(constants, node.func, node, scope, env, depth)
@@ -73,7 +73,7 @@ def _builtin(
         items = constants.evaluate(node.args[1], scope, env, depth + 1)
         if not isinstance(items, tuple):
             raise Opaque(reasons.CALL)
-        return tuple(_escape(item) for item in items)
+        return Listed(_escape(item) for item in items)
     if len(node.args) != 1:
         raise Opaque(reasons.CALL)
     if name in _TO_SEQUENCE:
@@ -82,7 +82,7 @@ def _builtin(
             raise Opaque(reasons.CALL)
         if name == "sorted":
             return _sorted(node, items)
-        return tuple(reversed(items)) if name == "reversed" else items
+        return tuple(items) if name == "tuple" else Listed(reversed(items) if name == "reversed" else items)
     if node.keywords:
         raise Opaque(reasons.CALL)
     value = constants.evaluate(node.args[0], scope, env, depth + 1)
@@ -111,7 +111,7 @@ def _sorted(node: ast.Call, items: tuple[Value, ...]) -> tuple[Value, ...]:
     options.setdefault("key", lambda item: item.value)
     if len(texts) != len(items) or len({type(item.value) for item in texts}) > 1:
         raise Opaque(reasons.CALL)
-    return tuple(sorted(texts, **options))
+    return Listed(sorted(texts, **options))
 
 
 def _method(
@@ -135,6 +135,8 @@ def _method(
         str(keyword.arg): constants.evaluate(keyword.value, scope, env, depth + 1)
         for keyword in node.keywords
     }
+    if name in ("lower", "upper") and not base.value.isascii():
+        raise Opaque(reasons.CALL)  # differs with the version of Unicode
     if name == "format":
         return braces(base, positional, named)
     if name == "join":

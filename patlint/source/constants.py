@@ -25,7 +25,7 @@ from patlint.source.names import Names
 from patlint.source.places import Text
 from patlint.source.reasons import Opaque
 from patlint.source.scopes import Scope
-from patlint.source.spelled import Spelled, cut, join, repeat, without_spelling
+from patlint.source.spelled import Listed, Spelled, cut, join, repeat, without_spelling
 
 Value: TypeAlias = Spelled | int | tuple["Value", ...] | dict[str, "Value"]
 Environment: TypeAlias = dict[str, Value]
@@ -34,6 +34,8 @@ DEEPEST = 80
 """Expressions inside expressions (chains of `+` count as one), names followed through names included."""
 MOST_STEPS = 50_000
 """Expressions evaluated for one file's pattern. A table of 5,000 words takes 5,000."""
+LONGEST_FIELDS = 20_000
+"""Characters of an f-string that is spelled out; what is written in its fields may be nested deeply."""
 _STRING_MODULE = frozenset(
     {"ascii_letters", "ascii_lowercase", "ascii_uppercase", "digits", "hexdigits", "octdigits", "punctuation"}
     | {"whitespace", "printable"}
@@ -94,8 +96,10 @@ class Constants:
                 raise Opaque(reasons.EXPRESSION)
             case ast.NamedExpr():
                 return self.evaluate(node.value, scope, env, depth + 1)
-            case ast.Tuple() | ast.List():
+            case ast.Tuple():
                 return self._items(node.elts, scope, env, depth)
+            case ast.List():
+                return Listed(self._items(node.elts, scope, env, depth))
             case ast.Dict():
                 return self._dict(node, scope, env, depth)
             case ast.ListComp() | ast.GeneratorExp():
@@ -138,8 +142,8 @@ class Constants:
                 if known is None:
                     known = self._literals[node] = self._literal(node, node.value)
                 return known
-            case int():
-                return int(node.value)
+            case int() if not isinstance(node.value, bool):
+                return node.value
             case _:
                 raise Opaque(reasons.NOT_TEXT)
 
@@ -171,7 +175,8 @@ class Constants:
                 at_field = without_spelling("x", place)
                 said += [replacement_field(at_field, value, part.conversion, spec), ""]
         try:
-            parts = read_literal(self.text.segment(node), self.text.start(node))
+            segment = self.text.segment(node)
+            parts = read_literal(segment, self.text.start(node)) if len(segment) < LONGEST_FIELDS else []
         except Unspelled:
             parts = []
         runs: list[list[Run]] = [[]]
@@ -250,6 +255,8 @@ class Constants:
             if bindings and all(b.module == "string" and b.member is None for b in bindings):
                 return without_spelling(str(getattr(string, node.attr)), self.text.place(node))
         definitions = self.names.class_attribute(node, scope)
+        if any(isinstance(expression, _MUTABLE) for expression, _ in definitions):
+            raise Opaque(reasons.CHANGED)
         values = [self._remembered(expression, inner, depth) for expression, inner in definitions]
         if all(_same(values[0], value) for value in values):
             return values[0]
@@ -275,8 +282,9 @@ class Constants:
         if len(numbers) == len(values):
             return sum(numbers)
         sequences = [value for value in values if isinstance(value, tuple)]
-        if len(sequences) == len(values):
-            return tuple(item for sequence in sequences for item in sequence)
+        kinds = {type(value) for value in sequences}
+        if len(sequences) == len(values) and len(kinds) == 1:
+            return kinds.pop()(item for sequence in sequences for item in sequence)
         raise Opaque(reasons.MIXED)
 
     def _product(self, node: ast.BinOp, scope: Scope, env: Environment | None, depth: int) -> Value:
@@ -299,7 +307,11 @@ class Constants:
                     self._bound(part, scope, env, depth) for part in (node.slice.lower, node.slice.upper)
                 ]
                 start, end, _ = slice(*bounds).indices(len(base.value if isinstance(base, Spelled) else base))
-                return cut(base, start, max(start, end)) if isinstance(base, Spelled) else base[start:end]
+                return (
+                    cut(base, start, max(start, end))
+                    if isinstance(base, Spelled)
+                    else type(base)(base[start:end])
+                )
             case (_, ast.Slice()):
                 raise Opaque(reasons.ELEMENT)
         key = self.evaluate(node.slice, scope, env, depth + 1)
@@ -356,7 +368,9 @@ class Constants:
         if not isinstance(items, tuple):
             raise Opaque(reasons.EXPRESSION)
         name = generator.target.id
-        return tuple(self.evaluate(node.elt, scope, {**(env or {}), name: item}, depth + 1) for item in items)
+        return Listed(
+            self.evaluate(node.elt, scope, {**(env or {}), name: item}, depth + 1) for item in items
+        )
 
 
 def _arithmetic(op: ast.operator, left: Value, right: Value) -> Value:
@@ -385,7 +399,7 @@ def _same(left: Value, right: Value) -> bool:
         case (Spelled(), Spelled()):
             return type(left.value) is type(right.value) and left.value == right.value
         case (tuple(), tuple()):
-            return len(left) == len(right) and all(map(_same, left, right))
+            return type(left) is type(right) and len(left) == len(right) and all(map(_same, left, right))
         case (int(), int()):
             return left == right
         case (dict(), dict()):

@@ -28,6 +28,10 @@ from patlint.source.usage import Uses
 _MAKERS = frozenset({"match", "fullmatch", "search", "findall", "finditer", "split", "sub", "subn"})
 
 
+_DEEPEST = 10
+"""Classes derived from each other in one file."""
+
+
 @dataclass(slots=True)
 class Followed:
     """What was found: the uses, whether they are all, the first name that the pattern is bound to."""
@@ -160,7 +164,7 @@ class Follower:
         if (owner, name, method) in found.visited:
             return
         found.visited.add((owner, name, method))
-        if owner.kind == "module" and not self._is_private(name):
+        if owner.kind == "module" and (self.index.dynamic or not self._is_private(name)):
             found.seen = False
         others = [binding for binding in owner.bindings.get(name, ()) if not binding.is_none]
         reached = None
@@ -188,10 +192,19 @@ class Follower:
         for read, scope in owner.reads(name):
             self._flow(read, scope, method, found)
         for use in self.index.reads.get(name, ()):
-            if self.names.class_of(use.node.value, use.scope) is owner:
+            if self._is_of(self.names.class_of(use.node.value, use.scope), owner, name, 0):
                 self._flow(use.node, use.scope, method, found)
             elif self._may_be(use.node, use.scope, owner, name):
                 found.seen = False
+
+    def _is_of(self, other: Scope | None, owner: Scope, name: str, depth: int) -> bool:
+        """Whether the class `other` has its `name` from `owner`, which it is or is derived from."""
+        if other is None or other is owner:
+            return other is owner
+        if depth > _DEEPEST or name in other.bindings or not isinstance(other.node, ast.ClassDef):
+            return False
+        bases = [self.names.class_of(base, other.parent or other) for base in other.node.bases]
+        return any(self._is_of(base, owner, name, depth + 1) for base in bases)
 
     def _may_be(self, node: ast.Attribute, scope: Scope, owner: Scope, name: str) -> bool:
         """Whether an attribute may be that of `owner`: not where it is another class's own."""

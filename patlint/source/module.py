@@ -209,6 +209,8 @@ class _Reader:
         except Opaque as opaque:
             if opaque.reason != reasons.COMPILED:
                 self._refuse(call, function, opaque.reason)
+            elif not isinstance(argument, (ast.Name, ast.Attribute)):
+                self._refuse(call, function, reasons.NOT_TEXT)
             return
         self._site(call, scope, function, argument, pattern, flags)
 
@@ -242,9 +244,12 @@ class _Reader:
     def _where(self, argument: ast.expr, scope: Scope, pattern: Spelled) -> tuple[Place, int]:
         """The whole expression that gives the text: a name's definition, or the argument itself."""
         for _ in range(20):
-            if not isinstance(argument, ast.Name):
+            if not isinstance(argument, (ast.Name, ast.Attribute)):
                 break
-            definitions = self.constants.names.definitions(argument, scope)
+            try:
+                definitions = self.constants.names.definitions(argument, scope)
+            except Opaque:  # a part of a pattern object, or of the `string` module
+                break
             argument, scope = definitions[0]
         statement = self.index.statement(argument)
         line = statement.lineno if statement is not None else argument.lineno

@@ -64,7 +64,11 @@ class Outcomes:
         match parent:
             case ast.For(target=ast.Name(id=name)) if parent.iter is node:
                 outcome.saw("span")
-                self._name(name, scope, outcome, frozenset(), 0)
+                owner = scope.find(name)
+                if owner is None or owner.kind == "class":
+                    outcome.saw("unknown")
+                else:
+                    self._name(name, owner, outcome, frozenset(), 0)
             case ast.comprehension(target=ast.Name(id=name)) if parent.iter is node:
                 outcome.saw("span")
                 holder = self.index.parents.get(parent)
@@ -73,18 +77,17 @@ class Outcomes:
                         self._name(name, inner, outcome, frozenset(), 0)
                         break
                 else:
-                    self._name(name, scope, outcome, frozenset(), 0)
+                    outcome.saw("unknown")
             case ast.Call(func=ast.Name(id="any"), args=[only]) if only is node:
                 outcome.saw("truth")
             case _:
                 outcome.saw("unknown")
         return outcome
 
-    def of_list(self, node: ast.expr, has_groups: bool) -> Outcome:
-        """`node` gives the list of findall or split."""
+    def of_list(self, node: ast.expr, has_groups: bool, always_some: bool) -> Outcome:
+        """`node` gives the list of findall, or of split, which is never empty."""
         outcome = Outcome()
-        parent = self.index.parents.get(node)
-        if self._is_test(node, parent):
+        if not always_some and self._is_test(node, self.index.parents.get(node)):
             outcome.saw("truth")
         else:
             outcome.saw("groups" if has_groups else "span")
@@ -119,9 +122,11 @@ class Outcomes:
             case ast.Compare():
                 self._comparison(node, parent, outcome)
             case ast.BoolOp():
-                outcome.saw("truth")
-                if isinstance(parent.op, ast.Or) or node is parent.values[-1]:
-                    self._flows(node, parent, scope, outcome, seen, depth)
+                last = node is parent.values[-1]
+                if not last:
+                    outcome.saw("truth")
+                if last or isinstance(parent.op, ast.Or):
+                    self._match(parent, scope, outcome, seen, depth + 1)
             case ast.IfExp():
                 self._match(parent, scope, outcome, seen, depth + 1)
             case ast.Expr():
@@ -133,8 +138,7 @@ class Outcomes:
                 if _is_zero(parent.slice):
                     self._length(parent, outcome)
             case ast.NamedExpr():
-                owner = scope.find(parent.target.id) or scope
-                self._name(parent.target.id, owner, outcome, seen, depth)
+                self._target(parent.target, None, scope, outcome, seen, depth)
                 self._match(parent, scope, outcome, seen, depth + 1)
             case ast.Assign() if parent.value is node:
                 for target in parent.targets:
@@ -151,21 +155,6 @@ class Outcomes:
                 outcome.saw("truth" if filtered else "unknown")
             case _:
                 outcome.saw("unknown")
-
-    def _flows(
-        self,
-        node: ast.AST,
-        parent: ast.BoolOp,
-        scope: Scope,
-        outcome: Outcome,
-        seen: frozenset[tuple[Scope, str]],
-        depth: int,
-    ) -> None:
-        """The value of `and` or `or` may be the match itself."""
-        before = outcome.tested
-        first = node is not parent.values[-1]
-        self._match(parent, scope, outcome, seen, depth + 1)
-        outcome.tested = before or first or outcome.tested
 
     def _comparison(self, node: ast.AST, parent: ast.Compare, outcome: Outcome) -> None:
         sides = [parent.left, *parent.comparators]
@@ -208,7 +197,7 @@ class Outcomes:
     def _target(
         self,
         target: ast.expr,
-        statement: ast.stmt,
+        statement: ast.stmt | None,
         scope: Scope,
         outcome: Outcome,
         seen: frozenset[tuple[Scope, str]],
@@ -222,7 +211,7 @@ class Outcomes:
             outcome.saw("unknown")  # a global or class name: others may read it
             if owner is None:
                 return
-        reached = reached_reads(target.id, statement, owner, self.index)
+        reached = reached_reads(target.id, statement, owner, self.index) if statement else None
         self._name(target.id, owner, outcome, seen, depth, reached)
 
     def _name(

@@ -16,8 +16,7 @@ from patlint.source.scopes import Scope
 from patlint.source.sites import Function, LooksAt, Use
 from patlint.source.spelled import Spelled
 
-_GROUP_REFERENCE = re.compile(r"\\(?:[1-9]|0[0-9]|g<(?!0+>))")
-_WHOLE_REFERENCE = re.compile(r"\\g<0+>")
+_GROUP_REFERENCE = re.compile(r"\\(?:[1-9]|g<(?!0+>))")
 _OPEN_GROUP = re.compile(r"\\.|\[\^?\]?(?:\\.|[^\]\\])*\]|(\()(?!\?(?!P<))", re.DOTALL)
 
 
@@ -80,7 +79,7 @@ class Uses:
             case "finditer":
                 outcome = self.outcomes.of_matches(call, scope)
             case "findall" | "split":
-                outcome = self.outcomes.of_list(call, has_groups(pattern))
+                outcome = self.outcomes.of_list(call, has_groups(pattern), function == "split")
             case "sub" | "subn":
                 replacement = self._text(given.get("repl"), scope)
                 return replacement, _replacement_looks_at(replacement), None

@@ -114,7 +114,7 @@ PAIRS = [
     # Anchors between
     Pair(r"^\s*in$|^\s*on$", r"^\s*[io]n$", mode="search"),
     Pair(r"\bpx\b|\bpt\b", r"\bp[xt]\b", mode="search", keeps="spans"),
-    Pair(r"\Apier\Z|\Acrane\Z|\Agate\Z", r"\A(?:pier|crane|gate)\Z", mode="search"),
+    Pair(r"^\s*pier\s*$|^\s*crane\s*$", r"^\s*(?:pier|crane)\s*$", mode="search"),
     Pair(
         r"[0-9a-f]{2}:[0-9a-f]{2}:[0-9a-f]{2}:[0-9a-f]{2}:[0-9a-f]{2}:[0-9a-f]{2}",
         r"(?:[0-9a-f]{2}:){5}[0-9a-f]{2}",

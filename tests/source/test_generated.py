@@ -1,8 +1,8 @@
 """Random programs: whatever is resolved is what `re` is given, on every way through the program.
 
 A program has one call of `re` among assignments, branches, loops, tries and nested functions that fight over
-two names. It is run with many outcomes of its conditions; where the call was resolved, every run must have given
-`re` that text and those flags.
+two names. It is run with many outcomes of its conditions; where the call was resolved, every run must have
+given `re` that text and those flags.
 """
 
 from __future__ import annotations

@@ -50,6 +50,9 @@ LOOKS = [
     ("x = re.findall('a', s)", "span"),
     ("x = re.findall(r'(?:a)\\(', s)", "span"),
     ("x = re.split('a', s)", "span"),
+    ("if re.split('a', s): pass", "span"),
+    ("x = re.sub('a', r'\\0', s)", "span"),
+    ("for m in re.finditer('a', s): print(m[0] if m else 1)", "span"),
     ("x = re.sub('a', 'b', s)", "span"),
     ("x = re.sub('a', r'\\g<0>', s)", "span"),
     ("x = re.sub('a', r'\\\\1', s)", "span"),
@@ -74,6 +77,7 @@ LOOKS = [
     # let go
     ("return re.match('a', s)", "unknown"),
     ("g(re.match('a', s))", "unknown"),
+    ("global m\nif (m := re.match('a', s)): pass", "unknown"),
     ("x.y = re.match('a', s)", "unknown"),
     ("x = [re.match('a', s)]", "unknown"),
     ("x = [re.match('a', t) for t in s]", "unknown"),
@@ -113,6 +117,8 @@ TESTED = [
     ("m = re.match('a', s)\nprint(m[1])", False),
     ("g(re.match('a', s))", False),
     ("m = re.match('a', s)\nreturn m and m[1]", True),
+    ("m = y and re.match('a', s)\nprint(m[1])", False),
+    ("if y and re.match('a', s): pass", True),
 ]
 
 
@@ -174,6 +180,8 @@ SEEN = [
     ("class A:\n r = re.compile('a')\n def f(self, s): self.r.match(s)", ["match"], False),
     ("class A:\n _r = re.compile('a')\nx._r.match(s)", [], False),
     ("class A:\n _r = re.compile('a')\n @staticmethod\n def f(x): x._r.match(s)", [], False),
+    ("class A:\n _r = re.compile('a')\nclass B(A):\n def f(self): self._r.match(s)", ["match"], True),
+    ("_r = re.compile('a')\n_r.match(s)\nexec(s)", ["match"], False),
     (
         "class A:\n _r = re.compile('a')\n def f(self): self._r.match(s)\n"
         "class B:\n _r = 5\n def f(self): self._r.search(s)",

@@ -1,9 +1,7 @@
-r"""Regular expressions as values, simplified while they are built.
+r"""Expressions that are simplified while they are built.
 
-An expression is a set of characters (`Chars`), something that is kept as it stands (`Opaque`: an anchor, a
-look-around), a `Chain`, a `Choice` or a repeat (`Times`). `Algebra` has a constructor for each that applies the
-laws at hand (`x|x` = x, `xx*` = x+, `(x|)` = x?, `(x*)*` = x*, `x|xy` = xy?, `a|b` = [ab] …) and `text`, which
-writes an expression as pattern text with the spelling of characters that it was given.
+`Algebra` has a constructor for each kind of expression that applies the laws at hand: `x|x` = x, `xx*` = x+,
+`(x|)` = x?, `(x*)*` = x*, `x|xy` = xy?, `a|b` = [ab], `a(ba)*b` = (ab)+ and so on.
 
 >>> made = Algebra(lambda chars: "".join(map(chr, chars)))
 >>> a, b = (Chars(CharSet.of_chars(letter)) for letter in "ab")
@@ -14,69 +12,41 @@ With `ordered`, only laws are used that also keep the order in which a backtrack
 through an expression: alternatives keep their places. Without, any law that keeps the language may be used.
 
 Laws are not trusted: whoever shows a result to a user proves it on automata.
-Source: Kozen, A completeness theorem for Kleene algebras, 1994 (the laws); Owens, Reppy, Turon, Regular-expression
-derivatives re-examined, 2009, section 4.1 (constructors that keep expressions similar to canonical ones).
+Source: Kozen, A completeness theorem for Kleene algebras, 1994 (the laws); Owens, Reppy, Turon,
+Regular-expression derivatives re-examined, 2009, section 4.1 (constructors that keep expressions similar to
+canonical ones).
 """
 
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable
-from dataclasses import dataclass
-from typing import TypeAlias
 
+from patlint.machine.expr import (
+    EMPTY,
+    LOOSE,
+    NOTHING,
+    Chain,
+    Chars,
+    Choice,
+    Expr,
+    Opaque,
+    Times,
+    Writer,
+    nullable,
+)
+from patlint.machine.repeats import (
+    as_times,
+    folded,
+    once,
+    rolled_after,
+    rolled_around,
+    rolled_before,
+    within,
+)
 from patlint.syntax.charset import CharSet
 
-
-@dataclass(frozen=True, slots=True)
-class Chars:
-    """One character out of a set."""
-
-    chars: CharSet
-
-
-@dataclass(frozen=True, slots=True)
-class Opaque:
-    """Pattern text that is kept as it is and holds together beside others."""
-
-    written: str
-
-
-@dataclass(frozen=True, slots=True)
-class Chain:
-    """One after the other; `items` is empty (the empty text) or has at least two, none of them a Chain."""
-
-    items: tuple[Expr, ...]
-
-
-@dataclass(frozen=True, slots=True)
-class Choice:
-    """One of `branches`: none (nothing matches) or at least two, none of them a Choice."""
-
-    branches: tuple[Expr, ...]
-
-
-@dataclass(frozen=True, slots=True)
-class Times:
-    """`body` from `low` to `high` times (None: without bound)."""
-
-    body: Expr
-    low: int
-    high: int | None
-    lazy: bool = False
-
-
-Expr: TypeAlias = Chars | Opaque | Chain | Choice | Times
-EMPTY = Chain(())
-NOTHING = Choice(())
-
-# How tightly a text must hold together: as the body of a group, beside others, under a repeat.
-LOOSE, BESIDE, TIGHT = range(3)
 UNROLL = 6
 """Repeats of at least so many are not taken apart to find a common prefix."""
-
-
-DOUBLED = 8
-"""`xx` is not written as `x{2}` for what is shorter than so many characters."""
 
 
 class Algebra:
@@ -87,67 +57,22 @@ class Algebra:
     """
 
     def __init__(
-        self, spell: Callable[[CharSet], str], ordered: bool = False, braces: bool = False, words: bool = False
+        self,
+        spell: Callable[[CharSet], str],
+        ordered: bool = False,
+        braces: bool = False,
+        words: bool = False,
     ) -> None:
-        self.spell = spell
+        self.writer = Writer(spell, braces)
         self.ordered = ordered
-        self.braces = braces
         self.words = words
-        self._texts: dict[tuple[Expr, int], str] = {}
         self._sets: dict[CharSet, CharSet] = {}
 
-    # Text
-
     def text(self, expr: Expr, binding: int = LOOSE) -> str:
-        key = (expr, binding)
-        found = self._texts.get(key)
-        if found is None:
-            found = self._texts[key] = self._text(expr, binding)
-        return found
+        return self.writer.text(expr, binding)
 
     def size(self, expr: Expr) -> int:
-        """The length of the expression's text beside others."""
-        return len(self.text(expr, BESIDE))
-
-    def _text(self, expr: Expr, binding: int) -> str:
-        match expr:
-            case Chars():
-                return self.spell(expr.chars)
-            case Opaque():
-                return expr.written if binding != TIGHT else f"(?:{expr.written})"
-            case Chain():
-                text = "".join(self.text(item, BESIDE) for item in expr.items)
-                return text if binding != TIGHT else f"(?:{text})"
-            case Choice():
-                if not expr.branches:
-                    return "(?!)"
-                text = "|".join(self.text(branch, LOOSE) for branch in expr.branches)
-                return text if binding == LOOSE else f"(?:{text})"
-            case Times():
-                text = self._times_text(expr)
-                return text if binding != TIGHT else f"(?:{text})"
-
-    def _times_text(self, expr: Times) -> str:
-        low, high = expr.low, expr.high
-        mark = "?" if expr.lazy and low != high else ""
-        body = self.text(expr.body, TIGHT)
-        short = body + _counts(low, high) + mark
-        if (
-            low
-            and isinstance(expr.body, Chars | Opaque)
-            and (high is None or high - low <= 1)
-            and (low, high) != (1, None)
-            and low <= 4
-        ):
-            rest = body * (low - 1) + body + "+" if high is None else body * low + (body + "?") * (high - low)
-            rest += mark
-            bare = len(body) == 1 or not self.braces
-            doubled = low == high == 2 and len(body) < DOUBLED and not self.braces
-            if doubled or (bare and len(rest) <= len(short)):
-                return rest
-        return short
-
-    # Constructors
+        return self.writer.size(expr)
 
     def chars(self, chars: CharSet) -> Chars:
         """One character of a set; equal sets are kept as one object, which makes comparisons quick."""
@@ -170,7 +95,7 @@ class Algebra:
                 self._push(stack, merged)
                 return
         stack.append(item)
-        for rolled in (_rolled_before, _rolled_after, _rolled_around):
+        for rolled in (rolled_before, rolled_after, rolled_around):
             found = rolled(stack)
             if found is not None:
                 width, body, added, loop = found
@@ -183,7 +108,11 @@ class Algebra:
         """`ab` as one repeat, where both repeat the same."""
         if isinstance(a, Chars) and isinstance(b, Chars):
             return self.times(a, 2, 2) if a == b else None
-        for first, second in ((_as_times(a), _as_times(b)), (_once(a), _as_times(b)), (_as_times(a), _once(b))):
+        for first, second in (
+            (as_times(a), as_times(b)),
+            (once(a), as_times(b)),
+            (as_times(a), once(b)),
+        ):
             if first.body != second.body or isinstance(first.body, Opaque):
                 continue
             fixed_a, fixed_b = first.low == first.high, second.low == second.high
@@ -242,9 +171,9 @@ class Algebra:
         if low == high == 1 or ((low, high, lazy) == (0, 1, False) and nullable(body)):
             return body
         if isinstance(body, Times):
-            folded = _folded(body, low, high, lazy)
-            if folded is not None:
-                return self.times(folded.body, folded.low, folded.high, folded.lazy)
+            once_only = folded(body, low, high, lazy)
+            if once_only is not None:
+                return self.times(once_only.body, once_only.low, once_only.high, once_only.lazy)
         if not self.ordered and nullable(body):
             if low and high is not None:
                 return self.times(body, 0, high, lazy)  # an empty iteration may stand for a missing one
@@ -320,16 +249,16 @@ class Algebra:
         """Repeats of the same body put together: `x|x*` is `x*`, `x{2}|x{3}` is `x{2,3}`."""
         kept: list[Expr] = []
         for branch in flat:
-            here = _as_times(branch)
+            here = as_times(branch)
             for place, other in enumerate(kept):
-                there = _as_times(other)
+                there = as_times(other)
                 if here.body != there.body:
                     continue
-                if _within(here, there):
+                if within(here, there):
                     break
                 if self.ordered:
                     continue
-                if _within(there, here):
+                if within(there, here):
                     kept[place] = branch
                     break
                 if here.lazy == there.lazy or here.low == here.high or there.low == there.high:
@@ -366,7 +295,12 @@ class Algebra:
                 out.append(members[0])
                 continue
             joined = self._joined(rows, at_end)
-            if self.words and len(flat) > 2 and sum(map(_is_word, members)) > 1 and _has_choice_or_set(joined, members):
+            if (
+                self.words
+                and len(flat) > 2
+                and sum(map(_is_word, members)) > 1
+                and _has_choice_or_set(joined, members)
+            ):
                 out.extend(members)
             elif self.size(joined) <= self.size(Choice(tuple(members))):
                 out.append(joined)
@@ -397,58 +331,6 @@ class Algebra:
         return self.chain([*shared, self.choice([self.chain(row) for row in rests])])
 
 
-_Rolled: TypeAlias = tuple[int, Expr, int, Times]
-"""How many items at the end of a chain are one repeat: its body, how often it is to be added to which repeat."""
-
-
-def _rolled_before(stack: list[Expr]) -> _Rolled | None:
-    """`ab(ab)*` is `(ab)+`."""
-    loop = stack[-1]
-    if isinstance(loop, Times) and isinstance(loop.body, Chain):
-        width = len(loop.body.items)
-        if tuple(stack[-width - 1 : -1]) == loop.body.items:
-            return width + 1, loop.body, 1, loop
-    return None
-
-
-def _rolled_after(stack: list[Expr]) -> _Rolled | None:
-    """`(ab)*ab` is `(ab)+`."""
-    for width in range(2, min(len(stack) - 1, 8) + 1):
-        loop = stack[-width - 1]
-        if isinstance(loop, Times) and isinstance(loop.body, Chain) and loop.body.items == tuple(stack[-width:]):
-            return width + 1, loop.body, 1, loop
-    return None
-
-
-def _rolled_around(stack: list[Expr]) -> _Rolled | None:
-    """`a(ba)*b` is `(ab)+`."""
-    for width in range(1, min(len(stack) - 2, 7) + 1):
-        loop = stack[-width - 1]
-        if not isinstance(loop, Times) or not isinstance(loop.body, Chain):
-            continue
-        items = loop.body.items
-        front = len(items) - width
-        if front < 1 or len(stack) < width + 1 + front or items[:width] != tuple(stack[-width:]):
-            continue
-        ahead = tuple(stack[-width - 1 - front : -width - 1])
-        if ahead == items[width:]:
-            return width + 1 + front, Chain(ahead + items[:width]), 1, loop
-    return None
-
-
-def nullable(expr: Expr) -> bool:
-    """Whether the empty text is in the language; False in doubt."""
-    match expr:
-        case Chars() | Opaque():
-            return False
-        case Chain():
-            return all(map(nullable, expr.items))
-        case Choice():
-            return any(map(nullable, expr.branches))
-        case Times():
-            return expr.low == 0 or nullable(expr.body)
-
-
 def reverse(expr: Expr, algebra: Algebra) -> Expr:
     """The expression of the texts read backwards."""
     match expr:
@@ -476,37 +358,11 @@ def _elements(expr: Expr) -> list[Expr]:
     return out
 
 
-def _as_times(expr: Expr) -> Times:
-    return expr if isinstance(expr, Times) else Times(expr, 1, 1)
-
-
-def _once(expr: Expr) -> Times:
-    return Times(expr, 1, 1)
-
-
-def _within(a: Times, b: Times) -> bool:
-    return a.low >= b.low and (b.high is None or (a.high is not None and a.high <= b.high))
-
-
-def _folded(inner: Times, low: int, high: int | None, lazy: bool) -> Times | None:
-    """A repeat of a repeat as one, where the counts leave no gap."""
-    if inner.low != inner.high and low != high and inner.lazy != lazy:
-        return None
-    most = None if high is None or inner.high is None else inner.high * high
-    if inner.high == 0 or (inner.low == inner.high and inner.low != 1 and low != high):
-        return None
-    # Between k and k + 1 iterations: the least of k + 1 must not lie above the most of k by more than one.
-    if low != high and inner.high is not None and inner.low > 1 and inner.low * (low + 1) > inner.high * low + 1:
-        return None
-    if low != high and inner.high is None and low == 0 and inner.low > 1:
-        return None
-    return Times(inner.body, inner.low * low, most, inner.lazy or lazy)
-
-
 def _is_word(expr: Expr) -> bool:
     items = _elements(expr)
     return len(items) >= 3 and all(
-        isinstance(item, Chars) and item.chars.size() <= 4 and chr(item.chars.bounds[0]).isalpha() for item in items
+        isinstance(item, Chars) and item.chars.size() <= 4 and chr(item.chars.bounds[0]).isalpha()
+        for item in items
     )
 
 
@@ -516,21 +372,3 @@ def _has_choice_or_set(joined: Expr, members: list[Expr]) -> bool:
     kept = [item for item in items if isinstance(item, Chars)]
     known = {item for member in members for item in _elements(member)}
     return len(items) - len(kept) > 1 or any(item not in known for item in kept) or len(members) > 2
-
-
-def _counts(low: int, high: int | None) -> str:
-    match low, high:
-        case 0, None:
-            return "*"
-        case 1, None:
-            return "+"
-        case 0, 1:
-            return "?"
-        case 1, 1:
-            return ""
-        case _, None:
-            return f"{{{low},}}"
-        case _ if low == high:
-            return f"{{{low}}}"
-        case _:
-            return f"{{{low},{high}}}"

@@ -1,18 +1,20 @@
 r"""From an automaton back to an expression: states are removed one by one.
 
 Removing a state joins each way into it with each way out of it, its loop between them. Which state goes first
-decides how long the result becomes; the state that adds least is taken each time, and states that every accepted
-text passes are kept for last, so that what stands before and behind them is not mixed. The automaton read
-backwards gives a second result; the shorter text wins, then the lower nesting, then the fewer operators.
+decides how long the result becomes; the state that adds least is taken each time, and states that every
+accepted text passes are kept for last, so that what stands before and behind them is not mixed. The
+automaton read backwards gives a second result; the shorter text wins, then the lower nesting, then the
+fewer operators.
 
 >>> from patlint.language import Language
->>> short = expression(Language("(a|b)*a|(b|a)+b|").dfa, Algebra(lambda chars: render_set(chars, 0, False)))
+>>> short = expression(Language("(a|b)*a|(b|a)*b|").dfa, Algebra(lambda chars: render_set(chars, 0, False)))
 >>> Algebra(lambda chars: render_set(chars, 0, False)).text(short)
 '[ab]*'
 
-Sources: Brzozowski and McCluskey, Signal flow graph techniques for sequential circuit state diagrams, 1963 (removing
-states); Delgado and Morais, Approximation to the smallest regular expression for a given regular language, 2004
-(weights); Han and Wood, Obtaining shorter regular expressions from finite-state automata, 2007 (bridge states).
+Sources: Brzozowski and McCluskey, Signal flow graph techniques for sequential circuit state diagrams, 1963
+(removing states); Delgado and Morais, Approximation to the smallest regular expression for a given regular
+language, 2004 (weights); Han and Wood, Obtaining shorter regular expressions from finite-state automata,
+2007 (bridge states).
 Limits: `MOST_STATES` useful states, and the length given by the caller; beyond either there is no result.
 Cost: states squared times transitions, cut short by the length.
 """
@@ -23,10 +25,11 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from typing import TypeAlias
 
-from patlint.machine.algebra import (
+from patlint.machine.algebra import Algebra, reverse
+from patlint.machine.dfa import Dfa, minimal
+from patlint.machine.expr import (
     EMPTY,
     NOTHING,
-    Algebra,
     Chain,
     Chars,
     Choice,
@@ -34,9 +37,7 @@ from patlint.machine.algebra import (
     Opaque,
     Times,
     nullable,
-    reverse,
 )
-from patlint.machine.dfa import Dfa, minimal
 from patlint.machine.words import distances
 from patlint.syntax import tree as t
 from patlint.syntax.charset import EMPTY as NO_CHARS
@@ -46,7 +47,8 @@ from patlint.syntax.render import char_node, render_set
 MOST_STATES = 40
 """Useful states of an automaton that is turned into an expression; 40 states take about 20 ms."""
 SLACK = 2
-"""A way between two states may become so many times longer than the result may be; algebra shortens it later."""
+"""A way between two states may become so many times longer than the result may be; algebra shortens it
+later."""
 
 
 def expression(dfa: Dfa, algebra: Algebra, longest: int = 400, *, backwards: bool = True) -> Expr | None:
@@ -64,7 +66,7 @@ def expression(dfa: Dfa, algebra: Algebra, longest: int = 400, *, backwards: boo
             for keep_bridges in (True, False):
                 found = _eliminate(edges, algebra, longest, keep_bridges)
                 results.append(None if found is None else reverse(found, algebra))
-    good = [found for found in results if found is not None and algebra.size(found) <= longest]
+    good = [found for found in results if found is not None and len(algebra.text(found)) <= longest]
     return min(good, key=lambda found: rank(found, algebra), default=None)
 
 
@@ -150,7 +152,9 @@ def complexity(expr: Expr) -> tuple[int, int]:
         case Choice():
             return _most(expr.branches, max(0, len(expr.branches) - 1), deeper=True)
         case Times():
-            return _most((expr.body,), 2 if expr.lazy else 1, deeper=not isinstance(expr.body, Chars | Choice))
+            return _most(
+                (expr.body,), 2 if expr.lazy else 1, deeper=not isinstance(expr.body, Chars | Choice)
+            )
 
 
 def _most(parts: Iterable[Expr], operators: int, deeper: bool = False) -> tuple[int, int]:
@@ -235,7 +239,9 @@ def _eliminate(edges: _Edges, algebra: Algebra, longest: int, keep_bridges: bool
             for source in back[state]:
                 way = algebra.chain((ways[source][state][0], tail))
                 known = ways[source].get(target)
-                joined = ways[source][target] = sized(way if known is None else algebra.choice((known[0], way)))
+                joined = ways[source][target] = sized(
+                    way if known is None else algebra.choice((known[0], way))
+                )
                 if joined[1] > longest * SLACK:
                     return None
                 back[target].add(source)

@@ -1,12 +1,12 @@
 r"""Islands: the parts of a pattern that may be replaced without a look at the rest.
 
-An island is a run of neighbouring nodes (items of a sequence, branches of an alternation, or a single node) without
-capturing groups, anchors, look-around, atomic groups and references. The text around it stays byte for byte; the
-island's own text must hold no comment, and no blank under VERBOSE.
+An island is a run of neighbouring nodes (items of a sequence, branches of an alternation, or a single node)
+without capturing groups, anchors, look-around, atomic groups and references. The text around it stays byte
+for byte; the island's own text must hold no comment, and no blank under VERBOSE.
 
-`expression_of` reads an island as an expression, `splice` puts new texts into the pattern, and `shape` compares
-trees up to spans, plain groups and the nesting of sequences, so that a spliced text can be checked to differ from
-the original in its islands only.
+`expression_of` reads an island as an expression, `splice` puts new texts into the pattern, and `shape`
+compares trees up to spans, plain groups and the nesting of sequences, so that a spliced text can be checked
+to differ from the original in its islands only.
 """
 
 from __future__ import annotations
@@ -15,7 +15,8 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, replace
 from typing import Literal, TypeAlias
 
-from patlint.machine.algebra import Algebra, Expr, Opaque
+from patlint.machine.algebra import Algebra
+from patlint.machine.expr import Expr, Opaque
 from patlint.syntax import tree as t
 from patlint.syntax.classes import char_set
 
@@ -29,8 +30,9 @@ _BLANKS = " \t\n\r\v\f#"
 
 @dataclass(frozen=True, slots=True)
 class Island:
-    """`nodes` side by side, as items of a sequence or as branches (`branches`); `place` says how tightly a new text
-    must hold together, `flags` hold there, `first` and `last` whether it touches the ends of the pattern."""
+    """`nodes` side by side, as items of a sequence or as branches (`branches`); `place` says how tightly a
+    new text must hold together, `flags` hold there, `first` and `last` whether it touches the ends of the
+    pattern."""
 
     nodes: tuple[t.Node, ...]
     branches: bool
@@ -61,7 +63,9 @@ def is_pure(node: t.Node, is_bytes: bool, through: Through = "plain") -> bool:
             return all(is_pure(part, is_bytes, through) for part in t.children(node))
         case t.Group():
             plain = node.index is None and not (node.add_flags | node.del_flags) & (t.VERBOSE | t.LOCALE)
-            return (plain or (through == "groups" and node.name is None)) and is_pure(node.body, is_bytes, through)
+            return (plain or (through == "groups" and node.name is None)) and is_pure(
+                node.body, is_bytes, through
+            )
         case t.Repeat():
             return node.kind != "possessive" and node.maximum != 0 and is_pure(node.body, is_bytes, through)
         case t.Anchor():
@@ -116,7 +120,9 @@ def _inside(
                 if run:
                     at_start = first and (branches or begin == 0)
                     at_end = last and (branches or index == len(parts))
-                    yield Island(tuple(run), branches, "loose" if branches else "beside", flags, at_start, at_end)
+                    yield Island(
+                        tuple(run), branches, "loose" if branches else "beside", flags, at_start, at_end
+                    )
                     run = []
                 if part is not None:
                     at_start = first and (branches or index == 0)
@@ -173,8 +179,8 @@ Shape: TypeAlias = tuple[object, ...]
 
 
 def shape(node: t.Node, swaps: Mapping[int, tuple[int, t.Node]] | None = None) -> Shape:
-    """`node` up to spans, plain groups and nesting; `swaps` puts another node in the place of so many neighbours
-    (told by the `id` of the first)."""
+    """`node` up to spans, plain groups and nesting; `swaps` puts another node in the place of so many
+    neighbours (told by the `id` of the first)."""
     swaps = swaps or {}
     if id(node) in swaps:
         return shape(swaps[id(node)][1])
@@ -218,7 +224,8 @@ def shape(node: t.Node, swaps: Mapping[int, tuple[int, t.Node]] | None = None) -
 
 
 def complexity(node: t.Node) -> tuple[int, int]:
-    """How deep brackets are nested, and the number of operators: bars, repeats, sets (a lazy repeat counts twice)."""
+    """How deep brackets are nested, and the number of operators: bars, repeats, sets (a lazy repeat counts
+    twice)."""
     match node:
         case t.Literal():
             return 0, 0

@@ -1,12 +1,14 @@
 r"""Proofs that one pattern, or a part of one, may stand for another.
 
-`ends` is the strongest: it compares two parts without groups, anchors and the like by the places at which they
-can end, *in the order in which the engine tries them*. Whatever stands around a part only learns these places in
-this order (nothing in such a part looks left or right, sets a group or a loop's mark), and trying a place a second
-time ends as it did the first time. So parts that agree may be exchanged anywhere: same language, spans, groups.
+`ends` is the strongest: it compares two parts without groups, anchors and the like by the places at which
+they can end, *in the order in which the engine tries them*. Whatever stands around a part only learns these
+places in this order (nothing in such a part looks left or right, sets a group or a loop's mark), and trying
+a place a second time ends as it did the first time. So parts that agree may be exchanged anywhere: same
+language, spans, groups.
 
-The order of the places is a regular language of marked texts: { u # v : the part ends after u and after u v, and the
-engine comes to the later place first }. Together with the plain language it fixes the whole order.
+The order of the places is a regular language of marked texts: { u # v : the part ends after u and after u
+v, and the engine comes to the later place first }. Together with the plain language it fixes the whole
+order.
 
 `same_language` and `same_spans` compare whole patterns.
 Method: the ordered subset construction of `patlint.machine.priority`, without its cut.
@@ -38,7 +40,8 @@ def ends(pattern: t.Pattern, part: t.Node, limits: Limits) -> Dfa:
     if any(duty for _, duty in nfa.initial(nfa.start_context)) or nfa.asks_start or nfa.inexact:
         raise ValueError("a part with assertions has no ends of its own")
     first: tuple[int, ...] = tuple(position for position, _ in nfa.initial(0))
-    # Before the mark an ordered tuple of positions, behind it a bit mask of those preferred to the marked end.
+    # Before the mark an ordered tuple of positions, behind it a bit mask of those preferred to the marked
+    # end.
     number: dict[tuple[int, ...] | int, int] = {first: 0}
     order: list[tuple[int, ...] | int] = [first]
     table: list[tuple[int, ...]] = []
@@ -69,15 +72,21 @@ def ends(pattern: t.Pattern, part: t.Node, limits: Limits) -> Dfa:
                         if duty != FREE:
                             raise ValueError("a part with assertions has no ends of its own")
                         after[reached] = None
-            row.append(index_of(tuple(after) if isinstance(state, tuple) else sum(1 << each for each in after)))
+            row.append(
+                index_of(tuple(after) if isinstance(state, tuple) else sum(1 << each for each in after))
+            )
         if isinstance(state, tuple) and accept in state:
             row.append(index_of(sum(1 << position for position in state[: state.index(accept)])))
         else:
             row.append(index_of(0))
         table.append(tuple(row))
-    accepting = [accept in state if isinstance(state, tuple) else bool(state >> accept & 1) for state in order]
+    accepting = [
+        accept in state if isinstance(state, tuple) else bool(state >> accept & 1) for state in order
+    ]
     alphabet = Alphabet(
-        (*nfa.alphabet.classes, CharSet((MARKER, MARKER + 1))), (*nfa.alphabet.cuts, MARKER), (*nfa.alphabet.owners, width)
+        (*nfa.alphabet.classes, CharSet((MARKER, MARKER + 1))),
+        (*nfa.alphabet.cuts, MARKER),
+        (*nfa.alphabet.owners, width),
     )
     return canonical(minimal(alphabet, table, accepting))
 
@@ -92,13 +101,14 @@ def _bits(mask: int) -> list[int]:
 
 
 def part_language(pattern: t.Pattern, part: t.Node, limits: Limits) -> Dfa:
-    """The canonical automaton of the texts that `part`, which must not look outside itself, takes as a whole."""
+    """The canonical automaton of the texts that `part`, which must not look outside itself, takes as a
+    whole."""
     return canonical(language(Nfa(compile_tree(pattern, limits, root=part), limits), "fullmatch"))
 
 
 def same_language(old: t.Pattern, new: t.Pattern, mode: Mode, limits: Limits) -> bool:
-    """Whether both take the same texts in `mode`, neither all nor none; False where one is not said exactly, or a
-    limit is met."""
+    """Whether both take the same texts in `mode`, neither all nor none; False where one is not said
+    exactly, or a limit is met."""
     try:
         automata = []
         for pattern in (old, new):
@@ -112,8 +122,8 @@ def same_language(old: t.Pattern, new: t.Pattern, mode: Mode, limits: Limits) ->
 
 
 def same_spans(old: t.Pattern, new: t.Pattern, scanning: bool, limits: Limits) -> bool:
-    """Whether both match the same spans, whatever stands to the left; with `scanning` also where the match may not
-    be empty, so that search, finditer, sub and split (without groups) agree too.
+    """Whether both match the same spans, whatever stands to the left; with `scanning` also where the match
+    may not be empty, so that search, finditer, sub and split (without groups) agree too.
 
     False where one is not said exactly, or a limit is met.
     """

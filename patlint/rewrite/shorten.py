@@ -7,16 +7,19 @@ False
 >>> shorten("[0-9]{4}-[0-9]{2}") is None
 True
 
-Candidates come from the laws of expressions and from the automata of islands (`islands`), written with the author's
-habits (`spelling`). None is trusted: each is parsed again, must differ from the original in its islands only, must
-have the same groups, must not be deeper nested or have more operators, must not be slower to match, and
+Candidates come from the laws of expressions and from the automata of islands (`islands`), written with the
+author's habits (`spelling`). None is trusted: each is parsed again, must differ from the original in its
+islands only, must have the same groups, must not be deeper nested or have more operators, must not be
+slower to match, and
 
-- keeps="groups": each island ends at the same places in the same order (`proof.ends`), so that nothing changes at all;
+- keeps="groups": each island ends at the same places in the same order (`proof.ends`), so that nothing
+  changes at all;
 - keeps="spans": that, or the spans of the whole pattern are proven equal;
-- keeps="language": that, or the languages in `mode` are proven equal. Then optional parts at the ends may go too,
-  where they decide nothing, and unnamed groups with the island in which they stand.
+- keeps="language": that, or the languages in `mode` are proven equal. Then optional parts at the ends may
+  go too, where they decide nothing, and unnamed groups with the island in which they stand.
 
-Limits: patterns up to `LONGEST` characters; automata up to `ATTEMPTS` islands. A limit that is met gives no suggestion.
+Limits: patterns up to `LONGEST` characters; automata up to `ATTEMPTS` islands. A limit that is met gives no
+suggestion.
 """
 
 from __future__ import annotations
@@ -26,9 +29,10 @@ from dataclasses import dataclass, field, replace
 from typing import Literal, TypeAlias
 
 from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
-from patlint.machine.algebra import BESIDE, LOOSE, TIGHT, Algebra, Chain, Expr, Times, nullable
+from patlint.machine.algebra import Algebra
 from patlint.machine.determinise import Mode
 from patlint.machine.dfa import Dfa
+from patlint.machine.expr import BESIDE, LOOSE, TIGHT, Chain, Expr, Times, nullable
 from patlint.machine.expression import expression, in_order
 from patlint.machine.program import compile_tree
 from patlint.machine.slow_text import Growth, ambiguity_of
@@ -59,8 +63,8 @@ ATTEMPTS = 6
 """Islands of one pattern of which the automaton is turned into an expression, a few milliseconds each."""
 LEAST_SAVING = 2
 LEAST_SHARE = 0.1
-"""A suggestion saves at least so many characters, and this share of the pattern's length; one character is enough
-where the new pattern is of lower growth (`(?:[a-z] ?)+` for `(?:[a-z]+ ?)+`)."""
+"""A suggestion saves at least so many characters, and this share of the pattern's length; one character is
+enough where the new pattern is of lower growth (`(?:[a-z] ?)+` for `(?:[a-z]+ ?)+`)."""
 
 _BINDINGS = {"loose": LOOSE, "beside": BESIDE, "tight": TIGHT}
 _SMALL = {"states": 300, "work": 30_000, "turns": 20_000}
@@ -94,7 +98,8 @@ def shorten(
     target: tuple[int, int] | None = None,
     limits: Limits = DEFAULT_LIMITS,
 ) -> str | bytes | None:
-    """A shorter pattern for use in `mode` that keeps the language, spans or groups; None where none was found.
+    """A shorter pattern for use in `mode` that keeps the language, spans or groups; None where none was
+    found.
 
     Raises PatternError where `re` refuses the pattern.
     """
@@ -119,7 +124,8 @@ def suggest(
     if not worth_a_try(parsed, truth):
         return None
     small = replace(
-        limits, **{name: min(value, getattr(limits, name)) for name, value in _SMALL.items()}  # type: ignore[arg-type]
+        limits,
+        **{name: min(value, getattr(limits, name)) for name, value in _SMALL.items()},
     )
     search = _Search(parsed, mode, keeps, target, small)
     least = max(least_saving, least_share * len(parsed.text))
@@ -188,7 +194,9 @@ class _Search:
         yield self.everywhere("plain", certain=True)
 
     def everywhere(self, through: Through, certain: bool = False) -> list[_Edit]:
-        return [edit for island in islands(self.parsed, through) for edit in self.best(island, through, certain)]
+        return [
+            edit for island in islands(self.parsed, through) for edit in self.best(island, through, certain)
+        ]
 
     def has_bound_branches(self) -> bool:
         """Whether an alternation holds anchors."""
@@ -231,7 +239,9 @@ class _Search:
         room = len(old) - 2 * captures
         old_parts = _Known(self.parsed, node, self.limits)
         bare = room
-        for text, turned in sorted(self.texts(island, 0 if anchored else room, old_parts).items(), key=lambda row: len(row[0])):
+        for text, turned in sorted(
+            self.texts(island, 0 if anchored else room, old_parts).items(), key=lambda row: len(row[0])
+        ):
             if len(text) >= room or not text:
                 continue
             read = self.read(text, island)
@@ -358,7 +368,7 @@ def _degree(growth: Growth | None) -> int:
 
 def _trim(expr: Expr, algebra: Algebra, left: bool, right: bool) -> Expr:
     """`expr` without what may be missing at its left or right end."""
-    items = list(expr.items) if isinstance(expr, Chain) else [expr]
+    items: list[Expr] = list(expr.items) if isinstance(expr, Chain) else [expr]
     for at_end in [True] * right + [False] * left:
         while items:
             place = -1 if at_end else 0

@@ -1,10 +1,10 @@
 r"""The author's habits of spelling, so that a suggestion looks like the pattern it replaces.
 
 A set of characters that occurs in the pattern is written as the author wrote it, less what it says twice
-(`[0-90-9]`, `[a-zA-Z]` under IGNORECASE, `[0123456789]`). A new set is put together from pieces that the author wrote,
-in the author's order. Categories and the dot are only used where the author uses them: `[0-9]` does not become `\d`.
-Ranges are only made within digits, within letters of one case and within what is not ASCII or not printable, since
-nobody reads `[!-/]`. Needless escapes are kept.
+(`[0-90-9]`, `[a-zA-Z]` under IGNORECASE, `[0123456789]`). A new set is put together from pieces that the
+author wrote, in the author's order. Categories and the dot are only used where the author uses them:
+`[0-9]` does not become `\d`. Ranges are only made within digits, within letters of one case and within what
+is not ASCII or not printable, since nobody reads `[!-/]`. Needless escapes are kept.
 
 >>> from patlint.syntax.parser import parse
 >>> habits = habits_of(parse(r"[0-9]|[\-_x]|[0123][abab]"))
@@ -30,6 +30,7 @@ RUN = 4
 """So many neighbouring characters of one alphabet are written as a range; one less for digits, twice as many
 for control characters, of which some are known by name."""
 _MOST_ITEMS = 24
+_MOST = 1_000
 _SCATTERED = 200
 UNREADABLE = "." * 1000
 """Stands for a set of hundreds of ranges that the author did not name; longer than any pattern looked at."""
@@ -49,7 +50,8 @@ _ALPHABETS = (
 
 @dataclass(frozen=True, slots=True)
 class _Piece:
-    """Something that can stand in a set: its characters, its text there, the place where the author wrote it."""
+    """Something that can stand in a set: its characters, its text there, the place where the author wrote
+    it."""
 
     chars: CharSet
     text: str
@@ -58,8 +60,9 @@ class _Piece:
 
 @dataclass(slots=True)
 class Habits:
-    """`known` are the spellings of each set of characters under the flags of its place, `pieces` what the author's
-    sets are made of, `kinds` the categories used (and `.`), `braces` whether a repeat is written with braces."""
+    """`known` are the spellings of each set of characters under the flags of its place, `pieces` what the
+    author's sets are made of, `kinds` the categories used (and `.`), `braces` whether a repeat is written
+    with braces."""
 
     is_bytes: bool
     verbose: bool
@@ -73,15 +76,22 @@ class Habits:
         key = (chars, flags)
         found = self.known.get(key)
         if found is None:
-            found = self.known[key] = self._composed(chars, flags) or self._canonical(chars, flags)
+            found = self._composed(chars, flags)
+            if found is None or chars.size() > _MOST:
+                other = self._canonical(chars, flags)
+                found = other if found is None or len(other) < len(found) else found
+            self.known[key] = found
         return found
 
     def _composed(self, chars: CharSet, flags: int) -> str | None:
         """A set put together from the author's pieces and from what they leave."""
         if chars.size() == 1 and not flags & t.IGNORECASE:
             return char_text(chars.bounds[0], self.is_bytes, self.verbose)
-        rest, used = chars, []
-        for piece in sorted(self.pieces.get(flags, {}).values(), key=lambda piece: (-piece.chars.size(), piece.place)):
+        rest = chars
+        used: list[_Piece] = []
+        for piece in sorted(
+            self.pieces.get(flags, {}).values(), key=lambda piece: (-piece.chars.size(), piece.place)
+        ):
             if not _lies_in(piece.chars, chars) or any(_lies_in(piece.chars, other.chars) for other in used):
                 continue
             if len(piece.chars.bounds) > 2:
@@ -143,7 +153,8 @@ def _note(habits: Habits, node: t.CharNode, text: str) -> None:
             pieces.setdefault(chars, _Piece(chars, written, node.span[0]))
         case t.Literal():
             chars = char_set(node, habits.is_bytes)
-            inside = written if written[0] == "\\" and written[1:2].isalnum() else _inside(node.code, habits.is_bytes)
+            as_is = written.isalnum() or (written[0] == "\\" and written[1:2].isalnum())
+            inside = written if as_is else _inside(node.code, habits.is_bytes)
             pieces.setdefault(chars, _Piece(chars, inside, node.span[0]))
         case t.Set():
             for item in node.items:
@@ -188,7 +199,10 @@ def reduced(node: t.Set, texts: tuple[str, ...], is_bytes: bool) -> str | None:
     if node.flags & t.IGNORECASE or sum(each.size() for each in chars) > _union(chars).size():
         for index in sorted(kept, key=order):
             fewer = [each for each in kept if each != index]
-            if fewer and char_set(replace(node, items=tuple(node.items[i] for i in fewer)), is_bytes) == whole:
+            if (
+                fewer
+                and char_set(replace(node, items=tuple(node.items[i] for i in fewer)), is_bytes) == whole
+            ):
                 kept = fewer
     pieces = []
     for index in kept:
@@ -198,7 +212,13 @@ def reduced(node: t.Set, texts: tuple[str, ...], is_bytes: bool) -> str | None:
             plain = CharSet((item.code, item.code + 1))
         pieces.append(_Piece(chars[index] if plain is None else plain, texts[index], index))
     text = _assembled(_rolled(pieces, is_bytes), node.negated)
-    if len(kept) == len(texts) and len(text) >= len(_assembled(texts, node.negated)) or _reads_as(text, node.flags, is_bytes) != whole:
+    if len(kept) == 1 and texts[kept[0]].isalnum() and not node.negated:
+        text = texts[kept[0]]
+    if (
+        len(kept) == len(texts)
+        and len(text) >= len(_assembled(texts, node.negated))
+        or _reads_as(text, node.flags, is_bytes) != whole
+    ):
         return None
     return text
 
@@ -207,7 +227,11 @@ def _rolled(pieces: list[_Piece], is_bytes: bool) -> list[str]:
     """The texts of pieces, those that lie side by side within one alphabet put together as ranges."""
     out: dict[int, str] = {index: piece.text for index, piece in enumerate(pieces)}
     for alphabet in (*_ALPHABETS[:3], _CONTROLS):
-        mine = [index for index, piece in enumerate(pieces) if piece.chars <= alphabet and len(piece.chars.bounds) == 2]
+        mine = [
+            index
+            for index, piece in enumerate(pieces)
+            if piece.chars <= alphabet and len(piece.chars.bounds) == 2
+        ]
         joined = _union([pieces[index].chars for index in mine])
         for low, high in joined.ranges():
             inside = [index for index in mine if low <= pieces[index].chars.bounds[0] <= high]

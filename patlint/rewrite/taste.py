@@ -1,15 +1,15 @@
 r"""What a maintainer would rather not read, although it is shorter.
 
 - more operators than before, or deeper nesting unless much is saved;
-- lists of words and symbols taken apart: `foo|ba[rz]` for `foo|bar|baz`, `===?|!=` for `===|==|!=`. A word may get
-  an optional last letter (`https?`), and lists that become one plain sequence may go where much is saved
-  (`L1|L2|L3|R1|R2|R3` is `[LR][1-3]`);
+- lists of words and symbols taken apart: `foo|ba[rz]` for `foo|bar|baz`, `===?|!=` for `===|==|!=`. A word
+  may get an optional last letter (`https?`), and lists that become one plain sequence may go where much is
+  saved (`L1|L2|L3|R1|R2|R3` is `[LR][1-3]`);
 - sets that mix what the author kept apart: `[a-z=]=` for `[a-z]=|==`;
 - a pattern turned inside out for the sake of a few characters.
 
-Examples are from reading what is proposed for the patterns of the standard library; common practice, no source.
-`runs_for_loops` finds what may be slower to match: a run over one set of characters that became a part of a loop,
-such as `(?:[^"\\]|\\.)*` for `[^"\\]*(?:\\.[^"\\]*)*`, which people write on purpose.
+Examples are from reading what is proposed for the patterns of the standard library; common practice, no
+source. `runs_for_loops` finds what may be slower to match: a run over one set of characters that became a
+part of a loop, such as `(?:[^"\\]|\\.)*` for `[^"\\]*(?:\\.[^"\\]*)*`, which people write on purpose.
 """
 
 from __future__ import annotations
@@ -40,8 +40,8 @@ SMALL_SET = 10
 
 
 def is_readable(old: t.Node, new: t.Node, lengths: tuple[int, int], turned: bool, is_bytes: bool) -> bool:
-    """Whether `new` may be shown in place of `old`; `lengths` are those of the texts, `turned` says that it was
-    written anew from the automaton."""
+    """Whether `new` may be shown in place of `old`; `lengths` are those of the texts, `turned` says that it
+    was written anew from the automaton."""
     old_depth, old_operators = complexity(old)
     depth, operators = complexity(new)
     before, after = lengths
@@ -80,7 +80,9 @@ def _leaf_sets(node: t.Node, is_bytes: bool) -> set[CharSet]:
 
 
 def _keeps_sets(old: t.Node, new: t.Node, is_bytes: bool) -> bool:
-    fresh = {chars for chars in _leaf_sets(new, is_bytes) if chars.size() > SMALL_SET} - _leaf_sets(old, is_bytes)
+    fresh = {chars for chars in _leaf_sets(new, is_bytes) if chars.size() > SMALL_SET} - _leaf_sets(
+        old, is_bytes
+    )
     if not fresh:
         return True
     for each in t.walk(old):

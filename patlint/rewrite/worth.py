@@ -1,7 +1,7 @@
 """A quick look at a pattern: is there anything that might be written shorter?
 
-Most patterns are plain sequences in which nothing can be saved; they are to cost next to nothing. True means only
-that a closer look is worth its time.
+Most patterns are plain sequences in which nothing can be saved; they are to cost next to nothing. True
+means only that a closer look is worth its time.
 """
 
 from __future__ import annotations
@@ -38,7 +38,9 @@ def _is_suspect(node: t.Node, text: str, is_bytes: bool) -> bool:
             return node.index is None and not isinstance(node.body, t.Alternation | t.Sequence)
         case t.Repeat():
             written = text[node.body.span[1] : node.span[1]].rstrip("?+")
-            return _inner_repeat(node.body) or (node.minimum, node.maximum) in _OWN_MARKS and written[-1:] == "}"
+            return (
+                _inner_repeat(node.body) or (node.minimum, node.maximum) in _OWN_MARKS and written[-1:] == "}"
+            )
         case t.Sequence():
             return _repeats_itself(node.items) or _has_runs(node.items, text)
         case _:
@@ -56,12 +58,20 @@ def _inner_repeat(body: t.Node) -> bool:
     return False
 
 
+def _is_needless(item: t.Node) -> bool:
+    """Whether `item`, one of several, is a plain group that holds nothing together."""
+    match item:
+        case t.Group(index=None, add_flags=0, del_flags=0):
+            return not isinstance(item.body, t.Alternation)
+        case _:
+            return False
+
+
 def _repeats_itself(items: tuple[t.Node, ...]) -> bool:
+    if any(map(_is_needless, items)):
+        return True
     run = 1
     for before, item in zip(items, items[1:], strict=False):
-        if isinstance(item, t.Group) and item.index is None and not (item.add_flags or item.del_flags):
-            if not isinstance(item.body, t.Alternation):
-                return True
         a = before.body if isinstance(before, t.Repeat) else before
         b = item.body if isinstance(item, t.Repeat) else item
         if _ends_like(before, item) or _ends_like(item, before):
@@ -91,15 +101,19 @@ def _has_runs(items: tuple[t.Node, ...], text: str) -> bool:
 
 def _ends_like(loop: t.Node, other: t.Node) -> bool:
     """Whether a repeat of several items is next to an item like one of its own."""
-    if isinstance(loop, t.Repeat) and isinstance(loop.body, t.Group) and isinstance(loop.body.body, t.Sequence):
+    if (
+        isinstance(loop, t.Repeat)
+        and isinstance(loop.body, t.Group)
+        and isinstance(loop.body.body, t.Sequence)
+    ):
         items = loop.body.body.items or (loop,)
         return any(type(item) is type(other) and same(item, other) for item in (items[0], items[-1]))
     return False
 
 
 def is_involved(node: t.Node) -> bool:
-    """Whether an automaton may know more than the laws: alternatives other than long lists of words, or repeats in
-    repeats."""
+    """Whether an automaton may know more than the laws: alternatives other than long lists of words, or
+    repeats in repeats."""
     for each in t.walk(node):
         match each:
             case t.Alternation():

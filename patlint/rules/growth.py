@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from math import exp, log
+from math import ceil, exp, log
 
 from patlint.machine.slow_text import Ambiguity, Manner, SlowText
 from patlint.rules.finding import SlowWitness
@@ -12,9 +12,8 @@ from patlint.source.sites import Use
 
 LONG = 10_000
 """Length of the text for which a polynomial's steps are told, in characters."""
-SHORT = 30
-"""Length of the text for which an exponential's steps are told, in characters."""
-
+ENDLESS = 1e9
+"""Steps for which an exponential's text is sought: some seconds, and twice as long with every further pump."""
 
 def judged(subject: Subject) -> Iterator[tuple[Manner, Use | None, Ambiguity]]:
     """Each manner in which the pattern is seen to be used, once, with its ambiguity.
@@ -43,14 +42,13 @@ def figures(slow: SlowText) -> str:
     """How many steps a text of a telling length takes, reckoned from the counted ones."""
     n, steps = slow.steps[-1]
     size = len(slow.prefix) + len(slow.suffix)
-    length = SHORT if slow.growth == "exponential" else LONG
-    wanted = max((length - size) // len(slow.pump), n)
     if slow.growth == "exponential":
         m, fewer = slow.steps[max(len(slow.steps) - 4, 0)]
         base = log(steps / fewer) / (n - m)
-        reckoned = log(steps) + base * (wanted - n)
-        count = exp(min(reckoned, 600))
+        wanted = max(n + ceil((log(ENDLESS) - log(steps)) / base), n)
+        count = exp(log(steps) + base * (wanted - n))
     else:
+        wanted = max((LONG - size) // len(slow.pump), n)
         count = steps * (wanted / n) ** slow.growth
     return f"a text of {size + wanted * len(slow.pump):,} characters takes {in_words(count)} steps"
 

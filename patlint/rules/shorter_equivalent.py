@@ -44,10 +44,11 @@ def _needed(subject: Subject) -> tuple[set[Mode], Keeps]:
     modes: set[Mode] = set()
     keeps: Keeps = "language"
     for use in subject.uses:
+        # A match from a place inside the text needs equal matches in every surrounding: spans in search.
         modes.add("search" if use.positioned and use.mode == "match" else use.mode)
         if use.looks_at in ("groups", "unknown"):
             keeps = "groups"
-        elif (use.looks_at == "span" or use.function in SCANNING) and keeps == "language":
+        elif (use.looks_at == "span" or use.function in SCANNING or use.positioned) and keeps == "language":
             keeps = "spans"
     if not subject.site.uses_seen or not modes:
         return modes | {"search", "fullmatch"}, "groups"

@@ -27,7 +27,7 @@ from patlint.source.places import Text
 from patlint.source.reasons import Opaque
 from patlint.source.scopes import Scope
 from patlint.source.sites import Function, Module, Place, Site, Unresolved, Use
-from patlint.source.spelled import Spelled, whole_place
+from patlint.source.spelled import Spelled
 from patlint.source.usage import Uses
 from patlint.source.waivers import read_waivers
 
@@ -281,4 +281,4 @@ def merge(sites: list[Site]) -> list[Site]:
     return list(merged.values())
 
 
-__all__ = ["find_patterns", "mentions_re", "parse", "read_module", "whole_place"]
+__all__ = ["find_patterns", "mentions_re", "parse", "read_module"]

@@ -110,13 +110,3 @@ def merged(part: Spelled, value: str | bytes) -> Spelled:
     if not spelling:
         return Spelled(value, (Run(value, place, first.raw, (), ()),))
     return Spelled(value, (Run(value, place, first.raw, (place,), (spelling,)),))
-
-
-def whole_place(part: Spelled, otherwise: Place) -> Place:
-    """From the first run of `part` to its last where they stand in that order, else `otherwise`."""
-    if not part.runs:
-        return otherwise
-    first, last = part.runs[0].whole, part.runs[-1].whole
-    if (last.end_line, last.end_column) < (first.line, first.column):
-        return otherwise
-    return Place(first.line, first.column, last.end_line, last.end_column)

@@ -9,7 +9,8 @@ import re
 import pytest
 
 from patlint.language import Language
-from patlint.machine import algebra as a
+from patlint.machine import expr as a
+from patlint.machine.algebra import Algebra, reverse
 from patlint.machine.alphabet import minterms
 from patlint.machine.dfa import Dfa, minimal
 from patlint.machine.expression import MOST_STATES, complexity, expression, in_order, rank, tree_of
@@ -17,8 +18,8 @@ from patlint.syntax.charset import ALL_CODES, CharSet
 from patlint.syntax.render import render, render_set
 
 
-def plain_algebra(**options: bool) -> a.Algebra:
-    return a.Algebra(lambda chars: render_set(chars, 0, False), **options)
+def plain_algebra(**options: bool) -> Algebra:
+    return Algebra(lambda chars: render_set(chars, 0, False), **options)
 
 
 def short(pattern: str, **options: bool) -> str | None:
@@ -40,7 +41,8 @@ def automaton(letters: str, table: list[list[int]], ends: set[int]) -> Dfa:
     return minimal(alphabet, rows, [state in ends for state in range(dead + 1)])
 
 
-# Worked examples of state elimination: table over the letters, accepting states, the expression in the source.
+# Worked examples of state elimination: table over the letters, accepting states, the expression in the
+# source.
 WORKED = [
     # Sipser, Introduction to the Theory of Computation, 2nd ed., example 1.66 (from memory)
     ("ab", [[0, 1], [1, 1]], {1}, "a*b(?:a|b)*"),
@@ -206,4 +208,4 @@ def test_order_of_branches_and_rank() -> None:
     leaves = [CharSet.of_chars("x"), CharSet.of_chars("y")]
     assert made.text(in_order(both, leaves)) == "xy|yy"
     assert rank(x, made) < rank(both, made)
-    assert a.reverse(a.Chain((x, y, made.star(x))), made) == made.chain((made.star(x), y, x))
+    assert reverse(a.Chain((x, y, made.star(x))), made) == made.chain((made.star(x), y, x))

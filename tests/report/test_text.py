@@ -12,7 +12,6 @@ from patlint.report.text import Style, finding_block, lint_report, summary_line
 from patlint.rules.finding import SlowWitness, Suggestion, TextWitness
 from patlint.run import RunResult
 
-
 PLAIN = Style()
 
 

@@ -1,8 +1,8 @@
 r"""Pairs of patterns that mean the same: a long form as it is met in code, and the short form of an expert.
 
 Source: written for this test from common practice (no source), names and formats invented. All are for mode
-fullmatch and keeps="language" unless a row says otherwise; `known` marks those for which `shorten` finds nothing as
-short, with the reason.
+fullmatch and keeps="language" unless a row says otherwise; `known` marks those for which `shorten` finds
+nothing as short, with the reason.
 """
 
 from __future__ import annotations
@@ -114,7 +114,7 @@ PAIRS = [
     # Anchors between
     Pair(r"^\s*in$|^\s*on$", r"^\s*[io]n$", mode="search"),
     Pair(r"\bpx\b|\bpt\b", r"\bp[xt]\b", mode="search", keeps="spans"),
-    Pair(r"^\s*pier\s*$|^\s*crane\s*$", r"^\s*(?:pier|crane)\s*$", mode="search"),
+    Pair(r"^\s*pier\s*$|^\s*crane\s*$|^\s*gate\s*$", r"^\s*(?:pier|crane|gate)\s*$", mode="search"),
     Pair(
         r"[0-9a-f]{2}:[0-9a-f]{2}:[0-9a-f]{2}:[0-9a-f]{2}:[0-9a-f]{2}:[0-9a-f]{2}",
         r"(?:[0-9a-f]{2}:){5}[0-9a-f]{2}",
@@ -129,6 +129,11 @@ PAIRS = [
     Pair(r"(?P<day>[0-90])/(?:1|2)", r"(?P<day>[0-9])/[12]", keeps="groups"),
     Pair(r"(['\"])(?:a|b)*\1", r"(['\"])[ab]*\1", keeps="groups"),
     Pair(r"(?<=[##])(?:\d)+", r"(?<=[#])\d+", mode="search", keeps="spans"),
-    Pair(r"(?<=[##])(?:\d)+", r"(?<=#)\d+", mode="search", known="brackets around one symbol are taken for an escape"),
+    Pair(
+        r"(?<=[##])(?:\d)+",
+        r"(?<=#)\d+",
+        mode="search",
+        known="brackets around one symbol are taken for an escape",
+    ),
     Pair(r"(?:ab|a)c|d", r"ab?c|d", mode="search", keeps="spans"),
 ]

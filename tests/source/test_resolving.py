@@ -7,6 +7,8 @@ import pytest
 from patlint.source import find_patterns, read_module, reasons
 from tests.source.recording import run
 
+pytestmark = pytest.mark.filterwarnings("ignore::DeprecationWarning")  # positional counts, 3.13
+
 RESOLVED = {
     "plain": "import re\nre.match('a+', 'x')",
     "renamed": "import re as x\nx.search('a', '')",

@@ -1,0 +1,130 @@
+"""The proofs against `re`: equal automata mean equal behaviour, and different ones show a difference."""
+
+from __future__ import annotations
+
+import itertools
+import random
+
+import pytest
+
+from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
+from patlint.rewrite.proof import ends, part_language, same_language, same_spans
+from patlint.syntax.parser import parse
+from tests.rewrite.oracle import ends_of, random_pattern
+
+SHORT_TEXTS = [
+    *("".join(letters) for n in range(5) for letters in itertools.product("abc", repeat=n)),
+    *("".join(letters) for n in range(1, 3) for letters in itertools.product("ab-d\n", repeat=n)),
+]
+
+
+def order(part: str) -> object:
+    pattern = parse(part)
+    return ends(pattern, pattern.root, DEFAULT_LIMITS)
+
+
+SAME_ORDER = [
+    ("a|b", "[ab]"),
+    ("aa*", "a+"),
+    ("(?:a?){3}", "a{0,3}"),
+    ("(?:a+)?", "a*"),
+    ("a|ab", "ab??"),
+    ("ab|a", "ab?"),
+    ("a*a*", "a*"),
+    ("(?:a|b)c|(?:a|b)", "[ab]c?"),
+    ("(?:a|-|--)?[abc]+", "(?:-|--)?[abc]+"),
+    ("a{2,3}?", "aaa??"),
+]
+OTHER_ORDER = [
+    ("a|ab", "ab?"),
+    ("a*", "a*?"),
+    ("a*", "a+"),
+    ("|a", "a?"),
+    ("a|abc|ab", "a|ab|abc"),
+    ("(?:a|ab)(?:c|bc)", "(?:ab|a)(?:c|bc)"),
+    ("(?:a|ab)(?:c|bcd)", "(?:ab|a)(?:c|bcd)"),
+]
+
+
+@pytest.mark.parametrize(("one", "other"), SAME_ORDER)
+def test_equal_ends(one: str, other: str) -> None:
+    assert order(one) == order(other)
+
+
+@pytest.mark.parametrize(("one", "other"), OTHER_ORDER)
+def test_other_ends(one: str, other: str) -> None:
+    differs = any(ends_of(one, text) != ends_of(other, text) for text in [*SHORT_TEXTS, "abcd"])
+    assert (order(one) != order(other)) == differs
+
+
+def test_ends_are_those_of_re() -> None:
+    """Pairs of random parts: automata are equal exactly where `re` finds the same ends in the same order."""
+    generator = random.Random(5)
+    rows: dict[object, list[tuple[str, tuple[tuple[int, ...], ...]]]] = {}
+    parts = {random_pattern(generator, 2, pure=True) for _ in range(260)}
+    for part in sorted(parts):
+        seen = tuple(tuple(ends_of(part, text)) for text in SHORT_TEXTS)
+        rows.setdefault(order(part), []).append((part, seen))
+    alike = 0
+    for members in rows.values():
+        for part, seen in members[1:]:
+            assert seen == members[0][1], (part, members[0][0])
+            alike += 1
+    # Different automata: almost always a short text shows it.
+    distinct = len({members[0][1] for members in rows.values()})
+    assert distinct >= 0.9 * len(rows)
+    assert alike > 20
+    assert len(rows) > 80
+
+
+def test_a_part_must_not_look_outside() -> None:
+    for part in (r"a\b", "a$", "^a", "a(?=b)"):
+        with pytest.raises(ValueError, match="a part with assertions has no ends of its own"):
+            order(part)
+
+
+def test_limits_are_raised() -> None:
+    pattern = parse("(?:a|b)*a(?:a|b){6}")
+    for limits, name in ((Limits(states=20), "states"), (Limits(work=50), "work")):
+        with pytest.raises(LimitReached) as caught:
+            ends(pattern, pattern.root, limits)
+        assert caught.value.limit == name
+    assert len(part_language(pattern, pattern.root, DEFAULT_LIMITS)) > 100
+
+
+LANGUAGES = [
+    ("jars?", "jar", "search", True),
+    ("jars?", "jar", "fullmatch", False),
+    ("^a$|^b$", "^[ab]$", "search", True),
+    ("a*", "b*", "search", False),  # equal, but vacuous: another matter
+    (r"(a)\1", "aa", "fullmatch", False),  # not said exactly
+]
+
+
+@pytest.mark.parametrize(("one", "other", "mode", "same"), LANGUAGES)
+def test_languages(one: str, other: str, mode: str, same: bool) -> None:
+    assert same_language(parse(one), parse(other), mode, DEFAULT_LIMITS) is same  # type: ignore[arg-type]
+
+
+SPANS = [
+    # CONSTRUCTS.md's pairs: equal `match`, different finditer or search
+    ("(?:)", "(?:|a)", False, True),
+    ("(?:)", "(?:|a)", True, False),
+    ("(?:$)", "(?:^)$", False, False),
+    ("ab|a", "ab?", True, True),
+    ("a|ab", "ab?", True, False),
+    (r"\bpx\b|\bpt\b", r"\bp[xt]\b", True, True),
+    (r"(a)\1", r"(a)\1", True, False),  # not said exactly
+]
+
+
+@pytest.mark.parametrize(("one", "other", "scanning", "same"), SPANS)
+def test_spans(one: str, other: str, scanning: bool, same: bool) -> None:
+    assert same_spans(parse(one), parse(other), scanning, DEFAULT_LIMITS) is same
+
+
+def test_a_limit_is_no_proof() -> None:
+    one = parse("(?:a|b)*a(?:a|b){6}")
+    assert same_language(one, one, "fullmatch", DEFAULT_LIMITS)
+    assert not same_language(one, one, "fullmatch", Limits(states=20))
+    assert not same_spans(one, one, True, Limits(states=20))

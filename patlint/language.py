@@ -171,7 +171,9 @@ class Language:
         self._ask(True, False)
         other._ask(True, False)
         found = relations.relation(self.dfa, other.dfa, self.limits)
-        texts = [None if codes is None else self._text(codes) for codes in (found.only_a, found.only_b, found.both)]
+        texts = [
+            None if codes is None else self._text(codes) for codes in (found.only_a, found.only_b, found.both)
+        ]
         return Related(found.word, *texts)
 
     def _same_kind(self, other: Language) -> None:
@@ -252,7 +254,11 @@ class Related:
 
 
 def relate(
-    first: str | bytes, second: str | bytes, flags: int = 0, mode: Mode = "fullmatch", target: Target | None = None
+    first: str | bytes,
+    second: str | bytes,
+    flags: int = 0,
+    mode: Mode = "fullmatch",
+    target: Target | None = None,
 ) -> Related:
     """How the languages of two patterns lie to each other, as seen from the first.
 

@@ -31,14 +31,14 @@ def language(nfa: Nfa, mode: Mode) -> Dfa:
     return minimal(nfa.alphabet, table, accepting)
 
 
-def subset_table(
-    nfa: Nfa, mode: Mode, start: tuple[Thread, ...]
-) -> tuple[list[tuple[int, ...]], list[bool]]:
+def subset_table(nfa: Nfa, mode: Mode, start: tuple[Thread, ...]) -> tuple[list[tuple[int, ...]], list[bool]]:
     """The complete, not yet minimal automaton from the threads `start`; state 0 is the first."""
     end_bit = 1 << nfa.accept
     stays = mode != "fullmatch"
     top: State = (end_bit, NO_BOUND)
-    begin = {context: split(nfa.initial(context)) for context in set(nfa.contexts)} if mode == "search" else {}
+    begin = (
+        {context: split(nfa.initial(context)) for context in set(nfa.contexts)} if mode == "search" else {}
+    )
     follow: dict[tuple[int, int], tuple[int, tuple[Thread, ...]]] = {}
 
     def after(position: int, context: int) -> tuple[int, tuple[Thread, ...]]:

@@ -89,14 +89,15 @@ def same(a: t.Node | t.SetItem, b: t.Node | t.SetItem) -> bool:
             return a.code == b.code and a.flags == b.flags
         case t.Range(), t.Range():
             return (a.low, a.high) == (b.low, b.high)
-        case (t.ClassEscape(), t.ClassEscape()) | (t.Anchor(), t.Anchor()):
+        case t.ClassEscape(), t.ClassEscape():
+            return a.kind == b.kind and a.flags == b.flags
+        case t.Anchor(), t.Anchor():
             return a.kind == b.kind and a.flags == b.flags
         case t.Dot(), t.Dot():
             return a.flags == b.flags
         case t.Set(), t.Set():
-            return (
-                (a.negated, a.flags, len(a.items)) == (b.negated, b.flags, len(b.items))
-                and all(map(same, a.items, b.items))
+            return (a.negated, a.flags, len(a.items)) == (b.negated, b.flags, len(b.items)) and all(
+                map(same, a.items, b.items)
             )
         case t.Sequence(), t.Sequence():
             return len(a.items) == len(b.items) and all(map(same, a.items, b.items))

@@ -67,7 +67,11 @@ class Matcher:
         self.members = [tuple(bool(mask >> i & 1) for i in range(width)) for mask in masks]
         """For each distinct set whether a minterm belongs to it."""
         self.set_of = [
-            index[i.chars] if isinstance(i, p.Char | p.Run) else index[i.words] if isinstance(i, p.Assert) else 0
+            index[i.chars]
+            if isinstance(i, p.Char | p.Run)
+            else index[i.words]
+            if isinstance(i, p.Assert)
+            else 0
             for i in program.code
         ]
         """The number of the set that an instruction asks for; 0 where it asks for none."""

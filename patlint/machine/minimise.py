@@ -42,8 +42,8 @@ def _hopcroft(table: Sequence[tuple[int, ...]], initial: list[int]) -> list[int]
             sources[target].append(state)
         before.append(sources)
     blocks: list[set[int]] = [set() for _ in range(max(initial) + 1)]
-    for state, block in enumerate(initial):
-        blocks[block].add(state)
+    for state, number in enumerate(initial):
+        blocks[number].add(state)
     blocks = [block for block in blocks if block]
     owner = [0] * len(table)
     for index, block in enumerate(blocks):

@@ -139,6 +139,7 @@ class Nfa:
                 yield from self.closure(op.next, context)
             case p.Run():
                 count = position - self.first[pc] + 1
+                again: int | None
                 if op.maximum is None:
                     again = position if count >= op.minimum else position + 1
                 else:

@@ -33,9 +33,7 @@ MARKER = 0x110000
 Threads = tuple[Thread, ...]
 
 
-def _ordered(
-    nfa: Nfa, moves: Iterable[tuple[Thread, int]], cut: bool
-) -> tuple[Threads, tuple[int, ...]]:
+def _ordered(nfa: Nfa, moves: Iterable[tuple[Thread, int]], cut: bool) -> tuple[Threads, tuple[int, ...]]:
     """Threads in order without those that a better equal one makes pointless, and where each came from."""
     best: dict[int, list[frozenset[int]]] = {}
     kept: list[Thread] = []

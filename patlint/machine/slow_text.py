@@ -191,7 +191,11 @@ def _confirm(
             break  # nothing promises more than a text that is refused at great cost
     best: SlowText | None = None
     for _, _, counts in sorted(candidates, key=lambda row: row[:2])[:2]:
-        growth = _exponential(counts, limits.turns // 3) if suspect.degree == EXPONENTIAL else _power(counts, limits.turns, most)
+        growth = (
+            _exponential(counts, limits.turns // 3)
+            if suspect.degree == EXPONENTIAL
+            else _power(counts, limits.turns, most)
+        )
         if growth is None:
             continue
         slow = SlowText(
@@ -274,8 +278,12 @@ def _exponential(counts: _Counts, turns: int) -> Growth | None:
         n, last = size, now
         if n > 40 and max(ratios[-3:]) < LEAST_BASE:
             return None
-    if len(ratios) < 4 or last < LEAST_STEPS:
+    if last < LEAST_STEPS:
         return None
+    if len(ratios) < 4:
+        # A great base leaves few sizes within the turns; a power's second ratio is at most 3/4 of its first.
+        steep = len(ratios) >= 2 and min(ratios[-2:]) > 3 and ratios[-1] > 0.9 * ratios[-2]
+        return "exponential" if steep else None
     # A power n ** d has ratios that sink towards 1 as (1 + 1 / n) ** d; those of a base do not sink.
     # Over three sizes, since texts of period 2 or 3 grow by fits and starts.
     half = len(ratios) // 2

@@ -214,12 +214,12 @@ def _components(edges: list[tuple[Edge, ...]]) -> tuple[list[int], frozenset[int
             continue
         work = [(root, 0)]
         while work:
-            node, place = work.pop()
+            node, begin = work.pop()
             if index[node] < 0:
                 index[node] = low[node] = counter
                 counter += 1
                 path.append(node)
-            for place in range(place, len(edges[node])):
+            for place in range(begin, len(edges[node])):
                 target = edges[node][place].target
                 if index[target] < 0:
                     work.append((node, place + 1))

@@ -14,11 +14,10 @@ def check(subject: Subject) -> Iterator[Finding]:
     if is_spelled_never(subject.pattern.root):
         return
     site = subject.site
-    modes: dict[Mode, None] = dict.fromkeys(
-        "search" if use.positioned else use.mode for use in subject.uses
-    )
+    modes: dict[Mode, None] = dict.fromkeys("search" if use.positioned else use.mode for use in subject.uses)
     # Where no use is seen only what holds in every use counts: search finds whatever any of them can.
-    for mode in modes or ("search",):
+    asked: tuple[Mode, ...] = tuple(modes) or ("search",)
+    for mode in asked:
         if not subject.language(mode).is_empty_for_sure():
             continue
         where = f"in {mode}" if modes else "in whatever way it is used"

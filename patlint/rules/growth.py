@@ -15,6 +15,7 @@ LONG = 10_000
 ENDLESS = 1e9
 """Steps for which an exponential's text is sought: some seconds, and twice as long with every further pump."""
 
+
 def judged(subject: Subject) -> Iterator[tuple[Manner, Use | None, Ambiguity]]:
     """Each manner in which the pattern is seen to be used, once, with its ambiguity.
 
@@ -55,7 +56,12 @@ def figures(slow: SlowText) -> str:
 
 def in_words(count: float) -> str:
     """A large number as one would say it."""
-    for size, word in ((1e15, "million million"), (1e12, "million million"), (1e9, "thousand million"), (1e6, "million")):
+    for size, word in (
+        (1e15, "million million"),
+        (1e12, "million million"),
+        (1e9, "thousand million"),
+        (1e6, "million"),
+    ):
         if count >= size:
             if size == 1e15:
                 return "over a thousand million million"

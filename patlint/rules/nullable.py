@@ -123,9 +123,7 @@ def _reads_something(dfa: Dfa) -> bool:
     """Whether some match is longer than nothing."""
     left = distances(dfa)
     marker = dfa.alphabet.classify(MARKER)
-    return any(
-        left[target] is not None for minterm, target in enumerate(dfa.table[0]) if minterm != marker
-    )
+    return any(left[target] is not None for minterm, target in enumerate(dfa.table[0]) if minterm != marker)
 
 
 RULE = Rule(

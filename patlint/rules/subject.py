@@ -7,7 +7,9 @@ for the rule that asked.
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from functools import cached_property
+from typing import TypeVar, cast
 
 from patlint.language import Language
 from patlint.limits import LimitReached, Limits
@@ -20,6 +22,8 @@ from patlint.machine.slow_text import Ambiguity, Manner, ambiguity_of
 from patlint.source.sites import SCANNING, Mode, Site, Use
 from patlint.syntax import tree as t
 from patlint.syntax.parser import PatternError, parse
+
+Answer = TypeVar("Answer")
 
 
 class Subject:
@@ -82,19 +86,17 @@ class Subject:
 
     def used(self, mode: Mode, not_empty: bool) -> set[int]:
         """The positions of `written` that a winning thread reads. Raises LimitReached."""
-        return self._keep(
-            ("used", (mode, not_empty)), lambda: used_positions(self.written, mode, not_empty)
-        )
+        return self._keep(("used", (mode, not_empty)), lambda: used_positions(self.written, mode, not_empty))
 
     def ambiguity(self, manner: Manner) -> Ambiguity:
         return self._keep(("ambiguity", manner), lambda: ambiguity_of(self.program, manner, self.limits))
 
     def ambiguities(self) -> list[Ambiguity]:
         """Those that a rule has asked for."""
-        return [found for (what, _), found in self._kept.items() if what == "ambiguity"]  # type: ignore[misc]
+        return [found for found in self._kept.values() if isinstance(found, Ambiguity)]
 
-    def _keep(self, key, compute):  # type: ignore[no-untyped-def]
-        found = self._kept.get(key)
+    def _keep(self, key: tuple[str, object], compute: Callable[[], Answer]) -> Answer:
+        found: object = self._kept.get(key)
         if found is None:
             try:
                 found = compute()
@@ -103,7 +105,7 @@ class Subject:
             self._kept[key] = found
         if isinstance(found, LimitReached):
             raise found
-        return found
+        return cast(Answer, found)
 
     def text(self, codes: tuple[int, ...]) -> str | bytes:
         return bytes(codes) if self.pattern.is_bytes else "".join(map(chr, codes))

@@ -54,7 +54,12 @@ def _judge(subject: Subject, offset: int, spelled: str) -> Finding | None:
     mode = subject.uses[0].mode if subject.uses else "search"
     try:
         text = text_between(subject, other, mode)
-        if text is None and subject.exact and other.groups == subject.pattern.groups and spelled[1] not in "1234567":
+        if (
+            text is None
+            and subject.exact
+            and other.groups == subject.pattern.groups
+            and spelled[1] not in "1234567"
+        ):
             return None  # written differently, but the same language
     except LimitReached:
         text = None
@@ -67,7 +72,9 @@ def _judge(subject: Subject, offset: int, spelled: str) -> Finding | None:
         mode=mode,
         witness=None if text is None else TextWitness(text),
         proof=f"with {spelled} left for re the pattern has another meaning",
-        evidence="on this text the outcome would be another with the escape left for re" if text is not None else "",
+        evidence="on this text the outcome would be another with the escape left for re"
+        if text is not None
+        else "",
         way_out="write the pattern as a raw literal, or double the backslash",
     )
 
@@ -83,9 +90,18 @@ def _beside_word(pattern: str | bytes, offset: int) -> bool:
 
 
 def _name(code: int) -> str:
-    names = {7: "a bell", 8: "a backspace", 9: "a tab", 10: "a line feed", 11: "a vertical tab", 12: "a form feed"}
+    names = {
+        7: "a bell",
+        8: "a backspace",
+        9: "a tab",
+        10: "a line feed",
+        11: "a vertical tab",
+        12: "a form feed",
+    }
     names |= {13: "a carriage return", 32: "a blank", 0: "a null character"}
-    return names.get(code) or (f"the character {chr(code)}" if 32 < code < 127 else f"the character U+{code:04X}")
+    return names.get(code) or (
+        f"the character {chr(code)}" if 32 < code < 127 else f"the character U+{code:04X}"
+    )
 
 
 RULE = Rule(
@@ -104,7 +120,7 @@ Reported only where the text that re receives means something else than the
 escape would have meant.
 """,
     wrong=Example(
-        "import re\n\nGROSS = re.compile(\"\\bGROSS\\b\")\n",
+        'import re\n\nGROSS = re.compile("\\bGROSS\\b")\n',
         "looks for the word between two backspaces",
     ),
     right=Example('import re\n\nGROSS = re.compile(r"\\bGROSS\\b")\n'),

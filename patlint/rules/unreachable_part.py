@@ -149,8 +149,6 @@ left out (`[a-za]`) is not reported here.
         'import re\n\n\ndef terminal(text):\n    return re.match(r"east|eastern", text).group()\n',
         "east always wins before eastern is tried",
     ),
-    right=Example(
-        'import re\n\n\ndef terminal(text):\n    return re.match(r"eastern|east", text).group()\n'
-    ),
+    right=Example('import re\n\n\ndef terminal(text):\n    return re.match(r"eastern|east", text).group()\n'),
     check=check,
 )

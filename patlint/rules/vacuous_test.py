@@ -45,11 +45,9 @@ The empty literal "" as a pattern is the usual way to write "always" and is
 not reported.
 """,
     wrong=Example(
-        'import re\n\n\ndef is_weight(text):\n    if re.match(r"[0-9]*", text):\n        return True\n    return False\n',
+        'import re\n\n\ndef is_weight(text):\n    return bool(re.match(r"[0-9]*", text))\n',
         "every text begins with no digit at all",
     ),
-    right=Example(
-        'import re\n\n\ndef is_weight(text):\n    if re.fullmatch(r"[0-9]+", text):\n        return True\n    return False\n'
-    ),
+    right=Example('import re\n\n\ndef is_weight(text):\n    return bool(re.fullmatch(r"[0-9]+", text))\n'),
     check=check,
 )

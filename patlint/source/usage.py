@@ -127,7 +127,13 @@ class Uses:
         if outcome is None or not outcome.ends:
             return False
         loop = self._loop(call)
-        return loop is not None and any(self._within(end, loop) for end in outcome.ends)
+        if loop is None or not any(self._within(end, loop) for end in outcome.ends):
+            return False
+        # Only where nothing but the match decides whether the loop goes on.
+        if not self._within(call, loop.test) and not isinstance(loop.test, ast.Name):
+            return False
+        ways_out = (ast.Break, ast.Return, ast.Raise)
+        return not any(isinstance(each, ways_out) for line in loop.body for each in ast.walk(line))
 
     def _loop(self, node: ast.AST) -> ast.While | None:
         """The innermost `while` around `node` in the same function."""
@@ -140,11 +146,11 @@ class Uses:
             current = self.index.parents.get(current)
         return None
 
-    def _within(self, node: ast.AST, loop: ast.While) -> bool:
+    def _within(self, node: ast.AST, outer: ast.AST) -> bool:
         current: ast.AST | None = node
-        while current is not None and current is not loop:
+        while current is not None and current is not outer:
             current = self.index.parents.get(current)
-        return current is loop
+        return current is outer
 
 
 def _integer(node: ast.expr | None) -> int | None:

@@ -90,7 +90,13 @@ def test_what_is_kept_decides() -> None:
     assert shorten(r"(a|b|c|d)\1", keeps="language") == r"([a-d])\1"
     proposal = suggest(parse("(?:a|b)+"), "search", "spans")
     assert proposal is not None
-    assert (proposal.pattern, proposal.keeps, proposal.saved) == ("[ab]+", "groups", 4)
+    assert (proposal.pattern, proposal.keeps, proposal.saved) == ("[ab]+", "groups", 3)
+
+
+def test_order_matters_in_atomic_groups() -> None:
+    for pattern in ("(?>pier|piers)s", "(?>pier|piers)[a-z]", "(?:(?:pier|piers)[st]){2}+x"):
+        found = shorten(pattern, target=(3, 11))
+        assert found is None or "piers??" in str(found), found
 
 
 def test_vacuous_and_empty_results_are_not_given() -> None:

@@ -29,7 +29,11 @@ def without(pattern: str, finding: Finding) -> str:
         if isinstance(node, t.Alternation) and "branch" in finding.message:
             for index, branch in enumerate(node.branches):
                 if branch.span == span:
-                    return pattern[: start - 1] + pattern[end:] if index else pattern[:start] + pattern[end + 1 :]
+                    return (
+                        pattern[: start - 1] + pattern[end:]
+                        if index
+                        else pattern[:start] + pattern[end + 1 :]
+                    )
     return pattern[:start] + pattern[end:]
 
 
@@ -42,7 +46,9 @@ def outcome(compiled: re.Pattern[str], text: str, function: Function) -> object:
 
 def random_pattern(generator: random.Random, depth: int) -> str:
     if depth == 0 or generator.random() < 0.2:
-        return generator.choice(["a", "b", "a", "b", "ab", ".", "[ab]", "", "^", "$", r"\b", "(?=a)", "(?!b)", r"\n"])
+        return generator.choice(
+            ["a", "b", "a", "b", "ab", ".", "[ab]", "", "^", "$", r"\b", "(?=a)", "(?!b)", r"\n"]
+        )
     inner = [random_pattern(generator, depth - 1) for _ in range(2)]
     return generator.choice(
         [

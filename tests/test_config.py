@@ -183,6 +183,7 @@ SPECIFIERS = [
     (">= 3.11, <4", (3, 11)),
     (">3.10", (3, 10)),  # 3.10.1 is above 3.10
     (">3.10.99", (3, 11)),
+    (">3.11.40", (3, 12)),
     ("~=3.11", (3, 11)),
     ("~=3.12.2", (3, 12)),
     ("==3.11.*", (3, 11)),
@@ -215,7 +216,7 @@ def test_requires_python_as_packaging_reads_it() -> None:
         minors = [minor for minor in range(60) if any(f"3.{minor}.{micro}" in allowed for micro in range(41))]
         assert min(max((3, minors[0]), TARGETS[0]), TARGETS[-1]) == target, specifier
         tried += 1
-    assert tried == 16
+    assert tried == 17
 
 
 # Globs: the reading of `patlint.globs`' own docstring.

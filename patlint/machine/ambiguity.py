@@ -129,7 +129,7 @@ def _two_cycles(
                 if edge.mask & other.mask and edge.target != other.target:
                     divergences.append((node, (edge.target, other.target), edge.mask & other.mask))
     seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None] = {}
-    origin: dict[tuple[int, ...], tuple[int, int, tuple[int, int]]] = {}
+    origins: dict[tuple[int, ...], dict[int, int]] = {}
     order: list[tuple[int, int]] = []
     for node, pair, mask in divergences:
         if pair[0] == pair[1]:
@@ -138,13 +138,19 @@ def _two_cycles(
                 pump = (letter(mask), *back)
                 if best is None or len(pump) < len(best[1]):
                     best = node, pump, _parts(graph, node, pair[0])
-        elif pair not in seen:
-            seen[pair] = None
-            origin[pair] = (node, letter(mask), pair)
-            order.append(pair)
+        else:
+            if pair not in seen:
+                seen[pair] = None
+                order.append(pair)
+            origins.setdefault(pair, {})[node] = letter(mask)
     if best is not None:
         return best
+    more = min(len(nodes), 64)
     for pair in order:
+        if best is not None:
+            more -= 1  # a meeting is known: look a little further for one with a shorter pump
+            if more < 0:
+                break
         for edge in graph.edges[pair[0]]:
             if edge.target not in inside:
                 continue
@@ -158,19 +164,22 @@ def _two_cycles(
                 if len(seen) >= limit:
                     raise LimitReached("product", limit)
                 seen[target] = (pair, letter(mask))
-                if target[0] == target[1]:
-                    middle = _spell(seen, target)
-                    first = pair
+                if target[0] != target[1]:
+                    order.append(target)
+                    continue
+                first: tuple[int, ...] = pair
+                step = seen[first]
+                while step is not None:
+                    first = step[0]
                     step = seen[first]
-                    while step is not None:
-                        first = step[0]  # type: ignore[assignment]
-                        step = seen[first]
-                    node, code, split = origin[first]
-                    back = _path(graph, target[0], node, inside, letter)
-                    assert back is not None
-                    return node, (code, *middle, *back), _parts(graph, *split)
-                order.append(target)
-    return None
+                begin = origins[first]
+                node = target[0] if target[0] in begin else next(iter(begin))
+                back = _path(graph, target[0], node, inside, letter)
+                assert back is not None
+                pump = (begin[node], *_spell(seen, target), *back)
+                if best is None or len(pump) < len(best[1]):
+                    best = node, pump, _parts(graph, *first)
+    return best
 
 
 def _path(graph: Walks, start: int, end: int, inside: set[int], letter: _Letters) -> Codes | None:

@@ -285,10 +285,11 @@ def _exponential(counts: _Counts, turns: int) -> Growth | None:
         steep = len(ratios) >= 2 and min(ratios[-2:]) > 3 and ratios[-1] > 0.9 * ratios[-2]
         return "exponential" if steep else None
     # A power n ** d has ratios that sink towards 1 as (1 + 1 / n) ** d; those of a base do not sink.
-    # Over three sizes, since texts of period 2 or 3 grow by fits and starts.
-    half = len(ratios) // 2
-    late = math.prod(ratios[-3:]) ** (1 / 3)
-    early = math.prod(ratios[half - 2 : half + 1]) ** (1 / 3) if half >= 2 else late
+    # Over six sizes where there are enough, since texts of period 2 or 3 grow by fits and starts.
+    window = 6 if len(ratios) >= 12 else 3
+    half = (len(ratios) + window) // 2
+    late = math.prod(ratios[-window:]) ** (1 / window)
+    early = math.prod(ratios[half - window : half]) ** (1 / window)
     grows = late > LEAST_BASE and late > 0.8 * early and late > (1 + 1 / n) ** 5
     return "exponential" if grows else None
 

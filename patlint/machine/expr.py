@@ -118,7 +118,7 @@ class Writer:
         ):
             rest = body * (low - 1) + body + "+" if high is None else body * low + (body + "?") * (high - low)
             rest += mark
-            bare = len(body) == 1 or not self.braces
+            bare = not self.braces or (len(body) == 1 and low == high and body != " ")
             doubled = low == high == 2 and len(body) < DOUBLED and not self.braces
             if doubled or (bare and len(rest) <= len(short)):
                 return rest

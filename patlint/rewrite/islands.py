@@ -135,6 +135,7 @@ def _inside(
             if node.add_flags & _TYPE_FLAGS:
                 flags &= ~_TYPE_FLAGS
             flags = (flags | node.add_flags) & ~node.del_flags & _LEAF_FLAGS
+            first, last = first and node.index is None, last and node.index is None
             yield from _below(node.body, "loose", flags, first, last, is_bytes, through)
         case t.Repeat():
             yield from _below(node.body, "tight", flags, False, False, is_bytes, through)
@@ -142,6 +143,17 @@ def _inside(
             yield from _below(node.body, "loose", flags, False, False, is_bytes, through)
         case _:
             return
+
+
+def mixes_cases(node: t.Node, is_bytes: bool) -> bool:
+    """Whether the same letter is written in both cases where case does not count, so that the author's spelling
+    cannot be kept."""
+    codes: dict[object, int] = {}
+    return any(
+        codes.setdefault(char_set(each, is_bytes), each.code) != each.code
+        for each in t.walk(node)
+        if isinstance(each, t.Literal) and each.flags & t.IGNORECASE
+    )
 
 
 def has_comment(text: str, verbose: bool) -> bool:

@@ -43,6 +43,7 @@ from patlint.rewrite.islands import (
     has_comment,
     inner_islands,
     islands,
+    mixes_cases,
     shape,
     splice,
 )
@@ -232,7 +233,7 @@ class _Search:
         start, end = island.span
         old = self.text[start:end]
         node = island.node
-        if len(old) < 2 or is_word(node) or has_comment(old, self.habits.verbose):
+        if len(old) < 2 or is_word(node) or self.is_fixed(island):
             return
         anchored = any(isinstance(each, t.Anchor) for each in t.walk(node))
         captures = sum(isinstance(each, t.Group) and each.index is not None for each in t.walk(node))
@@ -261,6 +262,13 @@ class _Search:
             yield _Edit(island, text, read.root, certain, len(old) - len(text))
             if certain:
                 return
+
+    def is_fixed(self, island: Island) -> bool:
+        """Whether an island cannot be written anew without loss."""
+        start, end = island.span
+        return has_comment(self.text[start:end], self.habits.verbose) or (
+            mixes_cases(island.node, self.parsed.is_bytes)
+        )
 
     def texts(self, island: Island, room: int, old: _Known) -> dict[str, bool]:
         """Candidates for an island; True for those that are written anew from the automaton."""
@@ -291,7 +299,7 @@ class _Search:
         """As `best`, without what may be missing at the ends of the pattern."""
         left = island.first and self.mode == "search"
         start, end = island.span
-        if not (left or island.last) or has_comment(self.text[start:end], self.habits.verbose):
+        if not (left or island.last) or self.is_fixed(island):
             return self.best(island)
         algebra = self.algebra(island.flags, False)
         expr = expression_of(island.node, algebra, self.parsed.is_bytes)

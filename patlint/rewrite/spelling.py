@@ -77,7 +77,7 @@ class Habits:
         found = self.known.get(key)
         if found is None:
             found = self._composed(chars, flags)
-            if found is None or chars.size() > _MOST:
+            if found is None or (chars.size() > _MOST and found != UNREADABLE):
                 other = self._canonical(chars, flags)
                 found = other if found is None or len(other) < len(found) else found
             self.known[key] = found

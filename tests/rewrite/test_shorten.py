@@ -56,6 +56,7 @@ LEFT_ALONE = [
     r"[^\s\S]",
     r"",
     r"[aeiou]",
+    r"(?:x{1,2}|-)y {2,}",
     r"[A-Za-z_]\w*(?:\.[A-Za-z_]\w*)*",
 ]
 
@@ -97,6 +98,15 @@ def test_order_matters_in_atomic_groups() -> None:
     for pattern in ("(?>pier|piers)s", "(?>pier|piers)[a-z]", "(?:(?:pier|piers)[st]){2}+x"):
         found = shorten(pattern, target=(3, 11))
         assert found is None or "piers??" in str(found), found
+
+
+def test_letters_keep_their_case() -> None:
+    assert shorten("(?:Tide|tidE)s*(?:a|b)", re.I, "search") == "(?:Tide|tidE)s*[ab]"
+    assert shorten("Sat[a-z]*T?(?:a|b)", re.I) == "Sat[a-z]*T?[ab]"
+
+
+def test_groups_are_not_emptied() -> None:
+    assert shorten(r"(\w+)\.(\w*)", mode="match") is None
 
 
 def test_vacuous_and_empty_results_are_not_given() -> None:

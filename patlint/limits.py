@@ -30,7 +30,7 @@ class Limits:
     instructions: int = 20_000
     """Instructions of one program. `(?:[a-z]{2}-){1,3000}` needs 9,000."""
     states: int = 2_000
-    """States of one automaton while it is built. `(a|b)*a(a|b){10}` needs 2,048."""
+    """States of one automaton while it is built. `(a|b)*a(a|b){10}` needs 2,049 (one refuses other letters)."""
     work: int = 400_000
     """Thread steps (threads of a state times minterms) of one determinisation, about 0.3 s."""
     product: int = 20_000

@@ -13,61 +13,75 @@ Cost: states times minterms times the threads that read each. Limits: `states`, 
 
 from __future__ import annotations
 
-from typing import Literal, TypeAlias
+from typing import TYPE_CHECKING, Literal, TypeAlias
 
 from patlint.limits import LimitReached
 from patlint.machine.dfa import Dfa, minimal
-from patlint.machine.nfa import FREE, Conjunction, Nfa, Thread
+from patlint.machine.obligations import FREE, Conjunction, Thread
+
+if TYPE_CHECKING:
+    from patlint.machine.nfa import Nfa
 
 Mode: TypeAlias = Literal["match", "fullmatch", "search"]
 Bound: TypeAlias = frozenset[Thread]
-State: TypeAlias = tuple[int, Bound]
+State: TypeAlias = tuple[int, Bound, int]
 NO_BOUND: Bound = frozenset()
 
 
 def language(nfa: Nfa, mode: Mode) -> Dfa:
     """The minimal automaton of the texts on which the program matches in `mode`."""
-    table, accepting = subset_table(nfa, mode, nfa.initial(nfa.start_context))
+    table, accepting = subset_table(nfa, mode, nfa.initial(nfa.start_context), nfa.start_context)
     return minimal(nfa.alphabet, table, accepting)
 
 
-def subset_table(nfa: Nfa, mode: Mode, start: tuple[Thread, ...]) -> tuple[list[tuple[int, ...]], list[bool]]:
-    """The complete, not yet minimal automaton from the threads `start`; state 0 is the first."""
+def subset_table(
+    nfa: Nfa, mode: Mode, start: tuple[Thread, ...], context: int
+) -> tuple[list[tuple[int, ...]], list[bool]]:
+    """The complete, not yet minimal automaton from the threads `start` in `context`; state 0 is the first."""
     end_bit = 1 << nfa.accept
     stays = mode != "fullmatch"
-    top: State = (end_bit, NO_BOUND)
-    begin = (
-        {context: split(nfa.initial(context)) for context in set(nfa.contexts)} if mode == "search" else {}
-    )
-    follow: dict[tuple[int, int], tuple[int, tuple[Thread, ...]]] = {}
+    top: State = (end_bit, NO_BOUND, 0)
+    afresh: dict[int, tuple[int, tuple[Thread, ...]]] | None = {} if mode == "search" else None
+    follow: dict[tuple[int, int, int], tuple[int, tuple[Thread, ...]]] = {}
+    tracked = bool(nfa.trackers)
 
-    def after(position: int, context: int) -> tuple[int, tuple[Thread, ...]]:
-        key = (position, context)
+    def after(position: int, minterm: int, context: int) -> tuple[int, tuple[Thread, ...]]:
+        key = (position, context, minterm if position > nfa.pending else -1)
         found = follow.get(key)
         if found is None:
-            found = follow[key] = split(nfa.after(position, context))
+            found = follow[key] = split(nfa.after(position, minterm, context))
         return found
 
-    first = _state(*split(start), end_bit, stays)
+    def state_of(bits: int, pairs: list[Thread] | tuple[Thread, ...], context: int) -> State:
+        free, bound = _weakest(bits, pairs, end_bit, stays)
+        if stays and free == end_bit and not bound:
+            return top
+        return free, bound, context if tracked and (free or bound or afresh is not None) else 0
+
+    first = state_of(*split(start), context)
     number: dict[State, int] = {first: 0}
     order = [first]
     table: list[tuple[int, ...]] = []
     work = 0
     limits = nfa.limits
     obligations = nfa.obligations
-    moves = list(zip(nfa.readers, nfa.contexts, strict=True))
+    width = len(nfa.alphabet)
     for state in order:
         if stays and state == top:
-            table.append((number[top],) * len(moves))
+            table.append((number[top],) * width)
             continue
-        free, bound = state
+        free, bound, before = state
         row = []
-        for minterm, (readers, context) in enumerate(moves):
+        for minterm in range(width):
+            readers = nfa.readers[minterm]
+            context = nfa.next_context(before, minterm) if tracked else nfa.contexts[minterm]
             bits: int
             pairs: list[Thread]
-            if begin:
-                bits, start_pairs = begin[context]
-                pairs = list(start_pairs)
+            if afresh is not None:
+                begin = afresh.get(context)
+                if begin is None:
+                    begin = afresh[context] = split(nfa.initial(context))
+                bits, pairs = begin[0], list(begin[1])
             else:
                 bits, pairs = 0, []
             firing = free & readers
@@ -75,7 +89,7 @@ def subset_table(nfa: Nfa, mode: Mode, start: tuple[Thread, ...]) -> tuple[list[
                 low = firing & -firing
                 firing ^= low
                 work += 1
-                more, more_pairs = after(low.bit_length() - 1, context)
+                more, more_pairs = after(low.bit_length() - 1, minterm, context)
                 bits |= more
                 pairs += more_pairs
             for position, duty in bound:
@@ -88,13 +102,13 @@ def subset_table(nfa: Nfa, mode: Mode, start: tuple[Thread, ...]) -> tuple[list[
                     work += 1
                     rest = obligations.step(duty, minterm)
                     if rest is not None:
-                        more, more_pairs = after(position, context)
+                        more, more_pairs = after(position, minterm, context)
                         if rest:
                             _join(pairs, rest, more, more_pairs)
                         else:
                             bits |= more
                             pairs += more_pairs
-            target = _state(bits, pairs, end_bit, stays)
+            target = state_of(bits, pairs, context)
             index = number.get(target)
             if index is None:
                 if len(order) >= limits.states:
@@ -102,14 +116,14 @@ def subset_table(nfa: Nfa, mode: Mode, start: tuple[Thread, ...]) -> tuple[list[
                 index = number[target] = len(order)
                 order.append(target)
             row.append(index)
-        work += len(moves)
+        work += width
         if work > limits.work:
             raise LimitReached("work", limits.work)
         table.append(tuple(row))
     accepting = [
         bool(free & end_bit)
         or any(position == nfa.accept and obligations.holds_at_end(duty) for position, duty in bound)
-        for free, bound in order
+        for free, bound, _ in order
     ]
     return table, accepting
 
@@ -135,7 +149,9 @@ def _join(pairs: list[Thread], rest: Conjunction, bits: int, more: tuple[Thread,
     pairs.extend((position, rest | duty) for position, duty in more)
 
 
-def _state(bits: int, pairs: list[Thread] | tuple[Thread, ...], end_bit: int, stays: bool) -> State:
+def _weakest(
+    bits: int, pairs: list[Thread] | tuple[Thread, ...], end_bit: int, stays: bool
+) -> tuple[int, Bound]:
     """Canonical: only the weakest conjunctions of a position; an end without obligations absorbs all."""
     if not pairs:
         return (end_bit, NO_BOUND) if stays and bits & end_bit else (bits, NO_BOUND)

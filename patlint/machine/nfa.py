@@ -1,56 +1,72 @@
-"""Positions of a program, and what follows each of them: the automaton before it is made deterministic.
+r"""Positions of a program, and what follows each of them: the automaton before it is made deterministic.
 
-A position is a place that reads one character: a `Char`, or one character of a `Run` (a bounded run has a
-position for each character it may read). A *thread* is a position with the obligations that the rest of the
-text must meet (`obligations`); position `accept` stands for the program's end. `after(position, context)` and
-`initial(context)` list threads in the engine's order of priority, each once; the guard of loops whose body can
-be empty is respected.
+A position is a place that reads one character: a `Char`, one character of a `Run` (a bounded run has a position
+for each character it may read), or an atomic group under way. A *thread* is a position with the obligations
+that the rest of the text must meet (`obligations`). `after` and `initial` list threads in the engine's order of
+priority, each once; the guard of loops whose body can be empty is respected.
 
-The *context* is what assertions may ask of the character before a place: whether the text begins there,
-whether that character is a line feed, whether it is a word character; only as far as the program asks.
+The *context* is what may be asked of the text before a place: whether it begins there, whether the character
+before is a line feed or a word character, and for each look-behind its *tracker*: the threads of its body, begun
+at every place so far. Only what the program asks is kept. Trackers stand inner ones first, and a tracker sees
+only those before it. Contexts are small integers; `next_context` steps them.
 
-What is not regular, or not yet said exactly, is widened to a superset: a back-reference reads anything, both
-sides of a conditional may be taken, look-behind is taken to hold, an atomic group gives back like a plain one.
-`inexact` lists these with their spans. A negated look-ahead whose body is widened is taken to hold.
+- Look-ahead is the obligation that its body matches the rest, or its complement.
+- Look-behind holds where a thread of its tracker has ended here; the thread's own obligations become those of
+  what goes on.
+- An atomic group is one position whose state is the ordered list of its body's threads (`ordered`). It is left
+  where one of them ends, under the obligation that none of the better ones ever ends.
+- A possessive run is left where it is full or the next character is not one of its own.
+
+What is not regular is widened to a superset: a back-reference reads anything, both sides of a conditional may
+be taken, an atomic group around one of these gives back like a plain group, a look-around around one of these
+is taken to hold (a look-ahead that is not negated keeps what is known of it). `inexact` lists these with their
+spans, and sets that depend on the locale.
 """
 
 from __future__ import annotations
 
 from collections.abc import Iterator
-from typing import TypeAlias
 
 from patlint.limits import LimitReached, Limits
 from patlint.machine import program as p
 from patlint.machine.alphabet import minterms, universe
-from patlint.machine.obligations import ALL, NONE, Obligations
+from patlint.machine.determinise import subset_table
+from patlint.machine.obligations import ALL, FREE, NONE, Conjunction, Obligations, Thread
+from patlint.machine.ordered import Threads, ends_here, prune, steps
 from patlint.syntax.charset import NEWLINE, CharSet
 from patlint.syntax.tree import Span
-
-Conjunction: TypeAlias = frozenset[int]
-Thread: TypeAlias = tuple[int, Conjunction]
-FREE: Conjunction = frozenset()
 
 AT_START = 1
 AFTER_NEWLINE = 2
 AFTER_WORD = 4  # shifted by the index of the set of word characters
 
+Tracker = tuple[frozenset[Thread], frozenset[Conjunction]]
+"""The threads under way in a look-behind's body, and the obligations of those that have just ended."""
+
 CLOSURE_LIMIT_FACTOR = 20
 
 
 class Nfa:
-    """The positions of `program` and their threads; everything is computed when asked and remembered."""
+    """The positions of `program` and their threads; everything is computed when asked and remembered.
+
+    Positions below `accept` read one character each; `accept` is the program's end, `pending` stands for it in
+    ordered lists; atomic groups under way are numbered from there on as they are met. Minterms that a position
+    reads are the bits of `reads[position]`; `readers[minterm]` is that table turned round.
+    """
 
     def __init__(self, program: p.Program, limits: Limits) -> None:
         self.program = program
         self.limits = limits
         whole = universe(program.is_bytes)
         self.first: dict[int, int] = {}
-        reads: list[CharSet] = []
         self.pc_of: list[int] = []
+        self.inexact: list[tuple[str, Span]] = [("locale", span) for span in program.locale]
+        self.atomic_ends: dict[int, int] = {}
+        self.behind: dict[Span, int] = {}
+        self.trackers: list[int] = []
+        reads: list[CharSet] = []
         asserts: set[str] = set()
         words: dict[CharSet, None] = {}
-        self.inexact: list[tuple[str, Span]] = []
-        self.leads: dict[int, int] = {}
         for pc, op in enumerate(program.code):
             width = 0
             match op:
@@ -58,80 +74,182 @@ class Nfa:
                     width, chars = 1, op.chars
                 case p.Run():
                     width, chars = max(op.minimum, 1) if op.maximum is None else op.maximum, op.chars
-                    if op.kind == "possessive":
-                        self._widened("possessive repeat", pc)
                 case p.Back():
                     width, chars = 1, whole
-                    self._widened("back-reference", pc)
+                    self.inexact.append(("back-reference", program.spans[pc]))
                 case p.Test():
-                    self._widened("conditional", pc)
+                    self.inexact.append(("conditional", program.spans[pc]))
                 case p.Atomic():
-                    self.leads[op.end] = op.next
-                    self._widened("atomic group or possessive repeat", pc)
+                    self.atomic_ends[op.end] = op.next
                 case p.Look(ahead=False):
-                    self._widened("look-behind", pc)
+                    if program.spans[pc] not in self.behind:  # copies of one look-behind share their tracker
+                        self.behind[program.spans[pc]] = len(self.trackers)
+                        self.trackers.append(op.body)
                 case p.Assert():
                     asserts.add(op.kind)
                     if op.kind in ("word", "not-word"):
                         words[op.words] = None
             if width:
+                if program.spans[pc] in program.locale:
+                    chars = whole
                 if len(reads) + width > limits.instructions:
                     raise LimitReached("instructions", limits.instructions)
                 self.first[pc] = len(reads)
                 reads += [chars] * width
                 self.pc_of += [pc] * width
         self.accept = len(reads)
+        self.pending = self.accept + 1
+        self.widened = self._widened()
+        self.leads = {end: then for end, then in self.atomic_ends.items() if end in self.widened}
         self.words = tuple(words)
         self.asks_start = bool(words) or not asserts.isdisjoint(("start", "line-start"))
         self.asks_newline = "line-start" in asserts
-        self.asks_end = not asserts.isdisjoint(("final", "line-end"))
+        asks_end = not asserts.isdisjoint(("final", "line-end"))
         distinct = tuple(dict.fromkeys(reads))
-        extra = (NEWLINE,) if self.asks_newline or self.asks_end else ()
+        extra = (NEWLINE,) if self.asks_newline or asks_end else ()
         self.alphabet, masks = minterms((*distinct, *self.words, *extra), whole)
         width = len(self.alphabet)
         mask_of = dict(zip((*distinct, *self.words, *extra), masks, strict=True))
-        self.reads: list[int] = [mask_of[chars] for chars in reads]
+        self.reads: list[int] = [mask_of[chars] for chars in reads] + [0, 0]
+        self.pc_of += [program.end, program.end]
         self.newline = mask_of.get(NEWLINE, 0)
         self.word_masks = [mask_of[chars] for chars in self.words]
         self.readers: list[int] = [0] * width
-        for position, mask in enumerate(self.reads):
-            while mask:
-                low = mask & -mask
-                self.readers[low.bit_length() - 1] |= 1 << position
-                mask ^= low
-        self.contexts: list[int] = [self._context(minterm) for minterm in range(width)]
-        self.start_context = AT_START if self.asks_start else 0
+        for position in range(self.accept):
+            self._add_reader(position)
         self.obligations = Obligations(width)
+        self._atomics: dict[tuple[int, Threads], int] = {}
+        self._lists: dict[int, Threads] = {}
         self._closures: dict[tuple[int, int], tuple[Thread, ...]] = {}
-        self._after: dict[tuple[int, int], tuple[Thread, ...]] = {}
+        self._after: dict[tuple[int, int, int], tuple[Thread, ...]] = {}
         self._looks: dict[tuple[int, int], int] = {}
+        self._contexts: dict[tuple[int, tuple[Tracker, ...]], int] = {}
+        self._context_of: list[tuple[int, tuple[Tracker, ...]]] = []
+        self._next: dict[tuple[int, int], int] = {}
+        self.bits = [self._bits(minterm) for minterm in range(width)]
+        self.contexts = [self._intern_context(bits, ()) for bits in self.bits]
+        """The context after a character of each minterm, without trackers."""
+        self.plain_start = self._intern_context(AT_START if self.asks_start else 0, ())
+        self.start_context = self._with_trackers(AT_START if self.asks_start else 0, None, 0)
 
-    def _widened(self, reason: str, pc: int) -> None:
-        self.inexact.append((reason, self.program.spans[pc]))
+    def _add_reader(self, position: int) -> None:
+        mask = self.reads[position]
+        while mask:
+            low = mask & -mask
+            self.readers[low.bit_length() - 1] |= 1 << position
+            mask ^= low
 
-    def _context(self, minterm: int) -> int:
-        context = AFTER_NEWLINE if self.asks_newline and self.newline >> minterm & 1 else 0
+    def _widened(self) -> frozenset[int]:
+        """The bodies, and the ends of atomic groups, in which something is not said exactly."""
+        found: set[int] = set()
+        for op in self.program.code:
+            if isinstance(op, p.Look) and self._has_widened(op.body):
+                found.add(op.body)
+            elif isinstance(op, p.Atomic) and self._has_widened(op.body):
+                found.add(op.end)
+        return frozenset(found)
+
+    def _has_widened(self, entry: int) -> bool:
+        """Whether a body that begins at `entry` holds a back-reference or a conditional."""
+        stack, seen = [entry], set()
+        while stack:
+            pc = stack.pop()
+            if pc in seen:
+                continue
+            seen.add(pc)
+            op = self.program.code[pc]
+            match op:
+                case p.Back() | p.Test():
+                    return True
+                case p.Look() | p.Atomic():
+                    stack += (op.body, op.next)
+                case p.Fork():
+                    stack += (op.first, op.second)
+                case p.Iterate():
+                    stack += (op.body, op.exit)
+                case p.Accept():
+                    pass
+                case _:
+                    stack.append(op.next)
+        return bool(self.program.locale)
+
+    # Contexts
+
+    def _bits(self, minterm: int) -> int:
+        bits = AFTER_NEWLINE if self.asks_newline and self.newline >> minterm & 1 else 0
         for index, mask in enumerate(self.word_masks):
             if mask >> minterm & 1:
-                context |= AFTER_WORD << index
-        return context
+                bits |= AFTER_WORD << index
+        return bits
+
+    def _intern_context(self, bits: int, trackers: tuple[Tracker, ...]) -> int:
+        key = (bits, trackers)
+        found = self._contexts.get(key)
+        if found is None:
+            if len(self._context_of) > self.limits.states + len(self.bits):
+                raise LimitReached("states", self.limits.states)
+            found = self._contexts[key] = len(self._context_of)
+            self._context_of.append(key)
+        return found
+
+    def next_context(self, context: int, minterm: int) -> int:
+        """The context after reading a character in `context`."""
+        if not self.trackers:
+            return self.contexts[minterm]
+        key = (context, minterm)
+        found = self._next.get(key)
+        if found is None:
+            found = self._with_trackers(self.bits[minterm], self._context_of[context][1], minterm)
+            self._next[key] = found
+        return found
+
+    def _with_trackers(self, bits: int, before: tuple[Tracker, ...] | None, minterm: int) -> int:
+        trackers: tuple[Tracker, ...] = ()
+        # A context that knows fewer trackers (inside one of them) goes on knowing only those.
+        known = self.trackers if before is None else self.trackers[: len(before)]
+        for index, body in enumerate(known):
+            context = self._intern_context(bits, trackers)
+            arrived: list[Thread] = list(self.closure(body, context))
+            if before is not None:
+                for position, duty in before[index][0]:
+                    if self.reads[position] >> minterm & 1:
+                        rest = self.obligations.step(duty, minterm)
+                        if rest is not None:
+                            arrived += (
+                                (after, rest | more)
+                                for after, more in self.after(position, minterm, context)
+                            )
+            under_way = frozenset(thread for thread in arrived if thread[0] != self.accept)
+            ended = frozenset(duty for position, duty in arrived if position == self.accept)
+            trackers += ((under_way, frozenset((FREE,)) if FREE in ended else ended),)
+        return self._intern_context(bits, trackers)
 
     def all_contexts(self) -> tuple[int, ...]:
-        """The text's start and after each kind of character."""
-        return tuple(dict.fromkeys([self.start_context, *self.contexts]))
+        """All contexts that some text leads to, the start's first. Raises LimitReached("states")."""
+        found = {self.start_context: None}
+        order = [self.start_context]
+        for context in order:
+            for minterm in range(len(self.alphabet)):
+                after = self.next_context(context, minterm)
+                if after not in found:
+                    found[after] = None
+                    order.append(after)
+        return tuple(order)
+
+    # Threads
 
     def initial(self, context: int) -> tuple[Thread, ...]:
         return self.closure(self.program.start, context)
 
-    def after(self, position: int, context: int) -> tuple[Thread, ...]:
-        """The threads once `position` has read a character that leaves `context` behind it."""
-        key = (position, context)
+    def after(self, position: int, minterm: int, context: int) -> tuple[Thread, ...]:
+        """The threads once `position` has read a character of `minterm`, which leaves `context` behind it."""
+        key = (position, context, minterm if position > self.pending else -1)
         found = self._after.get(key)
         if found is None:
-            found = self._after[key] = tuple(self._follow(position, context))
+            found = self._after[key] = tuple(self._follow(position, minterm, context))
         return found
 
-    def _follow(self, position: int, context: int) -> Iterator[Thread]:
+    def _follow(self, position: int, minterm: int, context: int) -> Iterator[Thread]:
         pc = self.pc_of[position]
         op = self.program.code[pc]
         match op:
@@ -145,6 +263,8 @@ class Nfa:
                 else:
                     again = position + 1 if count < op.maximum else None
                 leave = self.closure(op.next, context) if count >= op.minimum else ()
+                if op.kind == "possessive" and again is not None:
+                    leave = self._under(self._not_in(pc), leave)
                 if op.kind == "lazy":
                     yield from leave
                 if again is not None:
@@ -154,6 +274,51 @@ class Nfa:
             case p.Back():
                 yield position, FREE
                 yield from self.closure(op.next, context)
+            case p.Atomic():
+                before = self._lists[position]
+                moves = steps(self, before, minterm, context, stays=True)
+                threads, _ = prune(self, moves, cut=True)
+                for duty, goes_on in self._atomic(pc, threads, context):
+                    if goes_on is not None:
+                        yield goes_on, FREE
+                    else:
+                        yield from self._under_all(duty, self.closure(op.next, context))
+
+    def _not_in(self, pc: int) -> int:
+        """The obligation that the next character, if any, is none of those of a run."""
+        everything = (1 << len(self.alphabet)) - 1
+        return self.obligations.next_in(everything ^ self.reads[self.first[pc]], True)
+
+    def _under(self, asked: int, threads: tuple[Thread, ...]) -> tuple[Thread, ...]:
+        if asked == NONE:
+            return ()
+        return self._under_all(FREE if asked == ALL else frozenset((asked,)), threads)
+
+    def _under_all(self, duty: Conjunction, threads: tuple[Thread, ...]) -> tuple[Thread, ...]:
+        return tuple((position, more | duty) for position, more in threads) if duty else threads
+
+    def _atomic(self, pc: int, threads: Threads, context: int) -> Iterator[tuple[Conjunction, int | None]]:
+        """The ways out of an atomic group here, by their obligations, and the position under way (last)."""
+        for duty in ends_here(self, threads, context):
+            yield duty, None
+        if any(self.reads[position] for position, _ in threads):
+            yield FREE, self._position_of(pc, threads)
+
+    def _position_of(self, pc: int, threads: Threads) -> int:
+        key = (pc, threads)
+        found = self._atomics.get(key)
+        if found is None:
+            if len(self._atomics) >= self.limits.states:
+                raise LimitReached("states", self.limits.states)
+            found = self._atomics[key] = len(self.reads)
+            self._lists[found] = threads
+            mask = 0
+            for position, _ in threads:
+                mask |= self.reads[position]
+            self.reads.append(mask)
+            self.pc_of.append(pc)
+            self._add_reader(found)
+        return found
 
     def closure(self, entry: int, context: int) -> tuple[Thread, ...]:
         """The threads that are reached from instruction `entry` without reading."""
@@ -168,6 +333,11 @@ class Nfa:
         stack: list[tuple[int, frozenset[int], Conjunction]] = [(entry, FREE, FREE)]
         seen = set()
         limit = self.limits.instructions * CLOSURE_LIMIT_FACTOR
+
+        def go_on(pc: int, marks: frozenset[int], duty: Conjunction, asked: int) -> None:
+            if asked != NONE:
+                stack.append((pc, marks, duty if asked == ALL else duty | {asked}))
+
         while stack:
             item = stack.pop()
             if item in seen:
@@ -194,7 +364,7 @@ class Nfa:
                     else:
                         if reads:
                             threads[self.first[pc], duty] = None
-                        stack.append((op.next, marks, duty))
+                        go_on(op.next, marks, duty, self._not_in(pc) if reads and op.kind == "possessive" else ALL)
                 case p.Fork():
                     stack.append((op.second, marks, duty))
                     stack.append((op.first, marks, duty))
@@ -215,15 +385,19 @@ class Nfa:
                     else:
                         threads[self.accept, duty] = None
                 case p.Assert():
-                    asked = self.asked(op, context)
-                    if asked != NONE:
-                        stack.append((op.next, marks, duty if asked == ALL else duty | {asked}))
+                    go_on(op.next, marks, duty, self.asked(pc, op, context))
                 case p.Look():
-                    asked = self.look(pc, op, context) if op.ahead else ALL
-                    if asked != NONE:
-                        stack.append((op.next, marks, duty if asked == ALL else duty | {asked}))
+                    go_on(op.next, marks, duty, self.look(pc, op, context))
                 case p.Atomic():
-                    stack.append((op.body, marks, duty))
+                    if op.end in self.leads:
+                        stack.append((op.body, marks, duty))
+                        continue
+                    body_threads = ((thread, 0) for thread in self.closure(op.body, context))
+                    for more, goes_on in self._atomic(pc, prune(self, body_threads, cut=True)[0], context):
+                        if goes_on is not None:
+                            threads[goes_on, duty] = None
+                        else:
+                            stack.append((op.next, marks, duty | more))
                 case p.Back():
                     threads[self.first[pc], duty] = None
                     stack.append((op.next, marks, duty))
@@ -232,14 +406,19 @@ class Nfa:
                     stack.append((op.yes, marks, duty))
         return tuple(threads)
 
-    def asked(self, op: p.Assert, context: int) -> int:
+    # What is asked of the rest
+
+    def asked(self, pc: int, op: p.Assert, context: int) -> int:
         """What an assertion asks of the rest of the text, as an obligation."""
+        if self.program.spans[pc] in self.program.locale:
+            return ALL
         table = self.obligations
+        bits = self._context_of[context][0]
         match op.kind:
             case "start":
-                return ALL if context & AT_START else NONE
+                return ALL if bits & AT_START else NONE
             case "line-start":
-                return ALL if context & (AT_START | AFTER_NEWLINE) else NONE
+                return ALL if bits & (AT_START | AFTER_NEWLINE) else NONE
             case "end":
                 return table.next_in(0, True)
             case "final":
@@ -249,49 +428,27 @@ class Nfa:
             case _:
                 index = self.words.index(op.words)
                 mask = self.word_masks[index]
-                after_word = bool(context & AFTER_WORD << index)
+                after_word = bool(bits & AFTER_WORD << index)
                 if after_word != (op.kind == "word"):
                     return table.next_in(mask, False)
                 others = (1 << len(self.alphabet)) - 1 ^ mask
                 # `\B` fails on the empty text, so at the start it asks for a character.
-                return table.next_in(others, op.kind == "word" or not context & AT_START)
+                return table.next_in(others, op.kind == "word" or not bits & AT_START)
 
     def look(self, pc: int, op: p.Look, context: int) -> int:
-        from patlint.machine.determinise import subset_table
-
-        key = (pc, context)
-        found = self._looks.get(key)
-        if found is None:
-            if op.negated and self._is_widened(op.body):
-                found = ALL
-            else:
-                table, accepting = subset_table(self, "match", self.closure(op.body, context))
-                found = self.obligations.intern(table, accepting)[0]
-                if op.negated:
-                    found = self.obligations.complement(found)
-            self._looks[key] = found
-        return found
-
-    def _is_widened(self, entry: int) -> bool:
-        """Whether anything that is reached from `entry` before its Accept is not said exactly."""
-        stack, seen = [entry], set()
-        while stack:
-            pc = stack.pop()
-            if pc in seen:
-                continue
-            seen.add(pc)
-            op = self.program.code[pc]
-            match op:
-                case p.Back() | p.Test() | p.Atomic() | p.Run(kind="possessive") | p.Look(ahead=False):
-                    return True
-                case p.Look():
-                    stack += (op.body, op.next)
-                case p.Fork():
-                    stack += (op.first, op.second)
-                case p.Iterate():
-                    stack += (op.body, op.exit)
-                case p.Accept():
-                    pass
-                case _:
-                    stack.append(op.next)
-        return False
+        """What a look-around asks of the rest of the text, as an obligation."""
+        if op.body in self.widened and (op.negated or not op.ahead):
+            return ALL
+        if op.ahead:
+            key = (pc, context)
+            found = self._looks.get(key)
+            if found is None:
+                table, accepting = subset_table(self, "match", self.closure(op.body, context), context)
+                found = self._looks[key] = self.obligations.intern(table, accepting)[0]
+        else:
+            index = self.behind[self.program.spans[pc]]
+            trackers = self._context_of[context][1]
+            if index >= len(trackers):
+                return ALL  # a context without trackers: nothing is known of the text before
+            found = self.obligations.union(trackers[index][1])
+        return self.obligations.complement(found) if op.negated else found

@@ -10,10 +10,18 @@ Interning an automaton of n states costs a minimisation of the n states together
 
 from __future__ import annotations
 
+from typing import TypeAlias
+
 from patlint.machine.minimise import equivalence
+
+Conjunction: TypeAlias = frozenset[int]
+"""Obligations that must all be met."""
+Thread: TypeAlias = tuple[int, Conjunction]
+"""A position of the program and the obligations under which it was reached."""
 
 ALL = 0
 NONE = 1
+FREE: Conjunction = frozenset()
 
 
 class Obligations:
@@ -25,7 +33,8 @@ class Obligations:
         self.at_end: list[bool] = [True, False]
         self._complements: dict[int, int] = {ALL: NONE, NONE: ALL}
         self._simple: dict[tuple[int, bool, bool], int] = {}
-        self._steps: dict[tuple[frozenset[int], int], frozenset[int] | None] = {}
+        self._unions: dict[frozenset[Conjunction], int] = {}
+        self._steps: dict[tuple[Conjunction, int], Conjunction | None] = {}
 
     def intern(self, table: list[tuple[int, ...]], accepting: list[bool]) -> list[int]:
         """The obligation of each state of a complete automaton."""
@@ -64,6 +73,33 @@ class Obligations:
             self._simple[key] = self.intern(table, [True, True, False])[0]
         return self._simple[key]
 
+    def union(self, duties: frozenset[Conjunction]) -> int:
+        """The obligation that at least one of several conjunctions is met."""
+        if FREE in duties:
+            return ALL
+        if not duties:
+            return NONE
+        found = self._unions.get(duties)
+        if found is None:
+            order = [duties]
+            index = {duties: 0}
+            table: list[tuple[int, ...]] = []
+            for state in order:
+                row = []
+                for minterm in range(self.width):
+                    stepped = (self.step(duty, minterm) for duty in state)
+                    after = frozenset(duty for duty in stepped if duty is not None)
+                    if FREE in after:
+                        after = frozenset((FREE,))
+                    if after not in index:
+                        index[after] = len(order)
+                        order.append(after)
+                    row.append(index[after])
+                table.append(tuple(row))
+            ends = [any(map(self.holds_at_end, state)) for state in order]
+            found = self._unions[duties] = self.intern(table, ends)[0]
+        return found
+
     def complement(self, obligation: int) -> int:
         found = self._complements.get(obligation)
         if found is None:
@@ -80,7 +116,7 @@ class Obligations:
             self._complements[found] = obligation
         return found
 
-    def step(self, duty: frozenset[int], minterm: int) -> frozenset[int] | None:
+    def step(self, duty: Conjunction, minterm: int) -> Conjunction | None:
         """A conjunction of obligations after a character; None where it cannot be met any more."""
         key = (duty, minterm)
         if key not in self._steps:
@@ -90,5 +126,5 @@ class Obligations:
             self._steps[key] = None if dead else frozenset(after)
         return self._steps[key]
 
-    def holds_at_end(self, duty: frozenset[int]) -> bool:
+    def holds_at_end(self, duty: Conjunction) -> bool:
         return all(self.at_end[obligation] for obligation in duty)

@@ -29,7 +29,7 @@ from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
 from patlint.machine.engine_tree import as_engine_runs
 from patlint.syntax import tree as t
 from patlint.syntax.charset import EMPTY, CharSet
-from patlint.syntax.classes import char_set, word_set
+from patlint.syntax.classes import char_set, is_locale_dependent, word_set
 
 AssertKind: TypeAlias = Literal["start", "line-start", "end", "final", "line-end", "word", "not-word"]
 Fold: TypeAlias = Literal["exact", "ascii", "unicode"]
@@ -156,6 +156,8 @@ class Program:
     groups: int
     loops: int
     is_bytes: bool
+    locale: tuple[t.Span, ...] = ()
+    """Parts that depend on the locale: the matcher takes them as ASCII, the automata as anything."""
 
 
 @dataclass(slots=True)
@@ -319,7 +321,8 @@ def compile_tree(
     builder = _Builder(pattern.is_bytes, limits.instructions)
     node = pattern.root if root is None else root
     end = builder.add(Accept(), node.span)
-    start = builder.emit(as_engine_runs(node) if engine else node, end)
+    node = as_engine_runs(node) if engine else node
+    start = builder.emit(node, end)
     return Program(
         tuple(builder.code),
         tuple(builder.spans),
@@ -328,4 +331,14 @@ def compile_tree(
         pattern.groups,
         builder.loops,
         pattern.is_bytes,
+        _locale_spans(node) if pattern.is_bytes else (),
     )
+
+
+def _locale_spans(node: t.Node) -> tuple[t.Span, ...]:
+    found = []
+    for part in t.walk(node):
+        one = one_character(part.body) if isinstance(part, t.Repeat) else None
+        if is_locale_dependent(part) or (one is not None and is_locale_dependent(one)):
+            found.append(part.span)
+    return tuple(found)

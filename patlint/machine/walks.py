@@ -19,8 +19,8 @@ from dataclasses import dataclass
 
 from patlint.limits import LimitReached
 from patlint.machine import program as p
-from patlint.machine.nfa import FREE, Conjunction, Nfa, Thread
-from patlint.machine.obligations import ALL, NONE
+from patlint.machine.nfa import Nfa
+from patlint.machine.obligations import ALL, FREE, NONE, Conjunction, Thread
 
 PATH_LIMIT = 4_096
 SCAN = 0
@@ -72,7 +72,7 @@ def walks(nfa: Nfa, scan: bool) -> Walks:
             order.append(thread)
         return index
 
-    entry = [node(thread) for thread in close(nfa.program.start, nfa.start_context)]
+    entry = [node(thread) for thread in close(nfa.program.start, nfa.plain_start)]
     by_context: dict[int, int] = {}
     for minterm, context in enumerate(nfa.contexts):
         by_context[context] = by_context.get(context, 0) | 1 << minterm
@@ -179,14 +179,14 @@ def _paths(nfa: Nfa, entry: int, context: int) -> dict[Thread, int]:
                     stack.append((op.body, marks | {op.loop}, duty))
             case p.Accept():
                 paths += 1
-                if pc in nfa.leads:
-                    stack.append((nfa.leads[pc], marks, duty))
+                if pc in nfa.atomic_ends:
+                    stack.append((nfa.atomic_ends[pc], marks, duty))
             case p.Assert():
-                asked = nfa.asked(op, context)
+                asked = nfa.asked(pc, op, context)
                 if asked != NONE:
                     stack.append((op.next, marks, duty if asked == ALL else duty | {asked}))
             case p.Look():
-                asked = nfa.look(pc, op, context) if op.ahead else ALL
+                asked = nfa.look(pc, op, context)
                 if asked != NONE:
                     stack.append((op.next, marks, duty if asked == ALL else duty | {asked}))
                 if op.ahead:

@@ -19,14 +19,18 @@ from __future__ import annotations
 from dataclasses import replace
 
 from patlint.limits import LimitReached, Limits
-from patlint.machine.alphabet import Alphabet, common, representative
+from patlint.machine.alphabet import Alphabet, common
 from patlint.machine.determinise import Mode, language
 from patlint.machine.dfa import Dfa, canonical, minimal
-from patlint.machine.nfa import FREE, Nfa
+from patlint.machine.nfa import Nfa
+from patlint.machine.obligations import FREE
 from patlint.machine.priority import MARKER, spans
 from patlint.machine.program import compile_tree
 from patlint.syntax import tree as t
 from patlint.syntax.charset import CharSet
+
+MOST_CONTEXTS = 40
+"""Pairs of contexts in which spans are compared, a few milliseconds each; look-behinds may have more."""
 
 
 def ends(pattern: t.Pattern, part: t.Node, limits: Limits) -> Dfa:
@@ -39,7 +43,7 @@ def ends(pattern: t.Pattern, part: t.Node, limits: Limits) -> Dfa:
     width = len(nfa.alphabet)
     if any(duty for _, duty in nfa.initial(nfa.start_context)) or nfa.asks_start or nfa.inexact:
         raise ValueError("a part with assertions has no ends of its own")
-    first: tuple[int, ...] = tuple(position for position, _ in nfa.initial(0))
+    first: tuple[int, ...] = tuple(position for position, _ in nfa.initial(nfa.start_context))
     # Before the mark an ordered tuple of positions, behind it a bit mask of those preferred to the marked
     # end.
     number: dict[tuple[int, ...] | int, int] = {first: 0}
@@ -68,7 +72,7 @@ def ends(pattern: t.Pattern, part: t.Node, limits: Limits) -> Dfa:
             after: dict[int, None] = {}
             for position in threads:
                 if position != accept and readers >> position & 1:
-                    for reached, duty in nfa.after(position, 0):
+                    for reached, duty in nfa.after(position, minterm, nfa.contexts[minterm]):
                         if duty != FREE:
                             raise ValueError("a part with assertions has no ends of its own")
                         after[reached] = None
@@ -132,11 +136,18 @@ def same_spans(old: t.Pattern, new: t.Pattern, scanning: bool, limits: Limits) -
         a, b = (Nfa(compile_tree(pattern, small), small) for pattern in (old, new))
         if a.inexact or b.inexact:
             return False
-        alphabet, _, _ = common(a.alphabet, b.alphabet)
+        _, of_a, of_b = common(a.alphabet, b.alphabet)
+        moves = list(zip(of_a, of_b, strict=True))
         pairs = {(a.start_context, b.start_context): None}
-        for chars in alphabet.classes:
-            letter = representative(chars)
-            pairs[a.contexts[a.alphabet.classify(letter)], b.contexts[b.alphabet.classify(letter)]] = None
+        order = list(pairs)
+        for context_a, context_b in order:
+            for minterm_a, minterm_b in moves:
+                after = a.next_context(context_a, minterm_a), b.next_context(context_b, minterm_b)
+                if after not in pairs:
+                    pairs[after] = None
+                    order.append(after)
+            if len(order) > MOST_CONTEXTS:
+                return False
         for context_a, context_b in pairs:
             for not_empty in (False, True) if scanning else (False,):
                 if canonical(spans(a, context_a, not_empty)) != canonical(spans(b, context_b, not_empty)):

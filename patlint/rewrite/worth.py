@@ -37,10 +37,11 @@ def _is_suspect(node: t.Node, text: str, is_bytes: bool) -> bool:
         case t.Group():
             return node.index is None and not isinstance(node.body, t.Alternation | t.Sequence)
         case t.Repeat():
-            written = text[node.body.span[1] : node.span[1]].rstrip("?+")
-            return (
-                _inner_repeat(node.body) or (node.minimum, node.maximum) in _OWN_MARKS and written[-1:] == "}"
-            )
+            written = text[node.body.span[1] : node.span[1]]
+            if node.minimum == node.maximum and ("," in written or node.kind == "lazy"):
+                return True
+            own_mark = (node.minimum, node.maximum) in _OWN_MARKS
+            return _inner_repeat(node.body) or (own_mark and "}" in written)
         case t.Sequence():
             return _repeats_itself(node.items) or _has_runs(node.items, text)
         case _:

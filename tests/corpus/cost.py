@@ -48,7 +48,9 @@ SPACES_X: Text = ("", " ", "x")
 LINES: Text = ("", "\n", "")
 
 
-def _rows(section: int, manner: str, growth: int | Base, patterns: str, text: Text | None = None) -> list[Row]:
+def _rows(
+    section: int, manner: str, growth: int | Base, patterns: str, text: Text | None = None
+) -> list[Row]:
     """`patterns` stand between blanks; a blank in a pattern is not needed here."""
     family = text if text is not None else A_BANG if manner in ("search", "fullmatch") else A
     return [Row(section, pattern, manner, family, growth) for pattern in patterns.split()]
@@ -98,7 +100,9 @@ ROWS: tuple[Row, ...] = (
     *_rows(2, "match", 2, "[a-z]*x[a-z]*y", X),
     *_rows(2, "match", 1, "[a-z]*x[a-z]*y", ("", "z", "")),
     # 3. Equal paths that read nothing
-    *_rows(3, "match", E2, "(?:a(?:x?)?)*b (?:a(?:x*)*)*b (?:a(?:x?)+)*b (?:a(?:x*)?)*b (?:a(x?)?)*b (?:a()?)*b"),
+    *_rows(
+        3, "match", E2, "(?:a(?:x?)?)*b (?:a(?:x*)*)*b (?:a(?:x?)+)*b (?:a(?:x*)?)*b (?:a(x?)?)*b (?:a()?)*b"
+    ),
     *_rows(3, "match", E2, r"(?:a(?:x?){0,2})*b (?:a(?:x?){1,2})*b (?:a(?:x|)?)*b (?:a(?:-?\s?)?)*b"),
     *_rows(3, "match", E2, r"(?:a(?:x?|y?))*b (?:(?:|)a)*b (?:(?:(?=a)|(?=.))a)*b (?:a(?:\B|))*c"),
     *_rows(3, "match", 1, "(?:ax?y?)*b (?:a(?:x+)?)*b (?:a(?:x?){2})*b (?:a(?:x?){1})*b (?:a(?:x|y)?)*b"),

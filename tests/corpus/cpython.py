@@ -67,8 +67,26 @@ def known_fault(pattern: str | bytes, flags: int = 0) -> str | None:
 FAULTS: tuple[tuple[Any, ...], ...] = (
     ("possessive", (3, 11), (3, 13), "((a)|b|c)*+", "match", "abc", SystemError, ((0, 3), (2, 3), (0, 1))),
     ("possessive", (3, 11), (3, 13), "(?:(a)|b)*+", "match", "ab", ((0, 2), (1, 1)), ((0, 2), (0, 1))),
-    ("open group", (3, 10), (3, 13), "(((?:(a)?(?(1)b|.))+?))", "fullmatch", "cc", None, ((0, 2),) * 3 + (None,)),
-    ("negative look", (3, 10), (3, 10), r"(?:(?!(.)\A.)|$)?", "match", "ab", ((0, 0), (0, 1)), ((0, 0), None)),
+    (
+        "open group",
+        (3, 10),
+        (3, 13),
+        "(((?:(a)?(?(1)b|.))+?))",
+        "fullmatch",
+        "cc",
+        None,
+        ((0, 2),) * 3 + (None,),
+    ),
+    (
+        "negative look",
+        (3, 10),
+        (3, 10),
+        r"(?:(?!(.)\A.)|$)?",
+        "match",
+        "ab",
+        ((0, 0), (0, 1)),
+        ((0, 0), None),
+    ),
     ("lazy", (3, 10), (3, 10), "(?:((?:.)+?)a)+?", "fullmatch", "aaa", ((0, 3), (2, 2)), ((0, 3), (0, 2))),
 )
 

@@ -20,7 +20,21 @@ LEAVES = (
 )
 REPEATS = ("*", "+", "?", "*?", "+?", "??", "{2}", "{1,2}", "{0,2}?", "{2,}", "{2,3}", "{0,1}", "{1,}?")
 POSSESSIVE = ("*+", "++", "?+", "{1,2}+", "{2}+", "{2,}+", "{0,2}+")
-WIDTH_ONE = ("a", "b", "[ab]", ".", r"\w", r"\n", "(?=a)b", "(a)", "$a", r"b\b", "(?<=a)b", "(?<!b)a", r"b(?=a)")
+WIDTH_ONE = (
+    "a",
+    "b",
+    "[ab]",
+    ".",
+    r"\w",
+    r"\n",
+    "(?=a)b",
+    "(a)",
+    "$a",
+    r"b\b",
+    "(?<=a)b",
+    "(?<!b)a",
+    r"b(?=a)",
+)
 
 
 class Maker:
@@ -53,7 +67,8 @@ class Maker:
     def behind(self, depth: int) -> str:
         width = self.random.randint(0, 2)
         branches = [
-            "".join(self.random.choice(WIDTH_ONE) for _ in range(width)) + self.random.choice(("", "", "$", r"\b"))
+            "".join(self.random.choice(WIDTH_ONE) for _ in range(width))
+            + self.random.choice(("", "", "$", r"\b"))
             for _ in range(self.random.randint(1, 2))
         ]
         return f"(?<{self.random.choice('=!')}{'|'.join(branches)})"
@@ -72,7 +87,9 @@ class Maker:
 
     def flags(self, depth: int) -> str:
         flag = self.random.choice(("i", "s", "m", "a", "ai", "-i", "im"))
-        extra = self.random.choice(("", "A", "[^B]", "k", "[A-b]", "\u212a", "[\u0130-\u0131]", r"(a)(?i:\1)"))
+        extra = self.random.choice(
+            ("", "A", "[^B]", "k", "[A-b]", "\u212a", "[\u0130-\u0131]", r"(a)(?i:\1)")
+        )
         return f"(?{flag}:{self.pattern(depth)}{extra})"
 
 

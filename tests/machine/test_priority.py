@@ -14,7 +14,8 @@ from patlint.syntax.parser import parse
 from tests.corpus.cpython import compiled, spans_of
 from tests.corpus.generate import Maker, texts
 
-WORLD = (*texts("ab ", 5), *texts("ab\n", 4), *texts("ab", 7)[-128:])
+WORLD = (*texts("abc ", 4), *texts("ab\n", 6), *texts("ab", 8)[-256:])
+AHEAD = ("$", r"\b", r"\B", r"\Z")
 LETTER = re.compile(r"\\.|\[[^\]]*\]|\(\?.|[ab.]")
 
 
@@ -40,10 +41,8 @@ def seen_used(pattern: str, span: tuple[int, int], mode: str) -> bool:
 def test_used_parts_are_those_that_a_capture_shows(mode: str) -> None:
     maker = Maker(50, frozenset())
     parts = dead = 0
-    for _ in range(150):
+    for _ in range(600):
         pattern = maker.pattern(3)
-        if any(part in pattern for part in ("\n", "(?s", "(?m", r"\n")) or compiled(pattern) is None:
-            continue
         nfa = Nfa(compile_tree(parse(pattern), engine=False), DEFAULT_LIMITS)
         span_at = [nfa.program.spans[pc] for pc in nfa.pc_of]
         used = {span_at[position] for position in used_positions(nfa, mode, False)}
@@ -54,10 +53,11 @@ def test_used_parts_are_those_that_a_capture_shows(mode: str) -> None:
             # A repeat of one character is one part with the span of the whole repeat.
             covers = [each for each in set(span_at) if each[0] <= span[0] and span[1] <= each[1]]
             found = any(each in used for each in covers)
-            assert found == truth, (pattern, span)
+            # What asks for the characters behind may leave parts in doubt; those count as used.
+            assert found == truth or found and any(each in pattern for each in AHEAD), (pattern, span)
             parts += 1
             dead += not truth
-    assert parts > 150 and dead > 20
+    assert parts > 500 and dead > 90
 
 
 # Source: the project's experiments on spans. Equal spans under match, and whether the search from every place,

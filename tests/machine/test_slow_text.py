@@ -137,7 +137,11 @@ def test_nothing_exponential_is_missed_on_small_patterns() -> None:
         if brute_force_base(pattern, "match", "ab") < 1.5:
             continue
         found = decide(pattern, "match")
-        if found.growth is None and found.unconfirmed and not matcher_of(pattern).run("aaa", "match", 20_000).finished:
+        if (
+            found.growth is None
+            and found.unconfirmed
+            and not matcher_of(pattern).run("aaa", "match", 20_000).finished
+        ):
             steep += 1  # so steep that three pumps outrun the turns: too few sizes to confirm it
             continue
         grown += 1

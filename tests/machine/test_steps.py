@@ -79,12 +79,16 @@ def bounded_steps(pattern: str, manner: str, text: str, size: int) -> int:
     return outcome.steps
 
 
-@pytest.mark.parametrize(("pattern", "manner", "text", "sizes", "growth"), BOUNDS, ids=lambda value: str(value))
+@pytest.mark.parametrize(
+    ("pattern", "manner", "text", "sizes", "growth"), BOUNDS, ids=lambda value: str(value)
+)
 def test_growth_with_the_bound(
     pattern: str, manner: str, text: str, sizes: tuple[int, ...], growth: int | Base | str
 ) -> None:
     counts = [bounded_steps(pattern, manner, text, size) for size in sizes]
-    factors = [(b / a) ** (1 / (m - n)) for a, b, n, m in zip(counts, counts[1:], sizes, sizes[1:], strict=False)]
+    factors = [
+        (b / a) ** (1 / (m - n)) for a, b, n, m in zip(counts, counts[1:], sizes, sizes[1:], strict=False)
+    ]
     if isinstance(growth, Base):
         assert abs(factors[-1] / growth.factor - 1) < 0.1
     elif growth == "faster":

@@ -74,7 +74,9 @@ def test_patterns_of_five_nodes() -> None:
     assert len(some) > 1_200
 
 
-@pytest.mark.parametrize("features", [(), ("ahead",), ("ahead", "flags"), ("ahead", "behind", "atomic", "backs")])
+@pytest.mark.parametrize(
+    "features", [(), ("ahead",), ("ahead", "flags"), ("ahead", "behind", "atomic", "backs")]
+)
 def test_random_patterns(features: tuple[str, ...]) -> None:
     """Look-ahead and flags are exact; the constructs of the last row are supersets, never less."""
     maker = Maker(40, frozenset(features))
@@ -88,7 +90,9 @@ def test_bytes_and_flags() -> None:
     rows = [text.encode() for text in texts("ab\n", 3)] + [b"\xe9", b"A\xff", b" a"]
     assert sum(compare(maker.pattern(3).encode() + rb"|\xe9[^\xff]?", rows) for _ in range(50)) > 2_000
     for flags in (2, 8, 16, 256, 2 | 8 | 16):
-        assert sum(compare(maker.pattern(3), [*WORLD[:60], "A", "aB", "B\na"], flags) for _ in range(25)) > 1_000
+        assert (
+            sum(compare(maker.pattern(3), [*WORLD[:60], "A", "aB", "B\na"], flags) for _ in range(25)) > 1_000
+        )
 
 
 # What is widened to a superset, and what is exact. Source: the construct list of this project.

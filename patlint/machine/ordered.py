@@ -1,0 +1,84 @@
+"""Ordered lists of threads: the state of a backtracking engine after a prefix of the text.
+
+The preferred thread stands first, each thread once at its best place. What stands behind a thread that has
+reached the end without obligations can never win and is cut. A thread that has reached the end with obligations
+stays as *pending* where the list is to go on: should they come true, the match ended back there, so it vetoes
+everything behind it, and never ends again.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator
+from typing import TYPE_CHECKING, TypeAlias
+
+from patlint.machine.determinise import subset_table
+from patlint.machine.obligations import ALL, NONE, Conjunction, Thread
+
+if TYPE_CHECKING:
+    from patlint.machine.nfa import Nfa
+
+Threads: TypeAlias = tuple[Thread, ...]
+
+
+def prune(nfa: Nfa, moves: Iterable[tuple[Thread, int]], cut: bool) -> tuple[Threads, tuple[int, ...]]:
+    """Threads in order without those that a better equal one makes pointless, and where each came from.
+
+    `cut`: nothing behind a thread at the end without obligations.
+    """
+    best: dict[int, list[Conjunction]] = {}
+    kept: list[Thread] = []
+    origins: list[int] = []
+    for thread, origin in moves:
+        position, duty = thread
+        before = best.setdefault(position, [])
+        if any(other <= duty for other in before):
+            continue
+        before.append(duty)
+        kept.append(thread)
+        origins.append(origin)
+        if cut and not duty and position in (nfa.accept, nfa.pending):
+            break
+    return tuple(kept), tuple(origins)
+
+
+def steps(
+    nfa: Nfa, threads: Threads, minterm: int, context: int, stays: bool
+) -> Iterator[tuple[Thread, int]]:
+    """The threads after reading a character, which leaves `context`, with the index each came from.
+
+    `stays`: a thread at the end goes on as pending.
+    """
+    readers = nfa.readers[minterm]
+    for index, (position, duty) in enumerate(threads):
+        if position == nfa.accept or position == nfa.pending:
+            if stays:
+                rest = nfa.obligations.step(duty, minterm)
+                if rest is not None:
+                    yield (nfa.pending, rest), index
+        elif readers >> position & 1:
+            rest = nfa.obligations.step(duty, minterm)
+            if rest is not None:
+                for after, more in nfa.after(position, minterm, context):
+                    yield (after, rest | more), index
+
+
+def ends_here(nfa: Nfa, threads: Threads, context: int) -> Iterator[Conjunction]:
+    """For each thread that has just reached the end, what the rest must be for the match to end here."""
+    for index, (position, duty) in enumerate(threads):
+        if position != nfa.accept:
+            continue
+        veto = _veto(nfa, threads[:index], context)
+        if veto == ALL:
+            yield duty
+        elif veto != NONE:
+            yield duty | {veto}
+
+
+def _veto(nfa: Nfa, better: Threads, context: int) -> int:
+    """The obligation that none of the threads `better` matches on the rest of the text."""
+    if not better:
+        return ALL
+    # A pending thread matches as one at the end does: by its obligations alone.
+    threads = tuple((nfa.accept if position == nfa.pending else position, duty) for position, duty in better)
+    table, accepting = subset_table(nfa, "match", threads, context)
+    return nfa.obligations.complement(nfa.obligations.intern(table, accepting)[0])

@@ -32,9 +32,8 @@ WORDS: Final = 6
 """Texts that are shown."""
 LENGTHS: Final = 8
 """Lengths, from 0, for which the texts are counted."""
-MOST_COUNTED: Final = 150
-"""States up to which all texts are counted; the time grows with their cube, and a number of texts stays below
-1,000 digits (Python reads and writes no more than 4,300)."""
+MOST_BITS: Final = 3_000
+"""Size of the largest number of texts that is told, about 900 digits; Python writes no more than 4,300."""
 NAME: Final = "<pattern>"
 
 Answer = TypeVar("Answer")
@@ -100,11 +99,11 @@ def portrait_of(
         empty = asked(language.is_empty)
         universal = asked(language.is_universal)
         if language.exact:
-            if language.states <= MOST_COUNTED:
-                total = asked(language.total)
-                endless = total is None
-            else:
-                asked.reasons.append(f"texts are not counted over more than {MOST_COUNTED} states")
+            total = asked(language.total)
+            endless = total is None
+            if total is not None and total.bit_length() > MOST_BITS:
+                total = None
+                asked.reasons.append(f"there are more than 2**{MOST_BITS} texts")
             shortest = asked(language.shortest)
             words = asked(lambda: tuple(language.words(WORDS)))
             counts = asked(lambda: tuple(language.count(length) for length in range(LENGTHS)))

@@ -216,8 +216,7 @@ class Nfa:
                         rest = self.obligations.step(duty, minterm)
                         if rest is not None:
                             arrived += (
-                                (after, rest | more)
-                                for after, more in self.after(position, minterm, context)
+                                (after, rest | more) for after, more in self.after(position, minterm, context)
                             )
             under_way = frozenset(thread for thread in arrived if thread[0] != self.accept)
             ended = frozenset(duty for position, duty in arrived if position == self.accept)
@@ -364,7 +363,12 @@ class Nfa:
                     else:
                         if reads:
                             threads[self.first[pc], duty] = None
-                        go_on(op.next, marks, duty, self._not_in(pc) if reads and op.kind == "possessive" else ALL)
+                        go_on(
+                            op.next,
+                            marks,
+                            duty,
+                            self._not_in(pc) if reads and op.kind == "possessive" else ALL,
+                        )
                 case p.Fork():
                     stack.append((op.second, marks, duty))
                     stack.append((op.first, marks, duty))

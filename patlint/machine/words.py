@@ -94,16 +94,33 @@ def count(dfa: Dfa, length: int) -> int:
 
 
 def total(dfa: Dfa) -> int | None:
-    """How many texts are in the language, None where it is infinite."""
+    """How many texts are in the language, None where it is infinite. One step for each edge."""
     useful = [distance is not None for distance in distances(dfa)]
-    longest = 0
-    states = {0} if useful[0] else set()
-    while states:
-        if longest > len(dfa):
-            return None
-        longest += 1
-        states = {target for state in states for target in dfa.table[state] if useful[target]}
-    return sum(count(dfa, length) for length in range(longest))
+    sizes = [chars.size() for chars in dfa.alphabet.classes]
+    texts: dict[int, int] = {}
+    open_states: set[int] = set()
+    stack = [0] if useful[0] else []
+    if not stack:
+        return 0
+    while stack:
+        state = stack[-1]
+        targets = {target for target in dfa.table[state] if useful[target]}
+        if state not in open_states:
+            open_states.add(state)
+            waiting = [target for target in targets if target not in texts]
+            if any(target in open_states for target in waiting):
+                return None  # a cycle through useful states
+            stack += waiting
+            continue
+        stack.pop()
+        if state in texts:
+            continue
+        texts[state] = int(dfa.accepting[state]) + sum(
+            size * texts[target]
+            for target, size in zip(dfa.table[state], sizes, strict=True)
+            if target in texts and useful[target]
+        )
+    return texts[0]
 
 
 def sample(dfa: Dfa, seed: int, number: int, extra: int = 6) -> list[Codes]:

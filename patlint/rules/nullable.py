@@ -7,7 +7,6 @@ from collections.abc import Iterator
 
 from patlint.machine.alphabet import representative
 from patlint.machine.dfa import Dfa
-from patlint.machine.nfa import AFTER_NEWLINE
 from patlint.machine.priority import MARKER
 from patlint.machine.words import distances
 from patlint.rules.finding import Example, Finding, Rule, TextWitness
@@ -78,18 +77,28 @@ def _outcome_changes(use: Use) -> bool:
 def between_characters(subject: Subject) -> str | bytes | None:
     """A text with an empty match between two characters, for a pattern that matches more than nothing."""
     nfa = subject.nfa
-    matches_some = matches_empty = None
-    for minterm, chars in enumerate(nfa.alphabet.classes):
-        context = nfa.contexts[minterm]
-        if context & AFTER_NEWLINE or chars.bounds[0] == 10:
-            continue
-        dfa = subject.spans(context)
-        rest = _after_empty_match(dfa)
-        if rest is not None and matches_empty is None:
-            matches_empty = (representative(chars), *rest)
-        matches_some = matches_some or _reads_something(dfa)
-        if matches_empty and matches_some:
-            return subject.text(matches_empty)
+    letters = [representative(chars) for chars in nfa.alphabet.classes]
+    line_feed = nfa.alphabet.classify(10)
+    matches_empty: tuple[int, ...] | None = None
+    matches_some = False
+    before: dict[int, tuple[int, ...]] = {}
+    order: list[tuple[int, tuple[int, ...]]] = [(nfa.start_context, ())]
+    for context, codes in order:
+        for minterm, letter in enumerate(letters):
+            if minterm == line_feed:
+                continue  # after a line feed an empty match may be meant: (?m)^
+            after = nfa.next_context(context, minterm)
+            if after in before:
+                continue
+            before[after] = (*codes, letter)
+            order.append((after, before[after]))
+            dfa = subject.spans(after)
+            if matches_empty is None:
+                rest = _after_empty_match(dfa)
+                matches_empty = None if rest is None else before[after] + rest
+            matches_some = matches_some or _reads_something(dfa)
+            if matches_empty is not None and matches_some:
+                return subject.text(matches_empty)
     return None
 
 

@@ -51,19 +51,23 @@ class Subject:
     def uses(self) -> tuple[Use, ...]:
         return self.site.uses
 
-    @cached_property
+    @property
     def program(self) -> Program:
-        """As the engine runs it."""
-        return compile_tree(self.pattern, self.limits)
+        """As the engine runs it. Raises LimitReached."""
+        return self._keep(("program", None), lambda: compile_tree(self.pattern, self.limits))
 
-    @cached_property
+    @property
     def nfa(self) -> Nfa:
-        return Nfa(self.program, self.limits)
+        """Raises LimitReached."""
+        return self._keep(("nfa", None), lambda: Nfa(self.program, self.limits))
 
-    @cached_property
+    @property
     def written(self) -> Nfa:
-        """The positions of the pattern as it is written, each alternative on its own."""
-        return Nfa(compile_tree(self.pattern, self.limits, engine=False), self.limits)
+        """The positions of the pattern as it is written, each alternative on its own. Raises LimitReached."""
+        return self._keep(
+            ("written", None),
+            lambda: Nfa(compile_tree(self.pattern, self.limits, engine=False), self.limits),
+        )
 
     @cached_property
     def matcher(self) -> Matcher:

@@ -47,10 +47,16 @@ def check(subject: Subject) -> Iterator[Finding]:
             RULE.level,
             part.node.span,
             f"no match ever takes this {part.kind}",
+            mode=_only_mode(subject),
             proof="no text has a match whose way leads through it; without it language and spans are the same",
             evidence="whatever the text, another way through the pattern succeeds first or this one fails",
             way_out=_way_out(part),
         )
+
+
+def _only_mode(subject: Subject) -> Mode | None:
+    modes = {mode for mode, _ in _asked(subject)}
+    return modes.pop() if len(modes) == 1 else None
 
 
 def _is_read(part: _Part, used: set[t.Span]) -> bool:
@@ -104,7 +110,7 @@ def _used_spans(subject: Subject) -> set[t.Span]:
     )
 
 
-def _parts(node: t.Node, optional: bool = False) -> Iterator[_Part]:
+def _parts(node: t.Node) -> Iterator[_Part]:
     """Branches, optional parts and repeats that cannot be passed without reading, the outer ones first."""
     match node:
         case t.Alternation():
@@ -114,12 +120,15 @@ def _parts(node: t.Node, optional: bool = False) -> Iterator[_Part]:
                     yield _Part(branch, "branch", (start - 1, end) if index else (start, end + 1))
                 yield from _parts(branch)
         case t.Repeat():
-            if node.minimum == 0 and node.maximum != 0 and width(node.body)[0] > 0 and _shows_reading(node):
+            # Leaving out a possessive repeat would change what follows: it is left only where its body fails.
+            can_go = node.minimum == 0 and node.maximum != 0 and node.kind != "possessive"
+            if can_go and width(node.body)[0] > 0 and _shows_reading(node):
                 kind = "optional part" if node.maximum == 1 else "repeat"
                 yield _Part(node, kind, node.span)
-            yield from _parts(node.body)
-        case t.Look():
-            return  # what a look-around reads is no part of the match
+            if node.kind != "possessive":
+                yield from _parts(node.body)
+        case t.Look() | t.Atomic():
+            return  # a look-around reads no part of the match; an atomic group is one position as a whole
         case _:
             for child in t.children(node):
                 yield from _parts(child)

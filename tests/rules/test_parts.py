@@ -9,6 +9,7 @@ from __future__ import annotations
 import itertools
 import random
 import re
+import sys
 import warnings
 
 import pytest
@@ -19,6 +20,7 @@ from patlint.syntax import tree as t
 from patlint.syntax.parser import parse
 from tests.rules.support import findings, site
 
+ATOMIC = sys.version_info >= (3, 11)
 TEXTS = ["".join(text) for size in range(6) for text in itertools.product("ab\n", repeat=size)]
 
 
@@ -55,6 +57,8 @@ def random_pattern(generator: random.Random, depth: int) -> str:
             f"{inner[0]}{inner[1]}",
             f"(?:{inner[0]}|{inner[1]})",
             f"(?:{inner[0]}|{inner[1]})",
+            *([f"(?>{inner[0]}|{inner[1]})", f"(?:{inner[0]})*+"] if ATOMIC else []),
+            f"(?<={generator.choice('ab')}){inner[0]}",
             f"(?:{inner[0]})" + generator.choice(["*", "+", "?", "*?", "+?", "??", "{2}", "{0,2}", "{1,2}?"]),
         ]
     )
@@ -113,6 +117,8 @@ DEAD: list[tuple[str, Function, str]] = [
     ("a$b?", "match", "b?"),
     ("(?:a|b)*?", "search", "(?:a|b)*?"),
     (r"(a)\1|ab", "match", ""),
+    (r"(?<=a)b|b", "search", ""),
+    (r"(?<=a)b|ab", "search", ""),  # dead, but only because ab was found one place before: not claimed
 ]
 """(pattern, function, the part that is never taken or "" where every part is): worked out by hand."""
 

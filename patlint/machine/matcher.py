@@ -132,6 +132,7 @@ class _Run:
         self.trail: list[tuple[int, int]] = []
         self.run_ends: list[list[int] | None] = [None] * len(matcher.members)
         self.last_places: list[list[int] | None] = [None] * len(matcher.members)
+        self.next_places: list[list[int] | None] = [None] * len(matcher.members)
 
     def at(self, pos: int, full: bool = False, not_empty: bool = False) -> Outcome:
         self.slots = [-1] * len(self.slots)
@@ -176,6 +177,18 @@ class _Run:
             places.append(last)
         places.append(last)
         self.last_places[chars] = places
+        return places
+
+    def next_place(self, chars: int) -> list[int]:
+        """For each place the first one from there whose character is in the set of that number, else the end."""
+        inside = self.matcher.members[chars]
+        places = [self.length] * (self.length + 1)
+        following = self.length
+        for place in range(self.length - 1, -1, -1):
+            if inside[self.classes[place]]:
+                following = place
+            places[place] = following
+        self.next_places[chars] = places
         return places
 
     def attempt(self, pc: int, pos: int, full: bool, forbidden: int) -> int:
@@ -259,12 +272,9 @@ class _Run:
                         continue
                 case p.Look():
                     start = pos if op.ahead else pos - op.width
-                    mark = len(trail)
                     self.turns, self.steps = turns, steps
                     end = self.attempt(op.body, start, False, -1) if start >= 0 else -1
                     turns, steps = self.turns, self.steps
-                    if op.negated:
-                        self.undo(mark)
                     if (end >= 0) != op.negated:
                         pc = op.next
                         continue
@@ -302,14 +312,21 @@ class _Run:
                     pc = op.body
                     break
                 assert isinstance(op, p.Run)
+                follow = code[op.next]
                 if op.kind == "lazy":
-                    steps += 1
-                    if pos < bound:
-                        choices.append((pc, pos + 1, bound, mark))
-                    pc = op.next
+                    place = pos
+                    if isinstance(follow, p.Char):
+                        chars = set_of[op.next]
+                        place = (self.next_places[chars] or self.next_place(chars))[pos]
+                        if place > bound or place == length:
+                            steps += bound - pos + 1
+                            continue
+                    steps += place - pos + 1
+                    if place < bound:
+                        choices.append((pc, place + 1, bound, mark))
+                    pc, pos = op.next, place
                     break
                 place = bound
-                follow = code[op.next]
                 if isinstance(follow, p.Char):
                     chars = set_of[op.next]
                     place = (last_places[chars] or self.last_place(chars))[bound]

@@ -36,6 +36,8 @@ LEAST_BASE = 1.08
 LEAST_STEPS = 2_000
 """Steps that the largest confirmed text must take, so that small noise is not fitted."""
 SUFFIXES = 5
+LONG_PUMP = 8
+"""From so many characters on a pump needs fewer repetitions to show its power."""
 SCREEN_SIZES = (8, 24)
 SCREEN_TURNS = 3_000
 SCREEN_RATIO = 3.6
@@ -97,7 +99,9 @@ def ambiguity_of(program: p.Program, manner: Manner, limits: Limits) -> Ambiguit
                 break
             tried += 1
             assert matcher is not None
-            slow = _confirm(suspect, most, nfa, matcher, dfa, manner, limits, budget)
+            slow, cut = _confirm(suspect, most, nfa, matcher, dfa, manner, limits, budget)
+            if cut and slow is None:
+                undecided = "turns"
             confirmed += slow is not None
             if slow is not None and (best is None or _worse(slow, best)):
                 best = slow
@@ -171,7 +175,8 @@ def _confirm(
     manner: Manner,
     limits: Limits,
     budget: list[int],
-) -> SlowText | None:
+) -> tuple[SlowText | None, bool]:
+    """The text that confirms a suspicion, and whether the limit on turns cut the search for it short."""
     pump = _root(suspect.pump)
     prefix = suspect.prefix
     while prefix[-len(pump) :] == pump:
@@ -190,6 +195,7 @@ def _confirm(
         if walked == NEVER or order == 0:
             break  # nothing promises more than a text that is refused at great cost
     best: SlowText | None = None
+    cut = budget[0] <= 0
     for _, _, counts in sorted(candidates, key=lambda row: row[:2])[:2]:
         growth = (
             _exponential(counts, limits.turns // 3)
@@ -197,6 +203,7 @@ def _confirm(
             else _power(counts, limits.turns, most)
         )
         if growth is None:
+            cut |= counts.cut
             continue
         slow = SlowText(
             *counts.text.pieces(),
@@ -209,7 +216,7 @@ def _confirm(
             best = slow
         if growth == "exponential" or growth >= most:
             break
-    return best
+    return best, cut
 
 
 def _root(pump: Codes) -> Codes:
@@ -247,6 +254,8 @@ class _Counts:
     def __init__(self, matcher: Matcher, manner: Manner, text: _Text, budget: list[int]) -> None:
         self.matcher, self.manner, self.text, self.budget = matcher, manner, text, budget
         self.known: dict[int, int] = {}
+        self.cut = False
+        """A run at length was stopped by the limit on turns."""
 
     def at(self, n: int, turns: int) -> int | None:
         if n in self.known:
@@ -261,7 +270,9 @@ class _Counts:
         self.budget[0] -= turns - left
         if finished:
             self.known[n] = steps
-        return steps if finished else None
+            return steps
+        self.cut |= turns > SCREEN_TURNS or self.budget[0] <= 0
+        return None
 
 
 def _exponential(counts: _Counts, turns: int) -> Growth | None:
@@ -296,7 +307,8 @@ def _exponential(counts: _Counts, turns: int) -> Growth | None:
 
 def _power(counts: _Counts, turns: int, most: int) -> Growth | None:
     """The power in n that doubling n shows, at most `most`; None below a square."""
-    n = 16
+    short = len(counts.text.pump) < LONG_PUMP
+    n, enough = (16, 64) if short else (4, 16)
     last = counts.at(n, turns)
     slope = 0.0
     while last is not None and n < 512:
@@ -305,11 +317,11 @@ def _power(counts: _Counts, turns: int, most: int) -> Growth | None:
             break
         slope = math.log2(now / last) if last else 0.0
         n, last = 2 * n, now
-        if n >= 64 and abs(slope - round(slope)) < 0.3 and n * slope >= 64 * most / 2:
+        if n >= enough and abs(slope - round(slope)) < 0.3 and n * slope >= enough * most / 2:
             break
     if last is None or last < LEAST_STEPS:
         return None
-    degree = math.floor(slope + 0.3) if n >= 64 else _difference_order(counts, turns)
+    degree = math.floor(slope + 0.3) if n >= enough else _difference_order(counts, turns)
     return min(degree, most) if degree >= 2 else None
 
 

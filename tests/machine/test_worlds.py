@@ -7,6 +7,7 @@ boundaries and look-ahead, on all texts up to a length over "ab\n". `re` is the 
 from __future__ import annotations
 
 import random
+import sys
 from functools import lru_cache
 
 import pytest
@@ -14,7 +15,7 @@ import pytest
 from patlint.limits import LimitReached
 from patlint.machine.determinise import language
 from tests.corpus.cpython import compiled
-from tests.corpus.generate import Maker, texts
+from tests.corpus.generate import FEATURES, Maker, texts
 from tests.machine.support import MODES, ends, nfa_of, span_automaton
 
 WORLD = texts("ab\n", 4)
@@ -49,8 +50,11 @@ def compare(pattern: str | bytes, world: list[str] | tuple[str, ...] | list[byte
     except LimitReached:
         return 0
     for text in world:
-        found = right.match(text)
-        truths = (found is not None, right.fullmatch(text) is not None, right.search(text) is not None)
+        try:
+            found = right.match(text)
+            truths = (found is not None, right.fullmatch(text) is not None, right.search(text) is not None)
+        except SystemError:  # the fault "possessive" of `corpus.cpython`
+            continue
         for (mode, automaton), truth in zip(automata, truths, strict=True):
             accepted = automaton.accepts(text)
             assert accepted == truth or accepted and nfa.inexact, (pattern, mode, text)
@@ -75,11 +79,15 @@ def test_patterns_of_five_nodes() -> None:
 
 
 @pytest.mark.parametrize(
-    "features", [(), ("ahead",), ("ahead", "flags"), ("ahead", "behind", "atomic", "backs")]
+    "features",
+    [(), ("ahead",), ("ahead", "flags"), ("behind",), ("atomic",), ("ahead", "behind", "atomic"), FEATURES],
+    ids=" ".join,
 )
 def test_random_patterns(features: tuple[str, ...]) -> None:
-    """Look-ahead and flags are exact; the constructs of the last row are supersets, never less."""
-    maker = Maker(40, frozenset(features))
+    """All but back-references and conditionals is exact; those are supersets, never less."""
+    if sys.version_info < (3, 11) and features == ("atomic",):
+        pytest.skip("atomic groups come with 3.11")
+    maker = Maker(40, frozenset(features) - ({"atomic"} if sys.version_info < (3, 11) else set()))
     choose = random.Random(41)
     world = [*texts("ab\n", 5), *texts("aAk\u212a ", 2), " b a", "ab A", "\u0130", "\u0131"]
     assert sum(compare(maker.pattern(4), choose.sample(world, 40)) for _ in range(400)) > 10_000
@@ -104,6 +112,7 @@ def test_bytes_and_flags() -> None:
         ("(?=a.)(?!ab)a", []),
         (r"^\ba\B$\Z", []),
         ("(a|b)*?", []),
+        (r"(?<=a\b)(?<!b$)b", []),
     ],
 )
 def test_what_is_exact(pattern: str, reasons: list[str]) -> None:

@@ -57,6 +57,7 @@ class PlacedFinding:
     way_out: str = ""
     span: tuple[int, int] = (0, 0)
     marks: tuple[tuple[int, int], ...] = ()
+    brief: bool = False
 
     @property
     def sort_key(self) -> tuple[int, int, str, str]:
@@ -86,6 +87,7 @@ def place_finding(finding: Finding, site: Site, level: Level, flags: tuple[str, 
         way_out=finding.way_out,
         span=finding.span,
         marks=finding.marks,
+        brief=finding.brief,
     )
 
 

@@ -66,7 +66,7 @@ def parser() -> Parser:
     made.add_argument(
         "--verbose",
         action="store_true",
-        help="also show what is unresolved, inexact or undecided (default: only count it)",
+        help="show every finding in full, and what is unresolved, inexact or undecided (default: only count it)",
     )
     return made
 

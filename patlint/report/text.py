@@ -57,8 +57,17 @@ class Style:
 
 def lint_report(result: RunResult, style: Style, verbose: bool = False) -> Iterator[str]:
     """The report of a run as lines without line feeds."""
+    short = False
     for finding in result.findings:
-        yield from finding_block(finding, style)
+        if short and not (finding.brief and not verbose):
+            yield ""
+        short = finding.brief and not verbose
+        if short:
+            yield _first_line(finding, style)
+        else:
+            yield from finding_block(finding, style)
+            yield ""
+    if short:
         yield ""
     if verbose:
         remarks = [line for each in result.outcomes for line in _remarks(each)]
@@ -68,11 +77,16 @@ def lint_report(result: RunResult, style: Style, verbose: bool = False) -> Itera
     yield summary_line(result)
 
 
-def finding_block(finding: PlacedFinding, style: Style) -> Iterator[str]:
-    """One finding as lines."""
+def _first_line(finding: PlacedFinding, style: Style) -> str:
+    """The finding in the form that GNU programs give messages in, so that editors find the place."""
     level = style.paint(finding.level, finding.level)
     place = f"{_one_line(finding.path)}:{finding.line}:{finding.column}"
-    yield f"{place}: {level}: {finding.rule}: {_one_line(finding.message)}"
+    return f"{place}: {level}: {finding.rule}: {_one_line(finding.message)}"
+
+
+def finding_block(finding: PlacedFinding, style: Style) -> Iterator[str]:
+    """One finding as lines."""
+    yield _first_line(finding, style)
     label = "pattern"
     for shown, under in _pattern_rows(finding, style):
         yield _row(label, shown, style)

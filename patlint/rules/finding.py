@@ -84,6 +84,8 @@ class Finding:
     suggestion: Suggestion | None = None
     marks: tuple[tuple[int, int], ...] = ()
     related: tuple[Related, ...] = ()
+    brief: bool = False
+    """One line is enough unless more is asked for: the finding is common and mostly harmless."""
 
 
 @dataclass(frozen=True, slots=True)

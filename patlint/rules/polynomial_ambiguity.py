@@ -24,20 +24,23 @@ def check(subject: Subject) -> Iterator[Finding]:
         if restart or degree == 2 or (use is not None and use.bounded is not None):
             level = "note"
         power = _POWERS.get(degree, f"{degree}th power")
-        cause = ": the search begins afresh at every character" if restart else ""
         span, *others = slow.parts or [(0, len(subject.site.pattern))]
         worst = Finding(
             RULE.name,
             level,
             span,
-            f"matching time can grow with the {power} of the text's length{cause}",
+            f"the search begins afresh at every place, so time can grow with the square: {figures(slow)}"
+            if restart
+            else f"matching time can grow with the {power} of the text's length",
             mode=mode_name(manner),
             witness=witness_of(slow),
-            evidence=figures(slow),
-            way_out=""
+            evidence="" if restart else figures(slow),
+            proof="counted by a matcher that walks as the engine does",
+            way_out="bound the repeat, or anchor the beginning: match or ^ where that is meant"
             if restart
             else "let the repeats take different characters, or put between them what only one can take",
             marks=tuple(others),
+            brief=restart,
         )
     if worst is not None:
         yield worst
@@ -55,7 +58,9 @@ since it begins afresh at every character: `\\s+$` takes quadratic time on a
 long run of blanks even though match with it is linear.
 
 A note where the growth is a square: it matters only for texts of
-ten thousand characters and more. A warning from the cube on.
+ten thousand characters and more. Where only the beginning afresh makes it a
+square, the note has one line; `--verbose` shows the text. A warning from the
+cube on.
 
 The finding gives a text: prefix, pump (to be repeated) and suffix. It was
 confirmed by counting the steps of a matcher that walks as the engine does.

@@ -5,10 +5,12 @@
   they are decided.
 - search: as match, and a fresh start at each place.
 
-A state is a set of threads: a bit mask of positions without obligations, and a set of (position, conjunction)
-with them, of which only the weakest of each position are kept.
+A state is a set of threads: a bit mask of positions without obligations, and for each conjunction of obligations
+a bit mask of the positions under it. Of a position's conjunctions only the weakest are kept, so that a set of
+threads has one spelling. Which threads read a character decides the next state, so that states and minterms
+that let the same threads go on share one step.
 
-Cost: states times minterms times the threads that read each. Limits: `states`, `work`.
+Cost: states times minterms, and the threads of each step that is not shared. Limits: `states`, `work`.
 """
 
 from __future__ import annotations
@@ -23,7 +25,9 @@ if TYPE_CHECKING:
     from patlint.machine.nfa import Nfa
 
 Mode: TypeAlias = Literal["match", "fullmatch", "search"]
-Bound: TypeAlias = frozenset[Thread]
+Masks: TypeAlias = tuple[tuple[Conjunction, int], ...]
+"""Positions, as a bit mask, under each conjunction that is not free."""
+Bound: TypeAlias = frozenset[tuple[Conjunction, int]]
 State: TypeAlias = tuple[int, Bound, int]
 NO_BOUND: Bound = frozenset()
 
@@ -40,32 +44,65 @@ def subset_table(
     """The complete, not yet minimal automaton from the threads `start` in `context`; state 0 is the first."""
     end_bit = 1 << nfa.accept
     stays = mode != "fullmatch"
-    top: State = (end_bit, NO_BOUND, 0)
-    afresh: dict[int, tuple[int, tuple[Thread, ...]]] | None = {} if mode == "search" else None
-    follow: dict[tuple[int, int, int], tuple[int, tuple[Thread, ...]]] = {}
+    staying = end_bit if stays else 0
+    afresh: dict[int, tuple[int, Masks]] | None = {} if mode == "search" else None
+    follow: dict[tuple[int, int, int], tuple[int, Masks]] = {}
     tracked = bool(nfa.trackers)
-
-    def after(position: int, minterm: int, context: int) -> tuple[int, tuple[Thread, ...]]:
-        key = (position, context, minterm if position > nfa.pending else -1)
-        found = follow.get(key)
-        if found is None:
-            found = follow[key] = split(nfa.after(position, minterm, context))
-        return found
-
-    def state_of(bits: int, pairs: list[Thread] | tuple[Thread, ...], context: int) -> State:
-        free, bound = _weakest(bits, pairs, end_bit, stays)
-        if stays and free == end_bit and not bound:
-            return top
-        return free, bound, context if tracked and (free or bound or afresh is not None) else 0
-
-    first = state_of(*split(start), context)
-    number: dict[State, int] = {first: 0}
-    order = [first]
-    table: list[tuple[int, ...]] = []
-    work = 0
+    atomic = bool(nfa.atomic_ends)
+    readers_of = nfa.readers
     limits = nfa.limits
     obligations = nfa.obligations
     width = len(nfa.alphabet)
+    ended: tuple[int, Masks] = (end_bit, ())
+    work = 0
+
+    def successor(firing: int, moved: dict[Conjunction, int], minterm: int, context: int) -> State:
+        """The state once the positions `firing` and those in `moved`, under their duties, have read."""
+        nonlocal work
+        bits, groups = 0, {}
+        if afresh is not None:
+            begin = afresh.get(context)
+            if begin is None:
+                begin = afresh[context] = split(nfa.initial(context))
+            bits, groups = begin[0], dict(begin[1])
+        for rest, waiting in ((FREE, firing), *moved.items()):
+            while waiting:
+                low = waiting & -waiting
+                waiting ^= low
+                work += 1
+                if low == end_bit:  # decided by this character: only its obligations were waiting
+                    found = ended
+                else:
+                    position = low.bit_length() - 1
+                    key = (position, context, minterm if position > nfa.pending else -1)
+                    known_after = follow.get(key)
+                    if known_after is None:
+                        known_after = follow[key] = split(nfa.after(position, minterm, context))
+                    found = known_after
+                more, more_groups = found
+                if rest:
+                    groups[rest] = groups.get(rest, 0) | more
+                else:
+                    bits |= more
+                for duty, mask in more_groups:
+                    both = rest | duty
+                    groups[both] = groups.get(both, 0) | mask
+        return state_of(bits, groups, context)
+
+    def state_of(bits: int, groups: dict[Conjunction, int], context: int) -> State:
+        if stays and bits & end_bit:
+            return top
+        bound = _weakest(bits, groups) if groups else NO_BOUND
+        return bits, bound, context if tracked and (bits or bound or afresh is not None) else 0
+
+    top: State = (end_bit, NO_BOUND, 0)
+    bits, masks = split(start)
+    first = state_of(bits, dict(masks), context)
+    number: dict[State, int] = {first: 0}
+    order = [first]
+    table: list[tuple[int, ...]] = []
+    known: dict[object, int] = {}
+    nothing: dict[Conjunction, int] = {}
     for state in order:
         if stays and state == top:
             table.append((number[top],) * width)
@@ -73,101 +110,70 @@ def subset_table(
         free, bound, before = state
         row = []
         for minterm in range(width):
-            readers = nfa.readers[minterm]
+            readers = readers_of[minterm]
             context = nfa.next_context(before, minterm) if tracked else nfa.contexts[minterm]
-            bits: int
-            pairs: list[Thread]
-            if afresh is not None:
-                begin = afresh.get(context)
-                if begin is None:
-                    begin = afresh[context] = split(nfa.initial(context))
-                bits, pairs = begin[0], list(begin[1])
-            else:
-                bits, pairs = 0, []
             firing = free & readers
-            while firing:
-                low = firing & -firing
-                firing ^= low
-                work += 1
-                more, more_pairs = after(low.bit_length() - 1, minterm, context)
-                bits |= more
-                pairs += more_pairs
-            for position, duty in bound:
-                if position == nfa.accept:
-                    if stays:
+            moved = nothing
+            if bound:
+                moved = {}
+                for duty, mask in bound:
+                    mask &= readers | staying
+                    if mask:
                         rest = obligations.step(duty, minterm)
-                        if rest is not None:
-                            pairs.append((position, rest))
-                elif readers >> position & 1:
-                    work += 1
-                    rest = obligations.step(duty, minterm)
-                    if rest is not None:
-                        more, more_pairs = after(position, minterm, context)
+                        if rest is None:
+                            continue
                         if rest:
-                            _join(pairs, rest, more, more_pairs)
+                            moved[rest] = moved.get(rest, 0) | mask
                         else:
-                            bits |= more
-                            pairs += more_pairs
-            target = state_of(bits, pairs, context)
-            index = number.get(target)
+                            firing |= mask
+            key: object
+            if atomic or moved:
+                key = (firing, context, minterm if atomic else -1, frozenset(moved.items()))
+            else:
+                key = (firing, context)
+            index = known.get(key)
             if index is None:
-                if len(order) >= limits.states:
-                    raise LimitReached("states", limits.states)
-                index = number[target] = len(order)
-                order.append(target)
+                target = successor(firing, moved, minterm, context)
+                index = number.get(target)
+                if index is None:
+                    if len(order) >= limits.states:
+                        raise LimitReached("states", limits.states)
+                    index = number[target] = len(order)
+                    order.append(target)
+                known[key] = index
             row.append(index)
-        work += width
+        work += width * (1 + len(bound))
         if work > limits.work:
             raise LimitReached("work", limits.work)
         table.append(tuple(row))
     accepting = [
-        bool(free & end_bit)
-        or any(position == nfa.accept and obligations.holds_at_end(duty) for position, duty in bound)
+        bool(free & end_bit) or any(mask & end_bit and obligations.holds_at_end(duty) for duty, mask in bound)
         for free, bound, _ in order
     ]
     return table, accepting
 
 
-def split(threads: tuple[Thread, ...]) -> tuple[int, tuple[Thread, ...]]:
-    """The threads without obligations as a bit mask, and the others."""
+def split(threads: tuple[Thread, ...]) -> tuple[int, Masks]:
+    """The threads without obligations as a bit mask, and the others as one for each conjunction."""
     bits = 0
-    pairs = []
-    for thread in threads:
-        if thread[1]:
-            pairs.append(thread)
+    groups: dict[Conjunction, int] = {}
+    for position, duty in threads:
+        if duty:
+            groups[duty] = groups.get(duty, 0) | 1 << position
         else:
-            bits |= 1 << thread[0]
-    return bits, tuple(pairs)
-
-
-def _join(pairs: list[Thread], rest: Conjunction, bits: int, more: tuple[Thread, ...]) -> None:
-    """Add to `pairs` the threads `bits` and `more` under the further obligations `rest`."""
-    while bits:
-        low = bits & -bits
-        bits ^= low
-        pairs.append((low.bit_length() - 1, rest))
-    pairs.extend((position, rest | duty) for position, duty in more)
-
-
-def _weakest(
-    bits: int, pairs: list[Thread] | tuple[Thread, ...], end_bit: int, stays: bool
-) -> tuple[int, Bound]:
-    """Canonical: only the weakest conjunctions of a position; an end without obligations absorbs all."""
-    if not pairs:
-        return (end_bit, NO_BOUND) if stays and bits & end_bit else (bits, NO_BOUND)
-    by_position: dict[int, list[Conjunction]] = {}
-    for position, duty in pairs:
-        if duty == FREE:
             bits |= 1 << position
-        elif not bits >> position & 1:
-            by_position.setdefault(position, []).append(duty)
-    if stays and bits & end_bit:
-        return end_bit, NO_BOUND
+    return bits, tuple(groups.items())
+
+
+def _weakest(bits: int, groups: dict[Conjunction, int]) -> Bound:
+    """Canonical: without the conjunctions of a position that holds under fewer obligations as well."""
     kept = []
-    for position, duties in by_position.items():
-        if bits >> position & 1:
-            continue
-        for duty in duties:
-            if len(duties) == 1 or not any(other < duty for other in duties):
-                kept.append((position, duty))
-    return bits, frozenset(kept)
+    for duty, mask in groups.items():
+        mask &= ~bits
+        if len(groups) > 1 and len(duty) > 1:
+            for other, stronger in groups.items():
+                if other < duty:
+                    mask &= ~stronger
+        if mask:
+            kept.append((duty, mask))
+    return frozenset(kept)

@@ -1,15 +1,17 @@
 """Which states of a complete automaton have the same language, and the automaton with one state for each.
 
-Sources: Moore, Gedanken-experiments on sequential machines, 1956 (rounds of refinement, for small automata);
-Hopcroft, An n log n algorithm for minimizing states in a finite automaton, 1971 (for the others).
+Sources: Moore, Gedanken-experiments on sequential machines, 1956 (rounds of refinement);
+Hopcroft, An n log n algorithm for minimizing states in a finite automaton, 1971 (for the few that need many).
 """
 
 from __future__ import annotations
 
 from collections.abc import Sequence
 
+ROUNDS = 16
+"""After so many rounds of Moore's, Hopcroft's lists go on: few automata need more."""
 SMALL = 64
-"""Up to so many states Moore's rounds are quicker than Hopcroft's lists."""
+"""Automata of fewer states may have as many rounds as they need."""
 
 
 def equivalence(table: Sequence[tuple[int, ...]], initial: list[int]) -> list[int]:
@@ -17,26 +19,56 @@ def equivalence(table: Sequence[tuple[int, ...]], initial: list[int]) -> list[in
 
     `table[state][minterm]` is a state; `initial` are classes that must stay apart (accepting or not).
     """
-    return _moore(table, initial) if len(table) <= SMALL else _hopcroft(table, initial)
+    classes = _by_distance(table, initial)
+    if max(classes) + 1 == len(table):
+        return classes
+    rows = list(zip(*dict.fromkeys(zip(*table, strict=True)), strict=True))
+    classes, done = _moore(rows, classes)
+    return classes if done else _hopcroft(rows, classes)
 
 
-def _moore(table: Sequence[tuple[int, ...]], classes: list[int]) -> list[int]:
+def _by_distance(table: Sequence[tuple[int, ...]], initial: list[int]) -> list[int]:
+    """A first refinement: states from which the nearest state of a class other than 0 is as far are together.
+
+    It spares long chains most of the rounds.
+    """
+    sources: list[list[int]] = [[] for _ in table]
+    for state, row in enumerate(table):
+        for target in set(row):
+            sources[target].append(state)
+    far = len(table)
+    distance = [0 if number else far for number in initial]
+    order = [state for state, number in enumerate(initial) if number]
+    for state in order:
+        next_distance = distance[state] + 1
+        for source in sources[state]:
+            if distance[source] == far:
+                distance[source] = next_distance
+                order.append(source)
+    numbers: dict[tuple[int, int], int] = {}
+    return [numbers.setdefault(pair, len(numbers)) for pair in zip(distance, initial, strict=True)]
+
+
+def _moore(table: Sequence[tuple[int, ...]], classes: list[int]) -> tuple[list[int], bool]:
+    """Refined classes, and whether they are final."""
     count = len(set(classes))
-    while True:
+    for _ in range(len(table) if len(table) < SMALL else ROUNDS):
         number: dict[tuple[int, ...], int] = {}
         refined = [
             number.setdefault((classes[state], *[classes[target] for target in row]), len(number))
             for state, row in enumerate(table)
         ]
         if len(number) == count:
-            return refined
+            return refined, True
         classes, count = refined, len(number)
+        if count == len(table):
+            return classes, True
+    return classes, False
 
 
 def _hopcroft(table: Sequence[tuple[int, ...]], initial: list[int]) -> list[int]:
-    columns = list(dict.fromkeys(zip(*table, strict=True)))
     before: list[list[list[int]]] = []
-    for column in columns:
+    for column in zip(*table, strict=True):
         sources: list[list[int]] = [[] for _ in table]
         for state, target in enumerate(column):
             sources[target].append(state)

@@ -5,9 +5,11 @@ from __future__ import annotations
 import itertools
 import random
 
+import pytest
+
 from patlint.machine.alphabet import minterms
 from patlint.machine.dfa import canonical, minimal
-from patlint.machine.minimise import SMALL, _hopcroft, _moore, equivalence
+from patlint.machine.minimise import ROUNDS, SMALL, _by_distance, _hopcroft, _moore, equivalence
 from patlint.syntax.charset import ALL_CODES, CharSet
 from tests.corpus.generate import Maker
 from tests.machine.support import MODES, dfa_of
@@ -53,7 +55,8 @@ def test_against_brute_force() -> None:
         table, accepting = random_automaton(choose, choose.randint(1, 6), choose.randint(1, 3))
         twin = partition(list(brute_force(table, accepting)))
         initial = [int(end) for end in accepting]
-        assert partition(list(_moore(table, initial))) == twin
+        assert partition(list(_moore(table, initial)[0])) == twin
+        assert partition(list(_moore(table, _by_distance(table, initial))[0])) == twin
         assert partition(list(_hopcroft(table, initial))) == twin
         merged += len(set(twin)) < len(table)
     assert merged > 50
@@ -65,11 +68,30 @@ def test_both_methods_agree_on_larger_ones() -> None:
     for _ in range(120):
         table, accepting = random_automaton(choose, choose.choice((SMALL - 1, SMALL, SMALL + 1, 200)), 3)
         initial = [int(end) + choose.choice((0,) * 30 + (1,)) for end in accepting]
-        moore, hopcroft = _moore(table, initial), _hopcroft(table, initial)
+        (moore, done), hopcroft = _moore(table, initial), _hopcroft(table, initial)
+        assert done
         assert partition(list(moore)) == partition(list(hopcroft))
         assert partition(list(equivalence(table, initial))) == partition(list(moore))
         merged += len(set(moore)) < len(table)
     assert merged > 30
+
+
+@pytest.mark.parametrize("length", [SMALL - 3, SMALL - 2, SMALL + ROUNDS, 300])
+def test_a_ring_needs_many_rounds(length: int) -> None:
+    """Two letters step round a ring; only `b` at one place gives it away, so that distances tell nothing."""
+    step = [(place + 1) % length for place in range(length)]
+    accepting = length
+    # The third letter accepts at once, everywhere.
+    table = [(onward, accepting if place == 0 else onward, accepting) for place, onward in enumerate(step)]
+    table.append((accepting + 1,) * 3)
+    table.append((accepting + 1,) * 3)
+    initial = [0] * length + [1, 0]
+    moore, done = _moore(table, _by_distance(table, initial))
+    assert done == (len(table) < SMALL)
+    classes = equivalence(table, initial)
+    assert len(set(classes)) == len(table)
+    if done:
+        assert partition(list(moore)) == partition(list(classes))
 
 
 def test_minimal_keeps_the_language_and_is_idempotent() -> None:

@@ -116,6 +116,8 @@ def test_interrupt_ends_quietly(folder: Path, jobs: int) -> None:
         cwd=folder,
         env=environment(),
         start_new_session=True,
+        # A shell that runs the tests in the background has its children ignore the signal.
+        preexec_fn=lambda: signal.signal(signal.SIGINT, signal.SIG_DFL),
     ) as process:
         # Each opening waits until patlint has opened its side.
         writers = [os.open(pipe, os.O_WRONLY) for pipe in pipes]

@@ -37,7 +37,7 @@ def check(subject: Subject) -> Iterator[Finding]:
 RULE = Rule(
     name="empty-language",
     level="error",
-    summary="nothing matches in the mode in which it is used",
+    summary="nothing matches in the mode that is used",
     page="""\
 No text makes this call succeed: the automaton of the pattern, in the mode in
 which it is used, accepts nothing. Usual causes are an anchor in the middle

@@ -105,7 +105,7 @@ def is_plain(node: t.Node) -> bool:
 RULE = Rule(
     name="equal-siblings",
     level="warning",
-    summary="two branches of one alternation have the same language",
+    summary="two branches have the same language",
     page="""\
 An alternation tries its branches in order, so a second branch that takes the
 same texts as an earlier one is never of any use. It is either a leftover or

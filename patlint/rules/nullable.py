@@ -138,7 +138,7 @@ def _reads_something(dfa: Dfa) -> bool:
 RULE = Rule(
     name="nullable",
     level="warning",
-    summary="the empty text matches where that changes the outcome",
+    summary="the empty text matches where that matters",
     page="""\
 split, sub, findall and finditer act on empty matches too, since Python 3.7
 between all characters: `re.split(r",?", "ab")` is ['', 'a', 'b', '']. A loop

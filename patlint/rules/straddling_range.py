@@ -86,7 +86,7 @@ def _split(item: t.Range) -> tuple[t.Range, ...] | None:
 RULE = Rule(
     name="straddling-range",
     level="warning",
-    summary="a range takes in characters between two alphabets",
+    summary="a range takes in signs between two alphabets",
     page="""\
 In the order of code points, `[`, `\\`, `]`, `^`, `_` and the grave accent stand
 between Z and a, and `:`, `;`, `<`, `=`, `>`, `?` and `@` between 9 and A. A

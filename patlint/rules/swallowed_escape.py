@@ -107,7 +107,7 @@ def _name(code: int) -> str:
 RULE = Rule(
     name="swallowed-escape",
     level="warning",
-    summary="Python consumed an escape that was meant for re",
+    summary="Python consumed an escape meant for re",
     page="""\
 In a literal without the prefix r Python reads escapes before re does. For
 most of them the outcome is the same, a tab is a tab. For some it is not:

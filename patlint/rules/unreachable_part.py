@@ -142,7 +142,7 @@ def _shows_reading(node: t.Node) -> bool:
 RULE = Rule(
     name="unreachable-part",
     level="warning",
-    summary="a branch, an optional part or a repeat that no match ever takes",
+    summary="a part of the pattern that no match takes",
     page="""\
 The engine tries alternatives in order and stops at the first way that
 succeeds. A branch behind one that always succeeds first is dead: in

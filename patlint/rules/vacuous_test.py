@@ -34,7 +34,7 @@ def check(subject: Subject) -> Iterator[Finding]:
 RULE = Rule(
     name="vacuous-test",
     level="error",
-    summary="the truth of a match is tested, and every text passes",
+    summary="a match is tested that every text passes",
     page="""\
 The program asks only whether there is a match, and there always is one, so
 the test tests nothing. Most often everything in the pattern is optional

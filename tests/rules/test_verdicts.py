@@ -1,0 +1,139 @@
+"""What each rule says and does not say, on calls as they stand in code; text witnesses are replayed on `re`.
+
+Cases are our own unless a source is named; idioms that stay quiet are common practice, no source.
+"""
+
+from __future__ import annotations
+
+import re
+
+import pytest
+
+from patlint import lint_source
+from patlint.placed import PlacedFinding
+from patlint.rules.finding import TextWitness
+
+CASES: list[tuple[str, str, bool]] = [
+    # empty-language
+    ("ok = re.match(r'a$b', s) is not None", "empty-language", True),
+    ("ok = re.search(r'a$b', s) is not None", "empty-language", True),
+    ("ok = re.search(r'(?m)a$\\nb', s) is not None", "empty-language", False),
+    ("ok = re.search(r'x^y', s) is not None", "empty-language", True),
+    ("ok = re.search(r'(?m)x\\n^y', s) is not None", "empty-language", False),
+    ("ok = re.search(r'a\\bb', s) is not None", "empty-language", True),
+    ("ok = re.match(r'(?=a)b', s) is not None", "empty-language", True),
+    ("ok = re.match(r'(?<=#)\\d+', s) is not None", "empty-language", True),
+    ("ok = re.search(r'(?<=#)\\d+', s) is not None", "empty-language", False),
+    ("_p = re.compile(r'(?<=#)\\d+')\nok = _p.match(s, 3) is not None", "empty-language", False),
+    ("p = re.compile(r'(?<=#)\\d+')", "empty-language", False),
+    ("p = re.compile(r'\\d+$\\d')", "empty-language", True),
+    ("ok = re.fullmatch(r'(?>a|ab)c(?<=abc)', s) is not None", "empty-language", True),
+    ("ok = re.fullmatch(r'a*+a', s) is not None", "empty-language", True),
+    ("ok = re.search(r'(?!)', s) is not None", "empty-language", False),
+    ("ok = re.search(r'[^\\s\\S]', s) is not None", "empty-language", False),
+    ("ok = re.match(r'(a)\\1$b', s) is not None", "empty-language", True),
+    # vacuous-test
+    ("ok = bool(re.match(r'\\d*', s))", "vacuous-test", True),
+    ("ok = bool(re.search(r'a|', s))", "vacuous-test", True),
+    ("ok = bool(re.fullmatch(r'(?s).*', s))", "vacuous-test", True),
+    ("ok = bool(re.fullmatch(r'.*', s))", "vacuous-test", False),
+    ("ok = bool(re.fullmatch(r'\\d*', s))", "vacuous-test", False),
+    ("ok = bool(re.match('', s))", "vacuous-test", False),
+    ("m = re.match(r'\\d*', s)\nuse(m.group())", "vacuous-test", False),
+    ("_p = re.compile(r'\\d*')\nok = bool(_p.match(s, 3))", "vacuous-test", False),
+    ("ok = bool(re.match(r'(?=a*)', s))", "vacuous-test", True),
+    # RFC 3986, appendix B (from memory): the expression matches every text that has no line feed in its fragment
+    (
+        r"ok = bool(re.match(r'^(([^:/?#]+):)?(//([^/?#]*))?([^?#]*)(\?([^#]*))?(#(.*))?', s))",
+        "vacuous-test",
+        True,
+    ),
+    # nullable
+    ("x = re.split(r'\\s*', s)", "nullable", True),
+    ("x = re.split(r',?', s)", "nullable", True),
+    ("x = re.split(r'(?<=a)(?=b)', s)", "nullable", False),
+    ("x = re.split(r'\\s*$', s)", "nullable", False),
+    ("x = re.findall(r'\\d*', s)", "nullable", True),
+    ("x = re.findall(r'\\d+', s)", "nullable", False),
+    ("x = re.sub(r'\\s*', '', s)", "nullable", False),
+    ("x = re.sub(r'\\s*', '-', s)", "nullable", True),
+    ("x = re.sub(r'^\\s*', '> ', s)", "nullable", False),
+    ("x = re.sub(r'(?m)^\\s*', '> ', s)", "nullable", False),
+    ("x = re.sub(r'(?m)^', '> ', s)", "nullable", False),
+    ("x = re.sub(r'(\\w*)', r'\\1', s)", "nullable", False),
+    ("x = re.sub(r'(\\w*)', r'<\\1>', s)", "nullable", True),
+    ("x = re.sub(r'a*', f, s)", "nullable", False),
+    ("x = re.sub(r'a*', '-', s, count=1)", "nullable", False),
+    ("x = re.sub(r'(?<=\\d)(?=(?:\\d{3})+$)', ',', s)", "nullable", False),
+    ("x = re.sub(r'^\\s+|\\s+$', '', s)", "nullable", False),
+    ("x = re.split(rb'-?', s)", "nullable", True),
+    ("x = re.split(r'(?<!x)b?', s)", "nullable", True),
+    # straddling-range
+    ("p = re.compile(r'[A-z]')", "straddling-range", True),
+    ("p = re.compile(r'[^A-z]')", "straddling-range", True),
+    ("p = re.compile(r'[0-z]')", "straddling-range", True),
+    ("p = re.compile(rb'[0-Z]')", "straddling-range", True),
+    ("p = re.compile(r'[A-Za-z]')", "straddling-range", False),
+    ("p = re.compile(r'[!-~]')", "straddling-range", False),
+    ("p = re.compile(r'[A-z\\[-`]')", "straddling-range", False),
+    ("p = re.compile(r'[\\W\\wA-z]')", "straddling-range", False),
+    # swallowed-escape
+    ("p = re.compile('\\bgate\\b')", "swallowed-escape", True),
+    ("p = re.compile(r'\\bgate\\b')", "swallowed-escape", False),
+    ("p = re.compile('\\\\bgate\\\\b')", "swallowed-escape", False),
+    ("p = re.compile('[\\b]x')", "swallowed-escape", False),
+    ("p = re.compile('(a)\\1')", "swallowed-escape", True),
+    ("p = re.compile('a\\tb')", "swallowed-escape", False),
+    ("p = re.compile('a\\tb', re.VERBOSE)", "swallowed-escape", True),
+    ("p = re.compile('1\\x2e5')", "swallowed-escape", True),
+    ("p = re.compile('1\\x2d5')", "swallowed-escape", False),
+    ("p = re.compile('a\\n')", "swallowed-escape", False),
+    ("x = re.sub('.\\b', '', s)", "swallowed-escape", False),
+    ("x = re.sub('_\\b', '', s)", "swallowed-escape", False),
+    ("p = re.compile(b'\\bgate')", "swallowed-escape", True),
+    # invalid-pattern
+    ("p = re.compile(r'a(b')", "invalid-pattern", True),
+    ("p = re.compile(r'(?<=a+)b')", "invalid-pattern", True),
+    ("p = re.compile(r'a{2,1}')", "invalid-pattern", True),
+    ("p = re.compile(r'a{,1}')", "invalid-pattern", False),
+]
+
+
+@pytest.mark.parametrize(("code", "rule", "found"), CASES, ids=[f"{rule}: {code}" for code, rule, _ in CASES])
+def test_verdict(code: str, rule: str, found: bool) -> None:
+    findings = lint_source(f"import re\n{code}\n", "case.py", target=(3, 11))
+    of_rule = [finding for finding in findings if finding.rule == rule]
+    assert bool(of_rule) == found
+    for finding in of_rule:
+        assert finding.witness is not None or finding.proof
+        if isinstance(finding.witness, TextWitness):
+            replay(finding, finding.witness.text)
+
+
+def replay(finding: PlacedFinding, text: str | bytes) -> None:
+    """The witness shows on `re` what the finding says."""
+    assert finding.pattern is not None
+    flags = 0
+    for name in finding.flags:
+        flags |= getattr(re, name)
+    compiled = re.compile(finding.pattern, flags)  # type: ignore[arg-type]
+    match finding.rule:
+        case "vacuous-test":
+            assert finding.mode is not None and getattr(compiled, finding.mode)(text) is not None
+        case "nullable":
+            empty = [m.start() for m in compiled.finditer(text) if m.start() == m.end()]  # type: ignore[arg-type]
+            assert len(empty) >= 2
+        case "straddling-range" | "swallowed-escape":
+            assert finding.mode is not None
+            outcome = getattr(compiled, finding.mode)(text)
+            assert isinstance(outcome, re.Match) or outcome is None
+        case _:
+            raise AssertionError(f"{finding.rule} has a text witness that nobody replays")
+
+
+def test_one_cause_one_finding() -> None:
+    """A pattern that is empty is not also full of dead parts; one that is vacuous is not also nullable."""
+    rules = [finding.rule for finding in lint_source("import re\nok = re.match(r'a$(?:b|c)d?', s) is None\n")]
+    assert rules == ["empty-language"]
+    rules = [finding.rule for finding in lint_source("import re\nok = re.search(r'(?:a|aa)?', s) is None\n")]
+    assert rules == ["vacuous-test"]

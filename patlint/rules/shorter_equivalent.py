@@ -8,17 +8,19 @@ from patlint.language import Language
 from patlint.rewrite.shorten import suggest
 from patlint.rules.finding import Example, Finding, Keeps, Rule, Suggestion
 from patlint.rules.subject import Subject
-from patlint.source.sites import SCANNING, Mode
+from patlint.source.sites import SCANNING, Mode, Site
 from patlint.syntax.parser import parse
 
 
 def check(subject: Subject) -> Iterator[Finding]:
     if not subject.exact:
         return
-    modes, keeps = _needed(subject)
+    modes, keeps = needed(subject.site)
     # What holds for search in every surrounding holds for match; fullmatch is asked apart.
     mode: Mode = next(mode for mode in ("search", "match", "fullmatch") if mode in modes)
-    proposal = suggest(subject.pattern, mode, keeps, subject.target, subject.limits)
+    proposal = suggest(
+        subject.pattern, mode, keeps, subject.target, subject.limits, fences=fences(subject.site)
+    )
     if proposal is None or ("fullmatch" in modes and not _same_in_full(subject, proposal.pattern)):
         return
     before, after = subject.site.pattern, proposal.pattern
@@ -31,7 +33,6 @@ def check(subject: Subject) -> Iterator[Finding]:
         mode=mode,
         proof="both patterns have the same minimal automata",
         evidence="proven by comparing minimal automata",
-        way_out=_shown(after),
         suggestion=Suggestion(after, proposal.keeps),
     )
 
@@ -39,18 +40,18 @@ def check(subject: Subject) -> Iterator[Finding]:
 _KEPT = {"language": "language", "spans": "language and spans", "groups": "language, spans and groups"}
 
 
-def _needed(subject: Subject) -> tuple[set[Mode], Keeps]:
+def needed(site: Site) -> tuple[set[Mode], Keeps]:
     """The modes in which the pattern may be used, and what has to stay."""
     modes: set[Mode] = set()
     keeps: Keeps = "language"
-    for use in subject.uses:
+    for use in site.uses:
         # A match from a place inside the text needs equal matches in every surrounding: spans in search.
         modes.add("search" if use.positioned and use.mode == "match" else use.mode)
         if use.looks_at in ("groups", "unknown"):
             keeps = "groups"
         elif (use.looks_at == "span" or use.function in SCANNING or use.positioned) and keeps == "language":
             keeps = "spans"
-    if not subject.site.uses_seen or not modes:
+    if not site.uses_seen or not modes:
         return modes | {"search", "fullmatch"}, "groups"
     return modes, keeps
 
@@ -59,6 +60,25 @@ def _same_in_full(subject: Subject, pattern: str | bytes) -> bool:
     parsed = parse(pattern, subject.site.flags, subject.target, subject.limits)
     other = Language(parsed, mode="fullmatch", limits=subject.limits)
     return other.exact and other == subject.language("fullmatch")
+
+
+def fences(site: Site) -> tuple[int, ...]:
+    """Offsets in the pattern at which what one reads there jumps to another place of the file: from a
+    constant to the next, from one text of a join to another. Literals side by side are one."""
+    whole = site.place
+    inside = [
+        bool(piece.places)
+        and (whole.line, whole.column) <= (piece.whole.line, piece.whole.column)
+        and (piece.whole.end_line, piece.whole.end_column) <= (whole.end_line, whole.end_column)
+        for piece in site.pieces
+    ]
+    out = []
+    for index in range(1, len(site.pieces)):
+        before, after = site.pieces[index - 1], site.pieces[index]
+        rising = (before.whole.end_line, before.whole.end_column) < (after.whole.line, after.whole.column)
+        if not (inside[index - 1] and inside[index] and rising):
+            out.append(after.start)
+    return tuple(out)
 
 
 def changed_part(before: str | bytes, after: str | bytes) -> tuple[int, int]:
@@ -70,15 +90,10 @@ def changed_part(before: str | bytes, after: str | bytes) -> tuple[int, int]:
     return start, len(before) - tail
 
 
-def _shown(pattern: str | bytes) -> str:
-    text = pattern.decode("latin-1") if isinstance(pattern, bytes) else pattern
-    return f"write {text if text.isprintable() else ascii(text)}"
-
-
 RULE = Rule(
     name="shorter-equivalent",
     level="note",
-    summary="a shorter pattern has the same language, and the same spans where the program looks at them",
+    summary="a shorter pattern does the same",
     page="""\
 The suggestion was made from the pattern's minimal automaton or by algebra on
 its parts, and then proven: both patterns have the same minimal automaton in

@@ -38,8 +38,13 @@ class Alphabet:
 
 
 @lru_cache(maxsize=4096)
-def minterms(sets: tuple[CharSet, ...], universe: CharSet) -> tuple[Alphabet, tuple[int, ...]]:
-    """The alphabet cut by `sets`, and for each set the bit mask of the minterms that it is made of."""
+def minterms(
+    sets: tuple[CharSet, ...], universe: CharSet, covered: bool = False
+) -> tuple[Alphabet, tuple[int, ...]]:
+    """The alphabet cut by `sets`, and for each set the bit mask of the minterms that it is made of.
+
+    `covered`: what is in none of the sets is no character (the gap below the marker of marked texts).
+    """
     toggles: dict[int, int] = {0: 0}
     bit = 1
     for chars in sets:
@@ -58,6 +63,11 @@ def minterms(sets: tuple[CharSet, ...], universe: CharSet) -> tuple[Alphabet, tu
         if place > end:
             break
         members ^= toggles[place]
+        if covered and not members:
+            if owner >= 0:
+                bounds[owner].append(place)
+            owner = -1
+            continue
         new = number.get(members)
         if new is None:
             new = number[members] = len(bounds)
@@ -70,7 +80,8 @@ def minterms(sets: tuple[CharSet, ...], universe: CharSet) -> tuple[Alphabet, tu
         cuts.append(place)
         owners.append(new)
         owner = new
-    bounds[owner].append(end)
+    if owner >= 0:
+        bounds[owner].append(end)
     masks = [0] * len(sets)
     for members, index in number.items():
         while members:
@@ -91,7 +102,7 @@ def common(a: Alphabet, b: Alphabet) -> tuple[Alphabet, tuple[int, ...], tuple[i
         same = tuple(range(len(a)))
         return a, same, same
     whole = CharSet((0, max(a.classes[a.owners[-1]].bounds[-1], b.classes[b.owners[-1]].bounds[-1])))
-    alphabet, _ = minterms(a.classes + b.classes, whole)
+    alphabet, _ = minterms(a.classes + b.classes, whole, True)
     firsts = [chars.bounds[0] for chars in alphabet.classes]
     return alphabet, tuple(map(a.classify, firsts)), tuple(map(b.classify, firsts))
 

@@ -59,7 +59,7 @@ def canonical(dfa: Dfa) -> Dfa:
     merged = tuple(
         CharSet.of_ranges(each for chars in row for each in chars.ranges()) for row in columns.values()
     )
-    alphabet, masks = minterms(merged, whole)
+    alphabet, masks = minterms(merged, whole, True)
     rows = list(zip(*columns, strict=True))
     order = [mask.bit_length() - 1 for mask in masks]
     if order != list(range(len(order))):

@@ -11,6 +11,7 @@ if TYPE_CHECKING:
     from patlint.language import Language as Language
     from patlint.language import ambiguity as ambiguity
     from patlint.language import relate as relate
+    from patlint.pairs import agreement as agreement
     from patlint.rewrite import shorten as shorten
     from patlint.run import lint_source as lint_source
     from patlint.source import find_patterns as find_patterns
@@ -19,6 +20,7 @@ __version__ = "0.1.0"
 
 _HOMES = {
     "Language": "patlint.language",
+    "agreement": "patlint.pairs",
     "ambiguity": "patlint.language",
     "find_patterns": "patlint.source",
     "lint_source": "patlint.run",
@@ -26,7 +28,16 @@ _HOMES = {
     "shorten": "patlint.rewrite",
 }
 
-__all__ = ["Language", "__version__", "ambiguity", "find_patterns", "lint_source", "relate", "shorten"]
+__all__ = [
+    "Language",
+    "__version__",
+    "agreement",
+    "ambiguity",
+    "find_patterns",
+    "lint_source",
+    "relate",
+    "shorten",
+]
 
 
 def __getattr__(name: str) -> object:

@@ -49,10 +49,17 @@ def _items(node: t.Node) -> list[t.Node]:
     return list(node.items) if isinstance(node, t.Sequence) else [node]
 
 
+_SHARED = (t.Literal, t.Dot, t.Set, t.ClassEscape, t.Anchor, t.BackReference)
+"""What the engine takes out as a shared prefix: nothing that holds a pattern of its own, such as a repeat.
+
+Nor would that be the same: `b?\\b|b?` comes to the empty match before it tries `b` by its second branch.
+"""
+
+
 def _alternation(span: t.Span, branches: list[t.Node]) -> t.Node:
     rows = [_items(branch) for branch in branches]
     prefix: list[t.Node] = []
-    while all(rows) and all(same(row[0], rows[0][0]) for row in rows[1:]):
+    while all(rows) and isinstance(rows[0][0], _SHARED) and all(same(row[0], rows[0][0]) for row in rows[1:]):
         prefix.append(rows[0][0])
         rows = [row[1:] for row in rows]
     merged = _one_set(span, rows)

@@ -10,27 +10,31 @@ The order of the places is a regular language of marked texts: { u # v : the par
 v, and the engine comes to the later place first }. Together with the plain language it fixes the whole
 order.
 
-`same_language` and `same_spans` compare whole patterns.
+`same_groups` walks two patterns side by side and compares by `ends` what differs; `same_language` and
+`same_spans` compare whole patterns; `holds` asks what has to stay.
 Method: the ordered subset construction of `patlint.machine.priority`, without its cut.
 """
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from dataclasses import replace
+from typing import Literal, TypeAlias
 
 from patlint.limits import LimitReached, Limits
-from patlint.machine.alphabet import Alphabet, common
+from patlint.machine import agreement
+from patlint.machine.alphabet import Alphabet
 from patlint.machine.determinise import Mode, language
 from patlint.machine.dfa import Dfa, canonical, minimal
 from patlint.machine.nfa import Nfa
 from patlint.machine.obligations import FREE
-from patlint.machine.priority import MARKER, spans
+from patlint.machine.priority import MARKER
 from patlint.machine.program import compile_tree
+from patlint.rewrite.islands import is_pure, shape
 from patlint.syntax import tree as t
 from patlint.syntax.charset import CharSet
 
-MOST_CONTEXTS = 40
-"""Pairs of contexts in which spans are compared, a few milliseconds each; look-behinds may have more."""
+Keeps: TypeAlias = Literal["language", "spans", "groups"]
 
 
 def ends(pattern: t.Pattern, part: t.Node, limits: Limits) -> Dfa:
@@ -134,24 +138,129 @@ def same_spans(old: t.Pattern, new: t.Pattern, scanning: bool, limits: Limits) -
     small = replace(limits, states=min(limits.states, 400), work=min(limits.work, 40_000))
     try:
         a, b = (Nfa(compile_tree(pattern, small), small) for pattern in (old, new))
-        if a.inexact or b.inexact:
-            return False
-        _, of_a, of_b = common(a.alphabet, b.alphabet)
-        moves = list(zip(of_a, of_b, strict=True))
-        pairs = {(a.start_context, b.start_context): None}
-        order = list(pairs)
-        for context_a, context_b in order:
-            for minterm_a, minterm_b in moves:
-                after = a.next_context(context_a, minterm_a), b.next_context(context_b, minterm_b)
-                if after not in pairs:
-                    pairs[after] = None
-                    order.append(after)
-            if len(order) > MOST_CONTEXTS:
-                return False
-        for context_a, context_b in pairs:
-            for not_empty in (False, True) if scanning else (False,):
-                if canonical(spans(a, context_a, not_empty)) != canonical(spans(b, context_b, not_empty)):
-                    return False
+        return not a.inexact and not b.inexact and agreement.same_spans(a, b, small, not_empty=scanning)
     except LimitReached:
         return False
-    return True
+
+
+def holds(old: t.Pattern, new: t.Pattern, modes: Iterable[Mode], keeps: Keeps, limits: Limits) -> bool:
+    """Whether `new` does as `old` in each of `modes`, as far as `keeps` goes; False where it is not proven."""
+    if old.flags != new.flags:
+        return False
+    if (old.groups, old.names) == (new.groups, new.names):
+        if same_groups(old, new, limits):
+            return True
+    elif keeps != "language":
+        return False
+    match keeps:
+        case "groups":
+            return False
+        case "spans":
+            return all(
+                same_language(old, new, mode, limits)
+                if mode == "fullmatch"
+                else same_spans(old, new, mode == "search", limits)
+                for mode in modes
+            )
+        case "language":
+            return all(same_language(old, new, mode, limits) for mode in modes)
+
+
+def same_groups(old: t.Pattern, new: t.Pattern, limits: Limits) -> bool:
+    """Whether both do the same in every way: they differ only in parts that look at nothing outside
+    themselves, and whose ends come in the same order.
+
+    False where it is not so, or a limit is met. Cost: one `ends` for each part that differs.
+    """
+    try:
+        return _Pair(old, new, limits).same(old.root, new.root)
+    except LimitReached:
+        return False
+
+
+class _Pair:
+    """Two patterns side by side."""
+
+    def __init__(self, old: t.Pattern, new: t.Pattern, limits: Limits) -> None:
+        self.old = old
+        self.new = new
+        self.limits = limits
+
+    def same(self, a: t.Node, b: t.Node) -> bool:
+        a, b = _bare(a), _bare(b)
+        if shape(a) == shape(b):
+            return True
+        if self.pure(a) and self.pure(b):
+            return ends(self.old, a, self.limits) == ends(self.new, b, self.limits)
+        if isinstance(a, t.Alternation) and isinstance(b, t.Alternation):
+            return self.rows(a.branches, b.branches, t.Alternation)
+        if isinstance(a, t.Sequence) or isinstance(b, t.Sequence):
+            return self.rows(_items(a), _items(b), t.Sequence)
+        if type(a) is not type(b):
+            return False
+        below_a, below_b = t.children(a), t.children(b)
+        if not below_a or len(below_a) != len(below_b) or _head(a) != _head(b):
+            return False
+        return all(self.same(one, other) for one, other in zip(below_a, below_b, strict=True))
+
+    def rows(
+        self, a: tuple[t.Node, ...], b: tuple[t.Node, ...], kind: type[t.Sequence] | type[t.Alternation]
+    ) -> bool:
+        """Neighbours on either side: what is not pure must stand on both in the same order."""
+        runs_a, firm_a = self.parted(a)
+        runs_b, firm_b = self.parted(b)
+        if len(firm_a) != len(firm_b):
+            return False
+        for run_a, run_b in zip(runs_a, runs_b, strict=True):
+            if kind is t.Alternation and bool(run_a) != bool(run_b):
+                return False  # no branch is not the same as an empty one
+            if run_a != run_b and not self.same_runs(kind((0, 0), run_a), kind((0, 0), run_b)):
+                return False
+        return all(self.same(one, other) for one, other in zip(firm_a, firm_b, strict=True))
+
+    def same_runs(self, a: t.Node, b: t.Node) -> bool:
+        return shape(a) == shape(b) or ends(self.old, a, self.limits) == ends(self.new, b, self.limits)
+
+    def parted(self, nodes: tuple[t.Node, ...]) -> tuple[list[tuple[t.Node, ...]], list[t.Node]]:
+        """The runs of pure nodes, empty ones too, and the others between them."""
+        runs: list[list[t.Node]] = [[]]
+        firm: list[t.Node] = []
+        for node in nodes:
+            if self.pure(node):
+                runs[-1].append(node)
+            else:
+                firm.append(node)
+                runs.append([])
+        return [tuple(run) for run in runs], firm
+
+    def pure(self, node: t.Node) -> bool:
+        return is_pure(node, self.old.is_bytes)
+
+
+def _bare(node: t.Node) -> t.Node:
+    while isinstance(node, t.Group) and node.index is None and not (node.add_flags or node.del_flags):
+        node = node.body
+    return node
+
+
+def _items(node: t.Node) -> tuple[t.Node, ...]:
+    """The items of a sequence, plain groups opened."""
+    node = _bare(node)
+    if isinstance(node, t.Sequence):
+        return tuple(below for item in node.items for below in _items(item))
+    return (node,)
+
+
+def _head(node: t.Node) -> object:
+    """What a node says beside its children."""
+    match node:
+        case t.Group():
+            return node.index, node.name, node.add_flags, node.del_flags
+        case t.Repeat():
+            return node.minimum, node.maximum, node.kind
+        case t.Look():
+            return node.ahead, node.negated, node.width
+        case t.Conditional():
+            return node.index, node.name
+        case _:
+            return None

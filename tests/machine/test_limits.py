@@ -49,8 +49,8 @@ def test_both_sides(limit: str, pattern: str) -> None:
 
 
 def test_every_limit_is_tested_on_both_sides() -> None:
-    """`product` in test_relations and test_slow_text, `turns` in test_matcher and test_slow_text."""
-    assert {each.name for each in fields(Limits)} == {*CASES, "product", "turns"}
+    """`contexts` in test_pairs, `product` in test_relations; `turns` and `bounded_steps` in test_slow_text."""
+    assert {each.name for each in fields(Limits)} == {*CASES, "product", "turns", "contexts", "bounded_steps"}
 
 
 @pytest.mark.parametrize("limit", ["states", "work"])

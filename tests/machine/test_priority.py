@@ -13,6 +13,7 @@ from patlint.machine.program import compile_tree
 from patlint.syntax.parser import parse
 from tests.corpus.cpython import compiled, spans_of
 from tests.corpus.generate import Maker, texts
+from tests.machine.support import ends, matcher_of, nfa_of, span_automaton
 
 WORLD = (*texts("abc ", 4), *texts("ab\n", 6), *texts("ab", 8)[-256:])
 AHEAD = ("$", r"\b", r"\B", r"\Z")
@@ -90,3 +91,25 @@ def test_equal_spans(first: str, second: str, match: bool, scan: bool) -> None:
         )
 
     assert (same(False), same(True)) == (match, scan)
+
+
+# Source: experiments on `re`, CPython 3.10 to 3.13: only parts without a pattern of their own are taken out.
+@pytest.mark.parametrize(
+    "pattern",
+    [
+        r"b?\b|b?",
+        r"(?:b|ba)c?\b|(?:b|ba)c?",
+        r"(?:b?(?=.))\b|b?(?=.)",
+        r"(?:a|b)*?\b|(?:a|b)*?c",
+        r"(?>b?)\b|(?>b?)c|",
+    ],
+)
+def test_what_branches_share_is_tried_anew_where_it_has_choices(pattern: str) -> None:
+    one = compiled(pattern)
+    if one is None:
+        pytest.skip("this Python has no atomic groups")
+    marked = span_automaton(nfa_of(pattern))
+    for text in texts("abc ", 4):
+        found = one.match(text)
+        assert ends(marked, text) == ([] if found is None else [found.end()]), text
+        assert matcher_of(pattern).run(text, "match").span == (found and found.span()), text

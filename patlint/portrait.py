@@ -69,6 +69,8 @@ class Portrait:
     slow: SlowWitness | None = None
     findings: tuple[PlacedFinding, ...] = ()
     open: tuple[str, ...] = ()
+    shorter: tuple[tuple[str | bytes, int, str], ...] = ()
+    """Patterns that were considered in its place: each with its length and what became of it."""
 
 
 def portrait_of(
@@ -130,6 +132,21 @@ def portrait_of(
         slow,
         findings,
         tuple(dict.fromkeys((*asked.reasons, *undecided))),
+        _shorter(parsed, mode, target, limits) if rules else (),
+    )
+
+
+def _shorter(
+    parsed: Pattern, mode: Mode, target: Target, limits: Limits
+) -> tuple[tuple[str | bytes, int, str], ...]:
+    from patlint.rewrite.candidates import candidates
+
+    try:
+        found = candidates(parsed, mode, "language", target, limits)
+    except LimitReached:
+        return ()
+    return tuple(
+        (each.pattern, each.length, each.verdict) for each in found if each.length < len(parsed.text)
     )
 
 

@@ -127,6 +127,10 @@ def _lines(portrait: Portrait, style: Style) -> Iterator[str]:
         yield row("time", _growth(portrait))
         if portrait.slow is not None:
             yield row("slow text", witness_expression(portrait.slow))
+    for pattern, length, verdict in portrait.shorter:
+        yield row(
+            "shorter", f"{pattern_expression(pattern)} ({length} for {len(portrait.pattern)}: {verdict})"
+        )
     for reason in portrait.open:
         yield row("open", reason)
     for finding in portrait.findings:
@@ -216,6 +220,10 @@ def _object(portrait: Portrait) -> dict[str, Any]:
         "counts": None if portrait.counts is None else list(portrait.counts),
         "growth": portrait.growth,
         "witness": witness_object(portrait.slow),
+        "shorter": [
+            {"pattern": as_text(pattern), "length": length, "verdict": verdict}
+            for pattern, length, verdict in portrait.shorter
+        ],
         "open": list(portrait.open),
         "findings": [finding_object(each) for each in portrait.findings],
     }

@@ -14,6 +14,7 @@ COMMANDS: Final = {
     "lint": "find mistakes in the patterns of Python files",
     "list": "list every pattern with its place, its flags and how it is used",
     "inspect": "show everything that is known about one pattern",
+    "mend": "put proven shorter equivalents in the place of patterns",
     "rules": "list the rules, or explain one with an example",
 }
 

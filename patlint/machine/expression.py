@@ -23,7 +23,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass
-from typing import TypeAlias
+from typing import Literal, TypeAlias
 
 from patlint.machine.algebra import Algebra, reverse
 from patlint.machine.dfa import Dfa, minimal
@@ -46,6 +46,7 @@ from patlint.syntax.render import char_node, render_set
 
 MOST_STATES = 40
 """Useful states of an automaton that is turned into an expression; 40 states take about 20 ms."""
+Order: TypeAlias = Literal["natural", "weights"]
 SLACK = 2
 """A way between two states may become so many times longer than the result may be; algebra shortens it
 later."""
@@ -68,6 +69,13 @@ def expression(dfa: Dfa, algebra: Algebra, longest: int = 400, *, backwards: boo
                 results.append(None if found is None else reverse(found, algebra))
     good = [found for found in results if found is not None and len(algebra.text(found)) <= longest]
     return min(good, key=lambda found: rank(found, algebra), default=None)
+
+
+def eliminated(dfa: Dfa, algebra: Algebra, order: Order, longest: int = 100_000) -> Expr | None:
+    """One run of the elimination forwards, for comparison: states in their "natural" order, or by "weights"
+    alone."""
+    edges = _edges(dfa)
+    return None if edges is None else _eliminate(edges, algebra, longest, False, order == "natural")
 
 
 def tree_of(dfa: Dfa, flags: int = 0, is_bytes: bool = False, longest: int = 400) -> t.Node | None:
@@ -201,7 +209,9 @@ _Ways: TypeAlias = dict[int, dict[int, tuple[Expr, int]]]
 """From each state to others: the texts that lead there, and the length of the expression."""
 
 
-def _eliminate(edges: _Edges, algebra: Algebra, longest: int, keep_bridges: bool) -> Expr | None:
+def _eliminate(
+    edges: _Edges, algebra: Algebra, longest: int, keep_bridges: bool, natural: bool = False
+) -> Expr | None:
     start, end = -1, -2
     if edges.start not in edges.moves:
         return NOTHING
@@ -228,7 +238,11 @@ def _eliminate(edges: _Edges, algebra: Algebra, longest: int, keep_bridges: bool
     waiting = [state for state in ways if state >= 0]
     while waiting:
         candidates = [state for state in waiting if state not in bridges] or waiting
-        state = min(candidates, key=lambda each: (_weight(each, ways, back), each))
+        state = (
+            min(candidates)
+            if natural
+            else min(candidates, key=lambda each: (_weight(each, ways, back), each))
+        )
         waiting.remove(state)
         loop = ways[state].pop(state, None)
         back[state].discard(state)

@@ -32,7 +32,7 @@ from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
 from patlint.machine.algebra import Algebra
 from patlint.machine.determinise import Mode
 from patlint.machine.dfa import Dfa
-from patlint.machine.expr import BESIDE, LOOSE, TIGHT, Chain, Expr, Times, nullable
+from patlint.machine.expr import BESIDE, LOOSE, TIGHT, Chain, Chars, Expr, Times, nullable
 from patlint.machine.expression import expression, in_order
 from patlint.machine.program import compile_tree
 from patlint.machine.slow_text import Growth, ambiguity_of
@@ -49,7 +49,7 @@ from patlint.rewrite.islands import (
 )
 from patlint.rewrite.proof import ends, part_language, same_language, same_spans
 from patlint.rewrite.spelling import Habits, habits_of
-from patlint.rewrite.taste import is_readable, runs_for_loops
+from patlint.rewrite.taste import TURNED_SAVING, is_readable, merges_words, runs_for_loops
 from patlint.rewrite.worth import is_involved, is_word, worth_a_try
 from patlint.syntax import tree as t
 from patlint.syntax.charset import CharSet
@@ -89,6 +89,8 @@ class _Edit:
     node: t.Node
     certain: bool
     saved: int
+    gives_up_runs: bool = False
+    """Wanted only where it is quicker to match."""
 
 
 def shorten(
@@ -117,22 +119,20 @@ def suggest(
     *,
     least_saving: int = LEAST_SAVING,
     least_share: float = LEAST_SHARE,
+    fences: tuple[int, ...] = (),
 ) -> Proposal | None:
-    """As `shorten`, for a parsed pattern."""
+    """As `shorten`, for a parsed pattern. No change goes over an offset of `fences`: what stands on either
+    side was written in different places."""
     if not least_saving < len(parsed.text) <= LONGEST or parsed.flags & t.LOCALE:
         return None
     truth = keeps == "language" and mode != "fullmatch"
     if not worth_a_try(parsed, truth):
         return None
-    small = replace(
-        limits,
-        **{name: min(value, getattr(limits, name)) for name, value in _SMALL.items()},
-    )
-    search = _Search(parsed, mode, keeps, target, small)
+    search = Search(parsed, mode, keeps, target, limited(limits), fences)
     least = max(least_saving, least_share * len(parsed.text))
     for edits in search.ways():
         saved = sum(edit.saved for edit in edits)
-        suspicious = any(runs_for_loops(edit.island.node, edit.node) for edit in edits)
+        suspicious = any(edit.gives_up_runs for edit in edits)
         if saved < 1 or (saved < least and not suspicious):
             continue
         found = search.proven(edits, suspicious)
@@ -141,8 +141,13 @@ def suggest(
     return None
 
 
+def limited(limits: Limits) -> Limits:
+    """`limits` cut down to what one suggestion may cost."""
+    return replace(limits, **{name: min(value, getattr(limits, name)) for name, value in _SMALL.items()})
+
+
 @dataclass(slots=True)
-class _Known:
+class Known:
     """What is to be known about an island once."""
 
     pattern: t.Pattern
@@ -165,12 +170,15 @@ class _Known:
 
 
 @dataclass(slots=True)
-class _Search:
+class Search:
+    """The search for one pattern: ways to edit it, and the proof of each."""
+
     parsed: t.Pattern
     mode: Mode
     keeps: Keeps
     target: tuple[int, int] | None
     limits: Limits
+    fences: tuple[int, ...] = ()
     attempts: int = 0
     text: str = ""
     habits: Habits = field(init=False)
@@ -212,7 +220,8 @@ class _Search:
     def best(self, island: Island, through: Through = "plain", certain: bool = False) -> list[_Edit]:
         """The edits in an island that save most; `certain` asks for proof that needs no look at the rest."""
         whole = [edit for edit in self.attempt(island) if edit.certain or not certain]
-        whole = [max(whole, key=lambda edit: (edit.saved, edit.certain))] if whole else []
+        if whole:
+            whole = [max(whole, key=lambda edit: (not edit.gives_up_runs, edit.saved, edit.certain))]
         if not t.children(island.node) or is_word(island.node):
             return whole
         parts = [
@@ -238,10 +247,12 @@ class _Search:
         anchored = any(isinstance(each, t.Anchor) for each in t.walk(node))
         captures = sum(isinstance(each, t.Group) and each.index is not None for each in t.walk(node))
         room = len(old) - 2 * captures
-        old_parts = _Known(self.parsed, node, self.limits)
+        turned_room = int(len(old) * (1 - TURNED_SAVING))
+        old_parts = Known(self.parsed, node, self.limits)
         bare = room
         for text, turned in sorted(
-            self.texts(island, 0 if anchored else room, old_parts).items(), key=lambda row: len(row[0])
+            self.texts(island, 0 if anchored else min(room, turned_room), old_parts).items(),
+            key=lambda row: len(row[0]),
         ):
             if len(text) >= room or not text:
                 continue
@@ -259,18 +270,21 @@ class _Search:
                     bare = len(text)
             except LimitReached:
                 continue
-            yield _Edit(island, text, read.root, certain, len(old) - len(text))
-            if certain:
+            gives_up_runs = runs_for_loops(node, read.root, read.is_bytes)
+            yield _Edit(island, text, read.root, certain, len(old) - len(text), gives_up_runs)
+            if certain and not gives_up_runs:
                 return
 
     def is_fixed(self, island: Island) -> bool:
         """Whether an island cannot be written anew without loss."""
         start, end = island.span
+        if any(start < fence < end for fence in self.fences):
+            return True
         return has_comment(self.text[start:end], self.habits.verbose) or (
             mixes_cases(island.node, self.parsed.is_bytes)
         )
 
-    def texts(self, island: Island, room: int, old: _Known) -> dict[str, bool]:
+    def texts(self, island: Island, room: int, old: Known) -> dict[str, bool]:
         """Candidates for an island; True for those that are written anew from the automaton."""
         node, binding = island.node, _BINDINGS[island.place]
         found: dict[str, bool] = {}
@@ -280,7 +294,8 @@ class _Search:
             found[algebra.text(short, binding)] = False
             counted = algebra.counted(short)
             found.setdefault(algebra.text(counted, binding), False)
-        if room and self.attempts < ATTEMPTS and is_involved(node):
+        room = min(room, min(map(len, found)) - 1)  # what is no shorter than the laws' is of no use
+        if room > 0 and self.attempts < ATTEMPTS and is_involved(node) and not merges_words(node):
             self.attempts += 1
             try:
                 made = expression(old.language, algebra, room)
@@ -382,9 +397,22 @@ def _trim(expr: Expr, algebra: Algebra, left: bool, right: bool) -> Expr:
             place = -1 if at_end else 0
             item = items[place]
             if nullable(item):
+                if _is_sign(item):
+                    break
                 del items[place]
             elif isinstance(item, Times) and item.low != item.high:
                 items[place] = algebra.times(item.body, item.low, item.low)
             else:
                 break
     return algebra.chain(items)
+
+
+def _is_sign(expr: Expr) -> bool:
+    """Whether `expr` is optional punctuation, which says what is expected there; a letter may go (`jars?`)."""
+    if not isinstance(expr, Times) or expr.high != 1:
+        return False
+    items = expr.body.items if isinstance(expr.body, Chain) else (expr.body,)
+    return all(
+        isinstance(item, Chars) and item.chars.size() == 1 and not chr(item.chars.bounds[0]).isalnum()
+        for item in items
+    )

@@ -154,6 +154,7 @@ def _note(habits: Habits, node: t.CharNode, text: str) -> None:
         case t.Literal():
             chars = char_set(node, habits.is_bytes)
             as_is = written.isalnum() or (written[0] == "\\" and written[1:2].isalnum())
+            as_is = as_is or not (written.isprintable() or habits.verbose)
             inside = written if as_is else _inside(node.code, habits.is_bytes)
             pieces.setdefault(chars, _Piece(chars, inside, node.span[0]))
         case t.Set():

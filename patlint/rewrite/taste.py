@@ -5,6 +5,8 @@ r"""What a maintainer would rather not read, although it is shorter.
   may get an optional last letter (`https?`), and lists that become one plain sequence may go where much is
   saved (`L1|L2|L3|R1|R2|R3` is `[LR][1-3]`);
 - sets that mix what the author kept apart: `[a-z=]=` for `[a-z]=|==`;
+- optional signs that say what may stand there, swallowed by what follows: `<[^>]+` for `</?[^>]+`;
+- a loop inside a loop where there was none: `(?:[a-z][._]*)*[a-z]` for `[a-z]|[a-z][a-z._]*[a-z]`;
 - a pattern turned inside out for the sake of a few characters.
 
 Examples are from reading what is proposed for the patterns of the standard library; common practice, no
@@ -14,6 +16,7 @@ part of a loop, such as `(?:[^"\\]|\\.)*` for `[^"\\]*(?:\\.[^"\\]*)*`, which pe
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Iterator
 from dataclasses import replace
 from typing import TypeAlias
@@ -48,27 +51,74 @@ def is_readable(old: t.Node, new: t.Node, lengths: tuple[int, int], turned: bool
     plainer = operators <= DEEPER_OPERATORS * old_operators and before - after >= DEEPER_SAVING * before
     if operators > old_operators or depth > old_depth + plainer:
         return False
+    if _loop_depth(new) > _loop_depth(old):
+        return False
     if turned and (operators >= old_operators or before - after < TURNED_SAVING * before):
         return False
-    return _keeps_sets(old, new, is_bytes) and _keeps_words(old, new, before - after)
+    return (
+        _keeps_sets(old, new, is_bytes)
+        and _keeps_words(old, new, before - after)
+        and _keeps_options(old, new, is_bytes)
+    )
 
 
-def runs_for_loops(old: t.Node, new: t.Node) -> bool:
-    """Whether runs of one set of characters were given up although a loop of more is left."""
-    old_runs, _ = _loops(old)
-    new_runs, new_loops = _loops(new)
-    return new_runs < old_runs and new_loops > 0
+def runs_for_loops(old: t.Node, new: t.Node, is_bytes: bool) -> bool:
+    """Whether a set of characters of which there were runs has none any more, although a loop of more is
+    left."""
+    old_runs, _ = _loops(old, is_bytes)
+    new_runs, new_loops = _loops(new, is_bytes)
+    return new_loops > 0 and not old_runs <= new_runs
 
 
-def _loops(node: t.Node) -> tuple[int, int]:
-    runs = loops = 0
+def _loops(node: t.Node, is_bytes: bool) -> tuple[set[CharSet], int]:
+    """The sets of which there are runs without bound, and the number of other loops."""
+    runs: set[CharSet] = set()
+    loops = 0
     for each in t.walk(node):
         if isinstance(each, t.Repeat) and each.maximum is None:
-            if one_character(each.body) is not None:
-                runs += 1
+            leaf = one_character(each.body)
+            if leaf is not None:
+                runs.add(char_set(leaf, is_bytes))
             else:
                 loops += 1
     return runs, loops
+
+
+def _loop_depth(node: t.Node) -> int:
+    """How deep repeats without bound are nested."""
+    below = max(map(_loop_depth, t.children(node)), default=0)
+    return below + (isinstance(node, t.Repeat) and node.maximum is None)
+
+
+def _keeps_options(old: t.Node, new: t.Node, is_bytes: bool) -> bool:
+    """Whether every sign that was optional is still written as often, or is counted."""
+    before = _signs(old, is_bytes)
+    optional = {
+        code
+        for each in t.walk(old)
+        if isinstance(each, t.Repeat) and (each.minimum, each.maximum) == (0, 1)
+        for code in _signs(each.body, is_bytes)
+    }
+    if not optional:
+        return True
+    after = _signs(new, is_bytes)
+    repeated = {
+        code for each in t.walk(new) if isinstance(each, t.Repeat) for code in _signs(each.body, is_bytes)
+    }
+    return all(after[code] >= before[code] or code in repeated for code in optional)
+
+
+def _signs(node: t.Node, is_bytes: bool) -> Counter[int]:
+    """How often each character is written, alone or in a small set."""
+    counts: Counter[int] = Counter()
+    for each in t.walk(node):
+        if isinstance(each, t.Literal):
+            counts[each.code] += 1
+        elif isinstance(each, t.Set) and not each.negated:
+            chars = char_set(each, is_bytes)
+            if chars.size() <= SMALL_SET:
+                counts.update(chars)
+    return counts
 
 
 def _leaf_sets(node: t.Node, is_bytes: bool) -> set[CharSet]:
@@ -104,11 +154,20 @@ def _keeps_words(old: t.Node, new: t.Node, saved: int) -> bool:
     lost = words - {word for row in _lists(new, 2) for word in row} - _single_words(new)
     if not lost:
         return True
-    if _operators(new) <= _operators(old):
+    if not _operators(new) - _operators(old):
         return True  # something went, nothing came
     if any(map(_is_spoken, lost)):
         return False
     return saved >= LIST_SAVING * sum(len(word) + 1 for word in lost)
+
+
+def merges_words(node: t.Node) -> bool:
+    """Whether an automaton would take words of a list apart: two begin or end alike."""
+    for row in _lists(node):
+        words = [word for word in row if _is_spoken(word)]
+        if any(len({word[place] for word in words}) < len(words) for place in (0, -1)):
+            return True
+    return False
 
 
 def _lists(node: t.Node, least: int = LIST) -> Iterator[list[Word]]:
@@ -148,15 +207,15 @@ def _is_spoken(word: Word) -> bool:
     return sum(map(str.isalpha, text)) >= 3 or not any(map(str.isalnum, text))
 
 
-def _operators(node: t.Node) -> set[object]:
-    """Sets, and repeats of what is one character, up to their place."""
-    found: set[object] = set()
+def _operators(node: t.Node) -> Counter[object]:
+    """Sets and counts of repeats, up to their place."""
+    found: Counter[object] = Counter()
     for each in t.walk(node):
         match each:
             case t.Set():
-                found.add((each.negated, tuple(replace(item, span=(0, 0)) for item in each.items)))
+                found[each.negated, tuple(replace(item, span=(0, 0)) for item in each.items)] += 1
             case t.Repeat():
-                found.add((each.minimum, each.maximum, each.kind))
+                found[each.minimum, each.maximum, each.kind] += 1
             case _:
                 pass
     return found

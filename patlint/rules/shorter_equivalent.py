@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from patlint.language import Language
-from patlint.rewrite.shorten import suggest
+from patlint.rewrite.proof import holds
+from patlint.rewrite.shorten import Proposal, suggest
 from patlint.rules.finding import Example, Finding, Keeps, Rule, Suggestion
 from patlint.rules.subject import Subject
 from patlint.source.sites import SCANNING, Mode, Site
@@ -16,12 +16,8 @@ def check(subject: Subject) -> Iterator[Finding]:
     if not subject.exact:
         return
     modes, keeps = needed(subject.site)
-    # What holds for search in every surrounding holds for match; fullmatch is asked apart.
-    mode: Mode = next(mode for mode in ("search", "match", "fullmatch") if mode in modes)
-    proposal = suggest(
-        subject.pattern, mode, keeps, subject.target, subject.limits, fences=fences(subject.site)
-    )
-    if proposal is None or ("fullmatch" in modes and not _same_in_full(subject, proposal.pattern)):
+    proposal = _proposal(subject, modes, keeps)
+    if proposal is None:
         return
     before, after = subject.site.pattern, proposal.pattern
     start, end = changed_part(before, after)
@@ -30,7 +26,7 @@ def check(subject: Subject) -> Iterator[Finding]:
         RULE.level,
         (start, end),
         f"{len(before) - len(after)} characters shorter with the same {_KEPT[proposal.keeps]}",
-        mode=mode,
+        mode=next(mode for mode in ("search", "match", "fullmatch") if mode in modes),
         proof="both patterns have the same minimal automata",
         evidence="proven by comparing minimal automata",
         suggestion=Suggestion(after, proposal.keeps),
@@ -56,10 +52,19 @@ def needed(site: Site) -> tuple[set[Mode], Keeps]:
     return modes, keeps
 
 
-def _same_in_full(subject: Subject, pattern: str | bytes) -> bool:
-    parsed = parse(pattern, subject.site.flags, subject.target, subject.limits)
-    other = Language(parsed, mode="fullmatch", limits=subject.limits)
-    return other.exact and other == subject.language("fullmatch")
+def _proposal(subject: Subject, modes: set[Mode], keeps: Keeps) -> Proposal | None:
+    """A proposal that is proven for each of `modes`; it is made for the one that asks most."""
+    mode: Mode = next(mode for mode in ("search", "match", "fullmatch") if mode in modes)
+    # The same language in one mode says nothing about another; the same spans in search do.
+    for kept in dict.fromkeys((keeps, "spans" if len(modes) > 1 and keeps == "language" else keeps)):
+        found = suggest(
+            subject.pattern, mode, kept, subject.target, subject.limits, fences=fences(subject.site)
+        )
+        if found is not None:
+            new = parse(found.pattern, subject.site.flags, subject.target, subject.limits)
+            if holds(subject.pattern, new, modes, found.keeps, subject.limits):
+                return found
+    return None
 
 
 def fences(site: Site) -> tuple[int, ...]:

@@ -30,7 +30,16 @@ def test_an_octet(patlint: Patlint) -> None:
         "lengths   10 of 1, 90 of 2, 156 of 3\n"
         "such as   '0', '1', '2', '3', '5', '6'\n"
         "time      no growth beyond the text's length was found\n"
+        "shorter   '25[0-5]|(?:2[0-4]|1[0-9]|[1-9]?)[0-9]' (37 for 41: less readable)\n"
     )
+
+
+def test_candidates(patlint: Patlint) -> None:
+    ran = patlint("inspect", "(?:0|1|2)[0-9]|x")
+    assert "shorter   '[0-2][0-9]|x' (12 for 16: groups stay)\n" in ran.out
+    report = json.loads(patlint("inspect", "--format", "json", "(?:0|1|2)[0-9]|x").out)
+    assert report["shorter"] == [{"pattern": "[0-2][0-9]|x", "length": 12, "verdict": "groups stay"}]
+    assert "shorter" not in patlint("inspect", "crate|box").out
 
 
 def test_a_slow_pattern(patlint: Patlint) -> None:
@@ -108,6 +117,7 @@ KEYS = [
     "counts",
     "growth",
     "witness",
+    "shorter",
     "open",
     "findings",
 ]

@@ -96,7 +96,7 @@ PAIRS = [
     Pair(r"a*|a+|", r"a*"),
     Pair(r"ab|ab", r"ab"),
     Pair(r"(?:http|https|ftp)://", r"(?:https?|ftp)://"),
-    Pair(r"(?:/|-|--)?[^\s=]+", r"[^\s=]+"),
+    Pair(r"(?:/|-|--)?[^\s=]+", r"[^\s=]+", known="the signs say what may stand there"),
     Pair(r"(?:a|b|ab)*", r"[ab]*"),
     Pair(r"(?:a*b*)*", r"[ab]*"),
     Pair(r"(?:a|b)*a(?:a|b)*|b*", r"[ab]*"),

@@ -1,0 +1,36 @@
+"""shorter-equivalent: what the uses of a pattern need decides what is suggested."""
+
+from __future__ import annotations
+
+import pytest
+
+from patlint.run import lint_source
+
+# Lines after the pattern P, and the suggestion. Source: written for this test.
+USES = [
+    ("if P.search(s): pass", r"\s*sea\s*lock", r"sea\s*lock"),
+    ("if P.match(s): pass", r"\s*sea\s*lock", None),
+    ("if P.search(s): pass\nif P.match(s): pass", r"\s*sea\s*lock", None),
+    ("if P.search(s): pass\nif P.fullmatch(s): pass", r"\s*sea\s*lock", None),
+    ("if P.search(s): pass\nif P.match(s): pass", r"(?:a|b)+x", "[ab]+x"),
+    ("if P.match(s): pass", r"to-.*", "to-"),
+    ("if P.fullmatch(s): pass", r"to-.*", None),
+    ("P.search(s).span()", r"to-.*", None),
+    ("if P.match(s): pass", r"(?:pier|piers)(?:a|b)", "piers?[ab]"),
+    ("P.search(s).group(1)", r"(a|b|c|d)x", "([a-d])x"),
+    ("if P.fullmatch(s): pass", r"(a|b|c|d)x", "[a-d]x"),
+]
+
+
+@pytest.mark.parametrize(("uses", "pattern", "expected"), USES)
+def test_use_decides(uses: str, pattern: str, expected: str | None) -> None:
+    source = f"import re\ns = input()\n_P = re.compile(r'{pattern}')\n{uses.replace('P.', '_P.')}\n"
+    found = [each.suggestion for each in lint_source(source) if each.rule == "shorter-equivalent"]
+    assert [each.pattern for each in found if each is not None] == ([] if expected is None else [expected])
+
+
+def test_what_is_joined_from_constants_is_not_merged() -> None:
+    source = "import re\n_A = 'a'\n_B = 'b'\n_P = re.compile(f'(?:{_A}|{_B})+x')\n_P.match(input())\n"
+    assert not [each for each in lint_source(source) if each.rule == "shorter-equivalent"]
+    side_by_side = "import re\n_P = re.compile('(?:a' '|b)+x')\n_P.match(input())\n"
+    assert [each.rule for each in lint_source(side_by_side)] == ["shorter-equivalent"]

@@ -27,6 +27,7 @@ from patlint.machine.nfa import Nfa
 from patlint.machine.walks import SCAN, Walks
 
 Codes = tuple[int, ...]
+Masks = tuple[int, ...]
 Span = tuple[int, int]
 
 
@@ -34,13 +35,15 @@ Span = tuple[int, int]
 class Suspect:
     """`prefix` leads to the cycle on `pump`; `degree` is 0 for exponential, else the expected power of steps.
 
-    `parts` are the spans that compete for the pump; `by_restart` tells that one of the two is the search
-    itself, beginning afresh.
+    `pump` has for each character the minterms of which one will do, as a mask. `nodes` are the nodes of the
+    graph between which the engine can choose, `parts` their spans. `by_restart` tells that one of them is the
+    search itself, beginning afresh.
     """
 
     prefix: Codes
-    pump: Codes
+    pump: Masks
     degree: int
+    nodes: tuple[int, ...]
     parts: tuple[Span, ...]
     by_restart: bool = False
 
@@ -48,14 +51,15 @@ class Suspect:
 EXPONENTIAL = 0
 
 
-class _Letters:
-    """The most readable character of a set of minterms."""
+class Letters:
+    """The most readable character of a set of minterms; one of `prefer` where it may be."""
 
     def __init__(self, nfa: Nfa) -> None:
         self.letters = [representative(chars) for chars in nfa.alphabet.classes]
         self.best: dict[int, int] = {}
 
-    def __call__(self, mask: int) -> int:
+    def __call__(self, mask: int, prefer: int = 0) -> int:
+        mask = mask & prefer or mask
         found = self.best.get(mask)
         if found is None:
             codes = [code for minterm, code in enumerate(self.letters) if mask >> minterm & 1]
@@ -70,29 +74,74 @@ def _rank(code: int) -> tuple[int, int]:
 
 def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
     """What the graph shows, exponential before high powers before low ones. Raises LimitReached."""
-    letter = _Letters(nfa)
-    prefixes = _prefixes(graph, letter)
+    prefixes = _prefixes(graph, Letters(nfa))
     members: dict[int, list[int]] = {}
     for node, component in enumerate(graph.components):
         if component in graph.cyclic and node in prefixes:
             members.setdefault(component, []).append(node)
     for nodes in members.values():
-        found = _two_cycles(graph, nodes, letter, nfa.limits.product)
+        found = _two_cycles(graph, nodes, nfa.limits.product)
         if found is not None:
-            node, pump, parts = found
-            yield Suspect(prefixes[node], pump, EXPONENTIAL, parts)
+            node, pump, others = found
+            yield Suspect(prefixes[node], pump, EXPONENTIAL, (node,), _parts(graph, node, *others))
     if len(members) < 2:
         return
-    links = _links(graph, members, letter, nfa.limits.product)
+    links = _links(graph, members, nfa.limits.product)
+    if not links:
+        return
     depth = _depths(links)
-    ranked = sorted(links, key=lambda link: (-depth[link], len(links[link][1])))
-    for link in ranked:
-        node, pump, parts = links[link]
-        restart = graph.scan and link[0] == graph.components[SCAN]
-        yield Suspect(prefixes[node], pump, depth[link], parts, restart)
+    ranked = sorted(links, key=lambda link: (-depth[link], len(links[link][2])))
+    scan = graph.components[SCAN] if graph.scan else -1
+
+    def suspect(link: Link) -> Suspect:
+        p, q, pump = links[link]
+        return Suspect(prefixes[p], pump, depth[link], (p, q), _parts(graph, p, q), link[0] == scan)
+
+    yield suspect(ranked[0])
+    if depth[ranked[0]] > 2:
+        for first in ranked:
+            if depth[first] < depth[ranked[0]]:
+                break
+            chain = _chain(first, links, depth)
+            if len(chain) > 1 and chain[0] == first:
+                yield _joined(chain, links, depth, graph, prefixes, scan)
+    for link in ranked[1:]:
+        yield suspect(link)
 
 
-def _prefixes(graph: Walks, letter: _Letters) -> dict[int, Codes]:
+def _chain(first: Link, links: dict[Link, tuple[int, int, Masks]], depth: dict[Link, int]) -> list[Link]:
+    """A longest chain of links that begins with `first`."""
+    chain = [first]
+    while True:
+        further = [link for link in links if link[0] == chain[-1][1] and depth[link] == depth[first]]
+        if not further:
+            return chain
+        chain.append(min(further, key=lambda link: len(links[link][2])))
+
+
+def _joined(
+    chain: list[Link],
+    links: dict[Link, tuple[int, int, Masks]],
+    depth: dict[Link, int],
+    graph: Walks,
+    prefixes: dict[int, Codes],
+    scan: int,
+) -> Suspect:
+    """One suspicion for a whole chain, whose pump has the pumps of all links one after the other.
+
+    Not always a text on which all components go round, but mostly; it is to be confirmed anyway.
+    """
+    begin, end = links[chain[0]][0], links[chain[-1]][1]
+    nodes = [node for link in chain for node in links[link][:2]]
+    pump: Masks = ()
+    for link in chain:
+        pump += links[link][2]
+    return Suspect(
+        prefixes[begin], pump, depth[chain[0]], (begin, end), _parts(graph, *nodes), chain[0][0] == scan
+    )
+
+
+def _prefixes(graph: Walks, letter: Letters) -> dict[int, Codes]:
     """A shortest text from the start to each node."""
     out: dict[int, Codes] = {node: () for node in graph.entry}
     order = list(out)
@@ -104,21 +153,19 @@ def _prefixes(graph: Walks, letter: _Letters) -> dict[int, Codes]:
     return out
 
 
-def _spell(seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None], end: tuple[int, ...]) -> Codes:
-    codes = []
+def _spell(seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None], end: tuple[int, ...]) -> Masks:
+    masks = []
     step = seen[end]
     while step is not None:
-        codes.append(step[1])
+        masks.append(step[1])
         step = seen[step[0]]
-    return tuple(reversed(codes))
+    return tuple(reversed(masks))
 
 
-def _two_cycles(
-    graph: Walks, nodes: list[int], letter: _Letters, limit: int
-) -> tuple[int, Codes, tuple[Span, ...]] | None:
-    """A node of one component that has two cycles on one text, the text, and the parts that compete."""
+def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> tuple[int, Masks, tuple[int, ...]] | None:
+    """A node of one component that has two cycles on one text, the text, and the nodes that compete."""
     inside = set(nodes)
-    best: tuple[int, Codes, tuple[Span, ...]] | None = None
+    best: tuple[int, Masks, tuple[int, ...]] | None = None
     divergences: list[tuple[int, tuple[int, int], int]] = []
     for node in nodes:
         edges = [edge for edge in graph.edges[node] if edge.target in inside]
@@ -133,16 +180,16 @@ def _two_cycles(
     order: list[tuple[int, int]] = []
     for node, pair, mask in divergences:
         if pair[0] == pair[1]:
-            back = _path(graph, pair[0], node, inside, letter)
+            back = _path(graph, pair[0], node, inside)
             if back is not None:
-                pump = (letter(mask), *back)
+                pump = (mask, *back)
                 if best is None or len(pump) < len(best[1]):
-                    best = node, pump, _parts(graph, node, pair[0])
+                    best = node, pump, (pair[0],)
         else:
             if pair not in seen:
                 seen[pair] = None
                 order.append(pair)
-            origins.setdefault(pair, {})[node] = letter(mask)
+            origins.setdefault(pair, {})[node] = mask
     if best is not None:
         return best
     more = min(len(nodes), 64)
@@ -163,7 +210,7 @@ def _two_cycles(
                     continue
                 if len(seen) >= limit:
                     raise LimitReached("product", limit)
-                seen[target] = (pair, letter(mask))
+                seen[target] = (pair, mask)
                 if target[0] != target[1]:
                     order.append(target)
                     continue
@@ -174,15 +221,15 @@ def _two_cycles(
                     step = seen[first]
                 begin = origins[first]
                 node = target[0] if target[0] in begin else next(iter(begin))
-                back = _path(graph, target[0], node, inside, letter)
+                back = _path(graph, target[0], node, inside)
                 assert back is not None
                 pump = (begin[node], *_spell(seen, target), *back)
                 if best is None or len(pump) < len(best[1]):
-                    best = node, pump, _parts(graph, *first)
+                    best = node, pump, first
     return best
 
 
-def _path(graph: Walks, start: int, end: int, inside: set[int], letter: _Letters) -> Codes | None:
+def _path(graph: Walks, start: int, end: int, inside: set[int]) -> Masks | None:
     """A shortest text from one node to another, empty where they are the same."""
     seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None] = {(start,): None}
     order = [start]
@@ -191,7 +238,7 @@ def _path(graph: Walks, start: int, end: int, inside: set[int], letter: _Letters
             return _spell(seen, (end,))
         for edge in graph.edges[node]:
             if edge.target in inside and (edge.target,) not in seen:
-                seen[edge.target,] = ((node,), letter(edge.mask))
+                seen[edge.target,] = ((node,), edge.mask)
                 order.append(edge.target)
     return None
 
@@ -204,23 +251,21 @@ def _parts(graph: Walks, *nodes: int) -> tuple[Span, ...]:
 Link = tuple[int, int]
 
 
-def _links(
-    graph: Walks, members: dict[int, list[int]], letter: _Letters, limit: int
-) -> dict[Link, tuple[int, Codes, tuple[Span, ...]]]:
-    """Pairs of components that compete for one text: the node to begin at, the text, the parts."""
+def _links(graph: Walks, members: dict[int, list[int]], limit: int) -> dict[Link, tuple[int, int, Masks]]:
+    """Pairs of components that compete for one text: the two nodes and the text."""
     reach = _reachable(graph, members)
-    links: dict[Link, tuple[int, Codes, tuple[Span, ...]]] = {}
+    links: dict[Link, tuple[int, int, Masks]] = {}
     budget = limit
     for first, first_nodes in members.items():
         for second in reach[first]:
             second_nodes = set(members[second])
             for p, q in ((p, q) for p in first_nodes for q in members[second]):
-                found, spent = _triple(graph, p, q, set(first_nodes), second_nodes, letter, budget)
+                found, spent = _triple(graph, p, q, set(first_nodes), second_nodes, budget)
                 budget -= spent
                 if budget <= 0:
                     raise LimitReached("product", limit)
                 if found is not None:
-                    links[first, second] = (p, found, _parts(graph, p, q))
+                    links[first, second] = (p, q, found)
                     break
     return links
 
@@ -242,8 +287,8 @@ def _reachable(graph: Walks, members: dict[int, list[int]]) -> dict[int, list[in
 
 
 def _triple(
-    graph: Walks, p: int, q: int, first: set[int], second: set[int], letter: _Letters, limit: int
-) -> tuple[Codes | None, int]:
+    graph: Walks, p: int, q: int, first: set[int], second: set[int], limit: int
+) -> tuple[Masks | None, int]:
     """A text v with p-v->p, p-v->q and q-v->q, and how many triples were visited."""
     start, end = (p, p, q), (p, q, q)
     seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None] = {start: None}
@@ -263,7 +308,7 @@ def _triple(
                     target = (edge_a.target, edge_b.target, edge_c.target)
                     if target in seen:
                         continue
-                    seen[target] = ((a, b, c), letter(common))
+                    seen[target] = ((a, b, c), common)
                     if target == end:
                         return _spell(seen, end), len(seen)
                     order.append(target)
@@ -272,7 +317,7 @@ def _triple(
     return None, len(seen)
 
 
-def _depths(links: dict[Link, tuple[int, Codes, tuple[Span, ...]]]) -> dict[Link, int]:
+def _depths(links: dict[Link, tuple[int, int, Masks]]) -> dict[Link, int]:
     """For each link the power that the longest chain through it stands for: two for a link alone."""
     after: dict[int, int] = {}
     before: dict[int, int] = {}

@@ -50,6 +50,8 @@ def subset_table(
     tracked = bool(nfa.trackers)
     atomic = bool(nfa.atomic_ends)
     readers_of = nfa.readers
+    up, down = nfa.up, nfa.down
+    chained = up | down
     limits = nfa.limits
     obligations = nfa.obligations
     width = len(nfa.alphabet)
@@ -66,6 +68,13 @@ def subset_table(
                 begin = afresh[context] = split(nfa.initial(context))
             bits, groups = begin[0], dict(begin[1])
         for rest, waiting in ((FREE, firing), *moved.items()):
+            if waiting & chained:
+                more = (waiting & up) << 1 | (waiting & down) >> 1
+                waiting &= ~chained
+                if rest:
+                    groups[rest] = groups.get(rest, 0) | more
+                else:
+                    bits |= more
             while waiting:
                 low = waiting & -waiting
                 waiting ^= low
@@ -92,7 +101,7 @@ def subset_table(
     def state_of(bits: int, groups: dict[Conjunction, int], context: int) -> State:
         if stays and bits & end_bit:
             return top
-        bound = _weakest(bits, groups) if groups else NO_BOUND
+        bound = weakest(bits, groups) if groups else NO_BOUND
         return bits, bound, context if tracked and (bits or bound or afresh is not None) else 0
 
     top: State = (end_bit, NO_BOUND, 0)
@@ -165,7 +174,7 @@ def split(threads: tuple[Thread, ...]) -> tuple[int, Masks]:
     return bits, tuple(groups.items())
 
 
-def _weakest(bits: int, groups: dict[Conjunction, int]) -> Bound:
+def weakest(bits: int, groups: dict[Conjunction, int]) -> Bound:
     """Canonical: without the conjunctions of a position that holds under fewer obligations as well."""
     kept = []
     for duty, mask in groups.items():

@@ -88,6 +88,10 @@ class Matcher:
             out.append(found)
         return out
 
+    def on(self, text: str | bytes) -> _Run:
+        """The tables of one text."""
+        return _Run(self, text, NEVER)
+
     def run(self, text: str | bytes, mode: str, turns: int = NEVER, pos: int = 0) -> Outcome:
         """The outcome of `match`, `fullmatch` or `search` on `text` from `pos`."""
         run = _Run(self, text, turns)

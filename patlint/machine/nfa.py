@@ -30,7 +30,7 @@ from collections.abc import Iterator
 from patlint.limits import LimitReached, Limits
 from patlint.machine import program as p
 from patlint.machine.alphabet import minterms, universe
-from patlint.machine.determinise import subset_table
+from patlint.machine.determinise import Bound, Masks, split, subset_table, weakest
 from patlint.machine.obligations import ALL, FREE, NONE, Conjunction, Obligations, Thread
 from patlint.machine.ordered import Threads, ends_here, prune, steps
 from patlint.syntax.charset import NEWLINE, CharSet
@@ -40,10 +40,9 @@ AT_START = 1
 AFTER_NEWLINE = 2
 AFTER_WORD = 4  # shifted by the index of the set of word characters
 
-Tracker = tuple[frozenset[Thread], frozenset[Conjunction]]
-"""The threads under way in a look-behind's body, and the obligations of those that have just ended."""
-
-CLOSURE_LIMIT_FACTOR = 20
+Tracker = tuple[int, Bound, frozenset[Conjunction]]
+"""The threads under way in a look-behind's body (as in `determinise`), and the obligations of those that have just
+ended."""
 
 
 class Nfa:
@@ -64,6 +63,10 @@ class Nfa:
         self.atomic_ends: dict[int, int] = {}
         self.behind: dict[Span, int] = {}
         self.trackers: list[int] = []
+        self.up = 0
+        """Positions that lead to the next position and nowhere else: inside a run, below its minimum."""
+        self.down = 0
+        """Positions that lead to the position before and nowhere else: one letter of a word after another."""
         reads: list[CharSet] = []
         asserts: set[str] = set()
         words: dict[CharSet, None] = {}
@@ -94,7 +97,13 @@ class Nfa:
                     chars = whole
                 if len(reads) + width > limits.instructions:
                     raise LimitReached("instructions", limits.instructions)
-                self.first[pc] = len(reads)
+                place = len(reads)
+                self.first[pc] = place
+                if isinstance(op, p.Char):
+                    if self.first.get(op.next) == place - 1 and _reads_at_once(program.code[op.next]):
+                        self.down |= 1 << place
+                elif isinstance(op, p.Run) and op.minimum > 1:
+                    self.up |= (1 << op.minimum - 1) - 1 << place
                 reads += [chars] * width
                 self.pc_of += [pc] * width
         self.accept = len(reads)
@@ -117,12 +126,15 @@ class Nfa:
         self.readers: list[int] = [0] * width
         for position in range(self.accept):
             self._add_reader(position)
-        self.obligations = Obligations(width)
+        self._spent = 0
+        self.vetoes: dict[tuple[Threads, int], int] = {}
+        self.obligations = Obligations(width, self.charge)
         self._atomics: dict[tuple[int, Threads], int] = {}
         self._lists: dict[int, Threads] = {}
         self._closures: dict[tuple[int, int], tuple[Thread, ...]] = {}
         self._after: dict[tuple[int, int, int], tuple[Thread, ...]] = {}
         self._looks: dict[tuple[int, int], int] = {}
+        self._splits: dict[tuple[int, int, int], tuple[int, Masks]] = {}
         self._contexts: dict[tuple[int, tuple[Tracker, ...]], int] = {}
         self._context_of: list[tuple[int, tuple[Tracker, ...]]] = []
         self._next: dict[tuple[int, int], int] = {}
@@ -173,6 +185,15 @@ class Nfa:
                     stack.append(op.next)
         return bool(self.program.locale)
 
+    def charge(self, steps: int) -> None:
+        """Count what all closures, trackers, look-arounds, vetoes and obligations of this program cost together.
+
+        Raises LimitReached("work").
+        """
+        self._spent += steps
+        if self._spent > self.limits.work:
+            raise LimitReached("work", self.limits.work)
+
     # Contexts
 
     def _bits(self, minterm: int) -> int:
@@ -205,23 +226,51 @@ class Nfa:
 
     def _with_trackers(self, bits: int, before: tuple[Tracker, ...] | None, minterm: int) -> int:
         trackers: tuple[Tracker, ...] = ()
+        end_bit = 1 << self.accept
+        just_free = frozenset((FREE,))
         # A context that knows fewer trackers (inside one of them) goes on knowing only those.
         known = self.trackers if before is None else self.trackers[: len(before)]
         for index, body in enumerate(known):
             context = self._intern_context(bits, trackers)
-            arrived: list[Thread] = list(self.closure(body, context))
+            free, masks = split(self.closure(body, context))
+            groups = dict(masks)
             if before is not None:
-                for position, duty in before[index][0]:
-                    if self.reads[position] >> minterm & 1:
-                        rest = self.obligations.step(duty, minterm)
-                        if rest is not None:
-                            arrived += (
-                                (after, rest | more) for after, more in self.after(position, minterm, context)
-                            )
-            under_way = frozenset(thread for thread in arrived if thread[0] != self.accept)
-            ended = frozenset(duty for position, duty in arrived if position == self.accept)
-            trackers += ((under_way, frozenset((FREE,)) if FREE in ended else ended),)
+                free |= self._tracked(before[index], minterm, context, groups)
+            ended = frozenset(duty for duty, mask in groups.items() if mask & end_bit)
+            under_way = {duty: mask & ~end_bit for duty, mask in groups.items()}
+            trackers += ((free & ~end_bit, weakest(free, under_way), just_free if free & end_bit else ended),)
         return self._intern_context(bits, trackers)
+
+    def _tracked(self, tracker: Tracker, minterm: int, context: int, groups: dict[Conjunction, int]) -> int:
+        """Step the threads of a tracker into `groups`; the positions without obligations are returned."""
+        free, bound, _ = tracker
+        readers = self.readers[minterm]
+        bits = 0
+        moved = [(FREE, free & readers)]
+        for duty, mask in bound:
+            rest = self.obligations.step(duty, minterm)
+            if rest is not None:
+                moved.append((rest, mask & readers))
+        for rest, waiting in moved:
+            more = (waiting & self.up) << 1 | (waiting & self.down) >> 1
+            waiting &= ~(self.up | self.down)
+            while waiting:
+                low = waiting & -waiting
+                waiting ^= low
+                self.charge(1)
+                key = (low.bit_length() - 1, context, minterm)
+                found = self._splits.get(key)
+                if found is None:
+                    found = self._splits[key] = split(self.after(key[0], minterm, context))
+                more |= found[0]
+                for duty, mask in found[1]:
+                    both = rest | duty
+                    groups[both] = groups.get(both, 0) | mask
+            if rest:
+                groups[rest] = groups.get(rest, 0) | more
+            else:
+                bits |= more
+        return bits
 
     def all_contexts(self) -> tuple[int, ...]:
         """All contexts that some text leads to, the start's first. Raises LimitReached("states")."""
@@ -331,7 +380,6 @@ class Nfa:
         threads: dict[Thread, None] = {}
         stack: list[tuple[int, frozenset[int], Conjunction]] = [(entry, FREE, FREE)]
         seen = set()
-        limit = self.limits.instructions * CLOSURE_LIMIT_FACTOR
 
         def go_on(pc: int, marks: frozenset[int], duty: Conjunction, asked: int) -> None:
             if asked != NONE:
@@ -342,9 +390,8 @@ class Nfa:
             if item in seen:
                 continue
             seen.add(item)
-            if len(seen) > limit:
-                raise LimitReached("instructions", self.limits.instructions)
             pc, marks, duty = item
+            self.charge(1 + len(marks) // 4)
             if pc < 0:
                 threads[self.first[~pc], duty] = None
                 continue
@@ -448,11 +495,17 @@ class Nfa:
             found = self._looks.get(key)
             if found is None:
                 table, accepting = subset_table(self, "match", self.closure(op.body, context), context)
+                self.charge(len(table))
                 found = self._looks[key] = self.obligations.intern(table, accepting)[0]
         else:
             index = self.behind[self.program.spans[pc]]
             trackers = self._context_of[context][1]
             if index >= len(trackers):
                 return ALL  # a context without trackers: nothing is known of the text before
-            found = self.obligations.union(trackers[index][1])
+            found = self.obligations.union(trackers[index][2])
         return self.obligations.complement(found) if op.negated else found
+
+
+def _reads_at_once(op: p.Instruction) -> bool:
+    """Whether one position stands for `op` and nothing is passed on the way to it."""
+    return isinstance(op, p.Char) or (isinstance(op, p.Run) and op.minimum == 1)

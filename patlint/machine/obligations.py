@@ -5,11 +5,13 @@ rest of the text must be in that state's language. Equal languages have equal in
 cannot be met. Obligations are stepped with each character that is read (`step`) and judged at the end of the
 text (`holds_at_end`).
 
-Interning an automaton of n states costs a minimisation of the n states together with all known ones.
+Interning costs a minimisation of the new states; those from which at most LARGEST states are reached are compared
+by their spelling, larger ones by minimising them together with all known ones.
 """
 
 from __future__ import annotations
 
+from collections.abc import Callable, Sequence
 from typing import TypeAlias
 
 from patlint.machine.minimise import equivalence
@@ -19,18 +21,46 @@ Conjunction: TypeAlias = frozenset[int]
 Thread: TypeAlias = tuple[int, Conjunction]
 """A position of the program and the obligations under which it was reached."""
 
+Key: TypeAlias = tuple[tuple[tuple[int, ...], bool], ...]
+"""A minimal automaton spelled out in breadth-first order: equal for equal languages."""
+
 ALL = 0
 NONE = 1
 FREE: Conjunction = frozenset()
+LARGEST = 24
+
+
+def key_of(table: Sequence[tuple[int, ...]], ends: Sequence[bool], start: int) -> Key | None:
+    """The spelling of a state of a minimal automaton, None where more than LARGEST states are reached from it."""
+    number = {start: 0}
+    order = [start]
+    rows = []
+    for state in order:
+        row = []
+        for target in table[state]:
+            index = number.get(target)
+            if index is None:
+                if len(order) >= LARGEST:
+                    return None
+                index = number[target] = len(order)
+                order.append(target)
+            row.append(index)
+        rows.append((tuple(row), ends[state]))
+    return tuple(rows)
 
 
 class Obligations:
     """The obligations of one program; `table[i][minterm]` is the obligation after reading a character."""
 
-    def __init__(self, width: int) -> None:
+    def __init__(self, width: int, charge: Callable[[int], None]) -> None:
+        """`charge` is told the cells that each step reckons with, and may raise LimitReached."""
         self.width = width
+        self.charge = charge
         self.table: list[tuple[int, ...]] = [(ALL,) * width, (NONE,) * width]
         self.at_end: list[bool] = [True, False]
+        self._keys: dict[Key, int] = {}
+        for one in (ALL, NONE):
+            self._keys[key_of(self.table, self.at_end, one) or ()] = one
         self._complements: dict[int, int] = {ALL: NONE, NONE: ALL}
         self._simple: dict[tuple[int, bool, bool], int] = {}
         self._unions: dict[frozenset[Conjunction], int] = {}
@@ -38,22 +68,50 @@ class Obligations:
 
     def intern(self, table: list[tuple[int, ...]], accepting: list[bool]) -> list[int]:
         """The obligation of each state of a complete automaton."""
+        classes = equivalence(table, [int(end) for end in accepting])
+        first: dict[int, int] = {}
+        for state, number in enumerate(classes):
+            first.setdefault(number, state)
+        states = list(first.values())
+        place = {number: index for index, number in enumerate(first)}
+        rows = [tuple(place[classes[target]] for target in table[state]) for state in states]
+        ends = [accepting[state] for state in states]
+        found = self._intern_minimal(rows, ends)
+        return [found[place[number]] for number in classes]
+
+    def _intern_minimal(self, rows: list[tuple[int, ...]], ends: list[bool]) -> list[int]:
+        keys = [key_of(rows, ends, state) for state in range(len(rows))]
         known = len(self.table)
-        joined = self.table + [tuple(target + known for target in row) for row in table]
-        ends = self.at_end + accepting
-        classes = equivalence(joined, [int(end) for end in ends])
-        number: dict[int, int] = {}
-        for state in range(known):
-            number[classes[state]] = state
-        fresh: list[int] = []
-        for state in range(known, len(joined)):
-            if classes[state] not in number:
-                number[classes[state]] = known + len(fresh)
-                fresh.append(state)
-        for state in fresh:
-            self.table.append(tuple(number[classes[target]] for target in joined[state]))
-            self.at_end.append(ends[state])
-        return [number[classes[known + state]] for state in range(len(table))]
+        out: list[int] = []
+        if None in keys:
+            # Too large to be compared by their spelling: all known ones are minimised together with these.
+            self.charge(known + len(rows))
+            joined = self.table + [tuple(target + known for target in row) for row in rows]
+            classes = equivalence(joined, [int(end) for end in self.at_end + ends])
+            number = {classes[state]: state for state in range(known)}
+            fresh = 0
+            for state in range(known, len(joined)):
+                if classes[state] not in number:
+                    number[classes[state]] = known + fresh
+                    fresh += 1
+                out.append(number[classes[state]])
+        else:
+            self.charge(len(rows))
+            fresh = 0
+            for key in keys:
+                same = self._keys.get(key or ())
+                if same is None:
+                    same = known + fresh
+                    fresh += 1
+                out.append(same)
+        for state, obligation in enumerate(out):
+            if obligation >= known:
+                self.table.append(tuple(out[target] for target in rows[state]))
+                self.at_end.append(ends[state])
+                key = keys[state]
+                if key is not None:
+                    self._keys[key] = obligation
+        return out
 
     def next_in(self, mask: int, or_end: bool) -> int:
         """The rest begins with a character of the minterms in `mask`; with `or_end` it may be empty too."""
@@ -86,6 +144,7 @@ class Obligations:
             table: list[tuple[int, ...]] = []
             for state in order:
                 row = []
+                self.charge(len(state) + 1)
                 for minterm in range(self.width):
                     stepped = (self.step(duty, minterm) for duty in state)
                     after = frozenset(duty for duty in stepped if duty is not None)

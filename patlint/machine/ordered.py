@@ -78,7 +78,15 @@ def _veto(nfa: Nfa, better: Threads, context: int) -> int:
     """The obligation that none of the threads `better` matches on the rest of the text."""
     if not better:
         return ALL
-    # A pending thread matches as one at the end does: by its obligations alone.
-    threads = tuple((nfa.accept if position == nfa.pending else position, duty) for position, duty in better)
-    table, accepting = subset_table(nfa, "match", threads, context)
-    return nfa.obligations.complement(nfa.obligations.intern(table, accepting)[0])
+    key = (better, context)
+    found = nfa.vetoes.get(key)
+    if found is None:
+        # A pending thread matches as one at the end does: by its obligations alone.
+        threads = tuple(
+            (nfa.accept if position == nfa.pending else position, duty) for position, duty in better
+        )
+        table, accepting = subset_table(nfa, "match", threads, context)
+        nfa.charge(len(table) + len(threads))
+        found = nfa.obligations.complement(nfa.obligations.intern(table, accepting)[0])
+        nfa.vetoes[key] = found
+    return found

@@ -158,6 +158,8 @@ class Program:
     is_bytes: bool
     locale: tuple[t.Span, ...] = ()
     """Parts that depend on the locale: the matcher takes them as ASCII, the automata as anything."""
+    tree: t.Node | None = field(default=None, compare=False, repr=False)
+    """What it was compiled from, as the engine rewrites it."""
 
 
 @dataclass(slots=True)
@@ -318,20 +320,26 @@ def compile_tree(
     stands for a node of the tree as written. Language and spans are the same.
     Raises LimitReached("instructions").
     """
-    builder = _Builder(pattern.is_bytes, limits.instructions)
     node = pattern.root if root is None else root
-    end = builder.add(Accept(), node.span)
     node = as_engine_runs(node) if engine else node
+    return compile_node(node, pattern.groups, pattern.is_bytes, limits)
+
+
+def compile_node(node: t.Node, groups: int, is_bytes: bool, limits: Limits) -> Program:
+    """The program of a tree as it is. Raises LimitReached("instructions")."""
+    builder = _Builder(is_bytes, limits.instructions)
+    end = builder.add(Accept(), node.span)
     start = builder.emit(node, end)
     return Program(
         tuple(builder.code),
         tuple(builder.spans),
         start,
         end,
-        pattern.groups,
+        groups,
         builder.loops,
-        pattern.is_bytes,
-        _locale_spans(node) if pattern.is_bytes else (),
+        is_bytes,
+        _locale_spans(node) if is_bytes else (),
+        node,
     )
 
 

@@ -1,49 +1,53 @@
 """The text that shows a slow pattern: prefix + pump * n + suffix, confirmed by counting steps.
 
-A suspicion from the graph of walks becomes a claim only when the matcher, run at growing n, walks as many steps
-as the claim says: for exponential growth each further pump must multiply them, for a power d each doubling must
-come near 2 ** d. The suffix makes the rest fail: first a shortest text after which the pattern's automaton
-refuses, then single characters (the attempt that is walked in vain need not be the whole match).
+A suspicion from the graph of walks becomes a claim only when the steps, counted at growing n, are as many as the
+claim says: for exponential growth each further pump must multiply them, for a power d they must lie on a
+polynomial of that degree. The suffix makes the engine go back: a shortest text that is refused by all that the
+engine tries before its last way (`continuation`); where that is not decided, the empty text and single
+characters. Where it is decided that no suffix does it, the engine is never slow there, and nothing is counted.
 
-Limit: `turns` of the matcher for each confirmation.
+Limit: `turns` of the counting for all suspicions of one question.
 """
 
 from __future__ import annotations
 
-import math
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Literal, TypeAlias
 
 from patlint.limits import LimitReached, Limits
 from patlint.machine import program as p
 from patlint.machine.alphabet import representative
-from patlint.machine.ambiguity import EXPONENTIAL, Suspect, suspects
-from patlint.machine.determinise import Mode, language
-from patlint.machine.dfa import Dfa
-from patlint.machine.matcher import NEVER, Matcher
+from patlint.machine.ambiguity import EXPONENTIAL, Codes, Letters, Suspect, suspects
+from patlint.machine.bounded import growth_below, opened, passes, repeats_nothing
+from patlint.machine.continuation import Continuations
+from patlint.machine.counting import Counter, countable
+from patlint.machine.fit import Growth as Growth
+from patlint.machine.fit import fit
+from patlint.machine.matcher import Matcher
 from patlint.machine.nfa import Nfa
+from patlint.machine.program import compile_node
 from patlint.machine.walks import walks
+from patlint.syntax import tree as t
 
-Growth: TypeAlias = int | Literal["exponential"]
 Manner: TypeAlias = Literal["match", "fullmatch", "search", "scan"]
 """A mode, or "scan" for findall, finditer, split and sub, which go on after each match."""
 
-Codes = tuple[int, ...]
-
-LEAST_BASE = 1.08
-"""Growth per pump from which it counts as exponential; `(?:aa|aaa)*` on single a has 1.15 a pair."""
-LEAST_STEPS = 2_000
+LEAST_STEPS = 1_000
 """Steps that the largest confirmed text must take, so that small noise is not fitted."""
-SUFFIXES = 5
 LONG_PUMP = 8
 """From so many characters on a pump needs fewer repetitions to show its power."""
+VARIANTS = 5
+"""Readings of a pump (with other characters of the same sets) that are tried."""
+READINGS = 2
+"""Readings of which something had to be counted."""
+GUESSES = 5
 SCREEN_SIZES = (8, 24)
-SCREEN_TURNS = 3_000
 SCREEN_RATIO = 3.6
-"""A first look at each suffix: three times the pumps must take more than three times the steps. Only the two
-texts on which most is walked are run at length."""
-SUSPECTS = 6
+"""A guessed suffix must show more than three times the steps at three times the pumps before it is fitted."""
+SUSPECTS = 8
+SHOWN_STEPS = 2_000_000_000
+"""Exponential counts are told up to so many steps."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,6 +61,8 @@ class SlowText:
     steps: tuple[tuple[int, int], ...]
     parts: tuple[tuple[int, int], ...]
     by_restart: bool
+    bounded: bool = False
+    """The growth is the one seen up to the last of `steps`; a bound in the pattern ends it somewhere."""
 
     def text(self, n: int) -> str | bytes:
         return self.prefix + self.pump * n + self.suffix  # type: ignore[operator]
@@ -78,145 +84,179 @@ class Ambiguity:
 
 def ambiguity_of(program: p.Program, manner: Manner, limits: Limits) -> Ambiguity:
     """The worst confirmed growth of `program` (as the engine runs it) used in this manner."""
-    undecided = None
-    tried = confirmed = 0
-    budget = [limits.turns * 2]
-    best: SlowText | None = None
     try:
-        nfa = Nfa(program, limits)
-        graph = walks(nfa, manner in ("search", "scan"))
-        if not graph.cyclic:
-            return Ambiguity(None, None)
-        found = list(suspects(nfa, graph))
-        most = max((suspect.degree for suspect in found), default=0)
-        matcher = Matcher(program) if found else None
-        dfa = _language(nfa, manner) if found else None
-        for suspect in found:
-            if best is not None and (best.growth == "exponential" or suspect.degree == most <= best.growth):
-                break
-            if tried >= SUSPECTS or budget[0] <= 0:
-                undecided = "turns"
-                break
-            tried += 1
-            assert matcher is not None
-            slow, cut = _confirm(suspect, most, nfa, matcher, dfa, manner, limits, budget)
-            if cut and slow is None:
-                undecided = "turns"
-            confirmed += slow is not None
-            if slow is not None and (best is None or _worse(slow, best)):
-                best = slow
+        found = _unbounded(program, manner, limits)
     except LimitReached as reached:
-        undecided = reached.limit
-    return Ambiguity(best.growth if best else None, best, tried - confirmed, undecided)
-
-
-def _worse(a: SlowText, b: SlowText) -> bool:
-    if b.growth == "exponential":
-        return False
-    return a.growth == "exponential" or a.growth > b.growth
-
-
-def _language(nfa: Nfa, manner: Manner) -> Dfa | None:
-    mode: Mode = "search" if manner == "scan" else manner
+        found = Ambiguity(None, None, 0, reached.limit)
+    if found.growth == "exponential" or program.tree is None:
+        return found
+    tree = opened(program.tree)
+    if tree is program.tree:
+        return found
     try:
-        return language(nfa, mode)
-    except LimitReached:
+        slow, cut = _bounded(program, tree, manner, limits, found.slow)
+    except LimitReached as reached:
+        return replace(found, undecided=found.undecided or reached.limit)
+    if slow is None:
+        return replace(found, undecided=found.undecided or ("turns" if cut and found.slow is None else None))
+    return Ambiguity(slow.growth, slow, found.unconfirmed, None)
+
+
+def _unbounded(program: p.Program, manner: Manner, limits: Limits) -> Ambiguity:
+    undecided = None
+    unconfirmed = fitted = 0
+    best: SlowText | None = None
+    asked = _suspicions(program, manner, limits)
+    if asked is None:
+        return Ambiguity(None, None)
+    found, letters, continuations = asked
+    most = max(suspect.degree for suspect in found)
+    counting = _Counting(program, manner, limits.turns)
+    for suspect in found:
+        if best is not None and _enough(best, most):
+            break
+        if fitted >= SUSPECTS or counting.turns <= 0:
+            undecided = "turns" if best is None else None
+            break
+        tried, slow = _confirm(suspect, most, letters, continuations, counting)
+        fitted += tried
+        unconfirmed += tried and slow is None
+        if slow is not None and (best is None or _worse(slow.growth, best.growth)):
+            best = slow
+    if counting.cut and best is None:
+        undecided = "turns"
+    return Ambiguity(best.growth if best else None, best, unconfirmed, undecided)
+
+
+def _suspicions(
+    program: p.Program, manner: Manner, limits: Limits
+) -> tuple[list[Suspect], Letters, Continuations] | None:
+    """What the graph of a program shows, or None where it shows nothing. Raises LimitReached."""
+    nfa = Nfa(program, limits)
+    graph = walks(nfa, manner in ("search", "scan"))
+    found = list(suspects(nfa, graph)) if graph.cyclic else []
+    if not found:
         return None
+    letters = Letters(nfa)
+    return found, letters, Continuations(nfa, graph, manner, letters)
 
 
-def _suffixes(suspect: Suspect, nfa: Nfa, dfa: Dfa | None, manner: Manner) -> Iterator[Codes]:
-    """Texts to put behind the pumps, the most promising first, each once."""
-    tried: set[Codes] = set()
-    if dfa is not None:
-        refused = _refused(suspect, dfa)
-        if refused is not None:
-            tried.add(refused)
-            yield refused
-    if () not in tried:
-        tried.add(())
-        yield ()
-    letters = [representative(chars) for chars in nfa.alphabet.classes]
-    letters.sort(key=lambda code: (code in suspect.pump, not 32 < code < 127, code))
-    for code in letters:
-        if (code,) not in tried:
-            tried.add((code,))
-            yield (code,)
+def _bounded(
+    program: p.Program, tree: t.Node, manner: Manner, limits: Limits, known: SlowText | None
+) -> tuple[SlowText | None, bool]:
+    """A text on which the bounded repeats of `program` take too many steps, and whether turns were wanting.
+
+    `tree` is the pattern without its bounds. What is as slow without them (`known`) is not told again.
+    """
+    counting = _Counting(program, manner, limits.turns)
+    if program.tree is not None and repeats_nothing(program.tree):
+        for chars in counting.matcher.alphabet.classes:
+            counts = _Counts(counting, _Text((), (representative(chars),), (), program.is_bytes))
+            if (counts.at(1) or 0) >= limits.bounded_steps:
+                span = program.tree.span
+                return SlowText(
+                    *counts.text.pieces(), 1, ((1, counts.known[1]),), (span,), False, True
+                ), False
+    free = compile_node(tree, program.groups, program.is_bytes, limits)
+    asked = _suspicions(free, manner, limits)
+    if asked is None:
+        return None, False
+    for suspect in asked[0][:SUSPECTS]:
+        if suspect.degree == 2 and suspect.by_restart:
+            continue  # the text times the bound: never enough
+        for prefix, pump, suffix, _ in _texts(suspect, *asked[1:]):
+            counts = _Counts(counting, _Text(prefix, pump, suffix, program.is_bytes))
+            n, _ = passes(counts.at, len(prefix) + len(suffix), len(pump), limits.bounded_steps)
+            if n is None:
+                continue
+            growth = growth_below(counts.at, n)
+            if growth == 1:
+                continue
+            if known is not None and not _worse(growth, known.growth):
+                continue
+            steps = tuple(sorted(counts.known.items()))
+            return SlowText(
+                *counts.text.pieces(), growth, steps, suspect.parts, suspect.by_restart, True
+            ), False
+        if counting.turns <= 0:
+            break
+    return None, counting.cut
 
 
-def _refused(suspect: Suspect, dfa: Dfa) -> Codes | None:
-    """A shortest suffix with which the automaton refuses the text at many pumps."""
-    state = 0
-    classify = dfa.alphabet.classify
-    for code in suspect.prefix + suspect.pump * (len(dfa) + 2 if len(dfa) < 50 else 52):
-        state = dfa.table[state][classify(code)]
-    seen: dict[int, Codes] = {state: ()}
-    letters = sorted(
-        ((representative(chars), minterm) for minterm, chars in enumerate(dfa.alphabet.classes)),
-        key=lambda pair: (pair[0] in suspect.pump, not 32 < pair[0] < 127, pair[0]),
-    )
-    order = [state]
-    for state in order:
-        if not dfa.accepting[state]:
-            return seen[state]
-        for letter, minterm in letters:
-            target = dfa.table[state][minterm]
-            if target not in seen:
-                seen[target] = (*seen[state], letter)
-                order.append(target)
-    return None
+def _enough(best: SlowText, most: int) -> bool:
+    """Whether what is confirmed is as bad as any suspicion."""
+    return best.growth == "exponential" or 1 < most <= best.growth
+
+
+def _worse(a: Growth, b: Growth) -> bool:
+    if b == "exponential":
+        return False
+    return a == "exponential" or a > b
 
 
 def _confirm(
-    suspect: Suspect,
-    most: int,
-    nfa: Nfa,
-    matcher: Matcher,
-    dfa: Dfa | None,
-    manner: Manner,
-    limits: Limits,
-    budget: list[int],
-) -> tuple[SlowText | None, bool]:
-    """The text that confirms a suspicion, and whether the limit on turns cut the search for it short."""
-    pump = _root(suspect.pump)
-    prefix = suspect.prefix
-    while prefix[-len(pump) :] == pump:
-        prefix = prefix[: -len(pump)]
-    candidates: list[tuple[int, int, _Counts]] = []
-    for order, suffix in enumerate(_suffixes(suspect, nfa, dfa, manner)):
-        if order >= SUFFIXES or budget[0] <= 0:
-            break
-        text = _Text(prefix, pump, suffix, nfa.program.is_bytes)
-        counts = _Counts(matcher, manner, text, budget)
-        few, more = (counts.at(n, SCREEN_TURNS) for n in SCREEN_SIZES)
-        if few is not None and more is not None and more < SCREEN_RATIO * few:
-            continue
-        walked = NEVER if few is None or more is None else more
-        candidates.append((-walked.bit_length(), order, counts))
-        if walked == NEVER or order == 0:
-            break  # nothing promises more than a text that is refused at great cost
+    suspect: Suspect, most: int, letters: Letters, continuations: Continuations, counting: _Counting
+) -> tuple[bool, SlowText | None]:
+    """Whether anything had to be counted, and the text that confirms a suspicion."""
     best: SlowText | None = None
-    cut = budget[0] <= 0
-    for _, _, counts in sorted(candidates, key=lambda row: row[:2])[:2]:
-        growth = (
-            _exponential(counts, limits.turns // 3)
-            if suspect.degree == EXPONENTIAL
-            else _power(counts, limits.turns, most)
-        )
-        if growth is None:
-            cut |= counts.cut
+    tried = alone = False
+    for prefix, pump, suffix, guessed in _texts(suspect, letters, continuations):
+        counts = _Counts(counting, _Text(prefix, pump, suffix, counting.is_bytes))
+        if guessed and not counts.promising():
             continue
-        slow = SlowText(
-            *counts.text.pieces(),
-            growth,
-            tuple(sorted(counts.known.items())),
-            suspect.parts,
-            suspect.by_restart,
-        )
-        if best is None or _worse(slow, best):
-            best = slow
-        if growth == "exponential" or growth >= most:
+        tried = True
+        slow = counts.claim(suspect, most)
+        if slow is not None:
+            first = counting.manner != "scan" or counts.slow_at_once(slow.growth)
+            if (
+                best is None
+                or _worse(slow.growth, best.growth)
+                or (alone and slow.growth == best.growth and first)
+            ):
+                best, alone = slow, not first
+        if counting.turns <= 0 or (best is not None and not alone and _enough(best, most)):
             break
-    return best, cut
+    return tried, best
+
+
+def _texts(
+    suspect: Suspect, letters: Letters, continuations: Continuations
+) -> Iterator[tuple[Codes, Codes, Codes, bool]]:
+    """Prefixes, pumps and suffixes that may show what is suspected, and whether the suffix is a guess."""
+    readings = 0
+    for whole in _readings(suspect, letters):
+        suffix = continuations.failing(suspect, suspect.prefix, whole)
+        if suffix == "none":
+            continue
+        pump = _root(whole)
+        prefix = suspect.prefix
+        while prefix[-len(pump) :] == pump:
+            prefix = prefix[: -len(pump)]
+        if suffix == "unknown":
+            yield from ((prefix, pump, guess, True) for guess in _guesses(pump, letters))
+        else:
+            yield prefix, pump, suffix, False
+            if pump != whole:  # the number of short pumps may matter
+                yield suspect.prefix, whole, suffix, True
+        readings += 1
+        if readings >= READINGS:
+            break
+
+
+def _readings(suspect: Suspect, letters: Letters) -> Iterator[Codes]:
+    """The pump in characters: the most readable, then others that may be treated better by what follows."""
+    seen: set[Codes] = set()
+    union = 0
+    for mask in suspect.pump:
+        union |= mask
+    preferred = [0, *(1 << minterm for minterm in range(union.bit_length()) if union >> minterm & 1)]
+    for prefer in preferred:
+        pump = tuple(letters(mask, prefer) for mask in suspect.pump)
+        if pump not in seen:
+            seen.add(pump)
+            yield pump
+        if len(seen) >= VARIANTS:
+            return
 
 
 def _root(pump: Codes) -> Codes:
@@ -226,6 +266,12 @@ def _root(pump: Codes) -> Codes:
         if size % length == 0 and pump == pump[:length] * (size // length):
             return pump[:length]
     return pump
+
+
+def _guesses(pump: Codes, letters: Letters) -> list[Codes]:
+    """Texts that may make the rest fail: nothing, and single characters."""
+    codes = sorted(letters.letters, key=lambda code: (code in pump, not 32 < code < 127, code))
+    return [(), *((code,) for code in codes)][:GUESSES]
 
 
 @dataclass(frozen=True, slots=True)
@@ -248,95 +294,80 @@ def _string(codes: Codes) -> str:
     return "".join(map(chr, codes))
 
 
-class _Counts:
-    """Steps at growing n, remembered; None where the limit on turns was met (then that many were walked)."""
+class _Counting:
+    """Counts the steps of one program in one manner while the turns last."""
 
-    def __init__(self, matcher: Matcher, manner: Manner, text: _Text, budget: list[int]) -> None:
-        self.matcher, self.manner, self.text, self.budget = matcher, manner, text, budget
-        self.known: dict[int, int] = {}
+    def __init__(self, program: p.Program, manner: Manner, turns: int) -> None:
+        self.manner = manner
+        self.turns = turns
+        self.is_bytes = program.is_bytes
         self.cut = False
-        """A run at length was stopped by the limit on turns."""
+        """A count was stopped by the limit on turns."""
+        self.counter = Counter(program) if countable(program) else None
+        self.most = turns // 3 if self.counter is not None else turns // 12
+        """Turns of one count; the matcher, which walks every step, must leave some for other sizes."""
+        self.matcher = Matcher(program) if self.counter is None else self.counter.matcher
 
-    def at(self, n: int, turns: int) -> int | None:
-        if n in self.known:
-            return self.known[n]
-        text = self.text.at(n)
-        turns = min(turns, self.budget[0])
-        if self.manner == "scan":
-            _, steps, left, finished = self.matcher.scan(text, turns)
+    def steps(self, text: str | bytes, manner: str = "") -> int | None:
+        turns = min(self.turns, self.most)
+        manner = manner or self.manner
+        if self.counter is not None:
+            steps, left = self.counter.steps(text, manner, turns)
+        elif manner == "scan":
+            _, walked, left, finished = self.matcher.scan(text, turns)
+            steps = walked if finished else None
         else:
-            outcome = self.matcher.run(text, self.manner, turns)
-            steps, left, finished = outcome.steps, outcome.turns_left, outcome.finished
-        self.budget[0] -= turns - left
-        if finished:
+            outcome = self.matcher.run(text, manner, turns)
+            steps, left = outcome.steps if outcome.finished else None, outcome.turns_left
+        self.turns -= turns - left
+        self.cut |= steps is None
+        return steps
+
+
+class _Counts:
+    """Steps on one text at growing n, remembered."""
+
+    def __init__(self, counting: _Counting, text: _Text) -> None:
+        self.counting, self.text = counting, text
+        self.known: dict[int, int] = {}
+
+    def at(self, n: int) -> int | None:
+        if n not in self.known:
+            steps = self.counting.steps(self.text.at(n))
+            if steps is None:
+                return None
             self.known[n] = steps
-            return steps
-        self.cut |= turns > SCREEN_TURNS or self.budget[0] <= 0
-        return None
+        return self.known[n]
 
+    def promising(self) -> bool:
+        few = self.at(SCREEN_SIZES[0])
+        more = None if few is None else self.at(SCREEN_SIZES[1])
+        return few is None or more is None or more > SCREEN_RATIO * few
 
-def _exponential(counts: _Counts, turns: int) -> Growth | None:
-    """Each further pump must multiply the steps, and go on doing so."""
-    sizes = [*range(1, 24), *range(26, 60, 3), *range(64, 128, 8)]
-    ratios: list[float] = []
-    n = last = 0
-    for size in sizes:
-        now = counts.at(size, turns)
-        if now is None:
-            break
-        if last:
-            ratios.append((now / last) ** (1 / (size - n)))
-        n, last = size, now
-        if n > 40 and max(ratios[-3:]) < LEAST_BASE:
+    def slow_at_once(self, growth: Growth) -> bool:
+        """Whether a single search is as slow as the scan, so that the text shows itself there too."""
+        few, more = (self.counting.steps(self.text.at(n), "search") for n in (12, 24))
+        if few is None or more is None:
+            return True
+        return more > few * 2 ** (growth - 0.6 if growth != "exponential" else 3)
+
+    def claim(self, suspect: Suspect, most: int) -> SlowText | None:
+        """What the counts show, if it is slow."""
+        growth = fit(self.at, len(self.text.pump) >= LONG_PUMP)
+        if growth is None or growth in (0, 1):
             return None
-    if last < LEAST_STEPS:
-        return None
-    if len(ratios) < 4:
-        # A great base leaves few sizes within the turns; a power's second ratio is at most 3/4 of its first.
-        steep = len(ratios) >= 2 and min(ratios[-2:]) > 3 and ratios[-1] > 0.9 * ratios[-2]
-        return "exponential" if steep else None
-    # A power n ** d has ratios that sink towards 1 as (1 + 1 / n) ** d; those of a base do not sink.
-    # Over six sizes where there are enough, since texts of period 2 or 3 grow by fits and starts.
-    window = 6 if len(ratios) >= 12 else 3
-    half = (len(ratios) + window) // 2
-    late = math.prod(ratios[-window:]) ** (1 / window)
-    early = math.prod(ratios[half - window : half]) ** (1 / window)
-    grows = late > LEAST_BASE and late > 0.8 * early and late > (1 + 1 / n) ** 5
-    return "exponential" if grows else None
-
-
-def _power(counts: _Counts, turns: int, most: int) -> Growth | None:
-    """The power in n that doubling n shows, at most `most`; None below a square."""
-    short = len(counts.text.pump) < LONG_PUMP
-    n, enough = (16, 64) if short else (4, 16)
-    last = counts.at(n, turns)
-    slope = 0.0
-    while last is not None and n < 512:
-        now = counts.at(2 * n, turns)
-        if now is None:
-            break
-        slope = math.log2(now / last) if last else 0.0
-        n, last = 2 * n, now
-        if n >= enough and abs(slope - round(slope)) < 0.3 and n * slope >= enough * most / 2:
-            break
-    if last is None or last < LEAST_STEPS:
-        return None
-    degree = math.floor(slope + 0.3) if n >= enough else _difference_order(counts, turns)
-    return min(degree, most) if degree >= 2 else None
-
-
-def _difference_order(counts: _Counts, turns: int) -> int:
-    """The degree of the polynomial on which counts at small equal distances lie, 0 where there is none."""
-    values: list[int] = []
-    for n in range(2, 2 + 2 * 8, 2):
-        steps = counts.at(n, turns)
-        if steps is None:
-            break
-        values.append(steps)
-    degree = 0
-    while len(values) > 1 and any(values):
-        values = [b - a for a, b in zip(values, values[1:], strict=False)]
-        degree += 1
-        if len(set(values)) == 1:
-            return degree if values[0] and len(values) > 1 else 0
-    return 0
+        if growth == "exponential":
+            if suspect.degree != EXPONENTIAL:
+                return None
+            self.known = {n: steps for n, steps in self.known.items() if steps <= SHOWN_STEPS}
+            for n in (2, 4, 6, *range(8, 512, 4)):
+                steps = self.at(n)
+                if steps is None or (n > 6 and steps > SHOWN_STEPS // 2):
+                    break
+        else:
+            growth = min(growth, most) if most else growth
+            self.at((16 if len(self.text.pump) >= LONG_PUMP else 128) >> growth - 2)
+        if max(self.known.values()) < LEAST_STEPS:
+            return None
+        counted = tuple(sorted(self.known.items()))
+        return SlowText(*self.text.pieces(), growth, counted, suspect.parts, suspect.by_restart)

@@ -36,13 +36,15 @@ class Edge:
 
 @dataclass(frozen=True, slots=True)
 class Walks:
-    """`edges[node]`; `spans[node]` is the part of the pattern that a node reads (None for SCAN).
+    """`edges[node]`; `positions[node]` is the position a node stands at (-1 for SCAN), `spans[node]` the part
+    of the pattern that it reads (None for SCAN).
 
     `entry` are the nodes at the text's start. `components[node]` numbers the strongly connected component
     of a node, `cyclic` holds the components that have a cycle.
     """
 
     edges: tuple[tuple[Edge, ...], ...]
+    positions: tuple[int, ...]
     spans: tuple[tuple[int, int] | None, ...]
     entry: tuple[int, ...]
     scan: bool
@@ -103,7 +105,8 @@ def walks(nfa: Nfa, scan: bool) -> Walks:
     if scan:
         entry.append(SCAN)
     components, cyclic = _components(edges)
-    return Walks(tuple(edges), spans, tuple(entry), scan, tuple(components), cyclic)
+    positions = tuple(-1 if t is None else t[0] for t in order)
+    return Walks(tuple(edges), positions, spans, tuple(entry), scan, tuple(components), cyclic)
 
 
 def _after_duty(nfa: Nfa, duty: Conjunction, reads: int) -> list[tuple[int, Conjunction]]:

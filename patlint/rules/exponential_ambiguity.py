@@ -33,7 +33,7 @@ def check(subject: Subject) -> Iterator[Finding]:
 RULE = Rule(
     name="exponential-ambiguity",
     level="error",
-    summary="matching time can multiply with every repetition of a piece of text",
+    summary="time can multiply with every repetition",
     page="""\
 The engine of re tries one way through the pattern after the other and
 remembers nothing. Where a repeated piece of text can be taken in two ways,

@@ -49,7 +49,7 @@ def check(subject: Subject) -> Iterator[Finding]:
 RULE = Rule(
     name="polynomial-ambiguity",
     level="warning",
-    summary="matching time can grow with the square of the text's length or a higher power",
+    summary="time can grow with a power of the length",
     page="""\
 Two repeats in a row that can take the same characters (`.*.*=`) are tried
 with every boundary between them if the rest fails: time grows with the square

@@ -120,7 +120,7 @@ def _merge(a: tuple[int, ...], b: tuple[int, ...], table: int) -> CharSet:
     bounds: list[int] = []
     i = j = inside = 0
     len_a, len_b = len(a), len(b)
-    end = 0x110000
+    end = 0x110002  # beyond every bound, that of the marker in marked texts too
     while i < len_a or j < len_b:
         next_a = a[i] if i < len_a else end
         next_b = b[j] if j < len_b else end

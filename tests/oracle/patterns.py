@@ -8,6 +8,7 @@ neighbours are close relatives. Not every pattern compiles; what `re` refuses is
 from __future__ import annotations
 
 import random
+import re
 import sys
 from dataclasses import dataclass
 
@@ -60,6 +61,19 @@ ESCAPES = (
     *(r"\w", r"\W", r"\d", r"\s", r"\S", r"\n", r"\x61", r"\141", r"\.", r"[\b]", r"\t", r"[\x61-\x62]"),
     *(r"\u0061", r"\U00000062", r"\N{LATIN SMALL LETTER B}", r"\0"),
 )
+# What is put for what: mostly other spellings of the same, so that neighbours are equal and claimed to be.
+RESPELLED = (
+    *((r"(?<=[\w\])])\*(?![?+])", "{0,}"), (r"(?<=[\w\])])\+(?![?+])", "{1,}")),
+    *((r"(?<=[\w\])])\?(?![?+])", "{0,1}"), (r"(?<=[\w\])])\?(?![?+])", "{,1}"), (r"(?<=\w)\*", "**")),
+    *(("a", "[a]"), ("a", "(?:a)"), ("b", r"\x62"), ("b", "(?:b|b)"), (r"(?<![\\\[])\.", "[^\n]")),
+    *(
+        (r"(?<![\\\[(])\$", r"(?=\n?\Z)"),
+        (r"(?<![\\\[(])\$", r"(?!\n?[^\n]|\n\n)"),
+        (r"(?<!.)\^", r"(?<![\s\S])"),
+    ),
+    *((r"\\b", r"(?:(?<=\w)(?!\w)|(?<!\w)(?=\w))"), (r"\\Z", r"(?![\s\S])"), (r"\\A", r"(?<![\s\S])")),
+    *((r"\(\?:", "(?:(?:)"), (r"\(\?>", "(?:"), (r"\(\?=", "(?=(?=)"), (r"\(\?<", "(?:)(?<")),
+)
 GREEDY = ("*", "+", "?")
 BOUNDED = ("{2}", "{1,2}", "{0,2}", "{2,}", "{2,3}", "{,2}", "{0,1}", "{1}", "{0}", "{,}")
 SCOPES = ("i", "s", "m", "a", "ai", "im", "-i", "m-s", "s-i", "u", "x")
@@ -68,7 +82,7 @@ SCOPES = ("i", "s", "m", "a", "ai", "im", "-i", "m-s", "s-i", "u", "x")
 class Maker:
     """Patterns without end from one seed; `only` names the constructs that may occur (empty: all)."""
 
-    def __init__(self, seed: int, only: frozenset[str] = frozenset(), files: int = 150) -> None:
+    def __init__(self, seed: int, only: frozenset[str] = frozenset(), files: int = 60) -> None:
         self.random = random.Random(seed)
         allowed = [name for name in CONSTRUCTS if not only or name in only]
         if sys.version_info < (3, 11):
@@ -106,6 +120,9 @@ class Maker:
 
     def _damaged(self, pattern: str) -> str:
         choice, size = self.random.choice, len(pattern)
+        if self.random.random() < 0.3:
+            old, new = choice(RESPELLED)
+            return re.sub(old, new.replace("\\", "\\\\"), pattern, count=choice((0, 1)))
         start, end = sorted((self.random.randint(0, size), self.random.randint(0, size)))
         end = min(end, start + 8)
         part = pattern[start:end]
@@ -135,12 +152,12 @@ class Maker:
         on = set(draw.sample(self.allowed, size))
         if on & {"backs", "conditionals"}:
             on.add("groups")
-        if on & {"locale"} and "bytes" in self.allowed:
-            on.add("bytes")
+        palettes = [name for name in ("bytes", "astral") if name in on]
+        palettes += ["cased", "plain"] if "case" in on else ["plain"]
+        if self.allowed == ["bytes"]:
+            palettes = ["bytes"]
         self.on = frozenset(on)
-        self.palette = next((name for name in ("bytes", "astral") if name in on), "plain")
-        if "case" in on and self.palette == "plain":
-            self.palette = "cased"
+        self.palette = draw.choice(palettes)
         self.opened = self.closed = 0
         flags = 0
         if "case" in on and draw.random() < 0.6:

@@ -18,7 +18,7 @@ def real_patterns(files: int) -> tuple[str | bytes, ...]:
     """The distinct pattern literals of the first `files` files that call `re`, by name of the file."""
     root = Path(sysconfig.get_paths()["stdlib"])
     found: dict[str | bytes, None] = {}
-    for path in sorted(root.rglob("*.py")):
+    for path in sorted((*root.glob("*.py"), *root.glob("*/*.py"))):
         if SKIPPED.intersection(path.relative_to(root).parts):
             continue
         source = path.read_bytes()
@@ -31,13 +31,21 @@ def real_patterns(files: int) -> tuple[str | bytes, ...]:
             except (SyntaxError, ValueError):
                 continue
         for node in ast.walk(tree):
-            if isinstance(node, ast.Call) and isinstance(node.func, ast.Attribute) and node.args:
-                module, first = node.func.value, node.args[0]
-                if isinstance(module, ast.Name) and module.id == "re" and node.func.attr in CALLS:
-                    if isinstance(first, ast.Constant) and isinstance(first.value, (str, bytes)):
-                        if len(first.value) <= LONGEST:
-                            found[first.value] = None
+            pattern = _pattern(node)
+            if pattern is not None and len(pattern) <= LONGEST:
+                found[pattern] = None
         files -= 1
         if not files:
             break
     return tuple(found)
+
+
+def _pattern(node: ast.AST) -> str | bytes | None:
+    """The literal that a call of a function of `re` has as its pattern."""
+    match node:
+        case ast.Call(
+            func=ast.Attribute(value=ast.Name(id="re"), attr=name),
+            args=[ast.Constant(value=str() | bytes() as pattern), *_],
+        ) if name in CALLS:
+            return pattern
+    return None

@@ -99,12 +99,10 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
 
     yield suspect(ranked[0])
     if depth[ranked[0]] > 2:
-        for first in ranked:
-            if depth[first] < depth[ranked[0]]:
-                break
-            chain = _chain(first, links, depth)
-            if len(chain) > 1 and chain[0] == first:
-                yield _joined(chain, links, depth, graph, prefixes, scan)
+        worst = [link for link in ranked if depth[link] == depth[ranked[0]]]
+        chain = max((_chain(link, links, depth) for link in worst), key=len)
+        if len(chain) > 1:
+            yield _joined(chain, links, depth, graph, prefixes, scan)
     for link in ranked[1:]:
         yield suspect(link)
 

@@ -200,9 +200,10 @@ def _confirm(
     """Whether anything had to be counted, and the text that confirms a suspicion."""
     best: SlowText | None = None
     tried = alone = False
-    for prefix, pump, suffix, guessed in _texts(suspect, letters, continuations):
+    slow: SlowText | None = None
+    for prefix, pump, suffix, kind in _texts(suspect, letters, continuations):
         counts = _Counts(counting, _Text(prefix, pump, suffix, counting.is_bytes))
-        if guessed and not counts.promising():
+        if (kind == "guess" and not counts.promising()) or (kind == "again" and slow is not None):
             continue
         tried = True
         slow = counts.claim(suspect, most)
@@ -221,8 +222,12 @@ def _confirm(
 
 def _texts(
     suspect: Suspect, letters: Letters, continuations: Continuations
-) -> Iterator[tuple[Codes, Codes, Codes, bool]]:
-    """Prefixes, pumps and suffixes that may show what is suspected, and whether the suffix is a guess."""
+) -> Iterator[tuple[Codes, Codes, Codes, Literal["sure", "guess", "again"]]]:
+    """Prefixes, pumps and suffixes that may show what is suspected, and what each is.
+
+    "sure": it makes the engine walk all ways; "again": the one before with a longer pump, needed only where
+    that showed nothing; "guess": not decided.
+    """
     readings = 0
     for whole in _readings(suspect, letters):
         suffix = continuations.failing(suspect, suspect.prefix, whole)
@@ -233,11 +238,11 @@ def _texts(
         while prefix[-len(pump) :] == pump:
             prefix = prefix[: -len(pump)]
         if suffix == "unknown":
-            yield from ((prefix, pump, guess, True) for guess in _guesses(pump, letters))
+            yield from ((prefix, pump, guess, "guess") for guess in _guesses(pump, letters))
         else:
-            yield prefix, pump, suffix, False
+            yield prefix, pump, suffix, "sure"
             if pump != whole:  # the number of short pumps may matter
-                yield suspect.prefix, whole, suffix, True
+                yield suspect.prefix, whole, suffix, "again"
         readings += 1
         if readings >= READINGS:
             break

@@ -70,7 +70,7 @@ def grows_as(growth: Growth, replayed: Replayed) -> bool:
         half, middle = rows[len(rows) // 2]
         base = (more / few) ** (1 / (m - n))
         late = (more / middle) ** (1 / (m - half))
-        return base > 1 + (LEAST_BASE - 1) / 2 and late > 1 + (base - 1) * 0.6
+        return base > 1 + (LEAST_BASE - 1) / 2 and bool(late > 1 + (base - 1) * 0.6)
     return bool(abs(replayed.power - growth) <= TOLERANCE)
 
 

@@ -32,7 +32,9 @@ class Limits:
     states: int = 2_000
     """States of one automaton while it is built. `(a|b)*a(a|b){10}` needs 2,049 (one refuses other letters)."""
     work: int = 400_000
-    """Thread steps (threads of a state times minterms) of one determinisation, about 0.3 s."""
+    """Steps of one determinisation (states times minterms, and threads where a step is not shared), about 0.3 s; and
+    of all closures, look-behinds and obligations of one program together. `(?:(?:(?:a?b?){0,9}){0,9}){0,9}` needs
+    more, `(?:(?:(?:a?b?){0,9}){0,3}){0,9}` 52,000."""
     product: int = 20_000
     """Pairs of states visited by one comparison of two automata."""
     contexts: int = 40

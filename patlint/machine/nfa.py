@@ -134,6 +134,7 @@ class Nfa:
         self._closures: dict[tuple[int, int], tuple[Thread, ...]] = {}
         self._after: dict[tuple[int, int, int], tuple[Thread, ...]] = {}
         self._looks: dict[tuple[int, int], int] = {}
+        self._begins: dict[tuple[int, int], tuple[int, Masks]] = {}
         self._splits: dict[tuple[int, int, int], tuple[int, Masks]] = {}
         self._contexts: dict[tuple[int, tuple[Tracker, ...]], int] = {}
         self._context_of: list[tuple[int, tuple[Tracker, ...]]] = []
@@ -232,8 +233,11 @@ class Nfa:
         known = self.trackers if before is None else self.trackers[: len(before)]
         for index, body in enumerate(known):
             context = self._intern_context(bits, trackers)
-            free, masks = split(self.closure(body, context))
-            groups = dict(masks)
+            key = (body, context)
+            begin = self._begins.get(key)
+            if begin is None:
+                begin = self._begins[key] = split(self.closure(body, context))
+            free, groups = begin[0], dict(begin[1])
             if before is not None:
                 free |= self._tracked(before[index], minterm, context, groups)
             ended = frozenset(duty for duty, mask in groups.items() if mask & end_bit)

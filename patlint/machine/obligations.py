@@ -58,9 +58,7 @@ class Obligations:
         self.charge = charge
         self.table: list[tuple[int, ...]] = [(ALL,) * width, (NONE,) * width]
         self.at_end: list[bool] = [True, False]
-        self._keys: dict[Key, int] = {}
-        for one in (ALL, NONE):
-            self._keys[key_of(self.table, self.at_end, one) or ()] = one
+        self._keys: dict[Key, int] = {(((0,) * width, True),): ALL, (((0,) * width, False),): NONE}
         self._complements: dict[int, int] = {ALL: NONE, NONE: ALL}
         self._simple: dict[tuple[int, bool, bool], int] = {}
         self._unions: dict[frozenset[Conjunction], int] = {}

@@ -157,9 +157,8 @@ def holds(old: t.Pattern, new: t.Pattern, modes: Iterable[Mode], keeps: Keeps, l
             return False
         case "spans":
             return all(
-                same_language(old, new, mode, limits)
-                if mode == "fullmatch"
-                else same_spans(old, new, mode == "search", limits)
+                (mode == "fullmatch" and same_language(old, new, mode, limits))
+                or same_spans(old, new, mode == "search", limits)
                 for mode in modes
             )
         case "language":

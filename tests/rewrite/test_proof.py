@@ -4,11 +4,12 @@ from __future__ import annotations
 
 import itertools
 import random
+import re
 
 import pytest
 
 from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
-from patlint.rewrite.proof import ends, part_language, same_language, same_spans
+from patlint.rewrite.proof import ends, holds, part_language, same_groups, same_language, same_spans
 from patlint.syntax.parser import parse
 from tests.rewrite.oracle import ends_of, random_pattern
 
@@ -128,3 +129,69 @@ def test_a_limit_is_no_proof() -> None:
     assert same_language(one, one, "fullmatch", DEFAULT_LIMITS)
     assert not same_language(one, one, "fullmatch", Limits(states=20))
     assert not same_spans(one, one, True, Limits(states=20))
+
+
+GROUPS = [
+    ("(a|b)x(?:c|d)", "([ab])x[cd]", True),
+    ("(?:ab)(c)(?:d|e)", "ab(c)[de]", True),
+    ("a|ab|(c)", "ab??|(c)", True),
+    ("a|ab|(c)", "ab?|(c)", False),
+    ("(?=a|b)c", "(?=[ab])c", True),
+    ("(a)|b|c", "(a)|[bc]", True),
+    ("(a)|", "(a)", False),
+    ("(a)(b)", "(a)b", False),
+    ("(a)|(b)", "(b)|(a)", False),
+    ("(?i:a|b)(c)", "(?i:[ab])(c)", True),
+    ("(?:(a)|b){2}", "(?:(a)|b)(?:(a)|b)", False),
+    (r"(?:a|b)\b(?:c|)", r"[ab]\bc?", True),
+    ("(?>a|ab)c", "(?>ab?)c", False),
+]
+
+
+@pytest.mark.parametrize(("one", "other", "same"), GROUPS)
+def test_groups(one: str, other: str, same: bool) -> None:
+    a, b = parse(one, target=(3, 12)), parse(other, target=(3, 12))
+    assert same_groups(a, b, DEFAULT_LIMITS) is same
+    assert holds(a, b, ["search"], "groups", DEFAULT_LIMITS) is same
+
+
+def test_same_groups_are_those_of_re() -> None:
+    """Whatever is called the same does the same on `re`, groups included."""
+    generator = random.Random(9)
+    frames = [
+        "(c)(?:%s)(?:%s)",
+        "(?:%s)(a|b)|(?:%s)",
+        "(?:(?:%s)(b)?(?:%s))*",
+        "(?=(?:%s))(.)(?:%s)",
+        "(%s)(?:%s)$",
+    ]
+    parts = [
+        "a",
+        "[a]",
+        "a|a",
+        "ab?",
+        "a|ab",
+        "ab|a",
+        "ab??",
+        "a*",
+        "(?:a+)?",
+        "a*?",
+        "aa*",
+        "a+",
+        "|a",
+        "a??",
+    ]
+    parts += ["a?", "a|", "a|b", "[ab]", "b|a"]
+    texts = generator.sample(SHORT_TEXTS, 60)
+    alike = asked = 0
+    for _ in range(2500):
+        frame = generator.choice(frames)
+        one, other = (frame % tuple(generator.sample(parts, 2)) for _ in range(2))
+        asked += 1
+        if same_groups(parse(one), parse(other), DEFAULT_LIMITS):
+            alike += 1
+            for text in texts:
+                a, b = re.search(one, text), re.search(other, text)
+                assert (a and a.regs) == (b and b.regs), (one, other, text)
+    assert asked == 2500
+    assert alike > 20

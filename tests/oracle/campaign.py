@@ -21,7 +21,23 @@ GROUP_TEXTS = 8
 SCAN_TEXTS = 30
 SCAN_EVERY = 4
 """Patterns to each one whose span automata are built in every context."""
-PROBES = ("aaaaa", "ababa", "ab\nab", "kKkKk")
+PROBES = ("aaaaa", "bbbbb", "ababa", "ab\nab", "\n\n\n\n", "kKkKk")
+MORE_PROBES = (
+    "aaaab",
+    "bbbba",
+    "\n\n\na",
+    "aaaa\n",
+    "bbbb\n",
+    "abab\n",
+    "baba\n",
+    "aabba",
+    "abbb ",
+    "kkkkA",
+    "aaaa_",
+)
+"""For patterns with `MANY` repeats without end: those that walk far often do so only where they fail."""
+MANY = 3
+UNBOUNDED = re.compile(r"[*+]|,\}")
 SMALL = 40
 """Texts that are left to a pattern on which the matcher walks far."""
 
@@ -104,9 +120,10 @@ def _compared(
     tally.compared += 1
     tally.exact += subject.exact
     tally.inexact.update({reason for reason, _ in subject.nfa.inexact})
-    wide = all(
-        compare.finishes(subject, probe.encode() if is_bytes else probe) for probe in PROBES
-    ) and compare.finishes(subject, world.texts[-1])
+    plain = subject.pattern.decode("latin-1") if isinstance(subject.pattern, bytes) else subject.pattern
+    probes = PROBES + MORE_PROBES if len(UNBOUNDED.findall(plain)) >= MANY else PROBES
+    wide = all(compare.finishes(subject, probe.encode() if is_bytes else probe) for probe in probes)
+    wide = wide and compare.finishes(subject, world.texts[-1])
     if not wide:
         tally.limits["turns"] += 1
         last = None

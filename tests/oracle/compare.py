@@ -1,4 +1,4 @@
-"""One pattern, or a pair, on many texts: what patlint says against what `re` says.
+"""One pattern on many texts: what patlint says against what `re` says.
 
 `subject_of` prepares a pattern once; each `compare_*` function is one respect in which the two are compared and
 gives the `Mismatch`es. A comparison that a limit cuts short is counted, never silently dropped.

@@ -80,9 +80,7 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
         if component in graph.cyclic and node in prefixes:
             members.setdefault(component, []).append(node)
     for nodes in members.values():
-        found = _two_cycles(graph, nodes, nfa.limits.product)
-        if found is not None:
-            node, pump, others = found
+        for node, pump, others in _two_cycles(graph, nodes, nfa.limits.product):
             yield Suspect(prefixes[node], pump, EXPONENTIAL, (node,), _parts(graph, node, *others))
     if len(members) < 2:
         return
@@ -90,36 +88,39 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
     if not links:
         return
     depth = _depths(links)
-    ranked = sorted(links, key=lambda link: (-depth[link], len(links[link][2])))
+    ranked = sorted(links, key=lambda link: (-depth[link], len(links[link][0][2])))
     scan = graph.components[SCAN] if graph.scan else -1
 
-    def suspect(link: Link) -> Suspect:
-        p, q, pump = links[link]
+    def suspect(link: Link, way: Way) -> Suspect:
+        p, q, pump = way
         return Suspect(prefixes[p], pump, depth[link], (p, q), _parts(graph, p, q), link[0] == scan)
 
-    yield suspect(ranked[0])
+    yield suspect(ranked[0], links[ranked[0]][0])
     if depth[ranked[0]] > 2:
         worst = [link for link in ranked if depth[link] == depth[ranked[0]]]
         chain = max((_chain(link, links, depth) for link in worst), key=len)
         if len(chain) > 1:
             yield _joined(chain, links, depth, graph, prefixes, scan)
     for link in ranked[1:]:
-        yield suspect(link)
+        yield suspect(link, links[link][0])
+    for link in ranked:
+        for way in links[link][1:]:
+            yield suspect(link, way)
 
 
-def _chain(first: Link, links: dict[Link, tuple[int, int, Masks]], depth: dict[Link, int]) -> list[Link]:
+def _chain(first: Link, links: dict[Link, list[Way]], depth: dict[Link, int]) -> list[Link]:
     """A longest chain of links that begins with `first`."""
     chain = [first]
     while True:
         further = [link for link in links if link[0] == chain[-1][1] and depth[link] == depth[first]]
         if not further:
             return chain
-        chain.append(min(further, key=lambda link: len(links[link][2])))
+        chain.append(min(further, key=lambda link: len(links[link][0][2])))
 
 
 def _joined(
     chain: list[Link],
-    links: dict[Link, tuple[int, int, Masks]],
+    links: dict[Link, list[Way]],
     depth: dict[Link, int],
     graph: Walks,
     prefixes: dict[int, Codes],
@@ -129,11 +130,11 @@ def _joined(
 
     Not always a text on which all components go round, but mostly; it is to be confirmed anyway.
     """
-    begin, end = links[chain[0]][0], links[chain[-1]][1]
-    nodes = [node for link in chain for node in links[link][:2]]
+    begin, end = links[chain[0]][0][0], links[chain[-1]][0][1]
+    nodes = [node for link in chain for node in links[link][0][:2]]
     pump: Masks = ()
     for link in chain:
-        pump += links[link][2]
+        pump += links[link][0][2]
     return Suspect(
         prefixes[begin], pump, depth[chain[0]], (begin, end), _parts(graph, *nodes), chain[0][0] == scan
     )
@@ -160,10 +161,10 @@ def _spell(seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None], end:
     return tuple(reversed(masks))
 
 
-def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> tuple[int, Masks, tuple[int, ...]] | None:
-    """A node of one component that has two cycles on one text, the text, and the nodes that compete."""
+def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> list[tuple[int, Masks, tuple[int, ...]]]:
+    """Nodes of one component that have two cycles on one text, the text, and the nodes that compete; a few."""
     inside = set(nodes)
-    best: tuple[int, Masks, tuple[int, ...]] | None = None
+    all_found: list[tuple[int, Masks, tuple[int, ...]]] = []
     divergences: list[tuple[int, tuple[int, int], int]] = []
     for node in nodes:
         edges = [edge for edge in graph.edges[node] if edge.target in inside]
@@ -181,18 +182,17 @@ def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> tuple[int, Masks,
             back = _path(graph, pair[0], node, inside)
             if back is not None:
                 pump = (mask, *back)
-                if best is None or len(pump) < len(best[1]):
-                    best = node, pump, (pair[0],)
+                all_found.append((node, pump, (pair[0],)))
         else:
             if pair not in seen:
                 seen[pair] = None
                 order.append(pair)
             origins.setdefault(pair, {})[node] = mask
-    if best is not None:
-        return best
+    if len(all_found) > WAYS:
+        return _few(all_found)
     more = min(len(nodes), 64)
     for pair in order:
-        if best is not None:
+        if all_found:
             more -= 1  # a meeting is known: look a little further for one with a shorter pump
             if more < 0:
                 break
@@ -222,9 +222,16 @@ def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> tuple[int, Masks,
                 back = _path(graph, target[0], node, inside)
                 assert back is not None
                 pump = (begin[node], *_spell(seen, target), *back)
-                if best is None or len(pump) < len(best[1]):
-                    best = node, pump, first
-    return best
+                all_found.append((node, pump, first))
+    return _few(all_found)
+
+
+def _few(found: list[tuple[int, Masks, tuple[int, ...]]]) -> list[tuple[int, Masks, tuple[int, ...]]]:
+    """The shortest with different texts."""
+    kept: dict[Masks, tuple[int, Masks, tuple[int, ...]]] = {}
+    for row in sorted(found, key=lambda row: len(row[1])):
+        kept.setdefault(row[1], row)
+    return list(kept.values())[:WAYS]
 
 
 def _path(graph: Walks, start: int, end: int, inside: set[int]) -> Masks | None:
@@ -247,24 +254,35 @@ def _parts(graph: Walks, *nodes: int) -> tuple[Span, ...]:
 
 
 Link = tuple[int, int]
+Way = tuple[int, int, Masks]
+"""Two nodes p, q and the text on which p leads to p and to q, and q to q."""
+WAYS = 3
+"""Ways that are kept of each link: what follows may take the text of one, but not that of another."""
 
 
-def _links(graph: Walks, members: dict[int, list[int]], limit: int) -> dict[Link, tuple[int, int, Masks]]:
-    """Pairs of components that compete for one text: the two nodes and the text."""
+def _links(graph: Walks, members: dict[int, list[int]], limit: int) -> dict[Link, list[Way]]:
+    """Pairs of components that compete for one text: for each some pairs of nodes with the text, short ones first.
+
+    Raises LimitReached.
+    """
     reach = _reachable(graph, members)
-    links: dict[Link, tuple[int, int, Masks]] = {}
+    links: dict[Link, list[Way]] = {}
     budget = limit
     for first, first_nodes in members.items():
         for second in reach[first]:
             second_nodes = set(members[second])
+            ways: list[Way] = []
             for p, q in ((p, q) for p in first_nodes for q in members[second]):
                 found, spent = _triple(graph, p, q, set(first_nodes), second_nodes, budget)
                 budget -= spent
                 if budget <= 0:
                     raise LimitReached("product", limit)
-                if found is not None:
-                    links[first, second] = (p, q, found)
-                    break
+                if found is not None and all(found != way[2] for way in ways):
+                    ways.append((p, q, found))
+                    if len(ways) >= WAYS:
+                        break
+            if ways:
+                links[first, second] = sorted(ways, key=lambda way: len(way[2]))
     return links
 
 
@@ -315,7 +333,7 @@ def _triple(
     return None, len(seen)
 
 
-def _depths(links: dict[Link, tuple[int, int, Masks]]) -> dict[Link, int]:
+def _depths(links: dict[Link, list[Way]]) -> dict[Link, int]:
     """For each link the power that the longest chain through it stands for: two for a link alone."""
     after: dict[int, int] = {}
     before: dict[int, int] = {}

@@ -90,7 +90,7 @@ def _order(values: list[int]) -> int | None:
         return None
     while len(values) > 1:
         if len(set(values)) == 1:
-            return degree
+            return degree if values[0] > 0 else None  # falling differences: a bound is near
         values = [b - a for a, b in zip(values, values[1:], strict=False)]
         degree += 1
     return None

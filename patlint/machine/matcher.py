@@ -290,8 +290,8 @@ class _Run:
                         pos, pc = end, op.next
                         continue
                 case p.Back():
-                    end = self.same_text(op, pos)
-                    steps += max(slots[2 * op.group + 1] - slots[2 * op.group], 0)
+                    end, compared = self.same_text(op, pos)
+                    steps += compared
                     if end >= 0:
                         pos, pc = end, op.next
                         continue
@@ -373,22 +373,31 @@ class _Run:
     def is_newline(self, pos: int) -> bool:
         return self.text[pos] in (10, "\n")
 
-    def same_text(self, op: p.Back, pos: int) -> int:
-        """The end of the group's text read again at `pos`, or -1."""
+    def same_text(self, op: p.Back, pos: int) -> tuple[int, int]:
+        """The end of the group's text read again at `pos`, or -1, and how many characters were compared."""
         start, end = self.slots[2 * op.group], self.slots[2 * op.group + 1]
         if end < 0:
-            return -1
+            return -1, 0
         size = end - start
         text = self.text
         if op.fold == "exact":
-            return pos + size if text[pos : pos + size] == text[start:end] else -1
-        if pos + size > self.length:
-            return -1
+            if text[pos : pos + size] == text[start:end]:
+                return pos + size, size
+            low, high = 0, min(size, self.length - pos)  # the first `low` are equal
+            while low < high:
+                middle = (low + high + 1) // 2
+                if text[pos : pos + middle] == text[start : start + middle]:
+                    low = middle
+                else:
+                    high = middle - 1
+            return -1, low
         ascii_only = op.fold == "ascii"
         for offset in range(size):
-            if _lowered(text[start + offset], ascii_only) != _lowered(text[pos + offset], ascii_only):
-                return -1
-        return pos + size
+            if pos + offset >= self.length or (
+                _lowered(text[start + offset], ascii_only) != _lowered(text[pos + offset], ascii_only)
+            ):
+                return -1, offset
+        return pos + size, size
 
 
 def _lowered(char: int | str, ascii_only: bool) -> int:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from patlint.rules.finding import Example, Finding, Level, Rule
-from patlint.rules.growth import figures, judged, mode_name, witness_of
+from patlint.rules.growth import evidence, grows, judged, mode_name, possessive, way_out, witness_of
 from patlint.rules.subject import Subject
 
 
@@ -16,15 +16,18 @@ def check(subject: Subject) -> Iterator[Finding]:
             continue
         first, *others = slow.parts
         level: Level = "note" if use is not None and use.bounded is not None else RULE.level
+        better = possessive(subject, use, manner, slow)
+        advice = "let only one part take each character: separate the repeats, or merge them into one"
         yield Finding(
             RULE.name,
             level,
             first,
-            "matching time can multiply with every repetition of a piece of text",
+            grows(slow),
             mode=mode_name(manner),
             witness=witness_of(slow),
-            evidence=figures(slow),
-            way_out="let only one part take each character: separate the repeats, or merge them into one",
+            evidence=evidence(slow),
+            way_out=way_out(better, manner, slow, subject, advice),
+            suggestion=better,
             marks=tuple(others),
         )
         return

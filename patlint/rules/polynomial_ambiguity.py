@@ -5,10 +5,8 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from patlint.rules.finding import Example, Finding, Level, Rule
-from patlint.rules.growth import figures, judged, mode_name, witness_of
+from patlint.rules.growth import evidence, figures, grows, judged, mode_name, possessive, way_out, witness_of
 from patlint.rules.subject import Subject
-
-_POWERS = {2: "square", 3: "cube"}
 
 
 def check(subject: Subject) -> Iterator[Finding]:
@@ -16,14 +14,15 @@ def check(subject: Subject) -> Iterator[Finding]:
     degree = 1
     for manner, use, ambiguity in judged(subject):
         slow = ambiguity.slow
-        if slow is None or slow.growth == "exponential" or slow.growth <= degree:
+        if slow is None or slow.growth == "exponential" or slow.growth <= degree - slow.bounded:
             continue
         degree = slow.growth
         restart = slow.by_restart and degree == 2
         level: Level = RULE.level
-        if restart or degree == 2 or (use is not None and use.bounded is not None):
+        if restart or (degree == 2 and not slow.bounded) or (use is not None and use.bounded is not None):
             level = "note"
-        power = _POWERS.get(degree, f"{degree}th power")
+        better = None if restart else possessive(subject, use, manner, slow)
+        advice = "let the repeats take different characters, or put between them what only one can take"
         span, *others = slow.parts or [(0, len(subject.site.pattern))]
         worst = Finding(
             RULE.name,
@@ -31,14 +30,15 @@ def check(subject: Subject) -> Iterator[Finding]:
             span,
             f"the search begins afresh at every place, so time can grow with the square: {figures(slow)}"
             if restart
-            else f"matching time can grow with the {power} of the text's length",
+            else grows(slow),
             mode=mode_name(manner),
             witness=witness_of(slow),
-            evidence="" if restart else figures(slow),
+            evidence="" if restart else evidence(slow),
             proof="counted by a matcher that walks as the engine does",
             way_out="bound the repeat, or anchor the beginning: match or ^ where that is meant"
             if restart
-            else "let the repeats take different characters, or put between them what only one can take",
+            else way_out(better, manner, slow, subject, advice),
+            suggestion=better,
             marks=tuple(others),
             brief=restart,
         )

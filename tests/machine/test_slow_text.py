@@ -24,6 +24,10 @@ MANNERS = ("match", "fullmatch", "search", "scan")
 # The rows of `corpus.cost` name one text each; on another text these patterns are worse.
 WORSE_ELSEWHERE: dict[tuple[str, str], tuple[Growth, str]] = {
     ("(?:a|aa)*.*", "fullmatch"): ("exponential", "a^n and a line feed, which the dot does not take"),
+    ("(?:a*+b?)*c", "match"): (
+        "exponential",
+        "(ab)^n: b is read by the iteration of its a or by one of its own",
+    ),
     ("(?:a(?:x?){2})*b", "match"): ("exponential", "(ax)^n: x is read by the first or by the second x?"),
 }
 

@@ -10,7 +10,9 @@ r"""`Language`: the texts of a pattern, as an automaton that can be asked and co
 
 In mode "fullmatch" these are the texts that the pattern takes as a whole; in "match" and "search" those on
 which that function succeeds. Where the pattern has constructs that are not said exactly (`inexact` lists them),
-the automaton is a superset; an answer that a superset cannot give raises `Undecided`. Limits raise
+the automaton is a superset; an answer that a superset cannot give raises `Undecided`: it proves that a text is not
+in the language, that nothing is, that two languages share nothing, that one lies within an exact other. What is
+made of it by `&`, `|` and `-` is a superset again; `~` and subtracting it are undecided. Limits raise
 `LimitReached`. Character classes are those of the running Python's Unicode data.
 """
 
@@ -181,31 +183,49 @@ class Language:
             raise TypeError("languages of str and of bytes cannot be compared")
 
     def difference_witness(self, other: Language) -> str | bytes | None:
-        """A shortest text that one has and the other has not, None where they are equal."""
+        """A shortest text that one has and the other has not, None where they are equal.
+
+        A text of an exact language that is not even in the other's superset is one too.
+        """
         self._same_kind(other)
-        self._ask(True, False)
-        other._ask(True, False)
-        found = relations.relation(self.dfa, other.dfa, self.limits, until_differs=True)
-        codes = found.only_a if found.only_a is not None else found.only_b
-        return None if codes is None else self._text(codes)
+        found = relations.relation(self.dfa, other.dfa, self.limits, until_differs=self.exact and other.exact)
+        # Of a difference between a language and a superset only the language's own texts are sure.
+        sure = [
+            codes
+            for codes, owner in ((found.only_a, self), (found.only_b, other))
+            if codes is not None and owner.exact
+        ]
+        if sure:
+            return self._text(min(sure, key=len))
+        nothing = found.only_a is None and found.only_b is None and found.both is None
+        self._ask(True, nothing)
+        other._ask(True, nothing)
+        return None
 
     def __eq__(self, other: object) -> bool:
-        """Whether both have the same texts; raises Undecided where one is only a superset."""
+        """Whether both have the same texts; raises Undecided where a superset leaves that open."""
         if not isinstance(other, Language):
             return NotImplemented
-        self._ask(True, False)
-        other._ask(True, False)
-        return self.is_bytes == other.is_bytes and self._canonical == other._canonical
+        if self is other:
+            return True
+        if self.is_bytes != other.is_bytes:
+            return False
+        if self.exact and other.exact:
+            return self._canonical == other._canonical
+        return self.difference_witness(other) is None
 
     def __hash__(self) -> int:
+        """Raises Undecided for a superset: sets and dictionaries would take it for different from its equals."""
+        self._ask(True, False)
         return hash(self._canonical)
 
     def __le__(self, other: Language) -> bool:
         """Whether every text of this language is in `other`."""
         self._same_kind(other)
-        other._ask(True, False)
         inside = relations.relation(self.dfa, other.dfa, self.limits).only_a is None
-        return self._ask(inside, inside)
+        if inside:
+            return other._ask(True, words.is_empty(self.dfa))
+        return self._ask(False, False)
 
     def __lt__(self, other: Language) -> bool:
         return self <= other and self != other

@@ -3,14 +3,16 @@ r"""patlint against facts from outside. Each check names its source, and says wh
 from __future__ import annotations
 
 import calendar
+import ipaddress
 import math
 import re
 import sys
 import unicodedata
+from datetime import date
 
 import pytest
 
-from patlint.language import Language
+from patlint.language import Language, relate
 from patlint.limits import DEFAULT_LIMITS, Limits
 from patlint.machine.nfa import Nfa
 from patlint.machine.program import compile_tree
@@ -264,3 +266,143 @@ def test_facts_of_the_trade() -> None:
     assert {t for t in "kK\u212as\u017f" if Language("(?i)k|s").accepts(t)} == set("kK\u212as\u017f")
     assert not Language("(?ia)k").accepts("\u212a")
     assert sys.maxunicode == 0x10FFFF and Language("(?s).").total() == sys.maxunicode + 1
+
+
+# Source: RFC 3986, appendix A (the grammar) and appendix B (the splitting expression), from memory. ABNF's
+# letters stand for both cases; the grammar's rules are written out of each other as in the appendix.
+def _uri_rules() -> dict[str, str]:
+    rules: dict[str, str] = {}
+    rules["unreserved"] = r"[A-Za-z0-9\-._~]"
+    rules["sub-delims"] = r"[!$&'()*+,;=]"
+    encoded = r"%[0-9A-Fa-f]{2}"
+    both = rf"{rules['unreserved']}|{rules['sub-delims']}|{encoded}"
+    pchar = rf"(?:{both}|[:@])"
+    rules["scheme"] = r"[A-Za-z][A-Za-z0-9+\-.]*"
+    octet = r"(?:[0-9]|[1-9][0-9]|1[0-9]{2}|2[0-4][0-9]|25[0-5])"
+    rules["IPv4address"] = rf"{octet}\.{octet}\.{octet}\.{octet}"
+    rules["reg-name"] = rf"(?:{both})*"
+    h16 = r"[0-9A-Fa-f]{1,4}"
+    ls32 = rf"(?:{h16}:{h16}|{rules['IPv4address']})"
+    rows = [rf"(?:{h16}:){{6}}{ls32}", rf"::(?:{h16}:){{5}}{ls32}", rf"(?:{h16})?::(?:{h16}:){{4}}{ls32}"]
+    rows += [
+        rf"(?:(?:{h16}:){{0,{left}}}{h16})?::(?:{h16}:){{{right}}}{ls32}"
+        for left, right in ((1, 3), (2, 2), (3, 1))
+    ]
+    rows += [rf"(?:(?:{h16}:){{0,4}}{h16})?::{ls32}", rf"(?:(?:{h16}:){{0,5}}{h16})?::{h16}"]
+    rows += [rf"(?:(?:{h16}:){{0,6}}{h16})?::"]
+    rules["IPv6address"] = "|".join(rows)
+    future = rf"[vV][0-9A-Fa-f]+\.(?:{rules['unreserved']}|{rules['sub-delims']}|:)+"
+    host = rf"(?:\[(?:{rules['IPv6address']}|{future})\]|{rules['IPv4address']}|{rules['reg-name']})"
+    rules["authority"] = rf"(?:(?:{both}|:)*@)?{host}(?::[0-9]*)?"
+    segment = rf"{pchar}*"
+    rules["path-abempty"] = rf"(?:/{segment})*"
+    rules["path-absolute"] = rf"/(?:{pchar}+(?:/{segment})*)?"
+    rules["path-noscheme"] = rf"(?:{both}|@)+(?:/{segment})*"
+    rules["path-rootless"] = rf"{pchar}+(?:/{segment})*"
+    rules["query"] = rules["fragment"] = rf"(?:{pchar}|[/?])*"
+    hier = rf"(?://{rules['authority']}{rules['path-abempty']}|{rules['path-absolute']}|{rules['path-rootless']}|)"
+    rest = rf"(?:\?{rules['query']})?"
+    rules["absolute-URI"] = rf"{rules['scheme']}:{hier}{rest}"
+    rules["URI"] = rf"{rules['absolute-URI']}(?:#{rules['fragment']})?"
+    relative = rf"(?://{rules['authority']}{rules['path-abempty']}|{rules['path-absolute']}|{rules['path-noscheme']}|)"
+    rules["relative-ref"] = rf"{relative}{rest}(?:#{rules['fragment']})?"
+    return rules
+
+
+APPENDIX_B = {
+    "scheme": "[^:/?#]+",
+    "authority": "[^/?#]*",
+    "path": "[^?#]*",
+    "query": "[^#]*",
+    "fragment": ".*",
+    "whole": r"^(([^:/?#]+):)?(//([^/?#]*))?([^?#]*)(\?([^#]*))?(#(.*))?",
+}
+
+
+@pytest.mark.parametrize(
+    ("rule", "part"),
+    [
+        ("scheme", "scheme"),
+        ("authority", "authority"),
+        ("path-abempty", "path"),
+        ("path-absolute", "path"),
+        ("path-noscheme", "path"),
+        ("path-rootless", "path"),
+        ("query", "query"),
+        ("fragment", "fragment"),
+        ("URI", "whole"),
+        ("relative-ref", "whole"),
+    ],
+)
+def test_rules_of_the_uri_grammar_lie_within_the_parts_of_the_splitting_expression(
+    rule: str, part: str
+) -> None:
+    assert relate(_uri_rules()[rule], APPENDIX_B[part]).word == "within"
+
+
+@pytest.mark.parametrize(
+    ("first", "second", "word", "where"),
+    [
+        ("query", "fragment", "equal", "appendix A"),
+        ("IPv4address", "reg-name", "within", "section 3.2.2: a host that fits both is an address"),
+        ("IPv4address", "IPv6address", "disjoint", "appendix A"),
+        ("path-absolute", "path-abempty", "within", "appendix A"),
+        ("path-noscheme", "path-rootless", "within", "appendix A"),
+        ("path-absolute", "path-rootless", "disjoint", "section 3.3: begins with a slash, or not"),
+        ("absolute-URI", "URI", "within", "section 4.3: without a fragment"),
+        ("URI", "relative-ref", "disjoint", "section 4.1: told apart by the scheme and its colon"),
+    ],
+)
+def test_rules_of_the_uri_grammar_beside_each_other(first: str, second: str, word: str, where: str) -> None:
+    rules = _uri_rules()
+    assert relate(rules[first], rules[second]).word == word, where
+
+
+def test_addresses_are_those_that_python_reads() -> None:
+    """Source: the library's `ipaddress`, on texts in and near the language (it also takes a zone, after `%`)."""
+    address = Language(_uri_rules()["IPv6address"], re.ASCII)
+    texts = [str(text) for text in address.samples(150, 3)] + [
+        str(text) for text in (~address).samples(100, 4)
+    ]
+    texts += [text[:place] + text[place + 1 :] for place, text in enumerate(texts[:150]) if place < len(text)]
+    taken = 0
+    for text in texts:
+        try:
+            ipaddress.IPv6Address(text)
+            read = "%" not in text
+        except ValueError:
+            read = False
+        assert address.accepts(text) == read, text
+        taken += read
+    assert 100 < taken < len(texts) - 80
+
+
+# Source: RFC 3339, section 5.6 (the grammar) and appendix C (the rule for leap years), from memory.
+_MONTH_DAY = (
+    "(?:(?:0[13578]|1[02])-(?:0[1-9]|[12][0-9]|3[01])|(?:0[469]|11)-(?:0[1-9]|[12][0-9]|30)"
+    "|02-(?:0[1-9]|1[0-9]|2[0-8]))"
+)
+_LEAP = "(?:[0-9]{2}(?:0[48]|[2468][048]|[13579][26])|(?:[02468][048]|[13579][26])00)"
+TIMES = {
+    "full-date": f"(?!0000)(?:[0-9]{{4}}-{_MONTH_DAY}|{_LEAP}-02-29)",
+    "full-date by digits": "[0-9]{4}-[0-9]{2}-[0-9]{2}",
+    "time-hour": "[01][0-9]|2[0-3]",
+    "time-numoffset": "[+-](?:[01][0-9]|2[0-3]):[0-5][0-9]",
+    "time-offset": "[Zz]|[+-](?:[01][0-9]|2[0-3]):[0-5][0-9]",
+    "partial-time": r"(?:[01][0-9]|2[0-3]):[0-5][0-9]:(?:[0-5][0-9]|60)(?:\.[0-9]+)?",
+    "without leap second": r"(?:[01][0-9]|2[0-3]):[0-5][0-9]:[0-5][0-9](?:\.[0-9]+)?",
+}
+
+
+def test_dates_and_times_of_rfc_3339() -> None:
+    dates = Language(TIMES["full-date"])
+    assert dates.total() == date.max.toordinal() == 3_652_059  # the library's calendar, years 1 to 9999
+    for text in dates.samples(200, 5):
+        assert date.fromisoformat(str(text)).isoformat() == text
+    assert dates < Language(TIMES["full-date by digits"])
+    assert Language(TIMES["time-numoffset"]).total() == 2 * 24 * 60
+    assert Language(TIMES["time-offset"]).total() == 2 * 24 * 60 + 2
+    assert relate(TIMES["without leap second"], TIMES["partial-time"]).word == "within"
+    leap = Language(TIMES["partial-time"]) - Language(TIMES["without leap second"])
+    assert leap == Language(r"(?:[01][0-9]|2[0-3]):[0-5][0-9]:60(?:\.[0-9]+)?")
+    assert relate(TIMES["full-date"], TIMES["partial-time"]).word == "disjoint"

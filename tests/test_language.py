@@ -122,9 +122,15 @@ def test_what_a_superset_may_say(pattern: str, text: str) -> None:
         lambda: wide.samples(1),
         lambda: wide.count(1),
         lambda: wide.total(),
-        lambda: wide == Language("a"),
-        lambda: Language("a") == wide,
-        lambda: Language("a") <= wide,
+        lambda: wide == inside,
+        lambda: inside == wide,
+        lambda: inside <= wide,
+        lambda: inside < wide,
+        lambda: wide <= inside,
+        lambda: wide == Language(pattern),
+        lambda: wide != Language(pattern),
+        lambda: wide in {inside},
+        lambda: hash(wide),
         lambda: wide <= Language("#"),
         lambda: wide.isdisjoint(inside),
         lambda: inside.isdisjoint(wide),
@@ -143,6 +149,11 @@ def test_what_a_superset_may_say(pattern: str, text: str) -> None:
     for made in (wide & inside, wide | inside, wide - Language("#")):
         assert made.inexact == wide.inexact
     assert not wide.is_empty_for_sure()
+    # A text of an exact language that is not even in the superset tells them apart.
+    outside = Language("#")
+    assert wide != outside and outside != wide and not outside <= wide and not outside < wide
+    assert wide.difference_witness(outside) == outside.difference_witness(wide) == "#"
+    assert Language("(?!)") <= wide and wide == wide
 
 
 def test_a_superset_may_prove_that_nothing_matches() -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import sys
 from dataclasses import fields, replace
 
 import pytest
@@ -68,3 +69,36 @@ def test_worked_numbers() -> None:
     with pytest.raises(LimitReached):
         build("(?:a|b)*a(?:a|b){10}", DEFAULT_LIMITS)
     assert build("(?:a|b)*a(?:a|b){10}", replace(DEFAULT_LIMITS, states=3_000)) == 2_049
+
+
+@pytest.mark.parametrize(
+    ("what", "pattern"),
+    [
+        ("closures", "(?:(?:a?b?){0,9}){0,9}"),
+        ("look-behind", "(?<=a.{9})b"),
+        ("look-ahead", "(?:(?!a.{9}b).)*"),
+        ("vetoes", "(?:(?!b)(?:a|ab)c?(?!a))++" if sys.version_info >= (3, 11) else "(?=(?!ab).*(?!ba))"),
+        ("obligations", "".join(f"(?!{letter}x)" for letter in "abcdefghijkl")),
+    ],
+)
+def test_what_a_program_computes_on_the_way_counts_as_work(what: str, pattern: str) -> None:
+    """The smallest work that a fresh program needs besides the determinisation itself, and one less."""
+
+    def spend(value: int) -> None:
+        nfa = Nfa(compile_tree(parse(pattern)), replace(DEFAULT_LIMITS, work=value))
+        for context in nfa.all_contexts():
+            for thread in nfa.initial(context):
+                for minterm in range(len(nfa.alphabet)):
+                    nfa.after(thread[0], minterm, nfa.next_context(context, minterm))
+
+    low, high = 0, DEFAULT_LIMITS.work
+    spend(high)
+    while high - low > 1:
+        middle = (low + high) // 2
+        try:
+            spend(middle)
+            high = middle
+        except LimitReached as reached:
+            assert (reached.limit, reached.value) == ("work", middle)
+            low = middle
+    assert low > 10, what

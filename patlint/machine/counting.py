@@ -283,6 +283,8 @@ class _Count:
     def tried(self, op: p.Run, place: int) -> Value | State:
         """The outcome of going on at a place other than the first, or the choice that must be reckoned first."""
         self.turns -= 1
+        if self.turns < 0:
+            raise OutOfTurns
         if not self.fits(op, place):
             return -1, 1
         found, missing = self.look_up((op.next, place, NO_MARKS))

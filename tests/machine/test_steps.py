@@ -3,14 +3,18 @@
 from __future__ import annotations
 
 import math
+import random
 
 import pytest
 
+from patlint.machine.counting import Counter, countable
 from tests.corpus.cost import BOUNDS, ROWS, Base, Row
 from tests.corpus.cpython import compiled
+from tests.corpus.generate import Maker
 from tests.machine.support import matcher_of
 
 TURNS = 15_000
+BOUNDED = ("", "a{0,3}", "[ab]{1,4}?", "(?:a{0,2}b?){2,5}", ".{2,5}", ".{0,4}?b", "a{0,3}a{0,3}b")
 
 
 def steps_at(row: Row, n: int) -> int | None:
@@ -67,6 +71,41 @@ def test_growth_with_the_text(section: int) -> None:
             wrong.append((row, found))
     assert not wrong
     assert ran >= {1: 20, 2: 45, 3: 25, 4: 15, 5: 40, 6: 20, 8: 30}[section]
+
+
+def test_counted_steps_are_those_that_are_walked() -> None:
+    """The counter reckons each place once; the matcher walks them all."""
+    maker = Maker(41, frozenset({"ahead", "behind", "atomic", "flags"}))
+    choose = random.Random(42)
+    compared = 0
+    for _ in range(350):
+        pattern = maker.pattern(3) + choose.choice(BOUNDED) + maker.pattern(3)
+        if compiled(pattern) is None:
+            continue
+        matcher = matcher_of(pattern)
+        if not countable(matcher.program):
+            continue
+        counter = Counter(matcher.program)
+        text = "".join(choose.choice("aab!\n") for _ in range(choose.randint(0, 14)))
+        for manner in ("match", "fullmatch", "search", "scan"):
+            if manner == "scan":
+                _, steps, _, finished = matcher.scan(text, TURNS)
+            else:
+                outcome = matcher.run(text, manner, TURNS)
+                steps, finished = outcome.steps, outcome.finished
+            if finished:
+                compared += 1
+                assert counter.steps(text, manner, 1_000_000)[0] == steps, (pattern, text, manner)
+    assert compared > 1_000
+
+
+def test_both_sides_of_the_limit_on_turns_of_the_counter() -> None:
+    counter = Counter(matcher_of("(a+)+$").program)
+    text = "a" * 60 + "!"
+    steps, left = counter.steps(text, "match", 1_000)
+    assert steps is not None and steps > 2**60 and 0 < left < 1_000
+    assert counter.steps(text, "match", 1_000 - left) == (steps, 0)
+    assert counter.steps(text, "match", 999 - left) == (None, 0)
 
 
 def bounded_steps(pattern: str, manner: str, text: str, size: int) -> int:

@@ -79,13 +79,19 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
     for node, component in enumerate(graph.components):
         if component in graph.cyclic and node in prefixes:
             members.setdefault(component, []).append(node)
+    ambiguous: list[list[int]] = []
     for nodes in members.values():
-        for node, pump, others in _two_cycles(graph, nodes, nfa.limits.product):
+        found = _two_cycles(graph, nodes, nfa.limits.product)
+        if found:
+            ambiguous.append(nodes)
+        for node, pump, others in found:
             yield Suspect(prefixes[node], pump, EXPONENTIAL, (node,), _parts(graph, node, *others))
-    if len(members) < 2:
+    if len(members) < 2 and not ambiguous:
         return
     links = _links(graph, members, nfa.limits.product)
     if not links:
+        for nodes in ambiguous:
+            yield from _within(graph, nodes, prefixes, nfa.limits.product)
         return
     depth = _depths(links)
     ranked = sorted(links, key=lambda link: (-depth[link], len(links[link][0][2])))
@@ -106,6 +112,27 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
     for link in ranked:
         for way in links[link][1:]:
             yield suspect(link, way)
+    for nodes in ambiguous:
+        yield from _within(graph, nodes, prefixes, nfa.limits.product)
+
+
+def _within(graph: Walks, nodes: list[int], prefixes: dict[int, Codes], limit: int) -> Iterator[Suspect]:
+    """Repeats inside a loop that compete within one iteration.
+
+    The loop as a whole has two cycles on one text, but what follows may take every such text; an iteration that
+    fails is still walked with each boundary between the two.
+    """
+    alone = [node for node in nodes if any(edge.target == node for edge in graph.edges[node])]
+    inside = set(nodes)
+    given = 0
+    for p, q in ((p, q) for p in alone for q in alone if p != q):
+        pump, spent = _triple(graph, p, q, {p}, {q}, limit, inside)
+        limit -= spent
+        if pump is not None:
+            yield Suspect(prefixes[p], pump, min(len(alone), 3), (p, q), _parts(graph, p, q))
+            given += 1
+        if limit <= 0 or given >= WAYS:
+            return
 
 
 def _chain(first: Link, links: dict[Link, list[Way]], depth: dict[Link, int]) -> list[Link]:
@@ -303,7 +330,13 @@ def _reachable(graph: Walks, members: dict[int, list[int]]) -> dict[int, list[in
 
 
 def _triple(
-    graph: Walks, p: int, q: int, first: set[int], second: set[int], limit: int
+    graph: Walks,
+    p: int,
+    q: int,
+    first: set[int],
+    second: set[int],
+    limit: int,
+    middle: set[int] | None = None,
 ) -> tuple[Masks | None, int]:
     """A text v with p-v->p, p-v->q and q-v->q, and how many triples were visited."""
     start, end = (p, p, q), (p, q, q)
@@ -319,7 +352,7 @@ def _triple(
                     continue
                 for edge_b in graph.edges[b]:
                     common = mask & edge_b.mask
-                    if not common:
+                    if not common or (middle is not None and edge_b.target not in middle):
                         continue
                     target = (edge_a.target, edge_b.target, edge_c.target)
                     if target in seen:

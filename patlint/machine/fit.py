@@ -88,7 +88,7 @@ def _order(values: list[int]) -> int | None:
     degree = 0
     if len(values) < 4:
         return None
-    while len(values) > 1:
+    while len(values) > (1 if degree < 2 else 2):
         if len(set(values)) == 1:
             return degree if values[0] > 0 else None  # falling differences: a bound is near
         values = [b - a for a, b in zip(values, values[1:], strict=False)]

@@ -114,6 +114,26 @@ def test_ordinary_patterns_are_let_alone(pattern: str, manner: str) -> None:
     assert decide(pattern, manner).growth is None
 
 
+# Found by `python -m tests.bench.misses` and by replaying on `re`, and mended: what was said before stands behind.
+MENDED: tuple[tuple[str, str, Growth | None], ...] = (
+    (r"(?:(?:(b)(?:[ab]){2,})|(?:[^\W]))*b", "search", 2),  # None: only one pump of a link was tried
+    (r"(?:(?:(?:bb|(?:b){2,}))|(?:(?:(?:^)?|a\w)))*b", "scan", 2),  # None: the same
+    (r"\{[a-z]+\} *[^\n]*(?:\n|$)(?:\:[a-z]+\: *[^\n]*\n+)*", "match", 2),  # None: two repeats in one loop
+    (r"\{if\s+.*?\}.*?\{/if\}", "search", 3),  # 2: no pump for a whole chain
+    (
+        r"^<A HREF=\"(?!lua|LUA)([^:]+)\">\1</A>",
+        "match",
+        None,
+    ),  # 2: a back-reference stops where texts differ
+    (r"(?!-)[a-z\d\*-]{1,63}(?<!-)", "match", None),  # fitted as 2 where the bound was near
+)
+
+
+@pytest.mark.parametrize(("pattern", "manner", "growth"), MENDED)
+def test_mended(pattern: str, manner: str, growth: Growth | None) -> None:
+    assert decide(pattern, manner).growth == growth
+
+
 def brute_force_base(pattern: str, manner: str, letters: str) -> float:
     """The greatest factor for each pump that any pump of one or two letters and any suffix of one shows."""
     ours = matcher_of(pattern)

@@ -67,10 +67,8 @@ class Matcher:
         self.members = [tuple(bool(mask >> i & 1) for i in range(width)) for mask in masks]
         """For each distinct set whether a minterm belongs to it."""
         self.set_of = [
-            index[i.chars]
-            if isinstance(i, p.Char | p.Run)
-            else index[i.words]
-            if isinstance(i, p.Assert)
+            index[i.chars if isinstance(i, p.Char | p.Run) else i.words]
+            if isinstance(i, p.Char | p.Run | p.Assert)
             else 0
             for i in program.code
         ]

@@ -112,6 +112,7 @@ def _unbounded(program: p.Program, manner: Manner, limits: Limits) -> Ambiguity:
     found, letters, continuations = asked
     most = max(suspect.degree for suspect in found)
     counting = _Counting(program, manner, limits.turns)
+    counting.may_multiply = any(suspect.degree == EXPONENTIAL for suspect in found)
     for suspect in found:
         if best is not None and _enough(best, most):
             break
@@ -306,6 +307,8 @@ class _Counting:
         self.manner = manner
         self.turns = turns
         self.is_bytes = program.is_bytes
+        self.may_multiply = False
+        """The graph has two cycles on one text somewhere; without them what multiplies ends at a bound."""
         self.cut = False
         """A count was stopped by the limit on turns."""
         self.counter = Counter(program) if countable(program) else None
@@ -362,7 +365,7 @@ class _Counts:
         if growth is None or growth in (0, 1):
             return None
         if growth == "exponential":
-            if suspect.degree != EXPONENTIAL:
+            if not self.counting.may_multiply:
                 return None
             self.known = {n: steps for n, steps in self.known.items() if steps <= SHOWN_STEPS}
             for n in (2, 4, 6, *range(8, 512, 4)):

@@ -125,6 +125,11 @@ MENDED: tuple[tuple[str, str, Growth | None], ...] = (
         "match",
         None,
     ),  # 2: a back-reference stops where texts differ
+    (
+        r"(?:(?:(?:(?:.|b))+)|(?:(?m:$)$))*b",
+        "match",
+        "exponential",
+    ),  # None: its pump was one of another suspicion
     (r"(?!-)[a-z\d\*-]{1,63}(?<!-)", "match", None),  # fitted as 2 where the bound was near
 )
 

@@ -20,7 +20,7 @@ only those before it. Contexts are small integers; `next_context` steps them.
 What is not regular is widened to a superset: a back-reference reads anything, both sides of a conditional may
 be taken, an atomic group around one of these gives back like a plain group, a look-around around one of these
 is taken to hold (a look-ahead that is not negated keeps what is known of it). `inexact` lists these with their
-spans, and sets that depend on the locale.
+spans, sets that depend on the locale, and classes that CPython's search reads under the wrong flags.
 """
 
 from __future__ import annotations
@@ -60,6 +60,7 @@ class Nfa:
         self.first: dict[int, int] = {}
         self.pc_of: list[int] = []
         self.inexact: list[tuple[str, Span]] = [("locale", span) for span in program.locale]
+        self.inexact += [("scoped class at the beginning", span) for span in program.misread]
         self.atomic_ends: dict[int, int] = {}
         self.behind: dict[Span, int] = {}
         self.trackers: list[int] = []

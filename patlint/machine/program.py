@@ -22,7 +22,7 @@ Limit: `instructions`.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import Literal, TypeAlias
 
 from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
@@ -158,6 +158,9 @@ class Program:
     is_bytes: bool
     locale: tuple[t.Span, ...] = ()
     """Parts that depend on the locale: the matcher takes them as ASCII, the automata as anything."""
+    misread: tuple[t.Span, ...] = ()
+    """Classes at the beginning under scoped ASCII or UNICODE: CPython's search looks for them under the flags
+    outside the scope, and may pass over what match finds."""
     tree: t.Node | None = field(default=None, compare=False, repr=False)
     """What it was compiled from, as the engine rewrites it."""
 
@@ -322,7 +325,9 @@ def compile_tree(
     """
     node = pattern.root if root is None else root
     node = as_engine_runs(node) if engine else node
-    return compile_node(node, pattern.groups, pattern.is_bytes, limits)
+    program = compile_node(node, pattern.groups, pattern.is_bytes, limits)
+    misread = _misread(node, pattern.flags)
+    return replace(program, misread=misread) if misread else program
 
 
 def compile_node(node: t.Node, groups: int, is_bytes: bool, limits: Limits) -> Program:
@@ -339,8 +344,23 @@ def compile_node(node: t.Node, groups: int, is_bytes: bool, limits: Limits) -> P
         builder.loops,
         is_bytes,
         _locale_spans(node) if is_bytes else (),
-        node,
+        tree=node,
     )
+
+
+def _misread(node: t.Node, flags: int) -> tuple[t.Span, ...]:
+    match node:
+        case t.Group():
+            return _misread(node.body, flags)
+        case t.Sequence() if node.items:
+            return _misread(node.items[0], flags)
+        case t.Alternation():
+            return tuple(span for branch in node.branches for span in _misread(branch, flags))
+        case t.ClassEscape() | t.Set() if (node.flags ^ flags) & t.ASCII:
+            items = node.items if isinstance(node, t.Set) else (node,)
+            return (node.span,) if any(isinstance(item, t.ClassEscape) for item in items) else ()
+        case _:
+            return ()
 
 
 def _locale_spans(node: t.Node) -> tuple[t.Span, ...]:

@@ -14,12 +14,16 @@ from patlint.syntax.parser import parse
 MODES: tuple[Mode, ...] = ("match", "fullmatch", "search")
 
 
+TARGET = (3, 13)
+"""Our own parser reads the newest dialect on every Python; what `re` is compared on, `re` must accept as well."""
+
+
 def matcher_of(pattern: str | bytes, flags: int = 0) -> Matcher:
-    return Matcher(compile_tree(parse(pattern, flags)))
+    return Matcher(compile_tree(parse(pattern, flags, TARGET)))
 
 
 def nfa_of(pattern: str | bytes, flags: int = 0, limits: Limits = DEFAULT_LIMITS) -> Nfa:
-    return Nfa(compile_tree(parse(pattern, flags, limits=limits), limits), limits)
+    return Nfa(compile_tree(parse(pattern, flags, TARGET, limits), limits), limits)
 
 
 def dfa_of(pattern: str | bytes, mode: Mode = "fullmatch", flags: int = 0) -> Dfa:

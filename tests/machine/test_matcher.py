@@ -50,7 +50,7 @@ def test_random_patterns(features: tuple[str, ...]) -> None:
     maker = Maker(20, frozenset(features) - ({"atomic"} if OLD else set()))
     choose = random.Random(21)
     made = sum(compare(maker.pattern(4), choose.sample(TEXTS, 10)) for _ in range(500))
-    assert made > 14_000
+    assert made > (13_000 if OLD else 14_000)
 
 
 def trees(features: tuple[str, ...]) -> st.SearchStrategy[str]:

@@ -36,7 +36,9 @@ KNOWN_MISSES: dict[tuple[str, str], Growth | None] = {}
 
 
 def decide(pattern: str, manner: str, **limits: int) -> Ambiguity:
-    return ambiguity_of(compile_tree(parse(pattern)), manner, replace(DEFAULT_LIMITS, **limits))  # type: ignore[arg-type]
+    return ambiguity_of(
+        compile_tree(parse(pattern, target=(3, 13))), manner, replace(DEFAULT_LIMITS, **limits)
+    )  # type: ignore[arg-type]
 
 
 def expected() -> dict[tuple[str, str], Growth | None]:

@@ -59,7 +59,7 @@ def test_growth_with_the_text(section: int) -> None:
     ran = 0
     wrong = []
     for row in ROWS:
-        if row.section != section or compiled(row.pattern) is None:
+        if row.section != section:
             continue
         found = measured(row)
         ran += 1
@@ -96,7 +96,7 @@ def test_counted_steps_are_those_that_are_walked() -> None:
             if finished:
                 compared += 1
                 assert counter.steps(text, manner, 1_000_000)[0] == steps, (pattern, text, manner)
-    assert compared > 1_000
+    assert compared > 900
 
 
 def test_both_sides_of_the_limit_on_turns_of_the_counter() -> None:

@@ -85,10 +85,10 @@ def _times(request: dict[str, Any]) -> dict[str, Any]:
             rows.append([n, last])
             n += 1 if n < 60 else n // 16
     else:
-        n = 16
+        n = 16 if growth < 4 else 4
         while roughly(n) < request["least"] and n < (1 << 22 if growth else 1 << 18):
             n *= 2
-        factor = 2.0 if growth is None or growth < 4 else 1.5
+        factor = 2.0 if growth < 4 else 1.5
         for _ in range(3):
             rows.append([n, time_at(n)])
             n = int(n * factor)

@@ -74,7 +74,9 @@ def read_source(path: str, stdin_name: str | None) -> tuple[str, bytes | str]:
         return path, read_file(path)
     try:
         return stdin_name or "<stdin>", sys.stdin.buffer.read()
-    except (OSError, AttributeError) as error:  # closed, or none at all
+    except AttributeError:
+        return stdin_name or "<stdin>", "cannot be read: standard input is closed"
+    except OSError as error:
         return stdin_name or "<stdin>", f"cannot be read: {error}"
 
 

@@ -83,7 +83,7 @@ def lint_module(module: Module, settings: Settings) -> Outcome:
     tally = _Tally()
     for site in module.sites:
         _check(site, settings, enabled, levels, tally)
-    kept, waived, used = _waive(tally.placed, module.waivers)
+    kept, waived, used = _waive(_agreed(tally.placed, module), module.waivers)
     stale, stale_waived = _stale_waivers(module, settings, enabled, levels, used, tally.undecided_lines)
     return Outcome(
         path=module.path,
@@ -98,6 +98,37 @@ def lint_module(module: Module, settings: Settings) -> Outcome:
         undecided=tuple(tally.undecided),
         problems=tuple(tally.problems),
     )
+
+
+def _agreed(placed: list[tuple[PlacedFinding, Site]], module: Module) -> list[tuple[PlacedFinding, Site]]:
+    """The findings without those on a text that others share: each is told once, and a part is called dead only
+    where it is dead at every site that reads the text."""
+    readers: dict[Place, set[int]] = {}
+    for site in module.sites:
+        for piece in site.pieces:
+            readers.setdefault(piece.whole, set()).add(id(site))
+    agreeing: dict[tuple[str, int, int], set[int]] = {}
+    for finding, site in placed:
+        agreeing.setdefault((finding.rule, finding.line, finding.column), set()).add(id(site))
+    told: set[tuple[str, int, int, int, int]] = set()
+    kept = []
+    for finding, site in placed:
+        spot = (finding.rule, finding.line, finding.column)
+        here = (finding.line, finding.column)
+        shared: set[int] = set()
+        for piece in site.pieces:
+            whole = piece.whole
+            if (whole.line, whole.column) <= here < (whole.end_line, whole.end_column):
+                shared |= readers[whole]
+        if len(shared) > 1:
+            if finding.rule == "unreachable-part" and not shared <= agreeing[spot]:
+                continue
+            once = (*spot, finding.end_line, finding.end_column)
+            if once in told:
+                continue
+            told.add(once)
+        kept.append((finding, site))
+    return kept
 
 
 def failed(path: str, message: str, line: int | None = None) -> Outcome:

@@ -105,7 +105,7 @@ WAIVED = [
     ([site(4, "n", statement=2)], [waiver(2, "nullable")], 1),
     ([site(2, "n", end_line=4)], [waiver(4, "nullable")], 1),
     ([site(2, "ne")], [waiver(2, "nullable", "empty-language")], 2),
-    ([site(2, "n"), site(2, "n")], [waiver(2, "nullable")], 2),
+    ([site(2, "n"), site(2, "n")], [waiver(2, "nullable")], 1),  # two readers of one text: told once
     ([site(2, "n")], [waiver(2, "nullable"), waiver(1, "nullable", targets=(1, 2))], 1),
 ]
 

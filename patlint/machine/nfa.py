@@ -8,7 +8,7 @@ priority, each once; the guard of loops whose body can be empty is respected.
 The *context* is what may be asked of the text before a place: whether it begins there, whether the character
 before is a line feed or a word character, and for each look-behind its *tracker*: the threads of its body, begun
 at every place so far. Only what the program asks is kept. Trackers stand inner ones first, and a tracker sees
-only those before it. Contexts are small integers; `next_context` steps them.
+only those before it. Contexts are small integers (`contexts`); `next_context` steps them.
 
 - Look-ahead is the obligation that its body matches the rest, or its complement.
 - Look-behind holds where a thread of its tracker has ended here; the thread's own obligations become those of
@@ -30,19 +30,12 @@ from collections.abc import Iterator
 from patlint.limits import LimitReached, Limits
 from patlint.machine import program as p
 from patlint.machine.alphabet import minterms, universe
-from patlint.machine.determinise import Bound, Masks, split, subset_table, weakest
+from patlint.machine.contexts import AFTER_NEWLINE, AFTER_WORD, AT_START, Contexts
+from patlint.machine.determinise import subset_table
 from patlint.machine.obligations import ALL, FREE, NONE, Conjunction, Obligations, Thread
 from patlint.machine.ordered import Threads, ends_here, prune, steps
 from patlint.syntax.charset import NEWLINE, CharSet
 from patlint.syntax.tree import Span
-
-AT_START = 1
-AFTER_NEWLINE = 2
-AFTER_WORD = 4  # shifted by the index of the set of word characters
-
-Tracker = tuple[int, Bound, frozenset[Conjunction]]
-"""The threads under way in a look-behind's body (as in `determinise`), and the obligations of those that have just
-ended."""
 
 
 class Nfa:
@@ -135,16 +128,11 @@ class Nfa:
         self._closures: dict[tuple[int, int], tuple[Thread, ...]] = {}
         self._after: dict[tuple[int, int, int], tuple[Thread, ...]] = {}
         self._looks: dict[tuple[int, int], int] = {}
-        self._begins: dict[tuple[int, int], tuple[int, Masks]] = {}
-        self._splits: dict[tuple[int, int, int], tuple[int, Masks]] = {}
-        self._contexts: dict[tuple[int, tuple[Tracker, ...]], int] = {}
-        self._context_of: list[tuple[int, tuple[Tracker, ...]]] = []
-        self._next: dict[tuple[int, int], int] = {}
-        self.bits = [self._bits(minterm) for minterm in range(width)]
-        self.contexts = [self._intern_context(bits, ()) for bits in self.bits]
+        self.context_table = Contexts(self)
+        self.contexts = self.context_table.plain
         """The context after a character of each minterm, without trackers."""
-        self.plain_start = self._intern_context(AT_START if self.asks_start else 0, ())
-        self.start_context = self._with_trackers(AT_START if self.asks_start else 0, None, 0)
+        self.plain_start = self.context_table.plain_start
+        self.start_context = self.context_table.with_trackers(AT_START if self.asks_start else 0, None, 0)
 
     def _add_reader(self, position: int) -> None:
         mask = self.reads[position]
@@ -198,96 +186,13 @@ class Nfa:
 
     # Contexts
 
-    def _bits(self, minterm: int) -> int:
-        bits = AFTER_NEWLINE if self.asks_newline and self.newline >> minterm & 1 else 0
-        for index, mask in enumerate(self.word_masks):
-            if mask >> minterm & 1:
-                bits |= AFTER_WORD << index
-        return bits
-
-    def _intern_context(self, bits: int, trackers: tuple[Tracker, ...]) -> int:
-        key = (bits, trackers)
-        found = self._contexts.get(key)
-        if found is None:
-            if len(self._context_of) > self.limits.states + len(self.bits):
-                raise LimitReached("states", self.limits.states)
-            found = self._contexts[key] = len(self._context_of)
-            self._context_of.append(key)
-        return found
-
     def next_context(self, context: int, minterm: int) -> int:
         """The context after reading a character in `context`."""
-        if not self.trackers:
-            return self.contexts[minterm]
-        key = (context, minterm)
-        found = self._next.get(key)
-        if found is None:
-            found = self._with_trackers(self.bits[minterm], self._context_of[context][1], minterm)
-            self._next[key] = found
-        return found
-
-    def _with_trackers(self, bits: int, before: tuple[Tracker, ...] | None, minterm: int) -> int:
-        trackers: tuple[Tracker, ...] = ()
-        end_bit = 1 << self.accept
-        just_free = frozenset((FREE,))
-        # A context that knows fewer trackers (inside one of them) goes on knowing only those.
-        known = self.trackers if before is None else self.trackers[: len(before)]
-        for index, body in enumerate(known):
-            context = self._intern_context(bits, trackers)
-            key = (body, context)
-            begin = self._begins.get(key)
-            if begin is None:
-                begin = self._begins[key] = split(self.closure(body, context))
-            free, groups = begin[0], dict(begin[1])
-            if before is not None:
-                free |= self._tracked(before[index], minterm, context, groups)
-            ended = frozenset(duty for duty, mask in groups.items() if mask & end_bit)
-            under_way = {duty: mask & ~end_bit for duty, mask in groups.items()}
-            trackers += ((free & ~end_bit, weakest(free, under_way), just_free if free & end_bit else ended),)
-        return self._intern_context(bits, trackers)
-
-    def _tracked(self, tracker: Tracker, minterm: int, context: int, groups: dict[Conjunction, int]) -> int:
-        """Step the threads of a tracker into `groups`; the positions without obligations are returned."""
-        free, bound, _ = tracker
-        readers = self.readers[minterm]
-        bits = 0
-        moved = [(FREE, free & readers)]
-        for duty, mask in bound:
-            rest = self.obligations.step(duty, minterm)
-            if rest is not None:
-                moved.append((rest, mask & readers))
-        for rest, waiting in moved:
-            more = (waiting & self.up) << 1 | (waiting & self.down) >> 1
-            waiting &= ~(self.up | self.down)
-            while waiting:
-                low = waiting & -waiting
-                waiting ^= low
-                self.charge(1)
-                key = (low.bit_length() - 1, context, minterm)
-                found = self._splits.get(key)
-                if found is None:
-                    found = self._splits[key] = split(self.after(key[0], minterm, context))
-                more |= found[0]
-                for duty, mask in found[1]:
-                    both = rest | duty
-                    groups[both] = groups.get(both, 0) | mask
-            if rest:
-                groups[rest] = groups.get(rest, 0) | more
-            else:
-                bits |= more
-        return bits
+        return self.context_table.next(context, minterm)
 
     def all_contexts(self) -> tuple[int, ...]:
         """All contexts that some text leads to, the start's first. Raises LimitReached("states")."""
-        found = {self.start_context: None}
-        order = [self.start_context]
-        for context in order:
-            for minterm in range(len(self.alphabet)):
-                after = self.next_context(context, minterm)
-                if after not in found:
-                    found[after] = None
-                    order.append(after)
-        return tuple(order)
+        return self.context_table.all()
 
     # Threads
 
@@ -469,7 +374,7 @@ class Nfa:
         if self.program.spans[pc] in self.program.locale:
             return ALL
         table = self.obligations
-        bits = self._context_of[context][0]
+        bits = self.context_table.parts[context][0]
         match op.kind:
             case "start":
                 return ALL if bits & AT_START else NONE
@@ -504,7 +409,7 @@ class Nfa:
                 found = self._looks[key] = self.obligations.intern(table, accepting)[0]
         else:
             index = self.behind[self.program.spans[pc]]
-            trackers = self._context_of[context][1]
+            trackers = self.context_table.parts[context][1]
             if index >= len(trackers):
                 return ALL  # a context without trackers: nothing is known of the text before
             found = self.obligations.union(trackers[index][2])

@@ -1,6 +1,6 @@
 """The report for people: one block a finding, one summary line at the end.
 
-    shop.py:4:20: error: exponential-ambiguity: time doubles with each 'a'
+    shop.py:4:20: error: exponential-ambiguity: matching time can multiply …
       pattern  ^(a+)+$
                 =====
       text     'a' * 30 + '!'

@@ -33,7 +33,11 @@ def check_site(
     quiet: set[str] = set()
     order = sorted(RULES, key=lambda rule: rule.name not in _FIRST)
     for rule in order:
-        if rule.name in quiet or (subject.parsed is None and rule.name != "invalid-pattern"):
+        if (
+            rule.name not in enabled
+            or rule.name in quiet
+            or (subject.parsed is None and rule.name != "invalid-pattern")
+        ):
             continue
         try:
             found = list(rule.check(subject))
@@ -42,8 +46,7 @@ def check_site(
             continue
         if found:
             quiet |= SILENCES.get(rule.name, frozenset())
-            if rule.name in enabled:
-                findings += found
+            findings += found
     inexact: tuple[str, ...] = ()
     if subject.parsed is not None:
         for ambiguity in subject.ambiguities():

@@ -18,6 +18,10 @@ def check(subject: Subject) -> Iterator[Finding]:
     else:
         start = min(error.position, size)
         span = (start, min(start + 1, size))
+    spelled = subject.site.spelling(span[0]) if span[0] < size else None
+    eaten = (
+        spelled is not None and spelled.startswith("\\") and not spelled.startswith(("\\\\", "\\'", '\\"'))
+    )
     version = "" if subject.target is None else " of Python {}.{}".format(*subject.target)
     yield Finding(
         RULE.name,
@@ -26,6 +30,9 @@ def check(subject: Subject) -> Iterator[Finding]:
         f"re{version} refuses this pattern: {error.message}",
         proof="the pattern is not in the dialect",
         evidence="compiling it raises an exception as soon as this line runs",
+        way_out=f"Python made this character of {spelled}: write the pattern as a raw literal"
+        if eaten
+        else "",
     )
 
 

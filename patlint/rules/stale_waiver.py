@@ -1,4 +1,4 @@
-"""stale-waiver: a waiver that waives nothing. Found where waivers are applied, `patlint.run`."""
+"""stale-waiver: a waiver that waives nothing. Found where waivers are applied, `patlint.outcome`."""
 
 from __future__ import annotations
 
@@ -9,7 +9,7 @@ from patlint.rules.subject import Subject
 
 
 def check(subject: Subject) -> Iterator[Finding]:
-    """Nothing: a single site cannot tell; `patlint.run` compares waivers with all findings of a file."""
+    """Nothing: a single site cannot tell; `patlint.outcome` compares waivers with all findings of a file."""
     return iter(())
 
 
@@ -21,7 +21,8 @@ RULE = Rule(
 A waiver is a comment `# patlint: waive RULE -- reason` on the pattern's line,
 on its statement's first line, or on the line above. When the finding that it
 waives is gone, or its rule's name is not known, the comment says something
-that is no longer true: delete it.
+that is no longer true: delete it. A waiver that cannot be read (no rule, no
+reason) is reported under this name too, for it waives nothing either.
 """,
     wrong=Example(
         'import re\n\n# patlint: waive nullable -- blanks are optional here\nGATE = re.compile(r"gate [0-9]+")\n',

@@ -47,8 +47,8 @@ def _finding(subject: Subject, node: t.Set, item: t.Range, meant: t.Set, extra: 
         text = None
     fixed = "".join(f"{chr(low)}-{chr(high)}" for low, high in _alphabet_ranges(item))
     return Finding(
-        "straddling-range",
-        "warning",
+        RULE.name,
+        RULE.level,
         item.span,
         f"the range {name} also {verb} {shown}",
         mode=mode,

@@ -29,6 +29,8 @@ def check(subject: Subject) -> Iterator[Finding]:
     parts = list(_parts(pattern.root))
     if not parts or subject.written.inexact:
         return
+    if any(use.positioned and use.mode == "fullmatch" for use in subject.uses):
+        return  # begun in the middle of a text, whose part before is not known
     shown = _shown(subject, parts)
     parts = [part for part in parts if not _is_read(part, shown)]
     if not parts:

@@ -56,6 +56,8 @@ class Follower:
         self.names = constants.names
         self.uses = uses
         self._quoted: dict[str, bool] = {}
+        self.leads_back = re.search(r"\.re\b", self.source) is not None
+        """`found.re` is the pattern of a match: where it is asked for, a pattern has uses that are not seen."""
 
     def follow(self, call: ast.Call, scope: Scope, pattern: str | bytes) -> Followed:
         """`call` makes the pattern object, whose text is `pattern`."""
@@ -221,7 +223,10 @@ class Follower:
         if not name.startswith("_") or (name.startswith("__") and name.endswith("__")):
             return False
         if name not in self._quoted:
-            self._quoted[name] = re.search(rf"""["']{re.escape(name)}["']""", self.source) is not None
+            # Spelled in a text, whole or as its beginning (f"_{kind}"), it may be reached by getattr.
+            heads = "|".join(re.escape(name[:end]) for end in range(1, len(name)))
+            spelled = rf"""["'](?:{re.escape(name)}["']|(?:{heads})(?:\{{|["']\s*[+%]))"""
+            self._quoted[name] = re.search(spelled, self.source) is not None
         return not self._quoted[name]
 
 

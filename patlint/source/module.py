@@ -221,7 +221,7 @@ class _Reader:
         if function == "compile":
             found = self.follower.follow(call, scope, pattern.value)
             uses = tuple(sorted(found.uses, key=lambda use: use.place))
-            seen, name = found.seen, found.name
+            seen, name = found.seen and not self.follower.leads_back, found.name
         else:
             uses = (self.uses.call(call, scope, cast(Function, function), False, pattern.value),)
             seen, name = True, None

@@ -14,7 +14,7 @@ from contextlib import contextmanager
 from dataclasses import replace
 from typing import Any
 
-from patlint.machine import matcher, nfa, obligations, ordered, program, relations
+from patlint.machine import contexts, matcher, obligations, ordered, program, relations
 from patlint.syntax import casefold, scanner
 from patlint.syntax.charset import EMPTY
 
@@ -93,8 +93,9 @@ def back_fold() -> list[Undo]:
 
 def line_start() -> list[Undo]:
     """Nothing remembers that the character before is a line feed."""
-    right = nfa.Nfa._bits
-    return [_set(nfa.Nfa, "_bits", lambda self, minterm: right(self, minterm) & ~nfa.AFTER_NEWLINE)]
+    right = contexts.Contexts.bits_after
+    drop = ~contexts.AFTER_NEWLINE
+    return [_set(contexts.Contexts, "bits_after", lambda self, minterm: right(self, minterm) & drop)]
 
 
 def relation() -> list[Undo]:

@@ -10,7 +10,9 @@ import re
 import pytest
 
 from patlint import lint_source
+from patlint.config import Settings
 from patlint.placed import PlacedFinding
+from patlint.rules import RULES
 from patlint.rules.finding import TextWitness
 
 CASES: list[tuple[str, str, bool]] = [
@@ -137,3 +139,33 @@ def test_one_cause_one_finding() -> None:
     assert rules == ["empty-language"]
     rules = [finding.rule for finding in lint_source("import re\nok = re.search(r'(?:a|aa)?', s) is None\n")]
     assert rules == ["vacuous-test"]
+
+
+DEAD_ELSEWHERE_ALIVE = [
+    '_A = re.compile(r"\\Ba|b")\nok = bool(_A.fullmatch(t, n))',
+    '_Q = re.compile(r"a|ab")\nok = re.fullmatch(_Q, t), re.match(_Q.pattern, t).group()',
+    '_R = r"a|ab"\nok = re.match("(?:" + _R + ")$", t), re.match(_R, t).group()',
+    'class K:\n    _go = re.compile(r"a|ab")\n    def f(self, t, k):\n        self._go.match(t).group()\n'
+    '        getattr(self, f"_{k}").fullmatch(t)',
+    '_m = re.compile(r"a|ab")\nm = _m.match(t)\nm.re.fullmatch(t)',
+]
+"""A part that one use never takes and another does; the other one is not easy to see."""
+
+
+@pytest.mark.parametrize("code", DEAD_ELSEWHERE_ALIVE)
+def test_a_part_is_dead_only_where_no_use_takes_it(code: str) -> None:
+    found = lint_source(f"import re\n{code}\n", "case.py", target=(3, 11))
+    assert [finding.rule for finding in found if finding.rule == "unreachable-part"] == []
+
+
+def test_a_shared_text_is_told_once() -> None:
+    code = '_R = r"x(?:a|b|c)"\nok = re.match(_R, t), re.match(_R + "y", t)\n'
+    found = lint_source(f"import re\n{code}", "case.py", target=(3, 11))
+    assert [finding.rule for finding in found] == ["shorter-equivalent"]
+
+
+def test_a_rule_that_is_off_silences_nothing() -> None:
+    code = "import re\nok = re.match(r'x(?:a|a)b', t) is None\n"
+    names = tuple(rule.name for rule in RULES)
+    off = Settings((3, 11), names, only=frozenset({"shorter-equivalent"}))
+    assert [finding.rule for finding in lint_source(code, "case.py", settings=off)] == ["shorter-equivalent"]

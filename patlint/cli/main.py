@@ -6,8 +6,10 @@ could not be read or parsed, 130 interrupted.
 
 from __future__ import annotations
 
+import os
 import sys
 from collections.abc import Sequence
+from contextlib import suppress
 from typing import Final
 
 COMMANDS: Final = {
@@ -44,6 +46,9 @@ def main(arguments: Sequence[str] | None = None) -> int:
     try:
         return _run(given)
     except KeyboardInterrupt:
+        # On 3.10 the worker pool's own clean-up can fail at exit, and would say so on the terminal.
+        with suppress(OSError, ValueError):
+            os.dup2(os.open(os.devnull, os.O_WRONLY), 2)
         return EXIT_INTERRUPTED
 
 

@@ -29,7 +29,11 @@ def rows(tally: Tally) -> list[str]:
 def test_all_constructs_together() -> None:
     tally = run(Plan(seed=1, trials=60_000, files=FILES))
     assert rows(tally) == []
-    assert tally.trials >= 60_000 and tally.compared > 120 and tally.refused > 10
+    assert (
+        tally.trials >= 60_000
+        and tally.compared > 120
+        and tally.refused > (10 if sys.version_info < (3, 11) else 15)
+    )
     assert tally.exact > 0.8 * tally.compared
     least = {"match": 60_000, "fullmatch": 60_000, "search": 60_000, "span": 45_000, "groups": 6_000}
     least |= {"pair": 50_000, "scan": 400, "parse": 400, "witness": 200}

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 import random
+import sys
 
 import pytest
 
@@ -96,7 +97,7 @@ def test_counted_steps_are_those_that_are_walked() -> None:
             if finished:
                 compared += 1
                 assert counter.steps(text, manner, 1_000_000)[0] == steps, (pattern, text, manner)
-    assert compared > 900
+    assert compared > (900 if sys.version_info < (3, 11) else 1_000)  # no atomic groups before 3.11
 
 
 def test_both_sides_of_the_limit_on_turns_of_the_counter() -> None:

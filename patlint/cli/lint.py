@@ -6,7 +6,15 @@ from collections.abc import Sequence
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
-from patlint.cli.arguments import Parser, add_file_options, count, load_settings, one_of, rule_names
+from patlint.cli.arguments import (
+    CallError,
+    Parser,
+    add_file_options,
+    count,
+    load_settings,
+    one_of,
+    rule_names,
+)
 from patlint.cli.screen import output, progress_line, say, style
 
 if TYPE_CHECKING:
@@ -82,6 +90,8 @@ def run(given: Sequence[str]) -> int:
         settings = replace(settings, only=rule_names(options.only, rules, "--only"))
     if options.skip:
         settings = replace(settings, skip=settings.skip | rule_names(options.skip, rules, "--skip"))
+    if settings.only and settings.only <= settings.skip:
+        raise CallError("no rule is left on: each rule that is asked for is left out as well")
     if options.fail_on:
         settings = replace(settings, fail_on=options.fail_on)
     from patlint.run import lint_paths

@@ -38,6 +38,10 @@ WRONG = [
     (("lint", "--only", "nulable"), "--only: unknown rule 'nulable'; the nearest is nullable"),
     (("lint", "--skip", "nullable,x"), "--skip: unknown rule 'x'"),
     (("lint", "--target", "3.9"), "--target: unknown target '3.9'; patlint knows 3.10, 3.11, 3.12, 3.13"),
+    (
+        ("lint", "--only", "nullable", "--skip", "nullable"),
+        "no rule is left on: each rule that is asked for is left out as well",
+    ),
     (("lint", "--jobs", "0"), "--jobs: '0' is not a whole number above 0; see patlint lint --help"),
     (("lint", "--jobs", "two"), "--jobs: 'two' is not a whole number above 0; see patlint lint --help"),
     (("lint", "--as", "x.py"), "--as names standard input, but - is not among the paths"),

@@ -30,14 +30,17 @@ class FileList:
     problems: tuple[str, ...]
 
 
-def find_files(paths: Iterable[str], settings: Settings) -> FileList:
+def find_files(paths: Iterable[str], settings: Settings, stdin_name: str | None = None) -> FileList:
     """The files at `paths`, each once. Problems: no such file, a directory without Python files."""
     found: dict[str, None] = {}
     problems: list[str] = []
     excluded = 0
     for path in paths:
         if path == STDIN:
-            found[STDIN] = None
+            if stdin_name is not None and settings.excludes(stdin_name):
+                excluded += 1
+            else:
+                found[STDIN] = None
             continue
         path = os.path.normpath(path)
         try:

@@ -80,7 +80,7 @@ def lint_paths(
     progress: Progress | None = None,
 ) -> RunResult:
     """Lint the files at `paths`. `jobs` None: as many processes as pay; 1: this one alone."""
-    listed = find_files(paths, settings)
+    listed = find_files(paths, settings, stdin_name)
     folder = folder_of(settings) if use_cache else None
     made_by = fingerprint(settings) if folder is not None else ""
     outcomes: dict[str, Outcome] = {}

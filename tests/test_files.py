@@ -94,3 +94,11 @@ def test_only_plain_files_are_walked(tree: Path) -> None:
 
 def test_read_source(tree: Path) -> None:
     assert read_source("a.py", "other") == ("a.py", b"")
+
+
+def test_standard_input_under_an_excluded_name_is_left_out() -> None:
+    settings = Settings((3, 11), (), exclude=("vendor",))
+    assert find_files(["-"], settings, "vendor/a.py").paths == ()
+    assert find_files(["-"], settings, "vendor/a.py").excluded == 1
+    assert find_files(["-"], settings, "src/a.py").paths == ("-",)
+    assert find_files(["-"], settings).paths == ("-",)

@@ -49,3 +49,19 @@ class Limits:
 
 
 DEFAULT_LIMITS = Limits()
+
+
+@dataclass(frozen=True, slots=True)
+class Saving:
+    """The least that a shorter pattern has to save before it is suggested: so many characters, and so many
+    hundredths of the pattern's length. Set in `[tool.patlint.shorter]`."""
+
+    characters: int = 2
+    percent: int = 10
+
+    def of(self, length: int) -> float:
+        """The least number of characters for a pattern of this length. 3.0 for 30 characters."""
+        return max(self.characters, self.percent * length / 100)
+
+
+DEFAULT_SAVING = Saving()

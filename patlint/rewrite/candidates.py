@@ -18,7 +18,8 @@ from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
 from patlint.machine.determinise import Mode
 from patlint.rewrite.islands import Island, inner_islands, islands, splice
 from patlint.rewrite.proof import Keeps, same_groups, same_language, same_spans
-from patlint.rewrite.shorten import LONGEST, Known, Search, limited
+from patlint.rewrite.search import Known, Search
+from patlint.rewrite.shorten import LONGEST, limited, proven
 from patlint.rewrite.taste import is_readable
 from patlint.syntax import tree as t
 from patlint.syntax.parser import PatternError, parse
@@ -51,7 +52,7 @@ def candidates(
     for edits in search.ways():
         text = splice(search.text, [(edit.island.span, edit.text) for edit in edits])
         if len(text) < len(search.text) and text not in found:
-            made = search.proven(edits, False)
+            made = proven(search, edits, False)
             verdict = "not proven, or slower to match" if made is None else _STAYS[made.keeps]
             found[text] = Candidate(search.typed(text), len(text), verdict)
     for island, text, turned in _texts(search):

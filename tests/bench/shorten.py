@@ -30,7 +30,7 @@ from collections.abc import Callable, Iterable, Sequence
 from pathlib import Path
 
 from patlint.language import Language
-from patlint.limits import DEFAULT_LIMITS, LimitReached
+from patlint.limits import DEFAULT_LIMITS, LimitReached, Saving
 from patlint.machine.algebra import Algebra
 from patlint.machine.alphabet import Alphabet
 from patlint.machine.dfa import Dfa, canonical, minimal
@@ -70,7 +70,7 @@ def differences(pattern: str, flags: int, generator: random.Random, counts: Coun
     wrong = []
     texts: list[str] | None = None
     for keeps, mode in ((keeps, mode) for keeps in LOOKED_AT for mode in MODES):
-        found = suggest(parsed, mode, keeps, least_saving=1, least_share=0)  # type: ignore[arg-type]
+        found = suggest(parsed, mode, keeps, saving=Saving(1, 0))  # type: ignore[arg-type]
         if found is None:
             continue
         assert isinstance(found.pattern, str)
@@ -240,7 +240,7 @@ def round_trip(number: int, seed: int = 0) -> tuple[int, int, list[tuple[str, st
         if long is None:
             continue
         tried += 1
-        found = suggest(parse(long), "fullmatch", "language", least_saving=1, least_share=0)
+        found = suggest(parse(long), "fullmatch", "language", saving=Saving(1, 0))
         short = long if found is None else str(found.pattern)
         if len(short) <= len(pattern):
             back += 1

@@ -11,7 +11,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from patlint.language import Language
-from patlint.limits import LimitReached, Limits
+from patlint.limits import LimitReached, Limits, Saving
 from patlint.rewrite import shorten, suggest
 from patlint.rewrite.shorten import LONGEST
 from patlint.syntax.parser import PatternError, parse
@@ -126,15 +126,15 @@ def test_target_and_flags() -> None:
 def test_limits() -> None:
     long = "(?:a|b)" + "c" * (LONGEST - 7)
     assert len(long) == LONGEST
-    found = suggest(parse(long), least_share=0)
+    found = suggest(parse(long), saving=Saving(2, 0))
     assert found is not None
     assert found.pattern in ("[ab]c{293}", "[ab]" + "c" * (LONGEST - 7))
-    assert suggest(parse(long + "c"), least_share=0) is None
+    assert suggest(parse(long + "c"), saving=Saving(2, 0)) is None
     assert shorten("(?:a|bb)(?:a|bb)(?:c|d|e)", limits=Limits(states=1)) is None
-    assert suggest(parse("(?:ab)c"), least_saving=4) is not None
-    assert suggest(parse("(?:ab)c"), least_saving=5) is None
-    assert suggest(parse("(?:ab)" + "cd" * 20), least_share=0.086) is not None
-    assert suggest(parse("(?:ab)" + "cd" * 20), least_share=0.1) is None
+    assert suggest(parse("(?:ab)c"), saving=Saving(4, 10)) is not None
+    assert suggest(parse("(?:ab)c"), saving=Saving(5, 10)) is None
+    assert suggest(parse("(?:ab)" + "cd" * 20), saving=Saving(2, 8)) is not None
+    assert suggest(parse("(?:ab)" + "cd" * 20), saving=Saving(2, 10)) is None
     with pytest.raises(LimitReached):
         shorten("(" * 200 + ")" * 200)
 
@@ -154,7 +154,7 @@ def compare(pattern: str, flags: int, counts: Counter[str]) -> None:
     old = re.compile(pattern, flags)
     for keeps in LOOKED_AT:
         for mode in ("match", "fullmatch", "search"):
-            found = suggest(parsed, mode, keeps, least_saving=1, least_share=0)  # type: ignore[arg-type]
+            found = suggest(parsed, mode, keeps, saving=Saving(1, 0))  # type: ignore[arg-type]
             if found is None:
                 continue
             assert len(found.pattern) == len(pattern) - found.saved < len(pattern)

@@ -11,14 +11,15 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass, field
-from typing import Any, Final
+from typing import TYPE_CHECKING, Any, Final
 
 from patlint.config import LevelName, Settings
 from patlint.nearest import nearest
 from patlint.placed import PlacedFinding, decode, encode, place_finding
 from patlint.rules.finding import Level
-from patlint.source.sites import Module, Place, Site, Waiver
-from patlint.syntax.tree import FLAG_NAMES, UNICODE
+
+if TYPE_CHECKING:
+    from patlint.source.sites import Module, Place, Site, Waiver
 
 STALE: Final = "stale-waiver"
 
@@ -152,6 +153,8 @@ def internal(error: BaseException) -> str:
 
 def flag_names(flags: int, explicit: int) -> tuple[str, ...]:
     """The names of `flags`; UNICODE, which every text pattern has, only if `explicit` holds it."""
+    from patlint.syntax.tree import FLAG_NAMES, UNICODE
+
     shown = flags & ~UNICODE | explicit & UNICODE
     return tuple(name for bit, name in FLAG_NAMES.items() if shown & bit)
 

@@ -10,10 +10,12 @@ from __future__ import annotations
 
 import ast
 from dataclasses import dataclass, fields
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from patlint.rules.finding import Finding, Level, Related, SlowWitness, Suggestion, TextWitness, Witness
-from patlint.source.sites import Place, Site
+
+if TYPE_CHECKING:
+    from patlint.source.sites import Place, Site
 
 
 @dataclass(frozen=True, slots=True)

@@ -12,7 +12,6 @@ from __future__ import annotations
 import os
 import signal
 from collections.abc import Callable, Iterable, Iterator
-from concurrent.futures import ProcessPoolExecutor, as_completed
 from dataclasses import dataclass, replace
 from typing import Final
 
@@ -60,11 +59,11 @@ def lint_source(
     `text` is not Python.
     """
     from patlint.outcome import lint_module
-    from patlint.rules.registry import RULES
+    from patlint.rules.registry import NAMES
     from patlint.source import read_module
 
     if settings is None:
-        settings = Settings(target or running_target(), tuple(rule.name for rule in RULES))
+        settings = Settings(target or running_target(), NAMES)
     elif target is not None:
         settings = replace(settings, target=target)
     return lint_module(read_module(text, path), settings).findings
@@ -151,6 +150,7 @@ def _lint_missing(paths: list[str], job: _Job, processes: int) -> Iterator[tuple
             yield path, _lint_file(path, job)
         return
     import multiprocessing
+    from concurrent.futures import ProcessPoolExecutor, as_completed
 
     size = max(1, min(32, len(paths) // (processes * 4)))
     batches = [paths[at : at + size] for at in range(0, len(paths), size)]

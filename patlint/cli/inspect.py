@@ -72,9 +72,9 @@ def run(given: Sequence[str]) -> int:
             raise CallError("--bytes: the pattern has characters above U+00FF") from None
     from patlint.config import OFF_BY_DEFAULT
     from patlint.portrait import portrait_of
-    from patlint.rules.registry import RULES
+    from patlint.rules.registry import NAMES
 
-    rules = [rule.name for rule in RULES if rule.name not in OFF_BY_DEFAULT]
+    rules = [name for name in NAMES if name not in OFF_BY_DEFAULT]
     portrait = portrait_of(pattern, flags, options.mode, target, rules=rules)
     with output() as write:
         if options.format == "json":

@@ -82,14 +82,13 @@ def parser() -> Parser:
 def run(given: Sequence[str]) -> int:
     """Run the command; the exit status."""
     options = parser().read(given)
-    from patlint.rules.registry import RULES
+    from patlint.rules.registry import NAMES
 
-    rules = [rule.name for rule in RULES]
-    settings = load_settings(options, rules)
+    settings = load_settings(options, NAMES)
     if options.only:
-        settings = replace(settings, only=rule_names(options.only, rules, "--only"))
+        settings = replace(settings, only=rule_names(options.only, NAMES, "--only"))
     if options.skip:
-        settings = replace(settings, skip=settings.skip | rule_names(options.skip, rules, "--skip"))
+        settings = replace(settings, skip=settings.skip | rule_names(options.skip, NAMES, "--skip"))
     if settings.only and settings.only <= settings.skip:
         raise CallError("no rule is left on: each rule that is asked for is left out as well")
     if options.fail_on:

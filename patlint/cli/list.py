@@ -34,9 +34,9 @@ def parser() -> Parser:
 def run(given: Sequence[str]) -> int:
     """Run the command; the exit status."""
     options = parser().read(given)
-    from patlint.rules.registry import RULES
+    from patlint.rules.registry import NAMES
 
-    settings = load_settings(options, [rule.name for rule in RULES])
+    settings = load_settings(options, NAMES)
     from patlint.files import find_files, read_source
     from patlint.inventory import Inventory, inventory_of
 

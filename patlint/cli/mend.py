@@ -53,12 +53,11 @@ class _Count:
 def run(given: Sequence[str]) -> int:
     """Run the command; the exit status."""
     options = parser().read(given)
-    from patlint.rules.registry import RULES
+    from patlint.rules.registry import NAMES
 
-    rules = [rule.name for rule in RULES]
-    settings = load_settings(options, rules)
+    settings = load_settings(options, NAMES)
     if options.only:
-        settings = replace(settings, only=rule_names(options.only, rules, "--only"))
+        settings = replace(settings, only=rule_names(options.only, NAMES, "--only"))
     if options.write and "-" in options.paths and len(options.paths) > 1:
         raise CallError("--write: standard input is mended to standard output, by itself alone")
     count = _Count()

@@ -13,10 +13,9 @@ from collections.abc import Callable, Iterable
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Literal, TypeAlias
 
-from patlint.source.sites import Place
-
 if TYPE_CHECKING:
     from patlint.rules.subject import Subject
+    from patlint.source.sites import Place
 
 Level: TypeAlias = Literal["error", "warning", "note"]
 LEVELS: tuple[Level, ...] = ("error", "warning", "note")

@@ -64,6 +64,10 @@ class Use:
     """The outcome steers a `while` loop that goes on from the end of the match."""
     tested: bool = False
     """The program tests somewhere whether there is an outcome, whatever else it looks at."""
+    own: bool = False
+    """The text is the program's own (a message under test), not one from outside."""
+    selects: bool = False
+    """The pattern chooses among things, so that one which takes everything may be meant: a route, a filter."""
 
     @property
     def mode(self) -> Mode:
@@ -94,7 +98,8 @@ class Site:
     flags: int
     """Flags given outside the pattern, as the bits of `re`'s constants; inline flags are in the pattern."""
     function: str
-    """The name of the called function of `re`: compile, match, sub …"""
+    """The name of the called function of `re` (compile, match, sub …), or the qualified name of what takes the
+    pattern in another library."""
     place: Place
     """The whole expression that gives the pattern."""
     statement: int
@@ -105,6 +110,8 @@ class Site:
     """Every use of this pattern is in `uses`. False for public, passed on or returned patterns."""
     name: str | None = None
     """The name or attribute that a compiled pattern is bound to."""
+    embedded: bool = False
+    """A library puts the text into a larger pattern, or reads it: nothing is suggested in its place."""
 
     def _piece(self, offset: int) -> Piece:
         index = bisect_right(self.pieces, offset, key=lambda piece: piece.start) - 1

@@ -17,7 +17,8 @@ from patlint.source.scopes import Scope
 from patlint.source.spelled import Listed, Spelled, join, without_spelling
 
 if TYPE_CHECKING:
-    from patlint.source.constants import Constants, Environment, Value
+    from patlint.source.constants import Constants
+    from patlint.source.values import Environment, Value
 
 _PURE_METHODS = frozenset(
     {"strip", "lstrip", "rstrip", "replace", "lower", "upper", "encode", "decode"}

@@ -1,11 +1,8 @@
 """Expressions whose value the text of the file tells: constants, and what is put together from them.
 
-`Constants.evaluate(node, scope)` gives a `Spelled` text, an int, a tuple (any written-out sequence) or a dict
-of them, or raises `Opaque` with the reason. A name counts only where everything that it may be bound to is
-the same text; what is mutable counts only where nothing in the file could change it.
-
-Values come from `ast`, spellings from libcst (`finder`), and where the two disagree about a literal the
-value stays and its characters have no places of their own.
+`Constants.evaluate(node, scope)` gives a `Value`, or raises `Opaque` with the reason. A name counts only
+where everything that it may be bound to is the same text, or where it goes through the rows of a table one by
+one (`choices`); what is mutable counts only where nothing in the file could change it.
 """
 
 from __future__ import annotations
@@ -13,34 +10,29 @@ from __future__ import annotations
 import ast
 import string
 from collections.abc import Sequence
-from typing import TypeAlias
 
 from patlint.source import calls, reasons
+from patlint.source.choices import Choices
 from patlint.source.engine import Engine
-from patlint.source.finder import Hole, Unspelled, read_literal
-from patlint.source.formatting import percent, replacement_field
+from patlint.source.formatting import percent
 from patlint.source.index import Index
-from patlint.source.literals import Run
-from patlint.source.names import Names
+from patlint.source.names import MUTABLE, Names
 from patlint.source.places import Text
+from patlint.source.quoted import f_string, literal
 from patlint.source.reasons import Opaque
+from patlint.source.rows import Rows
 from patlint.source.scopes import Scope
 from patlint.source.spelled import Listed, Spelled, cut, join, repeat, without_spelling
-
-Value: TypeAlias = Spelled | int | tuple["Value", ...] | dict[str, "Value"]
-Environment: TypeAlias = dict[str, Value]
+from patlint.source.values import Environment, Value, arithmetic, same, small
 
 DEEPEST = 80
 """Expressions inside expressions (chains of `+` count as one), names followed through names included."""
 MOST_STEPS = 50_000
 """Expressions evaluated for one file's pattern. A table of 5,000 words takes 5,000."""
-LONGEST_FIELDS = 20_000
-"""Characters of an f-string that is spelled out; what is written in its fields may be nested deeply."""
 _STRING_MODULE = frozenset(
     {"ascii_letters", "ascii_lowercase", "ascii_uppercase", "digits", "hexdigits", "octdigits", "punctuation"}
     | {"whitespace", "printable"}
 )
-_MUTABLE = (ast.List, ast.Dict, ast.Set, ast.ListComp)
 
 
 class Constants:
@@ -51,6 +43,8 @@ class Constants:
         self.text = text
         self.engine = engine
         self.names = Names(index, engine)
+        self.choices = Choices()
+        self.rows = Rows(self, index)
         self._steps = 0
         self._active: set[ast.AST] = set()
         self._known: dict[ast.AST, Value | Opaque] = {}
@@ -75,7 +69,7 @@ class Constants:
             case ast.Constant():
                 return self._constant(node)
             case ast.JoinedStr():
-                return self._joined(node, scope, env, depth)
+                return f_string(node, self.text, lambda part: self.evaluate(part, scope, env, depth + 1))
             case ast.Name():
                 if env and node.id in env:
                     return env[node.id]
@@ -91,7 +85,7 @@ class Constants:
                 raise Opaque(reasons.EXPRESSION)
             case ast.IfExp():
                 body = self.evaluate(node.body, scope, env, depth + 1)
-                if _same(body, self.evaluate(node.orelse, scope, env, depth + 1)):
+                if same(body, self.evaluate(node.orelse, scope, env, depth + 1)):
                     return body
                 raise Opaque(reasons.EXPRESSION)
             case ast.NamedExpr():
@@ -109,7 +103,7 @@ class Constants:
             case ast.Attribute():
                 return self._attribute(node, scope, depth)
             case ast.BinOp():
-                return _arithmetic(
+                return arithmetic(
                     node.op,
                     self.evaluate(node.left, scope, env, depth + 1),
                     self.evaluate(node.right, scope, env, depth + 1),
@@ -133,100 +127,42 @@ class Constants:
             return value
         raise Opaque(reasons.NOT_TEXT)
 
-    # literals
-
     def _constant(self, node: ast.Constant) -> Value:
         match node.value:
-            case str() | bytes():
+            case str() | bytes() as value:
                 known = self._literals.get(node)
                 if known is None:
-                    known = self._literals[node] = self._literal(node, node.value)
+                    known = self._literals[node] = literal(node, value, self.text)
                 return known
             case int() if not isinstance(node.value, bool):
                 return node.value
             case _:
                 raise Opaque(reasons.NOT_TEXT)
 
-    def _literal(self, node: ast.Constant, value: str | bytes) -> Spelled:
-        try:
-            parts = read_literal(self.text.segment(node), self.text.start(node))
-        except Unspelled:
-            return without_spelling(value, self.text.place(node))
-        runs = tuple(part for part in parts if isinstance(part, Run))
-        texts = [run.text for run in runs]
-        joined = b"".join(texts) if isinstance(value, bytes) else "".join(texts)  # type: ignore[arg-type]
-        if joined != value:
-            return without_spelling(value, self.text.place(node))
-        kept = tuple(run for run in runs if run.text)
-        return Spelled(value, kept or runs[:1])
-
-    def _joined(self, node: ast.JoinedStr, scope: Scope, env: Environment | None, depth: int) -> Spelled:
-        place = self.text.place(node)
-        said: list[str | Spelled] = [""]  # texts and fields in turn
-        for part in node.values:
-            if isinstance(part, ast.Constant):
-                text = said[-1]
-                assert isinstance(text, str)
-                said[-1] = text + str(part.value)
-            else:
-                assert isinstance(part, ast.FormattedValue)
-                spec = _constant_spec(part.format_spec)
-                value = self.evaluate(part.value, scope, env, depth + 1)
-                at_field = without_spelling("x", place)
-                said += [replacement_field(at_field, value, part.conversion, spec), ""]
-        try:
-            segment = self.text.segment(node)
-            parts = read_literal(segment, self.text.start(node)) if len(segment) < LONGEST_FIELDS else []
-        except Unspelled:
-            parts = []
-        runs: list[list[Run]] = [[]]
-        holes: list[Hole] = []
-        for spelled in parts:
-            if isinstance(spelled, Hole):
-                holes.append(spelled)
-                runs.append([])
-            else:
-                runs[-1].append(spelled)
-        texts = said[::2]
-        told = ["".join(str(run.text) for run in group) for group in runs]
-        if told != texts:
-            return without_spelling("".join(t if isinstance(t, str) else str(t.value) for t in said), place)
-        result: list[Spelled] = []
-        for number, group in enumerate(runs):
-            result.append(Spelled(told[number], tuple(run for run in group if run.text)))
-            if number < len(holes):
-                field = said[2 * number + 1]
-                assert isinstance(field, Spelled)
-                result.append(self._in_hole(node.values, number, field, holes[number]))
-        return join(result)
-
-    def _in_hole(self, values: Sequence[ast.expr], number: int, field: Spelled, hole: Hole) -> Spelled:
-        """A field's text: with its own places where it comes from a name, else standing at its braces."""
-        expression = [part for part in values if isinstance(part, ast.FormattedValue)][number].value
-        named = isinstance(expression, (ast.Name, ast.Attribute))
-        if named and all(run.places for run in field.runs):
-            return field
-        return without_spelling(field.value, hole.place) if field.value else field
-
     # names
 
     def _definition(self, node: ast.Name, scope: Scope, depth: int) -> Value:
+        item = self.rows.chosen(node, scope)
+        if item is not None:
+            return self.rows.value(item, depth)
         values: list[Value] = []
         definitions = self.names.definitions(node, scope)
         for expression, inner in definitions:
-            if isinstance(expression, _MUTABLE) and not self.names.unchanged(node.id, scope):
+            if isinstance(expression, MUTABLE) and not self.names.unchanged(node.id, scope):
                 raise Opaque(reasons.CHANGED)
-            values.append(self._remembered(expression, inner, depth))
-            if not _same(values[0], values[-1]):
+            values.append(self.remembered(expression, inner, depth))
+            if not same(values[0], values[-1]):
                 raise Opaque(reasons.REASSIGNED)
         return values[0]
 
-    def _remembered(self, expression: ast.expr, scope: Scope, depth: int) -> Value:
+    def remembered(self, expression: ast.expr, scope: Scope, depth: int) -> Value:
+        """Like `evaluate`, kept for the next time where no row of a table has a part in it."""
         known = self._known.get(expression)
         if known is None:
             if expression in self._active:
                 raise Opaque(reasons.REASSIGNED)  # defined by itself
             self._active.add(expression)
+            before = self.choices.consulted
             try:
                 known = self.evaluate(expression, scope, None, depth + 1)
             except Opaque as opaque:
@@ -235,7 +171,8 @@ class Constants:
                 known = opaque
             finally:
                 self._active.discard(expression)
-            self._known[expression] = known
+            if self.choices.consulted == before:
+                self._known[expression] = known
         if isinstance(known, Opaque):
             raise Opaque(known.reason)
         return known
@@ -248,17 +185,17 @@ class Constants:
             made = self.names.maker(node.value, scope)
             if made is not None:
                 argument = calls.pattern_argument(made[0])
-                return self._remembered(argument, made[1], depth) if argument else self._fail()
+                return self.remembered(argument, made[1], depth) if argument else self._fail()
         if isinstance(node.value, ast.Name) and node.attr in _STRING_MODULE:
             owner = scope.find(node.value.id)
             bindings = owner.bindings[node.value.id] if owner else []
             if bindings and all(b.module == "string" and b.member is None for b in bindings):
                 return without_spelling(str(getattr(string, node.attr)), self.text.place(node))
         definitions = self.names.class_attribute(node, scope)
-        if any(isinstance(expression, _MUTABLE) for expression, _ in definitions):
+        if any(isinstance(expression, MUTABLE) for expression, _ in definitions):
             raise Opaque(reasons.CHANGED)
-        values = [self._remembered(expression, inner, depth) for expression, inner in definitions]
-        if all(_same(values[0], value) for value in values):
+        values = [self.remembered(expression, inner, depth) for expression, inner in definitions]
+        if all(same(values[0], value) for value in values):
             return values[0]
         raise Opaque(reasons.REASSIGNED)
 
@@ -296,7 +233,7 @@ class Constants:
             case (int(), Spelled()):
                 return repeat(right, left)
             case (int(), int()):
-                return _small(left * right)
+                return small(left * right)
         raise Opaque(reasons.EXPRESSION)
 
     def _subscript(self, node: ast.Subscript, scope: Scope, env: Environment | None, depth: int) -> Value:
@@ -371,46 +308,3 @@ class Constants:
         return Listed(
             self.evaluate(node.elt, scope, {**(env or {}), name: item}, depth + 1) for item in items
         )
-
-
-def _arithmetic(op: ast.operator, left: Value, right: Value) -> Value:
-    if isinstance(left, int) and isinstance(right, int):
-        match op:
-            case ast.Sub():
-                return _small(left - right)
-            case ast.Pow() if 0 <= right <= 64 and abs(left) < 1 << 16:
-                return _small(left**right)
-            case ast.LShift() if 0 <= right <= 64:
-                return _small(left << right)
-            case ast.FloorDiv() if right:
-                return left // right
-    raise Opaque(reasons.EXPRESSION)
-
-
-def _small(number: int) -> int:
-    """Numbers of a size that a pattern can hold; others would only cost time."""
-    if abs(number) >> 128:
-        raise Opaque(reasons.TOO_LONG)
-    return number
-
-
-def _same(left: Value, right: Value) -> bool:
-    match left, right:
-        case (Spelled(), Spelled()):
-            return type(left.value) is type(right.value) and left.value == right.value
-        case (tuple(), tuple()):
-            return type(left) is type(right) and len(left) == len(right) and all(map(_same, left, right))
-        case (int(), int()):
-            return left == right
-        case (dict(), dict()):
-            return left.keys() == right.keys() and all(_same(left[key], right[key]) for key in left)
-    return False
-
-
-def _constant_spec(spec: ast.expr | None) -> str:
-    if spec is None:
-        return ""
-    assert isinstance(spec, ast.JoinedStr)
-    if not all(isinstance(part, ast.Constant) for part in spec.values):
-        raise Opaque(reasons.FORMATTED)
-    return "".join(str(part.value) for part in spec.values if isinstance(part, ast.Constant))

@@ -25,6 +25,7 @@ from patlint.source.follow import Follower
 from patlint.source.index import Index, build_index
 from patlint.source.places import Text
 from patlint.source.reasons import Opaque
+from patlint.source.rows import Row
 from patlint.source.scopes import Scope
 from patlint.source.sites import Function, Module, Place, Site, Unresolved, Use
 from patlint.source.spelled import Spelled
@@ -247,10 +248,15 @@ class _Reader:
             if not isinstance(argument, (ast.Name, ast.Attribute)):
                 break
             try:
-                definitions = self.constants.names.definitions(argument, scope)
+                item = self.constants.rows.chosen(argument, scope) if isinstance(argument, ast.Name) else None
+                if isinstance(item, Row):
+                    argument, scope = item.node, item.scope
+                elif item is not None:
+                    break
+                else:
+                    argument, scope = self.constants.names.definitions(argument, scope)[0]
             except Opaque:  # a part of a pattern object, or of the `string` module
                 break
-            argument, scope = definitions[0]
         statement = self.index.statement(argument)
         line = statement.lineno if statement is not None else argument.lineno
         return self.text.place(argument), line

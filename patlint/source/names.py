@@ -13,6 +13,7 @@ thought of.
 from __future__ import annotations
 
 import ast
+from collections.abc import Iterable
 
 from patlint.source import reasons
 from patlint.source.engine import Engine
@@ -25,6 +26,8 @@ _READING = frozenset({"join", "items", "keys", "values", "get", "copy", "index",
 _HARMLESS = frozenset(
     {"len", "sorted", "tuple", "list", "set", "frozenset", "map", "any", "all", "enumerate", "zip"}
 )
+MUTABLE = (ast.List, ast.Dict, ast.Set, ast.ListComp, ast.SetComp, ast.DictComp)
+"""Displays whose value may change after they are written."""
 _KIND_REASONS = {
     "import": reasons.IMPORTED,
     "parameter": reasons.PARAMETER,
@@ -86,8 +89,39 @@ class Names:
         """No read of the name in the file could change the list or dict that it stands for."""
         owner = scope.find(name)
         assert owner is not None
+        return self._harmless(read for read, _ in owner.reads(name))
+
+    def attribute_unchanged(self, name: str) -> bool:
+        """The same for an attribute, whatever object it is read of."""
+        return self._harmless(use.node for use in self.index.reads.get(name, ()))
+
+    def rows_unchanged(self, name: str, scope: Scope, display: ast.expr) -> bool:
+        """No read of the name could change a list or dict within `display`, which it stands for."""
+        owner = scope.find(name)
+        assert owner is not None
+        for read, inner in owner.reads(name):
+            parent: ast.AST | None = read
+            while isinstance(parent, (ast.expr, ast.keyword)) and not isinstance(parent, ast.Compare):
+                parent = self.index.parents.get(parent)
+            if isinstance(parent, ast.Compare):
+                continue
+            if not isinstance(parent, (ast.For, ast.comprehension)):
+                return False
+            for each in ast.walk(parent.target):
+                if isinstance(each, ast.Name) and _may_hold_mutable(each, parent, read, display):
+                    if isinstance(parent, ast.comprehension):
+                        inner = self._comprehension_scope(parent, inner)
+                    if not self.unchanged(each.id, inner):
+                        return False
+        return True
+
+    def _comprehension_scope(self, generator: ast.comprehension, scope: Scope) -> Scope:
+        node = self.index.parents.get(generator)
+        return next((child for child in scope.children if child.node is node), scope)
+
+    def _harmless(self, reads: Iterable[ast.expr]) -> bool:
         parents = self.index.parents
-        for read, _ in owner.reads(name):
+        for read in reads:
             parent = parents.get(read)
             match parent:
                 case ast.Attribute() if parent.attr in _READING:
@@ -191,6 +225,38 @@ class Names:
             if binding.kind != "value":
                 raise Opaque(reasons.ATTRIBUTE)
         return [(b.value, b.scope) for b in owner.bindings[node.attr] if b.value is not None]
+
+
+def _may_hold_mutable(
+    name: ast.Name, loop: ast.For | ast.comprehension, read: ast.Name, display: ast.expr
+) -> bool:
+    """Whether a name in the head of a loop over `display` may get one of its inner lists or dicts."""
+    path = path_to(name, loop.target)
+    if path is None or loop.iter is not read or not isinstance(display, (ast.List, ast.Tuple)):
+        return True
+    for row in display.elts:
+        part = row
+        for index in path:
+            if not isinstance(part, (ast.List, ast.Tuple)) or index >= len(part.elts):
+                break
+            part = part.elts[index]
+        if any(isinstance(each, MUTABLE) for each in ast.walk(part)):
+            return True
+    return False
+
+
+def path_to(name: ast.AST, target: ast.expr) -> tuple[int, ...] | None:
+    """Where `name` stands in the targets of a loop: () for the target itself; None beside or after a star."""
+    if target is name:
+        return ()
+    if isinstance(target, (ast.Tuple, ast.List)):
+        for number, each in enumerate(target.elts):
+            if isinstance(each, ast.Starred):
+                return None
+            found = path_to(name, each)
+            if found is not None:
+                return (number, *found)
+    return None
 
 
 def _is_none(node: ast.expr) -> bool:

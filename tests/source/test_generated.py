@@ -47,6 +47,23 @@ class Maker:
     def flags(self) -> str:
         return self.choices.choice(["0", "0", "0", "re.I", "F", "re.S | F", "F if cond() else 0"])
 
+    def head(self, target: str) -> str:
+        """What a loop goes through; `T` and `L` are tables of the module, the second one is changed."""
+        other = "q" if target == "p" else "p"
+        return self.choices.choice(
+            [
+                "_ in range(2)",
+                f"{target} in ('a', 'b')",
+                f"{target}, {other} in T",
+                f"{other}, ({target}, _) in enumerate(T)",
+                f"{target} in [{other}, 'g', *('h', {other} + 'i')]",
+                f"{target} in {{'k': 'v', 'l': 'w'}}.values()",
+                f"{other}, {target} in zip(('k', 'l', 'm'), ['v', {other}])",
+                f"_, {target} in sorted({{'k': 'v', 'l': 'w'}}.items())",
+                f"{target} in L",
+            ]
+        )
+
     def block(self, indent: str, depth: int, name: str) -> list[str]:
         lines: list[str] = []
         for _ in range(self.choices.randint(1, 4)):
@@ -67,7 +84,11 @@ class Maker:
             if self.called:
                 return [f"{indent}pass"]
             self.called = True
-            return [f"{indent}re.match({self.text(1)}, '', {self.flags()})"]
+            call = f"re.match({self.text(1)}, '', {self.flags()})"
+            if choice.random() < 0.2:
+                tail = choice.choice(["", "", f" if {target}", " if cond()", f" if {target} == 'a'"])
+                return [f"{indent}cond([{call} for {self.head(target)}{tail}])"]
+            return [f"{indent}{call}"]
         if kind == "walrus":
             return [f"{indent}cond({target} := {self.text(2)})"]
         if kind == "augment":
@@ -80,8 +101,7 @@ class Maker:
                 lines += [f"{indent}else:", *self.block(inner, depth + 1, name)]
             return lines
         if kind == "for":
-            head = choice.choice(["_ in range(2)", f"{target} in ('a', 'b')"])
-            lines = [f"{indent}for {head}:", *self.block(inner, depth + 1, name)]
+            lines = [f"{indent}for {self.head(target)}:", *self.block(inner, depth + 1, name)]
             return lines + ([f"{inner}if cond(): {choice.choice(['break', 'continue'])}"])
         if kind == "while":
             return [f"{indent}while cond():", *self.block(inner, depth + 1, name)]
@@ -106,7 +126,8 @@ class Maker:
         return [*lines, f"{indent}{inside}()"]
 
     def program(self) -> str:
-        lines = ["import re", "F = re.M", *self.choices.choice([["p = 's'", "q = 't'"], ["q = 'u'"], []])]
+        lines = ["import re", "F = re.M", "T = (('x', 'y'), ['z', 'x+'])", "L = ['a']", "L.append('b')"]
+        lines += self.choices.choice([["p = 's'", "q = 't'"], ["q = 'u'"], []])
         lines += self.block("", 0, "g")
         if self.choices.random() < 0.7:
             lines += ["def main():", *self.block(" ", 1, "h"), "main()"]
@@ -137,7 +158,7 @@ def surroundings(seed: int) -> dict[str, object]:
 
 
 def test_resolved_is_what_re_is_given() -> None:
-    resolved = unresolved = compared = 0
+    resolved = several = unresolved = compared = 0
     for seed in range(PROGRAMS):
         source = Maker(random.Random(seed)).program()
         try:
@@ -148,13 +169,16 @@ def test_resolved_is_what_re_is_given() -> None:
         if "re.match" not in source:
             assert module.sites == () and module.unresolved == ()
             continue
-        assert len(module.sites) + len(module.unresolved) == 1, source
+        assert module.sites or module.unresolved, source
         unresolved += len(module.unresolved)
-        for site in module.sites:
-            resolved += 1
-            for number in range(RUNS):
-                for function, pattern, flags in run(source, surroundings(number)):
-                    compared += 1
-                    assert (site.function, site.pattern, site.flags) == (function, pattern, flags), source
-    assert resolved > 200, (resolved, unresolved, compared)
+        if module.unresolved:
+            continue
+        told = {(site.function, site.pattern, site.flags) for site in module.sites}
+        resolved += 1
+        several += len(told) > 1
+        for number in range(RUNS):
+            for given in run(source, surroundings(number)):
+                compared += 1
+                assert given in told, source
+    assert resolved > 200 and several > 15, (resolved, several, unresolved, compared)
     assert unresolved > 200 and compared > 1000, (resolved, unresolved, compared)

@@ -19,7 +19,7 @@ from typing import cast
 from patlint.source import reasons
 from patlint.source.constants import Constants
 from patlint.source.decode import SourceError, decode, split_lines
-from patlint.source.engine import FUNCTIONS, Engine, bind_arguments
+from patlint.source.engine import FUNCTIONS, Arguments, Engine, bind_arguments
 from patlint.source.flags import evaluate_flags
 from patlint.source.follow import Follower
 from patlint.source.index import Index, build_index
@@ -198,22 +198,28 @@ class _Reader:
         self.constants.restart()
         arguments = bind_arguments(call, FUNCTIONS[function])
         argument = arguments.given.get("pattern")
-        try:
-            if argument is None:
-                raise Opaque(reasons.STARRED if arguments.loose else reasons.MISSING)
-            if self.constants.names.maker(argument, scope) is not None:
-                return  # a pattern object: its site is where it is made
-            pattern = self.constants.text_of(argument, scope)
-            if arguments.loose and "flags" not in arguments.given:
-                raise Opaque(reasons.FLAGS)
-            flags = evaluate_flags(arguments.given.get("flags"), scope, self.constants)
-        except Opaque as opaque:
-            if opaque.reason != reasons.COMPILED:
-                self._refuse(call, function, opaque.reason)
-            elif not isinstance(argument, (ast.Name, ast.Attribute)):
-                self._refuse(call, function, reasons.NOT_TEXT)
+        if argument is None:
+            self._refuse(call, function, reasons.STARRED if arguments.loose else reasons.MISSING)
             return
-        self._site(call, scope, function, argument, pattern, flags)
+        if self.constants.names.maker(argument, scope) is not None:
+            return  # a pattern object: its site is where it is made
+        refused: str | None = None
+        for told in self.constants.choices.each(lambda: self._told(argument, arguments, scope)):
+            if not isinstance(told, Opaque):
+                self._site(call, scope, function, argument, *told)
+            elif told.reason != reasons.COMPILED:
+                refused = refused or told.reason
+            elif not isinstance(argument, (ast.Name, ast.Attribute)):
+                refused = refused or reasons.NOT_TEXT
+        if refused is not None:
+            self._refuse(call, function, refused)
+
+    def _told(self, argument: ast.expr, arguments: Arguments, scope: Scope) -> tuple[Spelled, int]:
+        """The text and the flags of a call. Errors: `Opaque`."""
+        pattern = self.constants.text_of(argument, scope)
+        if arguments.loose and "flags" not in arguments.given:
+            raise Opaque(reasons.FLAGS)
+        return pattern, evaluate_flags(arguments.given.get("flags"), scope, self.constants)
 
     def _site(
         self, call: ast.Call, scope: Scope, function: str, argument: ast.expr, pattern: Spelled, flags: int

@@ -181,7 +181,9 @@ def _ambiguity(
     slow = found.slow
     if slow is None:
         return (1 if found.undecided is None else None), None
-    return slow.growth, SlowWitness(slow.prefix, slow.pump, slow.suffix, slow.growth, slow.steps)
+    return slow.growth, SlowWitness(
+        slow.prefix, slow.pump, slow.suffix, slow.growth, slow.steps, slow.more, slow.bounded
+    )
 
 
 def _site(pattern: str | bytes, flags: int, mode: Mode) -> Site:

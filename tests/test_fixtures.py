@@ -277,7 +277,7 @@ def _slow(finding: PlacedFinding) -> None:
     matcher = Matcher(compile_tree(parse(finding.pattern, _flags(finding))))
 
     def text(count: int) -> Any:
-        return witness.prefix + witness.pump * count + witness.suffix  # type: ignore[operator]
+        return witness.text(count)
 
     def steps(count: int) -> int:
         outcome = matcher.run(text(count), function)

@@ -3,15 +3,15 @@
 - exponential: a node with two different cycles on one text. Pairs of nodes are walked from every place where
   one node can go two ways inside its component; where a pair meets again on one node, that node has two
   cycles on one text.
-- polynomial: nodes p, q with p-v->p, p-v->q and q-v->q on one text v, in different components. The engine
-  then walks in the order of the square of the text; a chain of such pairs adds a power for each link.
+- polynomial: pairs of components that compete for one text, and chains of them (`links`): the engine walks in
+  the order of the square of the text, each further pair of a chain adds a power.
 
 The search that begins afresh at every place is a node of the graph like any other (`walks.SCAN`).
 
 `suspects` gives what the graph shows, the worst first; whether the engine walks it depends on what follows, so
 each is only a suspicion until `slow_text` has confirmed it by running the matcher.
 
-Sources: Weber and Seidl, On the degree of ambiguity of finite automata, 1991 (criteria EDA and IDA);
+Sources: Weber and Seidl, On the degree of ambiguity of finite automata, 1991 (criterion EDA);
 Allauzen, Mohri and Rastogi, General algorithms for testing the ambiguity of finite automata, 2008.
 Limit: `product` nodes of each walk over pairs and triples.
 """
@@ -20,15 +20,37 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from functools import reduce
+from itertools import pairwise
+from math import lcm
+from operator import and_
+from typing import TypeAlias
 
 from patlint.limits import LimitReached
 from patlint.machine.alphabet import representative
+from patlint.machine.links import (
+    WAYS,
+    Link,
+    Links,
+    Masks,
+    Seen,
+    Way,
+    chain_from,
+    chains,
+    depths,
+    links_of,
+    path,
+    reachable,
+    spell,
+    triple,
+)
 from patlint.machine.nfa import Nfa
 from patlint.machine.walks import SCAN, Walks
 
-Codes = tuple[int, ...]
-Masks = tuple[int, ...]
-Span = tuple[int, int]
+Codes: TypeAlias = tuple[int, ...]
+Span: TypeAlias = tuple[int, int]
+LONGEST = 12
+"""Characters of the longest pump that is made to fit several links."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,7 +59,8 @@ class Suspect:
 
     `pump` has for each character the minterms of which one will do, as a mask. `nodes` are the nodes of the
     graph between which the engine can choose, `parts` their spans. `by_restart` tells that one of them is the
-    search itself, beginning afresh.
+    search itself, beginning afresh. `more` are further pumps, each with the text before it: the ways part on each
+    of them, and `nodes` are those of the last.
     """
 
     prefix: Codes
@@ -46,6 +69,7 @@ class Suspect:
     nodes: tuple[int, ...]
     parts: tuple[Span, ...]
     by_restart: bool = False
+    more: tuple[tuple[Codes, Masks], ...] = ()
 
 
 EXPONENTIAL = 0
@@ -73,8 +97,12 @@ def _rank(code: int) -> tuple[int, int]:
 
 
 def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
-    """What the graph shows, exponential before high powers before low ones. Raises LimitReached."""
-    prefixes = _prefixes(graph, Letters(nfa))
+    """What the graph shows: exponential before high powers before low ones, then those of several pumps.
+
+    Raises LimitReached.
+    """
+    letter = Letters(nfa)
+    prefixes = _prefixes(graph, letter)
     members: dict[int, list[int]] = {}
     for node, component in enumerate(graph.components):
         if component in graph.cyclic and node in prefixes:
@@ -86,34 +114,41 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
             ambiguous.append(nodes)
         for node, pump, others in found:
             yield Suspect(prefixes[node], pump, EXPONENTIAL, (node,), _parts(graph, node, *others))
-    if len(members) < 2 and not ambiguous:
-        return
-    links = _links(graph, members, nfa.limits.product)
-    if not links:
-        for nodes in ambiguous:
-            yield from _within(graph, nodes, prefixes, nfa.limits.product)
-        return
-    depth = _depths(links)
+    reach = reachable(graph, members)
+    links = links_of(graph, members, reach, nfa.limits.product) if len(members) > 1 else {}
+    if links:
+        yield from _linked(graph, links, prefixes)
+    for nodes in ambiguous:
+        yield from _within(graph, nodes, prefixes, nfa.limits.product)
+    for chain in chains(links, reach):
+        yield _several(chain, links, graph, prefixes, letter)
+
+
+def _linked(graph: Walks, links: Links, prefixes: dict[int, Codes]) -> Iterator[Suspect]:
+    """Suspicions of one pump: for each link some, and one for a longest chain as a whole."""
+    depth = depths(links)
     ranked = sorted(links, key=lambda link: (-depth[link], len(links[link][0][2])))
-    scan = graph.components[SCAN] if graph.scan else -1
 
     def suspect(link: Link, way: Way) -> Suspect:
         p, q, pump = way
-        return Suspect(prefixes[p], pump, depth[link], (p, q), _parts(graph, p, q), link[0] == scan)
+        return Suspect(prefixes[p], pump, depth[link], (p, q), _parts(graph, p, q), _afresh(graph, link))
 
     yield suspect(ranked[0], links[ranked[0]][0])
     if depth[ranked[0]] > 2:
         worst = [link for link in ranked if depth[link] == depth[ranked[0]]]
-        chain = max((_chain(link, links, depth) for link in worst), key=len)
+        chain = max((chain_from(link, links, depth) for link in worst), key=len)
         if len(chain) > 1:
-            yield _joined(chain, links, depth, graph, prefixes, scan)
+            yield _joined(chain, links, depth, graph, prefixes)
     for link in ranked[1:]:
         yield suspect(link, links[link][0])
     for link in ranked:
         for way in links[link][1:]:
             yield suspect(link, way)
-    for nodes in ambiguous:
-        yield from _within(graph, nodes, prefixes, nfa.limits.product)
+
+
+def _afresh(graph: Walks, link: Link) -> bool:
+    """Whether the first of the two is the search itself."""
+    return graph.scan and link[0] == graph.components[SCAN]
 
 
 def _within(graph: Walks, nodes: list[int], prefixes: dict[int, Codes], limit: int) -> Iterator[Suspect]:
@@ -126,7 +161,7 @@ def _within(graph: Walks, nodes: list[int], prefixes: dict[int, Codes], limit: i
     inside = set(nodes)
     given = 0
     for p, q in ((p, q) for p in alone for q in alone if p != q):
-        pump, spent = _triple(graph, p, q, {p}, {q}, limit, inside)
+        pump, spent = triple(graph, p, q, {p}, {q}, limit, inside)
         limit -= spent
         if pump is not None:
             yield Suspect(prefixes[p], pump, min(len(alone), 3), (p, q), _parts(graph, p, q))
@@ -135,35 +170,39 @@ def _within(graph: Walks, nodes: list[int], prefixes: dict[int, Codes], limit: i
             return
 
 
-def _chain(first: Link, links: dict[Link, list[Way]], depth: dict[Link, int]) -> list[Link]:
-    """A longest chain of links that begins with `first`."""
-    chain = [first]
-    while True:
-        further = [link for link in links if link[0] == chain[-1][1] and depth[link] == depth[first]]
-        if not further:
-            return chain
-        chain.append(min(further, key=lambda link: len(links[link][0][2])))
-
-
 def _joined(
-    chain: list[Link],
-    links: dict[Link, list[Way]],
-    depth: dict[Link, int],
-    graph: Walks,
-    prefixes: dict[int, Codes],
-    scan: int,
+    chain: list[Link], links: Links, depth: dict[Link, int], graph: Walks, prefixes: dict[int, Codes]
 ) -> Suspect:
-    """One suspicion for a whole chain, whose pump has the pumps of all links one after the other.
+    """One suspicion for a whole chain, with a pump that all links can take.
 
-    Not always a text on which all components go round, but mostly; it is to be confirmed anyway.
+    Where their pumps have nothing in common it is one after the other: not always a text on which all components
+    go round, but mostly; it is to be confirmed anyway.
     """
     begin, end = links[chain[0]][0][0], links[chain[-1]][0][1]
     nodes = [node for link in chain for node in links[link][0][:2]]
-    pump: Masks = ()
-    for link in chain:
-        pump += links[link][0][2]
+    pumps = [links[link][0][2] for link in chain]
+    size = lcm(*map(len, pumps))
+    pump = tuple(reduce(and_, (each[at % len(each)] for each in pumps)) for at in range(min(size, LONGEST)))
+    if size > LONGEST or not all(pump):
+        pump = sum(pumps, ())
+    parts = _parts(graph, *nodes)
+    return Suspect(prefixes[begin], pump, depth[chain[0]], (begin, end), parts, _afresh(graph, chain[0]))
+
+
+def _several(
+    chain: tuple[Link, ...], links: Links, graph: Walks, prefixes: dict[int, Codes], letter: Letters
+) -> Suspect:
+    """A suspicion for a chain whose links have a pump each."""
+    ways = [links[link][0] for link in chain]
+    more: list[tuple[Codes, Masks]] = []
+    for (_, end, _), (begin, _, pump) in pairwise(ways):
+        between = path(graph, end, begin, None)
+        assert between is not None
+        more.append((tuple(map(letter, between)), pump))
+    (first, _, pump), (p, q, _) = ways[0], ways[-1]
+    parts = _parts(graph, *(node for way in ways for node in way[:2]))
     return Suspect(
-        prefixes[begin], pump, depth[chain[0]], (begin, end), _parts(graph, *nodes), chain[0][0] == scan
+        prefixes[first], pump, len(chain) + 1, (p, q), parts, _afresh(graph, chain[0]), tuple(more)
     )
 
 
@@ -179,15 +218,6 @@ def _prefixes(graph: Walks, letter: Letters) -> dict[int, Codes]:
     return out
 
 
-def _spell(seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None], end: tuple[int, ...]) -> Masks:
-    masks = []
-    step = seen[end]
-    while step is not None:
-        masks.append(step[1])
-        step = seen[step[0]]
-    return tuple(reversed(masks))
-
-
 def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> list[tuple[int, Masks, tuple[int, ...]]]:
     """Nodes of one component that have two cycles on one text, the text, and the nodes that compete; a few."""
     inside = set(nodes)
@@ -201,12 +231,12 @@ def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> list[tuple[int, M
             for other in edges[place + 1 :]:
                 if edge.mask & other.mask and edge.target != other.target:
                     divergences.append((node, (edge.target, other.target), edge.mask & other.mask))
-    seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None] = {}
+    seen: Seen = {}
     origins: dict[tuple[int, ...], dict[int, int]] = {}
     order: list[tuple[int, int]] = []
     for node, pair, mask in divergences:
         if pair[0] == pair[1]:
-            back = _path(graph, pair[0], node, inside)
+            back = path(graph, pair[0], node, inside)
             if back is not None:
                 pump = (mask, *back)
                 all_found.append((node, pump, (pair[0],)))
@@ -246,9 +276,9 @@ def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> list[tuple[int, M
                     step = seen[first]
                 begin = origins[first]
                 node = target[0] if target[0] in begin else next(iter(begin))
-                back = _path(graph, target[0], node, inside)
+                back = path(graph, target[0], node, inside)
                 assert back is not None
-                pump = (begin[node], *_spell(seen, target), *back)
+                pump = (begin[node], *spell(seen, target), *back)
                 all_found.append((node, pump, first))
     return _few(all_found)
 
@@ -261,134 +291,6 @@ def _few(found: list[tuple[int, Masks, tuple[int, ...]]]) -> list[tuple[int, Mas
     return list(kept.values())[:WAYS]
 
 
-def _path(graph: Walks, start: int, end: int, inside: set[int]) -> Masks | None:
-    """A shortest text from one node to another, empty where they are the same."""
-    seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None] = {(start,): None}
-    order = [start]
-    for node in order:
-        if node == end:
-            return _spell(seen, (end,))
-        for edge in graph.edges[node]:
-            if edge.target in inside and (edge.target,) not in seen:
-                seen[edge.target,] = ((node,), edge.mask)
-                order.append(edge.target)
-    return None
-
-
 def _parts(graph: Walks, *nodes: int) -> tuple[Span, ...]:
     spans = dict.fromkeys(graph.spans[node] for node in nodes)
     return tuple(sorted(span for span in spans if span is not None))
-
-
-Link = tuple[int, int]
-Way = tuple[int, int, Masks]
-"""Two nodes p, q and the text on which p leads to p and to q, and q to q."""
-WAYS = 3
-"""Ways that are kept of each link: what follows may take the text of one, but not that of another."""
-
-
-def _links(graph: Walks, members: dict[int, list[int]], limit: int) -> dict[Link, list[Way]]:
-    """Pairs of components that compete for one text: for each some pairs of nodes with the text, short ones first.
-
-    Raises LimitReached.
-    """
-    reach = _reachable(graph, members)
-    links: dict[Link, list[Way]] = {}
-    budget = limit
-    for first, first_nodes in members.items():
-        for second in reach[first]:
-            second_nodes = set(members[second])
-            ways: list[Way] = []
-            for p, q in ((p, q) for p in first_nodes for q in members[second]):
-                found, spent = _triple(graph, p, q, set(first_nodes), second_nodes, budget)
-                budget -= spent
-                if budget <= 0:
-                    raise LimitReached("product", limit)
-                if found is not None and all(found != way[2] for way in ways):
-                    ways.append((p, q, found))
-                    if len(ways) >= WAYS:
-                        break
-            if ways:
-                links[first, second] = sorted(ways, key=lambda way: len(way[2]))
-    return links
-
-
-def _reachable(graph: Walks, members: dict[int, list[int]]) -> dict[int, list[int]]:
-    """For each cyclic component the other ones that can be reached from it."""
-    out: dict[int, list[int]] = {}
-    for component, nodes in members.items():
-        seen = set(nodes)
-        order = list(nodes)
-        for node in order:
-            for edge in graph.edges[node]:
-                if edge.target not in seen:
-                    seen.add(edge.target)
-                    order.append(edge.target)
-        found = dict.fromkeys(graph.components[node] for node in order)
-        out[component] = [c for c in found if c != component and c in members]
-    return out
-
-
-def _triple(
-    graph: Walks,
-    p: int,
-    q: int,
-    first: set[int],
-    second: set[int],
-    limit: int,
-    middle: set[int] | None = None,
-) -> tuple[Masks | None, int]:
-    """A text v with p-v->p, p-v->q and q-v->q, and how many triples were visited."""
-    start, end = (p, p, q), (p, q, q)
-    seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None] = {start: None}
-    order = [start]
-    for a, b, c in order:
-        for edge_a in graph.edges[a]:
-            if edge_a.target not in first:
-                continue
-            for edge_c in graph.edges[c]:
-                mask = edge_a.mask & edge_c.mask
-                if not mask or edge_c.target not in second:
-                    continue
-                for edge_b in graph.edges[b]:
-                    common = mask & edge_b.mask
-                    if not common or (middle is not None and edge_b.target not in middle):
-                        continue
-                    target = (edge_a.target, edge_b.target, edge_c.target)
-                    if target in seen:
-                        continue
-                    seen[target] = ((a, b, c), common)
-                    if target == end:
-                        return _spell(seen, end), len(seen)
-                    order.append(target)
-                    if len(seen) > limit:
-                        return None, len(seen)
-    return None, len(seen)
-
-
-def _depths(links: dict[Link, list[Way]]) -> dict[Link, int]:
-    """For each link the power that the longest chain through it stands for: two for a link alone."""
-    after: dict[int, int] = {}
-    before: dict[int, int] = {}
-    follow: dict[int, list[int]] = {}
-    lead: dict[int, list[int]] = {}
-    for first, second in links:
-        follow.setdefault(first, []).append(second)
-        lead.setdefault(second, []).append(first)
-
-    def longest(component: int, table: dict[int, list[int]], known: dict[int, int]) -> int:
-        stack = [component]
-        while stack:
-            top = stack[-1]
-            missing = [c for c in table.get(top, ()) if c not in known]
-            if missing:
-                stack += missing
-                continue
-            known[top] = max((known[c] + 1 for c in table.get(top, ())), default=0)
-            stack.pop()
-        return known[component]
-
-    return {
-        (first, second): longest(first, lead, before) + longest(second, follow, after) + 2
-        for first, second in links
-    }

@@ -9,11 +9,14 @@ is the one that is seen below that length.
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 from dataclasses import replace
 
+from patlint.machine.ambiguity import Letters, Suspect
+from patlint.machine.candidates import Text
 from patlint.machine.fit import Growth, rising
 from patlint.machine.program import can_be_empty, one_character
+from patlint.machine.walks import Walks
 from patlint.syntax import tree as t
 
 LONGEST = 4_000
@@ -21,6 +24,8 @@ LONGEST = 4_000
 MANY = 4
 """Bounds from which on a repeat is opened; lower ones are walked as they are."""
 FIRST = 8
+STRETCHES = (20, 100)
+"""Characters that lie between the pumps of a stretched text."""
 
 
 def opened(node: t.Node) -> t.Node:
@@ -70,6 +75,21 @@ def repeats_nothing(node: t.Node) -> bool:
     )
 
 
+def stretched(text: Text, suspect: Suspect, graph: Walks, letters: Letters) -> Iterator[Text]:
+    """The text, then the same with longer pumps: what a part can take again and again stands before each.
+
+    `(.*a){20}` can have twenty pumps at most, but between them there is room.
+    """
+    yield text
+    loops = [edge.mask for node in suspect.nodes for edge in graph.edges[node] if edge.target == node]
+    used = {letters(mask) for mask in suspect.pump}
+    for mask in loops[:1]:
+        others = [code for bit, code in enumerate(letters.letters) if mask >> bit & 1 and code not in used]
+        code = min(others, key=lambda code: (not 32 < code < 127, code), default=letters(mask))
+        for many in STRETCHES:
+            yield replace(text, pump=(code,) * many + text.pump)
+
+
 def passes(
     count: Callable[[int], int | None], fixed: int, pump: int, threshold: int
 ) -> tuple[int | None, bool]:
@@ -85,7 +105,7 @@ def passes(
         if steps is None:
             return None, True
         if steps >= threshold:
-            return n, False
+            return _least(count, n, threshold), False
         last = fixed + (n + 1) * pump > LONGEST
         # Flat already, or even the cube of what is left to grow does not get there.
         reach = (LONGEST / (fixed + n * pump)) ** 4
@@ -93,6 +113,19 @@ def passes(
             return None, False
         before = steps
         n *= 2
+
+
+def _least(count: Callable[[int], int | None], n: int, threshold: int) -> int:
+    """About the fewest pumps that pass it, so that the growth is told of what leads there and not of what follows."""
+    few = n // 2
+    while n - few > max(n // 16, 1):
+        middle = (few + n) // 2
+        steps = count(middle)
+        if steps is None or steps < threshold:
+            few = middle
+        else:
+            n = middle
+    return n
 
 
 def growth_below(count: Callable[[int], int | None], n: int) -> Growth:

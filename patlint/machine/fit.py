@@ -26,24 +26,48 @@ SIZES = 9
 SINKS = 0.8
 """How far the logarithm of the factor may sink from the middle of the row to its end;
 that of a power n ** d sinks to 0.6."""
+HIGH = 6
+"""Powers above this one need more sizes to be read off,"""
+HIGHEST = 24
+"""and above this one are only compared with the slope at the largest sizes."""
 
 
-def fit(count: Count, long_pump: bool) -> Growth | None:
-    """The growth that `count` shows from some pumps on; None where too few sizes can be counted."""
-    sizes, values = _row(count, *((4, 2) if long_pump else (12, 6)))
+def fit(count: Count, long_pump: bool, expected: int = 0, multiplies: bool = True) -> Growth | None:
+    """The growth that `count` shows from some pumps on; None where too few sizes can be counted.
+
+    `expected`: the power that is suspected, if it is one. Without `multiplies` it cannot be exponential.
+    """
+    many = expected + 3 if HIGH < expected <= HIGHEST else SIZES
+    sizes, values = _row(count, *((4, 2) if long_pump else (12, 6)), many)
     if len(values) < 5:
         found = _order(values)
         if found is not None:
             return found
-        sizes, values = _row(count, 1, 1)
+        sizes, values = _row(count, 1, 1, many)
     found = _order(values)
     if found is not None:
         return found
+    if not multiplies and expected > HIGH:
+        return expected if settled(count, expected) else None
     if len(values) < 5:
-        return _steep(values)
-    if _multiplies(sizes, values):
+        return _steep(values) if multiplies else None
+    if multiplies and _multiplies(sizes, values):
         return "exponential"
     return _slope(count, sizes[-1])
+
+
+def settled(count: Count, power: int) -> bool:
+    """Whether the slope at the largest sizes that can be counted comes to this power from above, or is near it."""
+    counts: list[int] = []
+    size = 16
+    while len(counts) < 8:
+        steps = count(size)
+        if steps is None:
+            break
+        counts.append(steps)
+        size *= 2
+    slopes = [math.log2(b / a) for a, b in zip(counts, counts[1:], strict=False)]
+    return len(slopes) > 1 and slopes[-1] <= slopes[-2] + 0.1 and 0.9 * power <= slopes[-1] <= 1.25 * power
 
 
 def rising(sizes: list[int], values: list[int]) -> Growth:
@@ -68,11 +92,11 @@ def _multiplies(sizes: list[int], values: list[int]) -> bool:
     return late > math.log(LEAST_BASE) * (sizes[-1] - sizes[-2]) and late > SINKS * middle
 
 
-def _row(count: Count, start: int, step: int) -> tuple[list[int], list[int]]:
+def _row(count: Count, start: int, step: int, many: int) -> tuple[list[int], list[int]]:
     """Counts at equal distances, until their differences settle or the turns run out."""
     sizes: list[int] = []
     values: list[int] = []
-    for size in range(start, start + SIZES * step, step):
+    for size in range(start, start + many * step, step):
         steps = count(size)
         if steps is None:
             break

@@ -2,28 +2,31 @@
 
 A suspicion from the graph of walks becomes a claim only when the steps, counted at growing n, are as many as the
 claim says: for exponential growth each further pump must multiply them, for a power d they must lie on a
-polynomial of that degree. The suffix makes the engine go back: a shortest text that is refused by all that the
-engine tries before its last way (`continuation`); where that is not decided, the empty text and single
-characters. Where it is decided that no suffix does it, the engine is never slow there, and nothing is counted.
+polynomial of that degree. `candidates` makes the texts; where it is decided that no suffix makes the engine go
+back, the engine is never slow there, and nothing is counted. Where more is suspected than one pump shows, texts
+of several pumps are counted too (`SlowText.more`).
+
+A repeat with a bound is judged by what it can take in practice (`bounded`). If the steps lie on a power of the
+text's length, that power is told; if they multiply until the bound is met, that is told, and that there is a bound.
 
 Limit: `turns` of the counting for all suspicions of one question.
 """
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from dataclasses import dataclass, replace
 from typing import Literal, TypeAlias
 
 from patlint.limits import LimitReached, Limits
 from patlint.machine import program as p
 from patlint.machine.alphabet import representative
-from patlint.machine.ambiguity import EXPONENTIAL, Codes, Letters, Suspect, suspects
-from patlint.machine.bounded import growth_below, opened, passes, repeats_nothing
+from patlint.machine.ambiguity import EXPONENTIAL, Letters, Suspect, suspects
+from patlint.machine.bounded import LONGEST, growth_below, opened, passes, repeats_nothing, stretched
+from patlint.machine.candidates import Text, texts
 from patlint.machine.continuation import Continuations
 from patlint.machine.counting import Counter, countable
 from patlint.machine.fit import Growth as Growth
-from patlint.machine.fit import fit
+from patlint.machine.fit import fit, settled
 from patlint.machine.matcher import Matcher
 from patlint.machine.nfa import Nfa
 from patlint.machine.program import compile_node
@@ -37,15 +40,12 @@ LEAST_STEPS = 1_000
 """Steps that the largest confirmed text must take, so that small noise is not fitted."""
 LONG_PUMP = 8
 """From so many characters on a pump needs fewer repetitions to show its power."""
-VARIANTS = 5
-"""Readings of a pump (with other characters of the same sets) that are tried."""
-READINGS = 2
-"""Readings of which something had to be counted."""
-GUESSES = 5
 SCREEN_SIZES = (8, 24)
 SCREEN_RATIO = 3.6
 """A guessed suffix must show more than three times the steps at three times the pumps before it is fitted."""
 SUSPECTS = 8
+SEVERAL = 4
+"""Suspicions of several pumps of which something is counted."""
 SHOWN_STEPS = 2_000_000_000
 """Exponential counts are told up to so many steps."""
 
@@ -63,9 +63,24 @@ class SlowText:
     by_restart: bool
     bounded: bool = False
     """The growth is the one seen up to the last of `steps`; a bound in the pattern ends it somewhere."""
+    more: tuple[tuple[str | bytes, str | bytes], ...] = ()
+    """Further pumps, each with the text that stands before it."""
+
+    @property
+    def fixed(self) -> int:
+        """Characters that do not depend on n."""
+        return len(self.prefix) + len(self.suffix) + sum(len(between) for between, _ in self.more)
+
+    @property
+    def period(self) -> int:
+        """Characters that each further n brings."""
+        return len(self.pump) + sum(len(pump) for _, pump in self.more)
 
     def text(self, n: int) -> str | bytes:
-        return self.prefix + self.pump * n + self.suffix  # type: ignore[operator]
+        text = self.prefix + self.pump * n  # type: ignore[operator]
+        for between, pump in self.more:
+            text += between + pump * n  # type: ignore[operator]
+        return text + self.suffix  # type: ignore[operator]
 
 
 @dataclass(frozen=True, slots=True)
@@ -84,8 +99,9 @@ class Ambiguity:
 
 def ambiguity_of(program: p.Program, manner: Manner, limits: Limits) -> Ambiguity:
     """The worst confirmed growth of `program` (as the engine runs it) used in this manner."""
+    power = 0
     try:
-        found = _unbounded(program, manner, limits)
+        found, power = _unbounded(program, manner, limits)
     except LimitReached as reached:
         found = Ambiguity(None, None, 0, reached.limit)
     if found.growth == "exponential" or program.tree is None:
@@ -94,7 +110,7 @@ def ambiguity_of(program: p.Program, manner: Manner, limits: Limits) -> Ambiguit
     if tree is program.tree:
         return found
     try:
-        slow, cut = _bounded(program, tree, manner, limits, found.slow)
+        slow, cut = _bounded(program, tree, manner, limits, found.slow, power)
     except LimitReached as reached:
         return replace(found, undecided=found.undecided or reached.limit)
     if slow is None:
@@ -102,19 +118,21 @@ def ambiguity_of(program: p.Program, manner: Manner, limits: Limits) -> Ambiguit
     return Ambiguity(slow.growth, slow, found.unconfirmed, None)
 
 
-def _unbounded(program: p.Program, manner: Manner, limits: Limits) -> Ambiguity:
+def _unbounded(program: p.Program, manner: Manner, limits: Limits) -> tuple[Ambiguity, int]:
+    """What is confirmed of the program as it stands, and the power that its graph allows (0: any)."""
     undecided = None
     unconfirmed = fitted = 0
     best: SlowText | None = None
     asked = _suspicions(program, manner, limits)
     if asked is None:
-        return Ambiguity(None, None)
+        return Ambiguity(None, None), 1
     found, letters, continuations = asked
-    most = max(suspect.degree for suspect in found)
-    counting = _Counting(program, manner, limits.turns)
-    counting.may_multiply = any(suspect.degree == EXPONENTIAL for suspect in found)
-    for suspect in found:
-        if best is not None and _enough(best, most):
+    single = [suspect for suspect in found if not suspect.more]
+    most = max(suspect.degree for suspect in single)
+    power = 0 if single[0].degree == EXPONENTIAL else max(suspect.degree for suspect in found)
+    counting = _Counting(program, manner, limits.turns, power)
+    for suspect in single:
+        if best is not None and _enough(best, suspect, most):
             break
         if fitted >= SUSPECTS or counting.turns <= 0:
             undecided = "turns" if best is None else None
@@ -124,9 +142,20 @@ def _unbounded(program: p.Program, manner: Manner, limits: Limits) -> Ambiguity:
         unconfirmed += tried and slow is None
         if slow is not None and (best is None or _worse(slow.growth, best.growth)):
             best = slow
+    fitted = 0
+    for suspect in found:
+        if not suspect.more or (best is not None and not _worse(suspect.degree, best.growth)):
+            continue
+        if fitted >= SEVERAL or counting.turns <= 0:
+            break
+        tried, slow = _confirm(suspect, suspect.degree, letters, continuations, counting)
+        fitted += tried
+        unconfirmed += tried and slow is None
+        if slow is not None and (best is None or _worse(slow.growth, best.growth)):
+            best = slow
     if counting.cut and best is None:
         undecided = "turns"
-    return Ambiguity(best.growth if best else None, best, unconfirmed, undecided)
+    return Ambiguity(best.growth if best else None, best, unconfirmed, undecided), power
 
 
 def _suspicions(
@@ -143,50 +172,49 @@ def _suspicions(
 
 
 def _bounded(
-    program: p.Program, tree: t.Node, manner: Manner, limits: Limits, known: SlowText | None
+    program: p.Program, tree: t.Node, manner: Manner, limits: Limits, known: SlowText | None, power: int
 ) -> tuple[SlowText | None, bool]:
     """A text on which the bounded repeats of `program` take too many steps, and whether turns were wanting.
 
-    `tree` is the pattern without its bounds. What is as slow without them (`known`) is not told again.
+    `tree` is the pattern without its bounds. What is as slow without them (`known`) is not told again. `power`:
+    what multiplies at first is a power in the end if it comes to this one.
     """
     counting = _Counting(program, manner, limits.turns)
     if program.tree is not None and repeats_nothing(program.tree):
         for chars in counting.matcher.alphabet.classes:
-            counts = _Counts(counting, _Text((), (representative(chars),), (), program.is_bytes))
+            counts = _Counts(counting, Text((), (representative(chars),), (), program.is_bytes))
             if (counts.at(1) or 0) >= limits.bounded_steps:
-                span = program.tree.span
-                return SlowText(
-                    *counts.text.pieces(), 1, ((1, counts.known[1]),), (span,), False, True
-                ), False
+                return counts.claim_below(1, 1, (program.tree.span,), False, True), False
     free = compile_node(tree, program.groups, program.is_bytes, limits)
     asked = _suspicions(free, manner, limits)
     if asked is None:
         return None, False
-    for suspect in asked[0][:SUSPECTS]:
+    for suspect in [suspect for suspect in asked[0] if not suspect.more][:SUSPECTS]:
         if suspect.degree == 2 and suspect.by_restart:
             continue  # the text times the bound: never enough
-        for prefix, pump, suffix, _ in _texts(suspect, *asked[1:]):
-            counts = _Counts(counting, _Text(prefix, pump, suffix, program.is_bytes))
-            n, _ = passes(counts.at, len(prefix) + len(suffix), len(pump), limits.bounded_steps)
-            if n is None:
-                continue
-            growth = growth_below(counts.at, n)
-            if growth == 1:
-                continue
-            if known is not None and not _worse(growth, known.growth):
-                continue
-            steps = tuple(sorted(counts.known.items()))
-            return SlowText(
-                *counts.text.pieces(), growth, steps, suspect.parts, suspect.by_restart, True
-            ), False
+        for text, _ in texts(suspect, asked[1], asked[2], program.is_bytes, anyway=True):
+            for longer in stretched(text, suspect, asked[2].graph, asked[1]):
+                counts = _Counts(counting, longer)
+                n, _ = passes(counts.at, longer.fixed, longer.period, limits.bounded_steps)
+                growth: Growth = 1 if n is None else growth_below(counts.at, n)
+                in_the_end = growth == "exponential" and power > 1 and settled(counts.at, power)
+                if in_the_end:
+                    growth = power
+                if n is None or growth == 1 or (known is not None and not _worse(growth, known.growth)):
+                    if counts.within_reach(limits.bounded_steps):
+                        continue
+                    break
+                return counts.claim_below(n, growth, suspect.parts, suspect.by_restart, not in_the_end), False
         if counting.turns <= 0:
             break
     return None, counting.cut
 
 
-def _enough(best: SlowText, most: int) -> bool:
-    """Whether what is confirmed is as bad as any suspicion."""
-    return best.growth == "exponential" or 1 < most <= best.growth
+def _enough(best: SlowText, suspect: Suspect, most: int) -> bool:
+    """Whether what is confirmed is as bad as this suspicion and all those after it."""
+    if best.growth == "exponential" or suspect.degree == EXPONENTIAL:
+        return best.growth == "exponential"
+    return 1 < most <= best.growth
 
 
 def _worse(a: Growth, b: Growth) -> bool:
@@ -202,12 +230,14 @@ def _confirm(
     best: SlowText | None = None
     tried = alone = False
     slow: SlowText | None = None
-    for prefix, pump, suffix, kind in _texts(suspect, letters, continuations):
-        counts = _Counts(counting, _Text(prefix, pump, suffix, counting.is_bytes))
+    for text, kind in texts(suspect, letters, continuations, counting.is_bytes):
+        counts = _Counts(counting, text)
         if (kind == "guess" and not counts.promising()) or (kind == "again" and slow is not None):
             continue
         tried = True
-        slow = counts.claim(suspect, most)
+        slow = counts.claim(suspect, None if best is None or alone else best.growth)
+        if slow is not None and text.more:
+            slow = _fewer_pumps(suspect, slow, text, counting)
         if slow is not None:
             first = counting.manner != "scan" or counts.slow_at_once(slow.growth)
             if (
@@ -216,99 +246,33 @@ def _confirm(
                 or (alone and slow.growth == best.growth and first)
             ):
                 best, alone = slow, not first
-        if counting.turns <= 0 or (best is not None and not alone and _enough(best, most)):
+        if counting.turns <= 0 or (best is not None and not alone and _enough(best, suspect, most)):
             break
     return tried, best
 
 
-def _texts(
-    suspect: Suspect, letters: Letters, continuations: Continuations
-) -> Iterator[tuple[Codes, Codes, Codes, Literal["sure", "guess", "again"]]]:
-    """Prefixes, pumps and suffixes that may show what is suspected, and what each is.
-
-    "sure": it makes the engine walk all ways; "again": the one before with a longer pump, needed only where
-    that showed nothing; "guess": not decided.
-    """
-    readings = 0
-    for whole in _readings(suspect, letters):
-        suffix = continuations.failing(suspect, suspect.prefix, whole)
-        if suffix == "none":
-            continue
-        pump = _root(whole)
-        prefix = suspect.prefix
-        while prefix[-len(pump) :] == pump:
-            prefix = prefix[: -len(pump)]
-        if suffix == "unknown":
-            yield from ((prefix, pump, guess, "guess") for guess in _guesses(pump, letters))
+def _fewer_pumps(suspect: Suspect, slow: SlowText, text: Text, counting: _Counting) -> SlowText:
+    """The same growth from as few pumps as will do."""
+    place = 0
+    while place <= len(text.more):
+        shorter = text.without(place)
+        found = None if shorter is None else _Counts(counting, shorter).claim(suspect, None)
+        if shorter is not None and found is not None and not _worse(slow.growth, found.growth):
+            slow, text = found, shorter
         else:
-            yield prefix, pump, suffix, "sure"
-            if pump != whole:  # the number of short pumps may matter
-                yield suspect.prefix, whole, suffix, "again"
-        readings += 1
-        if readings >= READINGS:
-            break
-
-
-def _readings(suspect: Suspect, letters: Letters) -> Iterator[Codes]:
-    """The pump in characters: the most readable, then others that may be treated better by what follows."""
-    seen: set[Codes] = set()
-    union = 0
-    for mask in suspect.pump:
-        union |= mask
-    preferred = [0, *(1 << minterm for minterm in range(union.bit_length()) if union >> minterm & 1)]
-    for prefer in preferred:
-        pump = tuple(letters(mask, prefer) for mask in suspect.pump)
-        if pump not in seen:
-            seen.add(pump)
-            yield pump
-        if len(seen) >= VARIANTS:
-            return
-
-
-def _root(pump: Codes) -> Codes:
-    """The shortest text of which `pump` is a power."""
-    size = len(pump)
-    for length in range(1, size):
-        if size % length == 0 and pump == pump[:length] * (size // length):
-            return pump[:length]
-    return pump
-
-
-def _guesses(pump: Codes, letters: Letters) -> list[Codes]:
-    """Texts that may make the rest fail: nothing, and single characters."""
-    codes = sorted(letters.letters, key=lambda code: (code in pump, not 32 < code < 127, code))
-    return [(), *((code,) for code in codes)][:GUESSES]
-
-
-@dataclass(frozen=True, slots=True)
-class _Text:
-    prefix: Codes
-    pump: Codes
-    suffix: Codes
-    is_bytes: bool
-
-    def pieces(self) -> tuple[str | bytes, str | bytes, str | bytes]:
-        make = bytes if self.is_bytes else _string
-        return make(self.prefix), make(self.pump), make(self.suffix)
-
-    def at(self, n: int) -> str | bytes:
-        codes = self.prefix + self.pump * n + self.suffix
-        return bytes(codes) if self.is_bytes else _string(codes)
-
-
-def _string(codes: Codes) -> str:
-    return "".join(map(chr, codes))
+            place += 1
+    return slow
 
 
 class _Counting:
     """Counts the steps of one program in one manner while the turns last."""
 
-    def __init__(self, program: p.Program, manner: Manner, turns: int) -> None:
+    def __init__(self, program: p.Program, manner: Manner, turns: int, power: int = 0) -> None:
         self.manner = manner
+        self.power = power
+        """The highest that the graph allows; 0: it has two cycles on one text somewhere, anything may come."""
         self.turns = turns
         self.is_bytes = program.is_bytes
-        self.may_multiply = False
-        """The graph has two cycles on one text somewhere; without them what multiplies ends at a bound."""
         self.cut = False
         """A count was stopped by the limit on turns."""
         self.counter = Counter(program) if countable(program) else None
@@ -335,7 +299,7 @@ class _Counting:
 class _Counts:
     """Steps on one text at growing n, remembered."""
 
-    def __init__(self, counting: _Counting, text: _Text) -> None:
+    def __init__(self, counting: _Counting, text: Text) -> None:
         self.counting, self.text = counting, text
         self.known: dict[int, int] = {}
 
@@ -359,23 +323,53 @@ class _Counts:
             return True
         return more > few * 2 ** (growth - 0.6 if growth != "exponential" else 3)
 
-    def claim(self, suspect: Suspect, most: int) -> SlowText | None:
-        """What the counts show, if it is slow."""
-        growth = fit(self.at, len(self.text.pump) >= LONG_PUMP)
+    def claim(self, suspect: Suspect, above: Growth | None) -> SlowText | None:
+        """What the counts show, if it is slow, and slower than `above`."""
+        power = self.counting.power
+        long_pump = self.text.period >= LONG_PUMP
+        growth = fit(self.at, long_pump, suspect.degree, power == 0)
         if growth is None or growth in (0, 1):
             return None
+        if growth != "exponential" and power:
+            growth = min(growth, power)
+        if above is not None and not _worse(growth, above):
+            return None
         if growth == "exponential":
-            if not self.counting.may_multiply:
-                return None
             self.known = {n: steps for n, steps in self.known.items() if steps <= SHOWN_STEPS}
             for n in (2, 4, 6, *range(8, 512, 4)):
                 steps = self.at(n)
                 if steps is None or (n > 6 and steps > SHOWN_STEPS // 2):
                     break
         else:
-            growth = min(growth, most) if most else growth
-            self.at((16 if len(self.text.pump) >= LONG_PUMP else 128) >> growth - 2)
+            self.at(max((16 if long_pump else 128) >> growth - 2, 4))
         if max(self.known.values()) < LEAST_STEPS:
             return None
-        counted = tuple(sorted(self.known.items()))
-        return SlowText(*self.text.pieces(), growth, counted, suspect.parts, suspect.by_restart)
+        return self.told(growth, suspect.parts, suspect.by_restart, False)
+
+    def claim_below(
+        self, n: int, growth: Growth, parts: tuple[t.Span, ...], by_restart: bool, bounded: bool
+    ) -> SlowText:
+        """What is seen up to n pumps, where the steps are too many already."""
+        self.known = {size: steps for size, steps in self.known.items() if size <= n}
+        return self.told(growth, parts, by_restart, bounded)
+
+    def told(self, growth: Growth, parts: tuple[t.Span, ...], by_restart: bool, bounded: bool) -> SlowText:
+        text = self.text
+        return SlowText(
+            text.piece(text.prefix),
+            text.piece(text.pump),
+            text.piece(text.suffix),
+            growth,
+            tuple(sorted(self.known.items())),
+            parts,
+            by_restart,
+            bounded,
+            tuple((text.piece(between), text.piece(pump)) for between, pump in text.more),
+        )
+
+    def within_reach(self, threshold: int) -> bool:
+        """Whether longer pumps, up to the longest text, might take as many steps as the threshold."""
+        return any(
+            steps * LONGEST >= threshold * (self.text.fixed + n * self.text.period)
+            for n, steps in self.known.items()
+        )

@@ -93,7 +93,7 @@ def walks(nfa: Nfa, scan: bool) -> Walks:
             for mask, rest in _after_duty(nfa, duty, reads):
                 for (after_position, more), ways in _follow(nfa, close, position, context).items():
                     key = (node((after_position, rest | more)), mask)
-                    out[key] = max(out.get(key, 0), ways)
+                    out[key] = min(out.get(key, 0) + ways, 2)
         merged: dict[tuple[int, int], int] = {}
         for (target, mask), ways in out.items():
             merged[target, ways] = merged.get((target, ways), 0) | mask

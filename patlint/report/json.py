@@ -110,12 +110,19 @@ def witness_object(witness: Witness | None) -> dict[str, Any] | None:
         case TextWitness():
             return {"text": as_text(witness.text)}
         case SlowWitness():
-            return {
+            shown: dict[str, Any] = {
                 "prefix": as_text(witness.prefix),
                 "pump": as_text(witness.pump),
                 "suffix": as_text(witness.suffix),
                 "growth": witness.growth,
             }
+            if witness.more:
+                shown["more"] = [
+                    {"between": as_text(between), "pump": as_text(pump)} for between, pump in witness.more
+                ]
+            if witness.bounded:
+                shown["bounded"] = True
+            return shown
         case None:
             return None
 

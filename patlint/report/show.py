@@ -70,6 +70,9 @@ def witness_expression(witness: Witness) -> str:
             count = REPEATS.get(witness.growth, LEAST_REPEATS)
             parts = [ascii(witness.prefix)] if witness.prefix else []
             parts.append(f"{ascii(witness.pump)} * {count}")
+            for between, pump in witness.more:
+                parts += [ascii(between)] if between else []
+                parts.append(f"{ascii(pump)} * {count}")
             if witness.suffix:
                 parts.append(ascii(witness.suffix))
             return " + ".join(parts)

@@ -32,13 +32,25 @@ class TextWitness:
 
 @dataclass(frozen=True, slots=True)
 class SlowWitness:
-    """prefix + pump * n + suffix makes matching slow; `growth` in n, `steps` counted as (n, steps)."""
+    """prefix + pump * n + suffix makes matching slow; `growth` in n, `steps` counted as (n, steps).
+
+    `more` are further pumps, each with the text before it; they stand between the first pump and the suffix, all
+    repeated n times. `bounded`: the growth is what is seen below a bound that is out of reach.
+    """
 
     prefix: str | bytes
     pump: str | bytes
     suffix: str | bytes
     growth: Growth
     steps: tuple[tuple[int, int], ...] = ()
+    more: tuple[tuple[str | bytes, str | bytes], ...] = ()
+    bounded: bool = False
+
+    def text(self, n: int) -> str | bytes:
+        whole = self.prefix + self.pump * n  # type: ignore[operator]
+        for between, pump in self.more:
+            whole += between + pump * n  # type: ignore[operator]
+        return whole + self.suffix  # type: ignore[operator]
 
 
 Witness: TypeAlias = TextWitness | SlowWitness

@@ -40,7 +40,9 @@ def judged(subject: Subject) -> Iterator[tuple[Manner, Use | None, Ambiguity]]:
 
 
 def witness_of(slow: SlowText) -> SlowWitness:
-    return SlowWitness(slow.prefix, slow.pump, slow.suffix, slow.growth, slow.steps)
+    return SlowWitness(
+        slow.prefix, slow.pump, slow.suffix, slow.growth, slow.steps, slow.more, slow.bounded
+    )
 
 
 def mode_name(manner: Manner) -> str:
@@ -50,9 +52,8 @@ def mode_name(manner: Manner) -> str:
 def figures(slow: SlowText) -> str:
     """How many steps a text of a telling length takes, reckoned from the counted ones."""
     n, steps = slow.steps[-1]
-    size = len(slow.prefix) + len(slow.suffix)
     if slow.bounded:
-        length = size + n * len(slow.pump)
+        length = slow.fixed + n * slow.period
         characters = f"{length:,} characters" if length != 1 else "one character"
         return f"a text of {characters} takes {in_words(steps)} steps"
     if slow.growth == "exponential":
@@ -61,16 +62,18 @@ def figures(slow: SlowText) -> str:
         wanted = max(n + ceil((log(ENDLESS) - log(steps)) / base), n)
         count = exp(log(steps) + base * (wanted - n))
     else:
-        wanted = max((LONG - size) // len(slow.pump), n)
+        wanted = max((LONG - slow.fixed) // slow.period, n)
         count = steps * (wanted / n) ** slow.growth
-    return f"a text of {size + wanted * len(slow.pump):,} characters takes {in_words(count)} steps"
+    return f"a text of {slow.fixed + wanted * slow.period:,} characters takes {in_words(count)} steps"
 
 
 def evidence(slow: SlowText) -> str:
     """What competes for the pump, and how many steps that makes."""
-    pump = ascii(slow.pump)
-    shown = pump if len(pump) < 30 else "the repeated text"
+    pumps = dict.fromkeys(ascii(pump) for pump in (slow.pump, *(pump for _, pump in slow.more)))
+    shown = " and ".join(pumps) if sum(map(len, pumps)) < 30 else "the repeated text"
     ways = f"both can take {shown}" if len(slow.parts) == 2 else f"{shown} can be taken in more than one way"
+    if len(pumps) > 1:
+        ways = f"{shown} can each be taken in more than one way"
     return f"{ways}; {figures(slow)}"
 
 

@@ -28,6 +28,8 @@ WORSE_ELSEWHERE: dict[tuple[str, str], tuple[Growth, str]] = {
         "exponential",
         "(ab)^n: b is read by the iteration of its a or by one of its own",
     ),
+    ("(?:a*+b?)*c", "search"): ("exponential", "(ab)^n, as under match"),
+    ("(?:a(?=a*b)|a)*c", "match"): ("exponential", "a^n b: both branches can take each a"),
     ("(?:a(?:x?){2})*b", "match"): ("exponential", "(ax)^n: x is read by the first or by the second x?"),
 }
 

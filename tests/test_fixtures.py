@@ -45,6 +45,8 @@ PLANTED = {
     "shorter-equivalent",
     "straddling-range",
     "swallowed-escape",
+    "lopsided-anchor",
+    "final-newline",
     "stale-waiver",
 }
 SECONDS = 60
@@ -269,6 +271,26 @@ def _swallowed(finding: PlacedFinding) -> None:
     assert isinstance(finding.pattern, str) and "\b" in finding.pattern
 
 
+def _lopsided(finding: PlacedFinding) -> None:
+    """The text passes, and does not once the anchors bind all branches."""
+    assert isinstance(finding.pattern, str) and isinstance(finding.witness, TextWitness)
+    assert _run(finding, _compiled(finding), finding.witness.text)
+    bare = finding.pattern.removeprefix("^").removesuffix("$")
+    assert not _run(finding, _compiled(finding, f"^(?:{bare})$"), finding.witness.text)
+
+
+def _final_newline(finding: PlacedFinding) -> None:
+    """The text passes with its line feed and without it, and with the line feed only because of the `$`."""
+    assert isinstance(finding.pattern, str) and isinstance(finding.witness, TextWitness)
+    text = finding.witness.text
+    assert isinstance(text, str) and text.endswith("\n") and finding.pattern[slice(*finding.span)] == "$"
+    compiled = _compiled(finding)
+    assert _run(finding, compiled, text) and _run(finding, compiled, text[:-1])
+    start, end = finding.span
+    hard = _compiled(finding, finding.pattern[:start] + r"\Z" + finding.pattern[end:])
+    assert not _run(finding, hard, text) and _run(finding, hard, text[:-1])
+
+
 def _slow(finding: PlacedFinding) -> None:
     """Steps grow as the finding says, and `re` comes to the same outcome on a text of some length."""
     witness = finding.witness
@@ -318,6 +340,8 @@ REPLAYS: dict[str, Callable[[PlacedFinding], None]] = {
     "shorter-equivalent": _shorter,
     "straddling-range": _straddling,
     "swallowed-escape": _swallowed,
+    "lopsided-anchor": _lopsided,
+    "final-newline": _final_newline,
 }
 
 

@@ -53,7 +53,7 @@ where it is empty in every mode and from every place in a text.
         "the end of the text stands before more text",
     ),
     right=Example(
-        'import re\n\n\ndef is_empty_slot(line):\n    return bool(re.match(r"slot free$", line))\n'
+        'import re\n\n\ndef is_empty_slot(line):\n    return bool(re.fullmatch(r"slot free", line))\n'
     ),
     check=check,
 )

@@ -26,6 +26,8 @@ NAMES: Final[tuple[str, ...]] = (
     "polynomial-ambiguity",
     "straddling-range",
     "swallowed-escape",
+    "lopsided-anchor",
+    "final-newline",
     "shorter-equivalent",
     "stale-waiver",
 )
@@ -39,6 +41,7 @@ SILENCES: dict[str, frozenset[str]] = {
     "unreachable-part": frozenset({"shorter-equivalent"}),
     "straddling-range": frozenset({"shorter-equivalent"}),
     "swallowed-escape": frozenset({"shorter-equivalent", "unreachable-part", "vacuous-test", "nullable"}),
+    "lopsided-anchor": frozenset({"shorter-equivalent"}),
     "exponential-ambiguity": frozenset({"polynomial-ambiguity"}),
     "nullable": frozenset(),
 }

@@ -34,6 +34,8 @@ class Outcome:
     level: int = -1
     tested: bool = False
     ends: list[ast.AST] = field(default_factory=list)
+    tests: list[ast.AST] = field(default_factory=list)
+    """The expressions whose truth is asked."""
 
     def saw(self, looks_at: LooksAt) -> None:
         self.level = max(self.level, _ORDER.index(looks_at))
@@ -117,6 +119,7 @@ class Outcomes:
             return
         if self._is_test(node, parent):
             outcome.saw("truth")
+            outcome.tests.append(node)
             return
         match parent:
             case ast.Compare():
@@ -125,6 +128,7 @@ class Outcomes:
                 last = node is parent.values[-1]
                 if not last:
                     outcome.saw("truth")
+                    outcome.tests.append(node)
                 if last or isinstance(parent.op, ast.Or):
                     self._match(parent, scope, outcome, seen, depth + 1)
             case ast.IfExp():
@@ -162,6 +166,8 @@ class Outcomes:
         other = [side for side in sides if side is not node]
         none = len(other) == 1 and isinstance(other[0], ast.Constant) and other[0].value is None
         outcome.saw("truth" if simple and none else "unknown")
+        if simple and none:
+            outcome.tests.append(node)
 
     def _attribute(self, attribute: ast.Attribute, outcome: Outcome) -> None:
         name = attribute.attr

@@ -64,6 +64,10 @@ class Use:
     """The outcome steers a `while` loop that goes on from the end of the match."""
     tested: bool = False
     """The program tests somewhere whether there is an outcome, whatever else it looks at."""
+    validates: bool = False
+    """A text without an outcome is refused: an exception, `return False`, or the truth is what a function returns."""
+    end_settled: bool = False
+    """What stands at the text's end is plain to see: it was stripped, or it is a line of a file."""
     own: bool = False
     """The text is the program's own (a message under test), not one from outside."""
     selects: bool = False

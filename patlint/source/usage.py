@@ -15,6 +15,7 @@ from patlint.source.reasons import Opaque
 from patlint.source.scopes import Scope
 from patlint.source.sites import Function, LooksAt, Use
 from patlint.source.spelled import Spelled
+from patlint.source.validation import end_is_settled, refuses
 
 _GROUP_REFERENCE = re.compile(r"\\(?:[1-9]|g<(?!0+>))")
 _OPEN_GROUP = re.compile(r"\\.|\[\^?\]?(?:\\.|[^\]\\])*\]|(\()(?!\?(?!P<))", re.DOTALL)
@@ -58,6 +59,8 @@ class Uses:
             bounded=self._bound(given.get("string"), scope),
             in_loop=self._in_loop(call, outcome),
             tested=outcome.tested if outcome else False,
+            validates=outcome is not None and any(refuses(test, self.index) for test in outcome.tests),
+            end_settled=end_is_settled(given.get("string"), scope, self.index),
         )
 
     def tested_by(self, node: ast.expr, function: Function, looks_at: LooksAt) -> Use:

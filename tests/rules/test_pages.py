@@ -26,5 +26,5 @@ def test_pages_fit_a_terminal(rule: Rule) -> None:
     assert max(map(len, rule.page.splitlines())) <= 79
 
 
-def test_names_are_unique_and_there_are_twelve() -> None:
-    assert len({rule.name for rule in RULES}) == len(RULES) == 12
+def test_names_are_unique() -> None:
+    assert len({rule.name for rule in RULES}) == len(RULES) >= 14

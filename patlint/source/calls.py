@@ -46,6 +46,8 @@ def evaluate_call(
     match node.func:
         case ast.Name(id=name) if scope.find(name) is None and not constants.index.star_lines:
             return _builtin(constants, name, node, scope, env, depth)
+        case ast.Name():
+            return constants.helpers.outcome(node, scope, env, depth)
         case ast.Attribute():
             return _method(constants, node.func, node, scope, env, depth)
     raise Opaque(reasons.CALL)

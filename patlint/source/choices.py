@@ -17,6 +17,7 @@ Limit: `MOST` values of one expression. Cost: one call of `make` for each value.
 from __future__ import annotations
 
 from collections.abc import Callable, Hashable, Iterator
+from contextlib import contextmanager
 from typing import TypeVar
 
 from patlint.source import reasons
@@ -55,9 +56,14 @@ class Choices:
         """The row of `key`, None where it was not asked for."""
         return self._taken.get(key)
 
-    def keys(self) -> tuple[Hashable, ...]:
-        """What was asked for, in that order."""
-        return tuple(self._taken)
+    @contextmanager
+    def aside(self) -> Iterator[None]:
+        """A question beside the value: no new row is taken for it."""
+        was_open, self._open = self._open, False
+        try:
+            yield
+        finally:
+            self._open = was_open
 
     def each(self, make: Callable[[], Made]) -> Iterator[Made | Opaque]:
         """What `make` gives for every combination of rows; an `Opaque` that it raises is one of these."""

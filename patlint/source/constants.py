@@ -15,12 +15,13 @@ from patlint.source import calls, reasons
 from patlint.source.choices import Choices
 from patlint.source.engine import Engine
 from patlint.source.formatting import percent
+from patlint.source.helpers import Helpers
 from patlint.source.index import Index
 from patlint.source.names import MUTABLE, Names
 from patlint.source.places import Text
 from patlint.source.quoted import f_string, literal
 from patlint.source.reasons import Opaque
-from patlint.source.rows import Rows
+from patlint.source.rows import Item, Rows
 from patlint.source.scopes import Scope
 from patlint.source.spelled import Listed, Spelled, cut, join, repeat, without_spelling
 from patlint.source.values import Environment, Value, arithmetic, same, small
@@ -42,9 +43,10 @@ class Constants:
         self.index = index
         self.text = text
         self.engine = engine
-        self.names = Names(index, engine)
+        self.names = Names(index, engine, text)
         self.choices = Choices()
         self.rows = Rows(self, index)
+        self.helpers = Helpers(self, index)
         self._steps = 0
         self._active: set[ast.AST] = set()
         self._known: dict[ast.AST, Value | Opaque] = {}
@@ -141,8 +143,18 @@ class Constants:
 
     # names
 
+    def origin(self, node: ast.Name, scope: Scope) -> Item | None:
+        """What a loop's variable or a parameter stands for in the row or call that is taken now; None for
+        other names. Errors: `Opaque`."""
+        owner = scope.find(node.id)
+        if owner is not None and owner.kind == "function":
+            bindings = owner.bindings[node.id]
+            if len(bindings) == 1 and bindings[0].kind == "parameter":
+                return self.helpers.argument(node.id, node, owner)
+        return self.rows.chosen(node, scope)
+
     def _definition(self, node: ast.Name, scope: Scope, depth: int) -> Value:
-        item = self.rows.chosen(node, scope)
+        item = self.origin(node, scope)
         if item is not None:
             return self.rows.value(item, depth)
         values: list[Value] = []

@@ -54,8 +54,8 @@ class Follower:
         self.source = source
         self.engine = engine
         self.names = constants.names
+        self.helpers = constants.helpers
         self.uses = uses
-        self._quoted: dict[str, bool] = {}
         self.leads_back = re.search(r"\.re\b", self.source) is not None
         """`found.re` is the pattern of a match: where it is asked for, a pattern has uses that are not seen."""
 
@@ -93,8 +93,28 @@ class Follower:
                 pass
             case ast.Tuple():
                 self._parallel(node, parent, scope, method, found)
+            case ast.Return() | ast.Lambda():
+                self._returned(scope, method, found)
             case _:
                 found.seen = False
+
+    def _returned(self, scope: Scope, method: str | None, found: Followed) -> None:
+        """The function around gives the value back to its callers: to that one alone whose text is meant."""
+        owner = scope.function()
+        if (
+            owner is None
+            or not isinstance(owner.node, ast.FunctionDef)
+            or (owner, "return", method) in found.visited
+        ):
+            found.seen = False
+            return
+        found.visited.add((owner, "return", method))
+        taken = self.helpers.taken(owner.node)
+        calls = self.helpers.calls(owner.node, owner)
+        if taken is None and not calls.all:
+            found.seen = False
+        for call, outside in calls.seen if taken is None else [taken]:
+            self._flow(call, outside, method, found)
 
     def _argument(
         self, node: ast.expr, call: ast.Call, scope: Scope, method: str | None, found: Followed
@@ -166,7 +186,7 @@ class Follower:
         if (owner, name, method) in found.visited:
             return
         found.visited.add((owner, name, method))
-        if owner.kind == "module" and (self.index.dynamic or not self._is_private(name)):
+        if owner.kind == "module" and (self.index.dynamic or not self.names.is_private(name)):
             found.seen = False
         others = [binding for binding in owner.bindings.get(name, ()) if not binding.is_none]
         reached = None
@@ -189,7 +209,7 @@ class Follower:
         ]
         values = [use.value for use in stores if not _is_none(use.value)]
         values += [b.value for b in owner.bindings.get(name, ()) if not b.is_none]
-        if not self._is_private(name) or len(values) > 1:
+        if not self.names.is_private(name) or len(values) > 1:
             found.seen = False
         for read, scope in owner.reads(name):
             self._flow(read, scope, method, found)
@@ -218,16 +238,6 @@ class Follower:
         return not any(
             self.names.class_of(use.node.value, use.scope) is other for use in self.index.stores.get(name, ())
         )
-
-    def _is_private(self, name: str) -> bool:
-        if not name.startswith("_") or (name.startswith("__") and name.endswith("__")):
-            return False
-        if name not in self._quoted:
-            # Spelled in a text, whole or as its beginning (f"_{kind}"), it may be reached by getattr.
-            heads = "|".join(re.escape(name[:end]) for end in range(1, len(name)))
-            spelled = rf"""["'](?:{re.escape(name)}["']|(?:{heads})(?:\{{|["']\s*[+%]))"""
-            self._quoted[name] = re.search(spelled, self.source) is not None
-        return not self._quoted[name]
 
 
 def _is_none(node: ast.expr | None) -> bool:

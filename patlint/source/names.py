@@ -13,11 +13,13 @@ thought of.
 from __future__ import annotations
 
 import ast
+import re
 from collections.abc import Iterable
 
 from patlint.source import reasons
 from patlint.source.engine import Engine
 from patlint.source.index import AttributeUse, Index
+from patlint.source.places import Text
 from patlint.source.reaching import reaching_value
 from patlint.source.reasons import Opaque
 from patlint.source.scopes import Binding, Scope
@@ -41,9 +43,11 @@ _KIND_REASONS = {
 class Names:
     """The names of one file."""
 
-    def __init__(self, index: Index, engine: Engine) -> None:
+    def __init__(self, index: Index, engine: Engine, text: Text) -> None:
         self.index = index
         self.engine = engine
+        self.text = text
+        self._quoted: dict[str, bool] = {}
 
     def definitions(self, node: ast.Name | ast.Attribute, scope: Scope) -> list[tuple[ast.expr, Scope]]:
         """Every expression that the name may stand for, with the scope to read it in.
@@ -84,6 +88,17 @@ class Names:
             for line in self.index.star_lines:
                 if line > binding.line or binding.scope.kind not in ("module", "class"):
                     raise Opaque(reasons.STAR_IMPORT)
+
+    def is_private(self, name: str) -> bool:
+        """Whether a name is taken for known in this file alone: by its first letter, and not spelled in a text."""
+        if not name.startswith("_") or (name.startswith("__") and name.endswith("__")):
+            return False
+        if name not in self._quoted:
+            # Spelled in a text, whole or as its beginning (f"_{kind}"), it may be reached by getattr.
+            heads = "|".join(re.escape(name[:end]) for end in range(1, len(name)))
+            spelled = rf"""["'](?:{re.escape(name)}["']|(?:{heads})(?:\{{|["']\s*[+%]))"""
+            self._quoted[name] = re.search(spelled, "".join(self.text.lines)) is not None
+        return not self._quoted[name]
 
     def unchanged(self, name: str, scope: Scope) -> bool:
         """No read of the name in the file could change the list or dict that it stands for."""

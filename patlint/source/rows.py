@@ -133,7 +133,7 @@ class Rows:
         if isinstance(node, ast.Name):
             if item.env and node.id in item.env:
                 return Ready(item.env[node.id])
-            chosen = self.chosen(node, item.scope)
+            chosen = self.constants.origin(node, item.scope)
             if chosen is not None:
                 listed = isinstance(chosen, Row) and isinstance(chosen.node, MUTABLE)
                 if listed and not self.constants.names.unchanged(node.id, item.scope):

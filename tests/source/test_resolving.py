@@ -197,7 +197,7 @@ UNRESOLVED = [
     ("import re\nfor q, *p in (('a', 1), ('b', 2)): re.match(p, q)", reasons.LOOP_VARIABLE),
     (
         "import re\ndef enumerate(x): return x\nfor _, p in enumerate(('ab', 'cd')): re.match(p, '')",
-        reasons.CALL,
+        reasons.UNPACKED,
     ),
     ("import re\nclass A:\n for p in ('a', 'b'):\n  re.match(p, '')", reasons.LOOP_VARIABLE),
     ("import re\nfor p in (" + "'a'," * 3001 + "): re.match(p, '')", reasons.TOO_MANY),

@@ -19,7 +19,7 @@ from patlint.placed import PlacedFinding, decode, encode, place_finding
 from patlint.rules.finding import Level
 
 if TYPE_CHECKING:
-    from patlint.source.sites import Module, Place, Site, Waiver
+    from patlint.source.sites import Family, Module, Place, Site, Waiver
 
 STALE: Final = "stale-waiver"
 
@@ -57,6 +57,7 @@ class _Tally:
     """One file in the making."""
 
     placed: list[tuple[PlacedFinding, Site]] = field(default_factory=list)
+    of_families: list[tuple[PlacedFinding, Site]] = field(default_factory=list)
     inexact: list[Remark] = field(default_factory=list)
     undecided: list[Remark] = field(default_factory=list)
     undecided_lines: set[int] = field(default_factory=set)
@@ -82,9 +83,13 @@ def lint_module(module: Module, settings: Settings) -> Outcome:
     """The outcome of a file that has been read."""
     enabled, levels = settings.for_path(module.path)
     tally = _Tally()
+    shared = {id(member.site) for family in module.families for member in family.members}
+    subjects: dict[int, Any] = {}
     for site in module.sites:
-        _check(site, settings, enabled, levels, tally)
-    kept, waived, used = _waive(_agreed(tally.placed, module), module.waivers)
+        _check(site, settings, enabled, levels, tally, subjects if id(site) in shared else None)
+    for family in module.families:
+        _check_family(family, settings, enabled, levels, tally, subjects)
+    kept, waived, used = _waive(_agreed(_one_cause(tally), module), module.waivers)
     stale, stale_waived = _stale_waivers(module, settings, enabled, levels, used, tally.undecided_lines)
     return Outcome(
         path=module.path,
@@ -99,6 +104,19 @@ def lint_module(module: Module, settings: Settings) -> Outcome:
         undecided=tuple(tally.undecided),
         problems=tuple(tally.problems),
     )
+
+
+def _one_cause(tally: _Tally) -> list[tuple[PlacedFinding, Site]]:
+    """All findings; those of families once for each pattern and rule, and without what they make idle about it."""
+    from patlint.rules.registry import SILENCES
+
+    quiet: dict[int, frozenset[str]] = {}
+    told: dict[tuple[int, str], tuple[PlacedFinding, Site]] = {}
+    for finding, site in tally.of_families:
+        told.setdefault((id(site), finding.rule), (finding, site))
+        quiet[id(site)] = quiet.get(id(site), frozenset()) | SILENCES.get(finding.rule, frozenset())
+    single = [(each, site) for each, site in tally.placed if each.rule not in quiet.get(id(site), ())]
+    return [*single, *told.values()]
 
 
 def _agreed(placed: list[tuple[PlacedFinding, Site]], module: Module) -> list[tuple[PlacedFinding, Site]]:
@@ -172,13 +190,19 @@ def site_flag_names(site: Site, target: tuple[int, int]) -> tuple[str, ...]:
 
 
 def _check(
-    site: Site, settings: Settings, enabled: frozenset[str], levels: dict[str, LevelName], tally: _Tally
+    site: Site,
+    settings: Settings,
+    enabled: frozenset[str],
+    levels: dict[str, LevelName],
+    tally: _Tally,
+    subjects: dict[int, Any] | None,
 ) -> None:
+    """`subjects` keeps what `_check_family` will ask again; None where the site has no siblings."""
     from patlint.rules import check_site
 
     line, column = site.place.line, site.place.column
     try:
-        checked = check_site(site, settings.target, settings.limits, enabled)
+        checked = check_site(site, settings.target, settings.limits, enabled, subjects)
         flags = site_flag_names(site, settings.target) if checked.findings else ()
         for finding in checked.findings:
             level = _level(finding.rule, finding.level, levels)
@@ -192,6 +216,47 @@ def _check(
     if checked.undecided:
         tally.undecided.append(Remark(line, column, "; ".join(checked.undecided)))
         tally.undecided_lines |= _lines(site)
+
+
+def _check_family(
+    family: Family,
+    settings: Settings,
+    enabled: frozenset[str],
+    levels: dict[str, LevelName],
+    tally: _Tally,
+    subjects: dict[int, Any],
+) -> None:
+    from patlint.rules import check_family
+
+    try:
+        checked = check_family(family, settings.target, settings.limits, enabled, subjects)
+        for member, finding in checked.findings:
+            site = member.site
+            level = _level(finding.rule, finding.level, levels)
+            flags = site_flag_names(site, settings.target)
+            tally.of_families.append((place_finding(finding, site, level, flags), site))
+    except Exception as error:
+        place = family.members[0].site.place
+        tally.problems.append(
+            f"{family.members[0].site.path}:{place.line}:{place.column}: {internal(error)}"
+        )
+        for member in family.members:
+            tally.undecided_lines |= _lines(member.site)
+        return
+    for member, limit in checked.undecided:
+        _leave_open(member.site, limit, tally)
+
+
+def _leave_open(site: Site, limit: str, tally: _Tally) -> None:
+    """A question about `site` was cut short, and perhaps not the first one."""
+    line, column = site.place.line, site.place.column
+    tally.undecided_lines |= _lines(site)
+    for index, remark in enumerate(tally.undecided):
+        if (remark.line, remark.column) == (line, column):
+            if limit not in remark.reason.split("; "):
+                tally.undecided[index] = Remark(line, column, f"{remark.reason}; {limit}")
+            return
+    tally.undecided.append(Remark(line, column, limit))
 
 
 def _level(rule: str, own: Level, levels: dict[str, LevelName]) -> Level:

@@ -23,9 +23,10 @@ import pytest
 from patlint import lint_source
 from patlint.machine.matcher import Matcher
 from patlint.machine.program import compile_tree
-from patlint.placed import PlacedFinding
+from patlint.placed import PlacedFinding, RelatedPlace
 from patlint.rules.finding import SlowWitness, TextWitness
 from patlint.source import find_patterns
+from patlint.source.sites import Place
 from patlint.syntax.parser import parse
 from patlint.target import running_target
 
@@ -40,6 +41,7 @@ PLANTED = {
     "nullable",
     "unreachable-part",
     "equal-siblings",
+    "covered-sibling",
     "exponential-ambiguity",
     "polynomial-ambiguity",
     "shorter-equivalent",
@@ -211,6 +213,36 @@ def _same_without_the_part(finding: PlacedFinding) -> None:
     _same_spans(finding, shorter)
 
 
+def _equal(finding: PlacedFinding) -> None:
+    if finding.related[0].span is None:
+        _covered(finding)
+    else:
+        _same_without_the_part(finding)
+
+
+def _covered(finding: PlacedFinding) -> None:
+    """Whatever the pattern matches is matched by one of the earlier ones that the finding names."""
+    sites = find_patterns((FIXTURES / finding.path).read_text(encoding="utf-8"), finding.path)
+    earlier = [
+        re.compile(site.pattern, site.flags)
+        for site in sites
+        for place in finding.related
+        if site.place_of_span(0, len(site.pattern)) == _place(place)
+    ]
+    assert len(earlier) == len(finding.related) > 0
+    own, matched = _compiled(finding), 0
+    more = [finding.witness.text] if isinstance(finding.witness, TextWitness) else []
+    for text in [*more, *_texts(finding)]:
+        if _run(finding, own, text):
+            matched += 1
+            assert any(_run(finding, each, text) for each in earlier), text
+    assert matched
+
+
+def _place(related: RelatedPlace) -> Place:
+    return Place(related.line, related.column, related.end_line, related.end_column)
+
+
 def _shorter(finding: PlacedFinding) -> None:
     assert finding.suggestion is not None and finding.pattern is not None
     assert len(finding.suggestion.pattern) < len(finding.pattern)
@@ -334,7 +366,8 @@ REPLAYS: dict[str, Callable[[PlacedFinding], None]] = {
     "vacuous-test": _vacuous,
     "nullable": _nullable,
     "unreachable-part": _same_without_the_part,
-    "equal-siblings": _same_without_the_part,
+    "equal-siblings": _equal,
+    "covered-sibling": _covered,
     "exponential-ambiguity": _slow,
     "polynomial-ambiguity": _slow,
     "shorter-equivalent": _shorter,

@@ -50,9 +50,13 @@ def _table(rules: Sequence[Rule]) -> Iterator[str]:
 
 
 def _page(rule: Rule, style: Style) -> Iterator[str]:
+    from patlint.config import Settings
     from patlint.report.text import finding_block
+    from patlint.rules.registry import NAMES
     from patlint.run import lint_source
+    from patlint.target import running_target
 
+    asked = Settings(running_target(), NAMES, levels=((rule.name, rule.level),))  # on, even if off by default
     yield f"{rule.name} ({rule.level}): {rule.summary}"
     yield ""
     yield from rule.page.strip().splitlines()
@@ -61,7 +65,7 @@ def _page(rule: Rule, style: Style) -> Iterator[str]:
         yield f"{title} {example.says}".rstrip()
         yield ""
         yield from textwrap.indent(example.source.strip("\n"), "    ").splitlines()
-        findings = [each for each in lint_source(example.source, "example.py") if each.rule == rule.name]
-        for finding in findings:
+        found = lint_source(example.source, "example.py", settings=asked)
+        for finding in [each for each in found if each.rule == rule.name]:
             yield ""
             yield from finding_block(finding, style)

@@ -46,7 +46,7 @@ def relation(a: Dfa, b: Dfa, limits: Limits, *, until_differs: bool = False) -> 
     alphabet, of_a, of_b = common(a.alphabet, b.alphabet)
     letters = [representative(chars) for chars in alphabet.classes]
     # Characters that are pleasant to read first, so that they are preferred among texts of equal length.
-    moves = sorted(zip(letters, of_a, of_b, strict=True), key=lambda move: _rank(move[0]))
+    moves = sorted(zip(letters, of_a, of_b, strict=True), key=lambda move: letter_rank(move[0]))
     seen: dict[tuple[int, int], tuple[tuple[int, int], int] | None] = {(0, 0): None}
     order = [(0, 0)]
     found: dict[str, tuple[int, int]] = {}
@@ -79,7 +79,7 @@ def relation(a: Dfa, b: Dfa, limits: Limits, *, until_differs: bool = False) -> 
     return Relation(text("a"), text("b"), text("both"))
 
 
-def _rank(code: int) -> tuple[int, int]:
+def letter_rank(code: int) -> tuple[int, int]:
     if code == 10:
         return 1, code
     return (0 if 32 < code < 127 else 1 if code == 32 or code > 160 else 2), code

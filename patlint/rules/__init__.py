@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
     from patlint.rules.check import Checked as Checked
+    from patlint.rules.check import check_family as check_family
     from patlint.rules.check import check_site as check_site
     from patlint.rules.finding import Finding as Finding
     from patlint.rules.finding import Rule as Rule
@@ -19,10 +20,11 @@ _HOMES = {
     "Finding": "patlint.rules.finding",
     "RULES": "patlint.rules.registry",
     "Rule": "patlint.rules.finding",
+    "check_family": "patlint.rules.check",
     "check_site": "patlint.rules.check",
 }
 
-__all__ = ["RULES", "Checked", "Finding", "Rule", "check_site"]
+__all__ = ["RULES", "Checked", "Finding", "Rule", "check_family", "check_site"]
 
 
 def __getattr__(name: str) -> object:

@@ -1,4 +1,4 @@
-"""Running the rules on one site."""
+"""Running the rules on one site, and on one family of sites."""
 
 from __future__ import annotations
 
@@ -6,9 +6,13 @@ from dataclasses import dataclass
 
 from patlint.limits import LimitReached, Limits
 from patlint.rules.finding import Finding
+from patlint.rules.kin import Kin
 from patlint.rules.registry import RULES, SILENCES
 from patlint.rules.subject import Subject
-from patlint.source.sites import Site
+from patlint.source.sites import Family, Member, Site
+
+Subjects = dict[int, Subject]
+"""Subjects by the `id` of their sites, kept where a site is asked about more than once."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -20,21 +24,39 @@ class Checked:
     undecided: tuple[str, ...]
 
 
+@dataclass(frozen=True, slots=True)
+class CheckedFamily:
+    """Findings and the limits that were reached, each with the member that it is about."""
+
+    findings: tuple[tuple[Member, Finding], ...]
+    undecided: tuple[tuple[Member, str], ...]
+
+
 def check_site(
-    site: Site, target: tuple[int, int] | None, limits: Limits, enabled: frozenset[str]
+    site: Site,
+    target: tuple[int, int] | None,
+    limits: Limits,
+    enabled: frozenset[str],
+    subjects: Subjects | None = None,
 ) -> Checked:
-    """What the `enabled` rules say of `site`. A limit silences the rule that meets it and no other."""
+    """What the `enabled` rules say of `site`. A limit silences the rule that meets it and no other.
+
+    `subjects` keeps the subject for `check_family`.
+    """
     findings: list[Finding] = []
     undecided: dict[str, None] = {}
     try:
         subject = Subject(site, target, limits)
     except LimitReached as reached:
         return Checked((), (), (reached.limit,))
+    if subjects is not None:
+        subjects[id(site)] = subject
     quiet: set[str] = set()
     order = sorted(RULES, key=lambda rule: rule.name not in _FIRST)
     for rule in order:
         if (
-            rule.name not in enabled
+            rule.check is None
+            or rule.name not in enabled
             or rule.name in quiet
             or (subject.parsed is None and rule.name != "invalid-pattern")
         ):
@@ -57,6 +79,40 @@ def check_site(
         except LimitReached as reached:
             undecided[reached.limit] = None
     return Checked(tuple(findings), inexact, tuple(undecided))
+
+
+def check_family(
+    family: Family,
+    target: tuple[int, int] | None,
+    limits: Limits,
+    enabled: frozenset[str],
+    subjects: Subjects,
+) -> CheckedFamily:
+    """What the `enabled` rules say of `family`. A limit leaves open what is asked of one member, and of no other."""
+    asked = [rule for rule in RULES if rule.check_family is not None and rule.name in enabled]
+    if not asked:
+        return CheckedFamily((), ())
+
+    def subject_of(member: Member) -> Subject | None:
+        key = id(member.site)
+        if key not in subjects:
+            try:
+                subjects[key] = Subject(member.site, target, limits)
+            except LimitReached:
+                return None  # told where the site is checked
+        return subjects[key]
+
+    kin = Kin(family, subject_of, limits)
+    findings: list[tuple[Member, Finding]] = []
+    quiet: dict[int, frozenset[str]] = {}
+    for rule in asked:
+        assert rule.check_family is not None
+        for number, finding in rule.check_family(kin):
+            if rule.name not in quiet.get(number, ()):
+                findings.append((family.members[number], finding))
+                quiet[number] = quiet.get(number, frozenset()) | SILENCES.get(rule.name, frozenset())
+    undecided = tuple((family.members[number], limit) for number, limit in sorted(kin.undecided.items()))
+    return CheckedFamily(tuple(findings), undecided)
 
 
 _FIRST = frozenset({"invalid-pattern", "swallowed-escape"})

@@ -1,4 +1,4 @@
-"""equal-siblings: two branches of one alternation have the same language."""
+"""equal-siblings: two branches of one alternation, or two patterns of a family, have the same language."""
 
 from __future__ import annotations
 
@@ -10,7 +10,8 @@ from patlint.machine.dfa import Dfa, canonical
 from patlint.machine.engine_tree import same
 from patlint.machine.nfa import Nfa
 from patlint.machine.program import compile_tree, one_character
-from patlint.rules.finding import Example, Finding, Related, Rule
+from patlint.rules.finding import Example, Finding, Related, Rule, TextWitness
+from patlint.rules.kin import Kin, Verdict
 from patlint.rules.subject import Subject
 from patlint.syntax import tree as t
 from patlint.syntax.charset import CharSet
@@ -34,6 +35,50 @@ def check(subject: Subject) -> Iterator[Finding]:
             way_out="delete it, or write what was meant in its place",
             related=(Related("the branch that is tried first", a.span),),
         )
+
+
+def check_family(kin: Kin) -> Iterator[tuple[int, Finding]]:
+    if kin.family.order == "first":
+        for number in range(1, len(kin.members)):
+            verdict = kin.verdict(number)
+            if verdict is not None and verdict.equal:
+                (earlier,) = verdict.takers
+                yield number, _family_finding(kin, number, earlier, verdict)
+    elif not kin.family.named:
+        for number, earlier in kin.twins().items():
+            yield number, _family_finding(kin, number, earlier, None)
+
+
+def _family_finding(kin: Kin, number: int, earlier: int, verdict: Verdict | None) -> Finding:
+    site, other = kin.members[number].site, kin.members[earlier].site
+    same = site.pattern == other.pattern and site.flags == other.flags
+    line = kin.line(earlier)
+    if site is other:
+        message = "this pattern has been tried on the same text before"
+    elif verdict is None and same:
+        message = f"this pattern stands a second time among these, first in line {line}"
+    else:
+        message = f"this pattern is that of line {line} {'again' if same else 'in other words'}"
+    first = kin.members[earlier].asked or other.place
+    evidence = "both take exactly the same texts"
+    if verdict is not None and not verdict.together:
+        evidence += f", and the one of line {first.line} is tried first"
+    related = kin.related(earlier, "the pattern that is tried first" if verdict else "the same pattern")
+    if site is other:
+        related = Related("the earlier test", path=other.path, place=first)
+    return Finding(
+        RULE.name,
+        RULE.level,
+        (0, len(site.pattern)),
+        message,
+        mode=kin.mode(number) if verdict else None,
+        witness=None if verdict is None or verdict.text is None else TextWitness(verdict.text),
+        proof="both patterns have the same minimal automaton"
+        + ("" if verdict else ", and match the same spans"),
+        evidence=evidence,
+        way_out="delete it, or write what was meant in its place",
+        related=(related,),
+    )
 
 
 def equal_branches(pattern: t.Pattern, limits: Limits) -> Iterator[tuple[t.Alternation, int, int]]:
@@ -105,12 +150,19 @@ def is_plain(node: t.Node) -> bool:
 RULE = Rule(
     name="equal-siblings",
     level="warning",
-    summary="two branches have the same language",
+    summary="two branches, or two patterns of a family, have the same language",
     page="""\
 An alternation tries its branches in order, so a second branch that takes the
 same texts as an earlier one is never of any use. It is either a leftover or
 a slip: something else was meant. The two need not look alike: `[0-9][0-9]`
 and `[0-9]{2}` are the same, and so are `jpe?g` and `jpg|jpeg` in a group.
+
+The same is said of patterns that work side by side: in a table, in an
+if/elif chain, in tests of one text after the other. Where the first match
+wins, two are the same if they match the same texts in the mode in which they
+are tried. Where they are all applied, or it is not known how they are used,
+only a pattern that stands twice with the same flags and the same handler
+counts, and none that is asked for by a name of its own.
 """,
     wrong=Example(
         'import re\n\nUNIT = re.compile(r"kg|lb|stone|kg")\n',
@@ -118,4 +170,5 @@ and `[0-9]{2}` are the same, and so are `jpe?g` and `jpg|jpeg` in a group.
     ),
     right=Example('import re\n\nUNIT = re.compile(r"kg|lb|stone")\n'),
     check=check,
+    check_family=check_family,
 )

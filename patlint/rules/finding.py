@@ -1,7 +1,9 @@
 """Findings and rules as data.
 
 A rule module holds one `Rule` named `RULE`. Its `check` takes a `Subject` (a site with everything that can be
-asked of its pattern, `patlint.rules.subject`) and yields `Finding`s; what is rendered where is not its affair.
+asked of its pattern, `patlint.rules.subject`) and yields `Finding`s; its `check_family` takes a `Kin` (a family,
+`patlint.rules.kin`) and yields them with the number of the member that carries each. A rule has one of the two or both.
+What is rendered where is not its affair.
 
 No finding without evidence: `witness` is a text that shows it on `re`, or `proof` says in words what was
 proven about the automata.
@@ -14,6 +16,7 @@ from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Literal, TypeAlias
 
 if TYPE_CHECKING:
+    from patlint.rules.kin import Kin
     from patlint.rules.subject import Subject
     from patlint.source.sites import Place
 
@@ -118,4 +121,5 @@ class Rule:
     page: str
     wrong: Example
     right: Example
-    check: Callable[[Subject], Iterable[Finding]] = field(repr=False)
+    check: Callable[[Subject], Iterable[Finding]] | None = field(default=None, repr=False)
+    check_family: Callable[[Kin], Iterable[tuple[int, Finding]]] | None = field(default=None, repr=False)

@@ -9,6 +9,7 @@ from dataclasses import dataclass
 from patlint.machine.priority import shown_used
 from patlint.rules.equal_siblings import equal_branches
 from patlint.rules.finding import Example, Finding, Rule
+from patlint.rules.joined import Row, joined_rows
 from patlint.rules.never import is_spelled_never
 from patlint.rules.subject import Subject
 from patlint.source.sites import SCANNING, Mode
@@ -17,7 +18,9 @@ from patlint.syntax.width import width
 
 
 @dataclass(frozen=True, slots=True)
-class _Part:
+class Part:
+    """A branch, an optional part or a repeat."""
+
     node: t.Node
     kind: str
     cut: tuple[int, int]
@@ -25,48 +28,68 @@ class _Part:
 
 
 def check(subject: Subject) -> Iterator[Finding]:
-    pattern = subject.pattern
-    parts = list(_parts(pattern.root))
-    if not parts or subject.written.inexact:
+    dead = dead_parts(subject)
+    if not dead:
         return
-    if any(use.positioned and use.mode == "fullmatch" for use in subject.uses):
-        return  # begun in the middle of a text, whose part before is not known
-    shown = _shown(subject, parts)
-    parts = [part for part in parts if not _is_read(part, shown)]
-    if not parts:
-        return
-    used = _used_spans(subject)
-    reported = [b.branches[later].span for b, _, later in equal_branches(pattern, subject.limits)]
-    for part in parts:
+    told = [node.branches[later].span for node, _, later in equal_branches(subject.pattern, subject.limits)]
+    told += [span for _, _, span in dead_rows(subject, dead)]
+    for part in dead:
         start, end = part.node.span
-        if _is_read(part, used) or is_spelled_never(part.node):
+        if any(low <= start and end <= high for low, high in told):
             continue
-        if any(low <= start and end <= high for low, high in reported):
-            continue
-        reported.append(part.node.span)
+        told.append(part.node.span)
         yield Finding(
             RULE.name,
             RULE.level,
             part.node.span,
             f"no match ever takes this {part.kind}",
-            mode=_only_mode(subject),
+            mode=only_mode(subject),
             proof="no text has a match whose way leads through it; without it language and spans are the same",
             evidence="whatever the text, another way through the pattern succeeds first or this one fails",
             way_out=_way_out(part),
         )
 
 
-def _only_mode(subject: Subject) -> Mode | None:
+def dead_parts(subject: Subject) -> list[Part]:
+    """The parts that no match takes, outer ones before those in them. Raises LimitReached."""
+    parts = list(_parts(subject.pattern.root))
+    if not parts or subject.written.inexact:
+        return []
+    if any(use.positioned and use.mode == "fullmatch" for use in subject.uses):
+        return []  # begun in the middle of a text, whose part before is not known
+    shown = _shown(subject, parts)
+    parts = [part for part in parts if not _is_read(part, shown)]
+    if not parts:
+        return []
+    used = _used_spans(subject)
+    return [part for part in parts if not _is_read(part, used) and not is_spelled_never(part.node)]
+
+
+def dead_rows(subject: Subject, dead: list[Part]) -> list[tuple[t.Alternation, Row, t.Span]]:
+    """The rows of joined alternations of which every branch is among the `dead` parts, with their whole spans."""
+    if not any(part.kind == "branch" for part in dead):
+        return []
+    spans = {part.node.span for part in dead}
+    found = []
+    for node, rows in joined_rows(subject):
+        for row in rows:
+            branches = node.branches[row.first : row.last + 1]
+            if all(branch.span in spans for branch in branches):
+                found.append((node, row, (branches[0].span[0], branches[-1].span[1])))
+    return found
+
+
+def only_mode(subject: Subject) -> Mode | None:
     modes = {mode for mode, _ in _asked(subject)}
     return modes.pop() if len(modes) == 1 else None
 
 
-def _is_read(part: _Part, used: set[t.Span]) -> bool:
+def _is_read(part: Part, used: set[t.Span]) -> bool:
     start, end = part.node.span
     return any(low >= start and high <= end for low, high in used)
 
 
-def _way_out(part: _Part) -> str:
+def _way_out(part: Part) -> str:
     if part.kind == "branch":
         return "delete it, or move it before the branch that always wins (the longer alternative first)"
     return "delete it, or say what has to follow it"
@@ -89,7 +112,7 @@ def _spans_of(subject: Subject, positions: set[int]) -> set[t.Span]:
     return {nfa.program.spans[nfa.pc_of[position]] for position in positions}
 
 
-def _shown(subject: Subject, parts: list[_Part]) -> set[t.Span]:
+def _shown(subject: Subject, parts: list[Part]) -> set[t.Span]:
     """The spans of some characters that matches read: a quick look that mostly settles the question."""
     nfa = subject.written
     places = sorted((nfa.program.spans[pc], position) for pc, position in nfa.first.items())
@@ -112,21 +135,21 @@ def _used_spans(subject: Subject) -> set[t.Span]:
     )
 
 
-def _parts(node: t.Node) -> Iterator[_Part]:
+def _parts(node: t.Node) -> Iterator[Part]:
     """Branches, optional parts and repeats that cannot be passed without reading, the outer ones first."""
     match node:
         case t.Alternation():
             for index, branch in enumerate(node.branches):
                 if width(branch)[0] > 0 and _shows_reading(branch):
                     start, end = branch.span
-                    yield _Part(branch, "branch", (start - 1, end) if index else (start, end + 1))
+                    yield Part(branch, "branch", (start - 1, end) if index else (start, end + 1))
                 yield from _parts(branch)
         case t.Repeat():
             # Leaving out a possessive repeat would change what follows: it is left only where its body fails.
             can_go = node.minimum == 0 and node.maximum != 0 and node.kind != "possessive"
             if can_go and width(node.body)[0] > 0 and _shows_reading(node):
                 kind = "optional part" if node.maximum == 1 else "repeat"
-                yield _Part(node, kind, node.span)
+                yield Part(node, kind, node.span)
             if node.kind != "possessive":
                 yield from _parts(node.body)
         case t.Look() | t.Atomic():

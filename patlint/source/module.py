@@ -20,6 +20,7 @@ from patlint.source import reasons
 from patlint.source.constants import Constants
 from patlint.source.decode import SourceError, decode, split_lines
 from patlint.source.engine import FUNCTIONS, Arguments, Engine, bind_arguments
+from patlint.source.families import Made, read_families
 from patlint.source.flags import evaluate_flags
 from patlint.source.follow import Follower
 from patlint.source.index import Index, build_index
@@ -27,7 +28,7 @@ from patlint.source.places import Text
 from patlint.source.reasons import Opaque
 from patlint.source.rows import Row
 from patlint.source.scopes import Scope
-from patlint.source.sites import Function, Module, Place, Site, Unresolved, Use
+from patlint.source.sites import Family, Function, Module, Place, Site, Unresolved, Use
 from patlint.source.spelled import Spelled
 from patlint.source.usage import Uses
 from patlint.source.waivers import read_waivers
@@ -51,17 +52,19 @@ def read_module(data: bytes | str, path: str) -> Module:
         waivers, bad_waivers = read_waivers(source.text, lines)
         sites: tuple[Site, ...] = ()
         unresolved: tuple[Unresolved, ...] = ()
+        families: tuple[Family, ...] = ()
         if mentions_re(source.text):
             reader = _Reader(tree, source.text, lines, path)
             try:
                 reader.read()
                 sites, unresolved = reader.results()
+                families = read_families(reader.index, reader.text, reader.constants, reader.made, sites)
             finally:
                 reader.index.release()
     finally:
         if collecting:
             gc.enable()
-    return Module(path, sites, unresolved, waivers, lines, bad_waivers, source.encoding)
+    return Module(path, sites, unresolved, waivers, lines, bad_waivers, source.encoding, families)
 
 
 def find_patterns(text: bytes | str, path: str = "<text>") -> tuple[Site, ...]:
@@ -103,6 +106,7 @@ class _Reader:
         self.follower = Follower(self.index, self.text, source, self.engine, self.constants, self.uses)
         self.sites: list[Site] = []
         self.unresolved: list[Unresolved] = []
+        self.made: Made = {}
 
     def results(self) -> tuple[tuple[Site, ...], tuple[Unresolved, ...]]:
         sites = sorted(merge(self.sites), key=lambda site: site.place)
@@ -247,6 +251,7 @@ class _Reader:
                 name=name,
             )
         )
+        self.made.setdefault(call, []).append((self.sites[-1], scope))
 
     def _where(self, argument: ast.expr, scope: Scope, pattern: Spelled) -> tuple[Place, int]:
         """The whole expression that gives the text: a name's definition, or the argument itself."""
@@ -254,7 +259,7 @@ class _Reader:
             if not isinstance(argument, (ast.Name, ast.Attribute)):
                 break
             try:
-                item = self.constants.origin(argument, scope) if isinstance(argument, ast.Name) else None
+                item = self.constants.rows.chosen(argument, scope) if isinstance(argument, ast.Name) else None
                 if isinstance(item, Row):
                     argument, scope = item.node, item.scope
                 elif item is not None:

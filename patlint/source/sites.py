@@ -18,6 +18,8 @@ Mode: TypeAlias = Literal["match", "fullmatch", "search"]
 Function: TypeAlias = Literal[
     "match", "fullmatch", "search", "findall", "finditer", "split", "sub", "subn", "scanner"
 ]
+FamilyKind: TypeAlias = Literal["table", "tests", "constants"]
+Order: TypeAlias = Literal["first", "independent", "unknown"]
 LooksAt: TypeAlias = Literal["truth", "span", "groups", "unknown"]
 
 SCANNING: frozenset[str] = frozenset({"findall", "finditer", "split", "sub", "subn", "scanner"})
@@ -121,6 +123,10 @@ class Site:
         index = bisect_right(self.pieces, offset, key=lambda piece: piece.start) - 1
         return self.pieces[max(index, 0)]
 
+    def whole_at(self, offset: int) -> Place:
+        """The token that the pattern character at `offset` came from."""
+        return self._piece(offset).whole
+
     def place_of(self, offset: int) -> Place:
         """The place of the pattern character at `offset`; at the pattern's end, the empty place after it."""
         if offset >= len(self.pattern):
@@ -150,6 +156,49 @@ class Site:
 
     def is_raw(self, offset: int) -> bool:
         return self._piece(offset).raw
+
+
+@dataclass(frozen=True, slots=True)
+class Trial:
+    """One place where the members of a family are tried on one text: a loop, a generator, a run of tests."""
+
+    place: Place
+    positioned: bool = False
+    """From a position within the text, the same for all members."""
+
+
+@dataclass(frozen=True, slots=True)
+class Member:
+    """One pattern of a family.
+
+    `modes` has one mode for each of the family's trials. `takes`: where it matches, no later member is tried.
+    Members of one `step` are asked together, and their order does not matter. `rest` spells what else stands in its
+    row: None where that is not known.
+    """
+
+    site: Site
+    modes: tuple[Mode, ...] = ()
+    takes: bool = True
+    step: int = 0
+    rest: str | None = ""
+    asked: Place | None = None
+    """The test that asks for this member alone."""
+
+
+@dataclass(frozen=True, slots=True)
+class Family:
+    """Patterns that work side by side, in their order.
+
+    `order`: "first" where the first member that matches ends each trial, "independent" where all are applied or
+    one is looked up by key, "unknown" where not all is seen of what happens to them. `named`: each member has
+    a name of its own by which it is asked for.
+    """
+
+    kind: FamilyKind
+    order: Order
+    members: tuple[Member, ...]
+    trials: tuple[Trial, ...] = ()
+    named: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -190,3 +239,4 @@ class Module:
     """Comments that begin like a waiver and are none, with what is wrong about each."""
     encoding: str = "utf-8"
     """The codec that turns the text back into the file's bytes (`utf-8-sig` where it began with a mark)."""
+    families: tuple[Family, ...] = ()

@@ -1,0 +1,81 @@
+"""The families of one file: patterns that work side by side, from the calls that made them.
+
+`read_families` puts together what `tables` (displays and the loops through them) and `chains` (tests one after
+the other) find. A family of which no member's text is known has no place here, nor has one with a single member.
+
+>>> from patlint.source import read_module
+>>> text = "import re\\ndef f(s):\\n if re.match('a', s): return 1\\n elif re.match('b', s): return 2\\n"
+>>> [[member.site.pattern for member in each.members] for each in read_module(text, "a.py").families]
+[['a', 'b']]
+"""
+
+from __future__ import annotations
+
+import ast
+from collections.abc import Iterable, Iterator, Mapping
+from dataclasses import replace
+from typing import TypeAlias
+
+from patlint.source.chains import Chains
+from patlint.source.constants import Constants
+from patlint.source.index import Index
+from patlint.source.places import Text
+from patlint.source.scopes import Scope
+from patlint.source.sites import Family, Place, Site
+from patlint.source.tables import Tables
+from patlint.source.trials import TESTING, Test, read_test
+
+Made: TypeAlias = dict[ast.Call, list[tuple[Site, Scope]]]
+"""The sites of each call that gives a pattern to `re`, in the order of their rows, with the scope of the call."""
+
+
+def read_families(
+    index: Index, text: Text, constants: Constants, made: Made, sites: Iterable[Site]
+) -> tuple[Family, ...]:
+    """The families of a file whose sites, merged, are `sites`; in the order of their first members."""
+    if sum(map(len, made.values())) < 2:
+        return ()
+    final = {(site.place, site.pattern, site.flags): site for site in sites}
+    found = list(Tables(index, text, constants.names, made).find())
+    found += Chains(index, text, _tests(index, constants, made)).find()
+    settled = filter(None, (_settled(family, final) for family in found))
+    return tuple(sorted(settled, key=lambda family: family.members[0].site.place))
+
+
+def _settled(family: Family, final: Mapping[tuple[Place, str | bytes, int], Site]) -> Family | None:
+    """The family with the sites that the file has in the end."""
+    members = []
+    for member in family.members:
+        site = final.get((member.site.place, member.site.pattern, member.site.flags))
+        if site is not None:
+            members.append(replace(member, site=site))
+    if len({id(member.site) for member in members}) < 2:
+        return None
+    return replace(family, members=tuple(members))
+
+
+def _tests(index: Index, constants: Constants, made: Made) -> dict[ast.Call, tuple[Test, Site, Scope]]:
+    """The calls that test a text by one known pattern."""
+    engine = constants.engine
+    found: dict[ast.Call, tuple[Test, Site, Scope]] = {}
+    for call, rows in made.items():
+        if len(rows) == 1 and rows[0][0].function in TESTING:
+            site, scope = rows[0]
+            test = read_test(call, scope, engine)
+            if test is not None:
+                found[call] = (test, site, scope)
+    for node, scope in _methods(index):
+        above = index.parents.get(node)
+        if isinstance(above, ast.Call) and above.func is node and above not in found:
+            maker = constants.names.maker(node.value, scope)
+            rows = made.get(maker[0], []) if maker else []
+            test = read_test(above, scope, engine)
+            if len(rows) == 1 and test is not None:
+                found[above] = (test, rows[0][0], scope)
+    return dict(sorted(found.items(), key=lambda item: (item[0].lineno, item[0].col_offset)))
+
+
+def _methods(index: Index) -> Iterator[tuple[ast.Attribute, Scope]]:
+    for name in TESTING:
+        for use in index.reads.get(name, ()):
+            yield use.node, use.scope

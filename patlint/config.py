@@ -9,6 +9,7 @@ wrong type or an unknown rule is a `ConfigError` that names the file, the key an
     skip = ["final-newline"]        # rules that are off
     only = []                       # if not empty: the only rules that are on
     exclude = ["vendor", "tests/data/**"]
+    ledger = "patlint.ledger"       # known findings, left out of the report
     levels = { nullable = "error", overlapping-siblings = "note", shorter-equivalent = "off" }
     limits = { states = 5000 }
     per-path = { "tests/**" = { skip = ["nullable"], levels = { final-newline = "off" } } }
@@ -74,6 +75,7 @@ class Settings:
     exclude: tuple[str, ...] = ()
     levels: tuple[tuple[str, LevelName], ...] = ()
     per_path: tuple[PathSettings, ...] = ()
+    ledger: str | None = None
 
     def relative(self, path: str) -> str:
         """`path` as globs see it: relative to `root`, with `/`; as it is where it lies elsewhere."""
@@ -106,6 +108,10 @@ class Settings:
         off = {rule for rule, level in levels.items() if level == "off"}
         return frozenset(self.rules) & asked - skip - off, levels
 
+    def asks(self, path: str, rule: str) -> bool:
+        """Whether a finding of `rule` in `path` would be told; a rule that does not exist has none to tell."""
+        return rule not in self.rules or rule in self.for_path(path)[0]
+
 
 def load(
     rules: Iterable[str], start: str | os.PathLike[str] = ".", config: str | os.PathLike[str] | None = None
@@ -136,7 +142,7 @@ def load(
         table = _tool_table(path, data) if _PYPROJECT_KEYS & data.keys() else data
         project = _project_table(data) or project
     elif root is None:
-        root = _repository(Path(start))
+        root = repository(Path(start))
     settings = Settings(_default_target(project), tuple(rules), None if root is None else str(root))
     return settings if path is None else _checked(settings, table, str(path))
 
@@ -158,7 +164,8 @@ def _project_files(start: Path) -> Iterator[Path]:
             return
 
 
-def _repository(start: Path) -> Path | None:
+def repository(start: Path) -> Path | None:
+    """The nearest directory from `start` upwards that is the top of a repository."""
     full = Path(os.path.abspath(start))
     return next((each for each in (full, *full.parents) if (each / ".git").exists()), None)
 
@@ -213,6 +220,8 @@ def _checked(settings: Settings, table: dict[str, Any], path: str) -> Settings:
             changes[key] = check.rule_set(table[key], key)
     if "exclude" in table:
         changes["exclude"] = tuple(check.texts(table["exclude"], "exclude"))
+    if "ledger" in table:
+        changes["ledger"] = str(Path(path).parent / check.text(table["ledger"], "ledger"))
     if "levels" in table:
         changes["levels"] = check.level_table(table["levels"], "levels")
     if "limits" in table:

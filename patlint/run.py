@@ -13,7 +13,7 @@ import os
 import signal
 from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass, replace
-from typing import Final
+from typing import TYPE_CHECKING, Final
 
 from patlint.cache import fetch, fingerprint, folder_of, key_of, store
 from patlint.config import Settings
@@ -21,6 +21,9 @@ from patlint.files import STDIN, find_files, read_file, read_source
 from patlint.outcome import Outcome, failed, internal, lint_bytes
 from patlint.placed import PlacedFinding
 from patlint.target import Target, running_target
+
+if TYPE_CHECKING:
+    from patlint.ledger import Entry
 
 FILES_PER_PROCESS: Final = 12
 """A second process is started for every so many files that the cache does not know: starting one costs about
@@ -33,12 +36,16 @@ Progress = Callable[[int, int], None]
 class RunResult:
     """The outcomes of a run. `problems` are lines for standard error, those of the outcomes included.
 
-    `skipped` counts files that were found but not linted: excluded, not readable, not Python.
+    `skipped` counts files that were found but not linted: excluded, not readable, not Python. Beside a
+    ledger, `known` counts the findings that are in it and not here, and `gone` are its entries without one.
     """
 
     outcomes: tuple[Outcome, ...]
     problems: tuple[str, ...]
     skipped: int
+    ledger: str | None = None
+    known: int = 0
+    gone: tuple[Entry, ...] = ()
 
     @property
     def findings(self) -> tuple[PlacedFinding, ...]:

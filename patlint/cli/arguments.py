@@ -4,17 +4,15 @@ from __future__ import annotations
 
 import argparse
 import os
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
+from dataclasses import dataclass
 from typing import TYPE_CHECKING, NoReturn
 
+from patlint.cli.screen import CallError as CallError
 from patlint.nearest import nearest
 
 if TYPE_CHECKING:
     from patlint.config import Settings
-
-
-class CallError(Exception):
-    """A wrong call; the message is one line."""
 
 
 class Parser(argparse.ArgumentParser):
@@ -27,9 +25,18 @@ class Parser(argparse.ArgumentParser):
             description=description,
             epilog=epilog,
             allow_abbrev=False,
+            add_help=False,
             formatter_class=argparse.RawDescriptionHelpFormatter,
         )
+        self._positionals.title = "arguments"
         self._optionals.title = "options"
+        self.add_argument("-h", "--help", action="help", help="show this text and nothing else")
+
+    def print_help(self, file: object = None) -> None:
+        from patlint.cli.screen import output
+
+        with output() as write:
+            write(self.format_help())
 
     def error(self, message: str) -> NoReturn:
         raise CallError(f"{message.removeprefix('argument ')}; see {self.prog} --help")
@@ -49,17 +56,23 @@ class Parser(argparse.ArgumentParser):
         return known
 
 
-def one_of(*words: str) -> Callable[[str], str]:
+@dataclass(frozen=True, slots=True)
+class OneOf:
     """A type for one of `words`."""
 
-    def read(value: str) -> str:
-        if value not in words:
+    words: tuple[str, ...]
+
+    def __call__(self, value: str) -> str:
+        if value not in self.words:
             raise argparse.ArgumentTypeError(
-                f"{value!r} is not one of {', '.join(words)}{nearest(value, words)}"
+                f"{value!r} is not one of {', '.join(self.words)}{nearest(value, self.words)}"
             )
         return value
 
-    return read
+
+def one_of(*words: str) -> OneOf:
+    """A type for one of `words`."""
+    return OneOf(words)
 
 
 def count(value: str) -> int:
@@ -78,14 +91,19 @@ def rule_names(values: Sequence[str], rules: Sequence[str], option: str) -> froz
     return frozenset(names)
 
 
-def add_file_options(parser: Parser) -> None:
+def add_file_options(parser: Parser, stdin: bool = True) -> None:
     """PATHS and the options that say how files are found and read."""
-    parser.add_argument(
-        "paths", nargs="*", metavar="PATHS", help="files and directories, - for standard input (default: .)"
-    )
-    parser.add_argument(
-        "--as", dest="name", metavar="NAME", help="name of standard input in the report (default: <stdin>)"
-    )
+    also = ", - for standard input" if stdin else ""
+    parser.add_argument("paths", nargs="*", metavar="PATHS", help=f"files and directories{also} (default: .)")
+    if stdin:
+        parser.add_argument(
+            "--as",
+            dest="name",
+            metavar="NAME",
+            help="name of standard input in the report (default: <stdin>)",
+        )
+    else:
+        parser.set_defaults(name=None)
     parser.add_argument(
         "--target",
         metavar="VERSION",
@@ -99,11 +117,59 @@ def add_file_options(parser: Parser) -> None:
     )
 
 
+def add_run_options(parser: Parser) -> None:
+    """The options of the commands that ask the rules."""
+    parser.add_argument(
+        "--only",
+        action="append",
+        default=[],
+        metavar="RULE",
+        help="use this rule alone; may be repeated (default: all rules)",
+    )
+    parser.add_argument(
+        "--skip",
+        action="append",
+        default=[],
+        metavar="RULE",
+        help="leave this rule out; may be repeated (default: none)",
+    )
+    parser.add_argument(
+        "--ledger",
+        metavar="FILE",
+        help="findings that are known and not told (default: the configuration's, else none)",
+    )
+    parser.add_argument(
+        "--jobs",
+        type=count,
+        metavar="N",
+        help="processes (default: as many as there are cores, one for a few files)",
+    )
+    parser.add_argument(
+        "--no-cache", action="store_true", help="neither read nor write .patlint-cache (default: both)"
+    )
+
+
+def run_settings(options: argparse.Namespace) -> Settings:
+    """`load_settings` with --only and --skip applied."""
+    from dataclasses import replace
+
+    from patlint.rules.registry import NAMES
+
+    settings = load_settings(options, NAMES)
+    if options.only:
+        settings = replace(settings, only=rule_names(options.only, NAMES, "--only"))
+    if options.skip:
+        settings = replace(settings, skip=settings.skip | rule_names(options.skip, NAMES, "--skip"))
+    if settings.only and settings.only <= settings.skip:
+        raise CallError("no rule is left on: each rule that is asked for is left out as well")
+    return settings
+
+
 def load_settings(options: argparse.Namespace, rules: Sequence[str]) -> Settings:
     """The configuration for the given paths, with --target applied; --as without - is refused."""
     from dataclasses import replace
 
-    from patlint.config import load
+    from patlint.config import ConfigError, load
     from patlint.target import target_named, unknown_target
 
     if not options.paths:
@@ -113,7 +179,10 @@ def load_settings(options: argparse.Namespace, rules: Sequence[str]) -> Settings
     first = options.paths[0]
     if first == "-":
         first = os.path.dirname(options.name or "") or "."
-    settings = load(rules, start=first, config=options.config)
+    try:
+        settings = load(rules, start=first, config=options.config)
+    except ConfigError as error:
+        raise CallError(str(error)) from None
     if options.target is not None:
         target = target_named(options.target)
         if target is None:

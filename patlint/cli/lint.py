@@ -1,25 +1,28 @@
-"""`patlint lint`: findings in files, as text or JSON."""
+"""`patlint lint`: findings in files, as text, JSON or SARIF."""
 
 from __future__ import annotations
 
+import os
 from collections.abc import Sequence
 from dataclasses import replace
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Final
 
 from patlint.cli.arguments import (
     CallError,
     Parser,
     add_file_options,
-    count,
-    load_settings,
+    add_run_options,
     one_of,
-    rule_names,
+    run_settings,
 )
 from patlint.cli.screen import output, progress_line, say, style
 
 if TYPE_CHECKING:
-    from patlint.config import FailOn
+    from patlint.config import FailOn, Settings
+    from patlint.ledger import Ledger
     from patlint.run import RunResult
+
+FORMATS: Final = ("text", "json", "sarif")
 
 
 def parser() -> Parser:
@@ -36,10 +39,10 @@ def parser() -> Parser:
     add_file_options(made)
     made.add_argument(
         "--format",
-        type=one_of("text", "json"),
+        type=one_of(*FORMATS),
         default="text",
         metavar="FORMAT",
-        help="text or json (default: text)",
+        help="text, json or sarif (SARIF 2.1.0) (default: text)",
     )
     made.add_argument("--output", metavar="FILE", help="write the report there (default: standard output)")
     made.add_argument(
@@ -48,28 +51,11 @@ def parser() -> Parser:
         metavar="LEVEL",
         help="lowest level that makes the exit status 1: error, warning, note or never (default: warning)",
     )
+    add_run_options(made)
     made.add_argument(
-        "--only",
-        action="append",
-        default=[],
-        metavar="RULE",
-        help="use this rule alone; may be repeated (default: all rules)",
-    )
-    made.add_argument(
-        "--skip",
-        action="append",
-        default=[],
-        metavar="RULE",
-        help="leave this rule out; may be repeated (default: none)",
-    )
-    made.add_argument(
-        "--jobs",
-        type=count,
-        metavar="N",
-        help="processes (default: as many as there are cores, one for a few files)",
-    )
-    made.add_argument(
-        "--no-cache", action="store_true", help="neither read nor write .patlint-cache (default: both)"
+        "--no-ledger",
+        action="store_true",
+        help="tell the known findings too (default: leave out what the configuration's ledger holds)",
     )
     made.add_argument(
         "--verbose",
@@ -82,17 +68,14 @@ def parser() -> Parser:
 def run(given: Sequence[str]) -> int:
     """Run the command; the exit status."""
     options = parser().read(given)
-    from patlint.rules.registry import NAMES
-
-    settings = load_settings(options, NAMES)
-    if options.only:
-        settings = replace(settings, only=rule_names(options.only, NAMES, "--only"))
-    if options.skip:
-        settings = replace(settings, skip=settings.skip | rule_names(options.skip, NAMES, "--skip"))
-    if settings.only and settings.only <= settings.skip:
-        raise CallError("no rule is left on: each rule that is asked for is left out as well")
+    settings = run_settings(options)
     if options.fail_on:
         settings = replace(settings, fail_on=options.fail_on)
+    if options.no_ledger and options.ledger:
+        raise CallError("--ledger and --no-ledger exclude each other")
+    named = None if options.no_ledger else ledger_path(options.ledger, settings)
+    ledger = None if named is None else read_ledger(named)
+    _check_output(options.output)
     from patlint.run import lint_paths
 
     with progress_line() as progress:
@@ -106,17 +89,52 @@ def run(given: Sequence[str]) -> int:
         )
     for line in result.problems:
         say(line)
+    if ledger is not None:
+        result = beside_ledger(result, ledger, settings, options.paths)
+    status = exit_status(result, settings.fail_on)
     with output(options.output) as write:
         if options.format == "json":
             from patlint.report.json import lint_report
 
             write(lint_report(result, settings.target))
+        elif options.format == "sarif":
+            write(_sarif(result, settings, status, options.verbose))
         else:
             from patlint.report.text import lint_report as text_report
 
             for line in text_report(result, style(to_file=options.output is not None), options.verbose):
                 write(line + "\n")
-    return exit_status(result, settings.fail_on)
+    return status
+
+
+def ledger_path(option: str | None, settings: Settings) -> str | None:
+    """The ledger that is meant, as short as it can be told from here."""
+    if option is not None or settings.ledger is None:
+        return option
+    full = os.path.abspath(settings.ledger)
+    here = os.path.join(os.getcwd(), "")
+    return full[len(here) :] if full.startswith(here) else full
+
+
+def read_ledger(path: str) -> Ledger:
+    """The ledger at `path`; a CallError says what is wrong with it."""
+    from patlint.ledger import LedgerError, load
+
+    try:
+        return load(path)
+    except LedgerError as error:
+        missing = "" if os.path.lexists(path) else "; `patlint ledger write` makes one"
+        raise CallError(f"{error}{missing}") from None
+
+
+def beside_ledger(result: RunResult, ledger: Ledger, settings: Settings, paths: Sequence[str]) -> RunResult:
+    """The run without the findings that are in the ledger."""
+    from patlint.ledger import judge
+
+    judged = judge(ledger, result.outcomes, paths, settings.asks)
+    return replace(
+        result, outcomes=judged.outcomes, ledger=ledger.path, known=len(judged.known), gone=judged.gone
+    )
 
 
 def exit_status(result: RunResult, fail_on: FailOn) -> int:
@@ -127,3 +145,33 @@ def exit_status(result: RunResult, fail_on: FailOn) -> int:
         return 2
     failing = () if fail_on == "never" else LEVELS[: LEVELS.index(fail_on) + 1]
     return int(any(finding.level in failing for finding in result.findings))
+
+
+def _check_output(path: str | None) -> None:
+    """A report that cannot be written is better told before the work than after it."""
+    if path is None:
+        return
+    folder = os.path.dirname(path) or "."
+    if os.path.isdir(path):
+        raise CallError(f"--output {path}: this is a directory")
+    if not os.path.isdir(folder):
+        raise CallError(f"--output {path}: there is no directory {folder}")
+
+
+def _sarif(result: RunResult, settings: Settings, status: int, verbose: bool) -> str:
+    from pathlib import Path
+
+    from patlint.config import OFF_BY_DEFAULT, repository
+    from patlint.report.sarif import lint_report
+    from patlint.rules.registry import RULES
+
+    root = repository(Path())
+    return lint_report(
+        result,
+        settings.target,
+        RULES,
+        status,
+        off=OFF_BY_DEFAULT,
+        root="." if root is None else str(root),
+        verbose=verbose,
+    )

@@ -17,7 +17,9 @@ COMMANDS: Final = {
     "list": "list every pattern with its place, its flags and how it is used",
     "inspect": "show everything that is known about one pattern",
     "mend": "put proven shorter equivalents in the place of patterns",
+    "ledger": "keep a file of known findings, so that only new ones are told",
     "rules": "list the rules, or explain one with an example",
+    "completion": "give the script with which a shell completes patlint's words",
 }
 
 EXIT_WRONG: Final = 2
@@ -43,8 +45,12 @@ a file that could not be read
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run the command line `arguments` (default: those of the process) and give the exit status."""
     given = list(sys.argv[1:] if arguments is None else arguments)
+    from patlint.cli.screen import CallError
+
     try:
         return _run(given)
+    except CallError as error:
+        return complain(str(error))
     except KeyboardInterrupt:
         # On 3.10 the worker pool's own clean-up can fail at exit, and would say so on the terminal.
         with suppress(OSError, ValueError):
@@ -54,8 +60,18 @@ def main(arguments: Sequence[str] | None = None) -> int:
 
 def complain(message: str) -> int:
     """Say one line on standard error; the exit status of a wrong call."""
-    print(f"patlint: {message}", file=sys.stderr)
+    from patlint.cli.screen import say
+
+    say(f"patlint: {message}")
     return EXIT_WRONG
+
+
+def _give(text: str) -> int:
+    from patlint.cli.screen import output
+
+    with output() as write:
+        write(text)
+    return 0
 
 
 def _run(given: list[str]) -> int:
@@ -63,15 +79,13 @@ def _run(given: list[str]) -> int:
         return complain("no command; see patlint --help")
     command, rest = given[0], given[1:]
     if command in ("-h", "--help"):
-        print(
-            _HELP.format(commands="\n".join(f"  {name:<9}{what}" for name, what in COMMANDS.items())), end=""
+        return _give(
+            _HELP.format(commands="\n".join(f"  {name:<12}{what}" for name, what in COMMANDS.items()))
         )
-        return 0
     if command == "--version":
         from patlint import __version__
 
-        print(f"patlint {__version__}")
-        return 0
+        return _give(f"patlint {__version__}\n")
     if command not in COMMANDS:
         from patlint.nearest import nearest
 
@@ -80,11 +94,4 @@ def _run(given: list[str]) -> int:
         return complain(f"unknown {kind} {command!r}{nearest(command, words)}")
     from importlib import import_module
 
-    from patlint.cli.arguments import CallError
-    from patlint.config import ConfigError
-
-    try:
-        status = import_module(f"patlint.cli.{command}").run(rest)
-    except (CallError, ConfigError) as error:
-        return complain(str(error))
-    return int(status)
+    return int(import_module(f"patlint.cli.{command}").run(rest))

@@ -7,13 +7,10 @@ from __future__ import annotations
 
 import contextlib
 import os
-import shutil
 import sys
 import time
 from collections.abc import Callable, Iterator
 from typing import TYPE_CHECKING, Final
-
-from patlint.cli.arguments import CallError
 
 if TYPE_CHECKING:
     from patlint.report.text import Style
@@ -23,6 +20,10 @@ PLAIN_COLUMNS: Final = 80
 """Width of a report that does not go to a terminal."""
 QUIET_SECONDS: Final = 1.0
 """A run shows its progress only after this time, and then at most ten times a second."""
+
+
+class CallError(Exception):
+    """A wrong call, or a report that cannot be written; the message is one line."""
 
 
 def style(to_file: bool = False) -> Style:
@@ -35,44 +36,56 @@ def style(to_file: bool = False) -> Style:
     if not sys.stdout.isatty():
         return Style(PLAIN_COLUMNS, encoding)
     colour = not os.environ.get("NO_COLOR") and os.environ.get("TERM") != "dumb"
-    return Style(max(shutil.get_terminal_size((PLAIN_COLUMNS, 24)).columns, 40), encoding, colour)
+    from shutil import get_terminal_size
+
+    return Style(max(get_terminal_size((PLAIN_COLUMNS, 24)).columns, 40), encoding, colour)
 
 
 def say(line: str) -> None:
-    """One line on standard error, whatever its characters."""
+    """One line on standard error, whatever its characters; where that is closed or full there is no telling."""
+    if sys.stderr is None:
+        return
     encoding = sys.stderr.encoding or "ascii"
-    print(line.encode(encoding, "backslashreplace").decode(encoding), file=sys.stderr)
+    with contextlib.suppress(OSError):
+        print(line.encode(encoding, "backslashreplace").decode(encoding), file=sys.stderr)
 
 
 @contextlib.contextmanager
 def output(path: str | None = None) -> Iterator[Callable[[str], object]]:
     """A function that writes text to the file `path`, or to standard output if it is None.
 
-    A reader of standard output that leaves early ends the block and nothing else.
+    The file is written at the end, as a whole or not at all. A reader of standard output that leaves early ends
+    the block and nothing else. CallError where the text cannot be written.
     """
     if path is not None:
+        from patlint.whole import write_whole
+
+        parts: list[str] = []
+        yield parts.append
         try:
-            file = open(path, "w", encoding="utf-8", errors="backslashreplace")  # noqa: SIM115
+            write_whole(path, "".join(parts))
         except OSError as error:
             raise CallError(f"--output {path}: {error.strerror or error}") from None
-        with file:
-            yield file.write
         return
+    if sys.stdout is None:
+        raise CallError("standard output is closed")
     reconfigure = getattr(sys.stdout, "reconfigure", None)
     if reconfigure is not None:
         reconfigure(errors="backslashreplace")
     try:
         yield sys.stdout.write
         sys.stdout.flush()
-    except BrokenPipeError:
+    except OSError as error:
         # Python flushes standard output once more at exit: give it somewhere to go.
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        if not isinstance(error, BrokenPipeError):
+            raise CallError(f"standard output: {error.strerror or error}") from None
 
 
 @contextlib.contextmanager
 def progress_line() -> Iterator[Progress | None]:
     """A function that shows `done of total` on one line of standard error; None where that is no terminal."""
-    if not sys.stderr.isatty() or os.environ.get("TERM") == "dumb":
+    if sys.stderr is None or not sys.stderr.isatty() or os.environ.get("TERM") == "dumb":
         yield None
         return
     begun = time.monotonic()

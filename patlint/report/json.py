@@ -28,6 +28,15 @@ def lint_report(result: RunResult, target: Target) -> str:
             "target": target_name(target),
             "summary": summary(result),
             "findings": [finding_object(each) for each in result.findings],
+            "gone": [
+                {
+                    "rule": each.rule,
+                    "path": each.path,
+                    "pattern": None if each.pattern is None else as_text(each.pattern),
+                    "bytes": isinstance(each.pattern, bytes),
+                }
+                for each in result.gone
+            ],
         }
     )
 
@@ -59,7 +68,8 @@ def list_report(inventories: Sequence[Inventory]) -> str:
 
 
 def summary(result: RunResult) -> dict[str, int]:
-    """Counts of a run: files linted and skipped; patterns found, unresolved, inexact and undecided."""
+    """Counts of a run: files linted and skipped; patterns found, unresolved, inexact and undecided; findings
+    that a waiver or the ledger holds back."""
     return {
         "files": result.files,
         "skipped": result.skipped,
@@ -67,6 +77,8 @@ def summary(result: RunResult) -> dict[str, int]:
         "unresolved": sum(len(each.unresolved) for each in result.outcomes),
         "inexact": sum(len(each.inexact) for each in result.outcomes),
         "undecided": sum(len(each.undecided) for each in result.outcomes),
+        "waived": sum(each.waived for each in result.outcomes),
+        "known": result.known,
     }
 
 
@@ -86,6 +98,9 @@ def finding_object(finding: PlacedFinding) -> dict[str, Any]:
         "bytes": isinstance(finding.pattern, bytes),
         "flags": list(finding.flags),
         "mode": finding.mode,
+        "evidence": finding.evidence,
+        "proof": finding.proof,
+        "advice": finding.way_out,
         "witness": witness_object(finding.witness),
         "suggestion": None
         if suggestion is None

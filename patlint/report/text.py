@@ -74,6 +74,14 @@ def lint_report(result: RunResult, style: Style, verbose: bool = False) -> Itera
         if remarks:
             yield from remarks
             yield ""
+    if result.gone:
+        for entry in result.gone if verbose else ():
+            shown = "" if entry.pattern is None else f": {pattern_expression(entry.pattern)}"
+            yield f"{_one_line(entry.path)}: gone: {entry.rule}{shown}"
+        many = "1 entry is" if len(result.gone) == 1 else f"{len(result.gone)} entries are"
+        name = _one_line(result.ledger or "")
+        yield f"{name}: {many} gone from the code; `patlint ledger prune` takes out what is gone"
+        yield ""
     yield summary_line(result)
 
 
@@ -95,20 +103,20 @@ def finding_block(finding: PlacedFinding, style: Style) -> Iterator[str]:
         label = ""
     evidence = finding.evidence or finding.proof
     if evidence:
-        yield _row("evidence", _one_line(evidence), style)
+        yield from _rows("evidence", _one_line(evidence), style)
     if finding.witness is not None:
         yield _row("text", witness_expression(finding.witness), style)
     if finding.suggestion is not None:
         yield _row("instead", pattern_expression(finding.suggestion.pattern), style)
         yield _row("", _KEEPS[finding.suggestion.keeps], style)
     for related in finding.related:
-        where = f"{_one_line(related.path)}:{related.line}:{related.column}"
+        # Not in the form of a first line: editors would take the label for a piece of the file's name.
+        where = f"line {related.line}, column {related.column}"
+        if related.path != finding.path:
+            where += f" of {_one_line(related.path)}"
         yield _row("see", f"{where}: {_one_line(related.message)}", style)
     if finding.way_out:
-        label = "advice"
-        for line in textwrap.wrap(finding.way_out, max(style.columns - LABEL, 30)):
-            yield _row(label, line, style)
-            label = ""
+        yield from _rows("advice", finding.way_out, style)
 
 
 def summary_line(result: RunResult) -> str:
@@ -117,12 +125,10 @@ def summary_line(result: RunResult) -> str:
     levels = [finding.level for finding in result.findings]
     looked = f"{_count(counts['files'], 'file')}, {_count(counts['patterns'], 'pattern')}"
     found = ", ".join(_count(levels.count(level), level) for level in LEVELS)
-    waived = sum(each.waived for each in result.outcomes)
-    rest = [
-        (waived, "waived"),
-        *((counts[key], key) for key in ("unresolved", "inexact", "undecided", "skipped")),
-    ]
-    return f"{looked}: {found}; " + ", ".join(f"{number} {word}" for number, word in rest)
+    rest = ["waived", "unresolved", "inexact", "undecided", "skipped"]
+    if result.ledger is not None:
+        rest.insert(0, "known")
+    return f"{looked}: {found}; " + ", ".join(f"{counts[word]} {word}" for word in rest)
 
 
 def _count(number: int, word: str) -> str:
@@ -149,6 +155,14 @@ def _remarks(outcome: Outcome) -> Iterator[str]:
 
 def _row(label: str, text: str, style: Style) -> str:
     return "  " + style.paint(label, "label") + " " * (LABEL - 2 - len(label)) + text
+
+
+def _rows(label: str, text: str, style: Style) -> Iterator[str]:
+    """Prose in as many rows as it needs."""
+    width = max(style.columns - LABEL, 30)
+    for line in textwrap.wrap(text, width, break_long_words=False, break_on_hyphens=False):
+        yield _row(label, line, style)
+        label = ""
 
 
 def _one_line(text: str) -> str:

@@ -27,7 +27,7 @@ WRONG = [
     (("lint", "-z"), "unknown option '-z'"),
     (
         ("lint", "--format", "jsn"),
-        "--format: 'jsn' is not one of text, json; the nearest is json; see patlint lint --help",
+        "--format: 'jsn' is not one of text, json, sarif; the nearest is json; see patlint lint --help",
     ),
     (("lint", "--format"), "--format: expected one argument; see patlint lint --help"),
     (
@@ -46,7 +46,7 @@ WRONG = [
     (("lint", "--jobs", "two"), "--jobs: 'two' is not a whole number above 0; see patlint lint --help"),
     (("lint", "--as", "x.py"), "--as names standard input, but - is not among the paths"),
     (("lint", "--config", "none.toml"), "none.toml: cannot be read: No such file or directory"),
-    (("lint", "--output", "no/where", "a.py"), "--output no/where: No such file or directory"),
+    (("lint", "--output", "no/where", "a.py"), "--output no/where: there is no directory no"),
     (("list", "--formt", "json"), "unknown option '--formt'; the nearest is --format"),
     (("rules", "nulable"), "unknown rule 'nulable'; the nearest is nullable"),
     (("rules", "nullable", "nullable"), "one argument too many: 'nullable'; see patlint rules --help"),

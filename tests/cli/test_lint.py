@@ -35,7 +35,16 @@ def test_standard_input_as_json(patlint: Patlint) -> None:
     ran = patlint("lint", "-", "--as", "x.py", "--format", "json", stdin=SLOW)
     assert (ran.status, ran.err) == (1, "")
     report = json.loads(ran.out)
-    assert list(report["summary"]) == ["files", "skipped", "patterns", "unresolved", "inexact", "undecided"]
+    assert list(report["summary"]) == [
+        "files",
+        "skipped",
+        "patterns",
+        "unresolved",
+        "inexact",
+        "undecided",
+        "waived",
+        "known",
+    ]
     (finding,) = [each for each in report["findings"] if each["rule"] == "exponential-ambiguity"]
     assert (finding["path"], finding["line"], finding["level"]) == ("x.py", 2, "error")
     witness = finding["witness"]

@@ -6,6 +6,7 @@ import json
 
 from patlint import __version__
 from patlint.inventory import Inventory, Listed
+from patlint.ledger import Entry
 from patlint.outcome import Outcome, Remark
 from patlint.placed import PlacedFinding, RelatedPlace
 from patlint.report.json import lint_report, list_report
@@ -27,7 +28,9 @@ SLOW = PlacedFinding(
     witness=SlowWitness("", "a", "!", "exponential", ((5, 100),)),
     suggestion=Suggestion("a+$", "spans"),
     related=(RelatedPlace("here", "crane.py", 1, 2, 3, 4, (0, 1)),),
-    evidence="not in the JSON",
+    evidence="on this text it takes long",
+    proof="the automaton says so",
+    way_out="write a+",
     span=(0, 4),
 )
 BYTES = PlacedFinding(
@@ -54,7 +57,7 @@ def test_lint_report() -> None:
     assert text.isascii()
     assert text.endswith("}\n")
     report = json.loads(text)
-    assert list(report) == ["patlint", "target", "summary", "findings"]
+    assert list(report) == ["patlint", "target", "summary", "findings", "gone"]
     assert report["patlint"] == __version__
     assert report["target"] == "3.12"
     assert report["summary"] == {
@@ -64,7 +67,10 @@ def test_lint_report() -> None:
         "unresolved": 1,
         "inexact": 2,
         "undecided": 3,
+        "waived": 1,
+        "known": 0,
     }
+    assert report["gone"] == []
     slow, raw, surrogate, waiver = report["findings"]
     assert slow == {
         "rule": "exponential-ambiguity",
@@ -79,6 +85,9 @@ def test_lint_report() -> None:
         "bytes": False,
         "flags": ["IGNORECASE"],
         "mode": "match",
+        "evidence": "on this text it takes long",
+        "proof": "the automaton says so",
+        "advice": "write a+",
         "witness": {"prefix": "", "pump": "a", "suffix": "!", "growth": "exponential"},
         "suggestion": {"pattern": "a+$", "keeps": "spans"},
         "related": [
@@ -97,6 +106,19 @@ def test_lint_report() -> None:
     assert waiver["pattern"] is waiver["mode"] is waiver["witness"] is waiver["suggestion"] is None
     assert waiver["flags"] == waiver["related"] == []
     assert all(list(each) == list(slow) for each in report["findings"])
+
+
+def test_a_run_beside_a_ledger() -> None:
+    gone = (
+        Entry("", "dock.py", "nullable", b"\xff*", ""),
+        Entry("", "quay.py", "stale-waiver", None, ""),
+    )
+    report = json.loads(lint_report(RunResult((), (), 0, "known", 7, gone), (3, 12)))
+    assert report["summary"]["known"] == 7
+    assert report["gone"] == [
+        {"rule": "nullable", "path": "dock.py", "pattern": "\xff*", "bytes": True},
+        {"rule": "stale-waiver", "path": "quay.py", "pattern": None, "bytes": False},
+    ]
 
 
 def test_list_report() -> None:

@@ -47,7 +47,10 @@ def test_everything_at_once() -> None:
             evidence="on this text `match` takes long",
             witness=SlowWitness("", "a", "!", "exponential"),
             suggestion=Suggestion("^a+$", "language"),
-            related=(RelatedPlace("the same here", "crane.py", 4, 5, 4, 9),),
+            related=(
+                RelatedPlace("the same here", "crane.py", 4, 5, 4, 9),
+                RelatedPlace("and here", "dock.py", 4, 5, 4, 9),
+            ),
             way_out="say it once " * 8,
         )
         == """\
@@ -58,7 +61,8 @@ dock.py:3:9: error: exponential-ambiguity: time doubles
   text     'a' * 30 + '!'
   instead  '^a+$'
            takes the same texts
-  see      crane.py:4:5: the same here
+  see      line 4, column 5 of crane.py: the same here
+  see      line 4, column 5: and here
   advice   say it once say it once say it once say it once say it once say it
            once say it once say it once"""
     )
@@ -82,7 +86,7 @@ UNDERLINED = [
         "a|b",
         (2, 3),
         {"related": (RelatedPlace("first", "dock.py", 3, 9, 3, 10, (0, 1)),)},
-        "  pattern  a|b\n           - =\n  see      dock.py:3:9: first",
+        "  pattern  a|b\n           - =\n  see      line 3, column 9: first",
     ),
     ("abc", (1, 1), {}, "  pattern  abc\n            |"),
     ("abc", (3, 3), {}, "  pattern  abc\n              |"),

@@ -42,7 +42,7 @@ OFF_BY_DEFAULT: Final = frozenset({"overlapping-siblings"})
 """Rules that run only where `levels` or `only` names them."""
 
 _PYPROJECT_KEYS: Final = frozenset({"tool", "project", "build-system"})
-_KEYS: Final = ("target", "fail-on", "only", "skip", "exclude", "levels", "limits", "per-path")
+_KEYS: Final = ("target", "fail-on", "only", "skip", "exclude", "ledger", "levels", "limits", "per-path")
 
 
 class ConfigError(Exception):

@@ -101,4 +101,5 @@ def _plain(settings: Settings) -> tuple[object, ...]:
         sorted(settings.skip),
         settings.levels,
         [(each.glob, each.levels, sorted(each.skip)) for each in settings.per_path],
+        None if settings.sinks is None else settings.sinks.sinks,
     )

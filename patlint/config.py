@@ -12,6 +12,7 @@ wrong type or an unknown rule is a `ConfigError` that names the file, the key an
     ledger = "patlint.ledger"       # known findings, left out of the report
     levels = { nullable = "error", overlapping-siblings = "note", shorter-equivalent = "off" }
     limits = { states = 5000 }
+    sinks = { "terminal.text.expect" = { argument = 0, mode = "search" }, "pytest.raises" = false }
     per-path = { "tests/**" = { skip = ["nullable"], levels = { final-newline = "off" } } }
 
 Globs are relative to the file's directory (`patlint.globs`). Where several entries of `per-path` fit a file,
@@ -25,12 +26,15 @@ import sys
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass, fields, replace
 from pathlib import Path
-from typing import Any, Final, Literal, TypeAlias
+from typing import TYPE_CHECKING, Any, Final, Literal, TypeAlias
 
 from patlint.globs import fits
 from patlint.limits import DEFAULT_LIMITS, Limits
 from patlint.nearest import nearest
 from patlint.target import Target, lowest_target, running_target, target_named, unknown_target
+
+if TYPE_CHECKING:
+    from patlint.source.sinks import SinkTable
 
 LevelName: TypeAlias = Literal["error", "warning", "note", "off"]
 FailOn: TypeAlias = Literal["error", "warning", "note", "never"]
@@ -42,7 +46,18 @@ OFF_BY_DEFAULT: Final = frozenset({"overlapping-siblings"})
 """Rules that run only where `levels` or `only` names them."""
 
 _PYPROJECT_KEYS: Final = frozenset({"tool", "project", "build-system"})
-_KEYS: Final = ("target", "fail-on", "only", "skip", "exclude", "ledger", "levels", "limits", "per-path")
+_KEYS: Final = (
+    "target",
+    "fail-on",
+    "only",
+    "skip",
+    "exclude",
+    "ledger",
+    "levels",
+    "limits",
+    "sinks",
+    "per-path",
+)
 
 
 class ConfigError(Exception):
@@ -76,6 +91,8 @@ class Settings:
     levels: tuple[tuple[str, LevelName], ...] = ()
     per_path: tuple[PathSettings, ...] = ()
     ledger: str | None = None
+    sinks: SinkTable | None = None
+    """Functions of other libraries that take patterns; None: the built-in ones."""
 
     def relative(self, path: str) -> str:
         """`path` as globs see it: relative to `root`, with `/`; as it is where it lies elsewhere."""
@@ -226,6 +243,8 @@ def _checked(settings: Settings, table: dict[str, Any], path: str) -> Settings:
         changes["levels"] = check.level_table(table["levels"], "levels")
     if "limits" in table:
         changes["limits"] = check.limits(table["limits"])
+    if "sinks" in table:
+        changes["sinks"] = check.sinks(table["sinks"])
     if "per-path" in table:
         changes["per_path"] = check.per_path(table["per-path"])
     return replace(settings, **changes)
@@ -296,6 +315,14 @@ class _Checker:
                 raise self.wrong(f"limits.{name}", f"must be a whole number above 0, not {_kind(number)}")
             changes[name] = number
         return replace(DEFAULT_LIMITS, **changes)
+
+    def sinks(self, value: object) -> SinkTable:
+        from patlint.source.sinks_config import SinkError, sink_table
+
+        try:
+            return sink_table(self.table(value, "sinks"))
+        except SinkError as error:
+            raise ConfigError(f"{self.path}: {error}") from None
 
     def per_path(self, value: object) -> tuple[PathSettings, ...]:
         out = []

@@ -8,10 +8,14 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from patlint.outcome import Remark, failed, internal, site_flag_names
 from patlint.source.sites import LooksAt, Site
 from patlint.target import Target
+
+if TYPE_CHECKING:
+    from patlint.source.sinks import SinkTable
 
 _MODES = ("match", "fullmatch", "search")
 _LOOKS: tuple[LooksAt, ...] = ("truth", "span", "groups", "unknown")
@@ -30,6 +34,8 @@ class Listed:
     flags: tuple[str, ...]
     modes: tuple[str, ...]
     looks_at: LooksAt
+    function: str = ""
+    """The function of `re` that is called, or the qualified name of what takes the pattern elsewhere."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,12 +48,15 @@ class Inventory:
     problems: tuple[str, ...] = ()
 
 
-def inventory_of(data: bytes, path: str, target: Target) -> Inventory:
-    """The patterns of a file with content `data`. Raises nothing but KeyboardInterrupt."""
+def inventory_of(data: bytes, path: str, target: Target, sinks: SinkTable | None = None) -> Inventory:
+    """The patterns of a file with content `data`; `sinks` None: the built-in ones.
+
+    Raises nothing but KeyboardInterrupt.
+    """
     from patlint.source import SourceError, read_module
 
     try:
-        module = read_module(data, path)
+        module = read_module(data, path, sinks)
     except SourceError as error:
         return Inventory(path, problems=failed(path, error.message, error.line).problems)
     except (RecursionError, MemoryError):
@@ -89,4 +98,5 @@ def _listed(site: Site, target: Target) -> Listed:
         site_flag_names(site, target),
         modes(site),
         looks_at(site),
+        site.function,
     )

@@ -83,7 +83,7 @@ def mended(data: bytes, path: str, settings: Settings) -> Mended:
 
 
 def _mended(data: bytes, path: str, settings: Settings) -> Mended:
-    module = read_module(data, path)
+    module = read_module(data, path, settings.sinks)
     outcome = lint_module(module, settings)
     wanted = [finding for finding in outcome.findings if finding.suggestion is not None]
     if not wanted:
@@ -99,7 +99,7 @@ def _mended(data: bytes, path: str, settings: Settings) -> Mended:
         assert finding.suggestion is not None
         try:
             number = _site_of(finding, module, claims)
-            current = read_module(now, path)
+            current = read_module(now, path, settings.sinks)
             claim = Claim(number, finding.suggestion.pattern, finding.suggestion.keeps)
             # Where a literal is shared, a part of the change may be done, or all of it.
             if current.sites[number].pattern != claim.pattern:
@@ -122,7 +122,8 @@ def unproven(old: bytes, new: bytes, path: str, claims: tuple[Claim, ...], setti
     that is claimed, and whatever the uses of other sites need, is proven from the texts that were read.
     """
     try:
-        before, after = read_module(old, path), read_module(new, path)
+        before = read_module(old, path, settings.sinks)
+        after = read_module(new, path, settings.sinks)
     except SourceError as error:
         return f"it cannot be read again: {error.message}"
     if not _only_literals(old, new):

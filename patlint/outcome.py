@@ -69,7 +69,7 @@ def lint_bytes(data: bytes, path: str, settings: Settings) -> Outcome:
     from patlint.source import SourceError, read_module  # libcst is slow to import
 
     try:
-        module = read_module(data, path)
+        module = read_module(data, path, settings.sinks)
     except SourceError as error:
         return failed(path, error.message, error.line)
     except (RecursionError, MemoryError):
@@ -237,9 +237,7 @@ def _check_family(
             tally.of_families.append((place_finding(finding, site, level, flags), site))
     except Exception as error:
         place = family.members[0].site.place
-        tally.problems.append(
-            f"{family.members[0].site.path}:{place.line}:{place.column}: {internal(error)}"
-        )
+        tally.problems.append(f"{family.members[0].site.path}:{place.line}:{place.column}: {internal(error)}")
         for member in family.members:
             tally.undecided_lines |= _lines(member.site)
         return

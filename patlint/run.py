@@ -73,7 +73,7 @@ def lint_source(
         settings = Settings(target or running_target(), NAMES)
     elif target is not None:
         settings = replace(settings, target=target)
-    return lint_module(read_module(text, path), settings).findings
+    return lint_module(read_module(text, path, settings.sinks), settings).findings
 
 
 def lint_paths(

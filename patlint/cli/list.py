@@ -47,7 +47,7 @@ def run(given: Sequence[str]) -> int:
         if isinstance(data, str):
             inventories.append(Inventory(name, problems=(f"{name}: {data}",)))
         else:
-            inventories.append(inventory_of(data, name, settings.target))
+            inventories.append(inventory_of(data, name, settings.target, settings.sinks))
     problems = [*listed.problems, *(line for each in inventories for line in each.problems)]
     for line in problems:
         say(line)
@@ -77,5 +77,8 @@ def _line(listed: Listed) -> str:
 
     words = [pattern_expression(listed.pattern)]
     words += listed.flags
-    words.append(f"({'/'.join(listed.modes) or 'not used here'}, {listed.looks_at})")
+    unused = "use not known" if "." in listed.function else "not used here"
+    words.append(f"({'/'.join(listed.modes) or unused}, {listed.looks_at})")
+    if "." in listed.function:
+        words.append(f"for {listed.function}")
     return f"{listed.path}:{listed.line}:{listed.column}: {' '.join(words)}"

@@ -55,6 +55,7 @@ def list_report(inventories: Sequence[Inventory]) -> str:
             "flags": list(each.flags),
             "modes": list(each.modes),
             "looks_at": each.looks_at,
+            "function": each.function,
         }
         for inventory in inventories
         for each in inventory.patterns

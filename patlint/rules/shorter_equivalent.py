@@ -13,7 +13,7 @@ from patlint.syntax.parser import parse
 
 
 def check(subject: Subject) -> Iterator[Finding]:
-    if not subject.exact:
+    if not subject.exact or subject.site.embedded:
         return
     modes, keeps = needed(subject.site)
     proposal = _proposal(subject, modes, keeps)

@@ -12,7 +12,12 @@ def check(subject: Subject) -> Iterator[Finding]:
     if not subject.site.pattern or not subject.exact:
         return
     for use in subject.uses:
-        if use.looks_at != "truth" or use.positioned or use.function not in ("match", "fullmatch", "search"):
+        if (
+            use.selects
+            or use.looks_at != "truth"
+            or use.positioned
+            or use.function not in ("match", "fullmatch", "search")
+        ):
             continue
         if not subject.language(use.mode).is_universal():
             continue

@@ -22,6 +22,7 @@ from patlint.source.places import Text
 from patlint.source.reaching import reached_reads
 from patlint.source.reasons import Opaque
 from patlint.source.scopes import Scope
+from patlint.source.sinks_calls import SinkReader
 from patlint.source.sites import Function, Use
 from patlint.source.usage import Uses
 
@@ -47,7 +48,14 @@ class Follower:
     """Follows the compiled patterns of one file."""
 
     def __init__(
-        self, index: Index, text: Text, source: str, engine: Engine, constants: Constants, uses: Uses
+        self,
+        index: Index,
+        text: Text,
+        source: str,
+        engine: Engine,
+        constants: Constants,
+        uses: Uses,
+        sinks: SinkReader,
     ) -> None:
         self.index = index
         self.text = text
@@ -56,6 +64,7 @@ class Follower:
         self.names = constants.names
         self.helpers = constants.helpers
         self.uses = uses
+        self.sinks = sinks
         self.leads_back = re.search(r"\.re\b", self.source) is not None
         """`found.re` is the pattern of a match: where it is asked for, a pattern has uses that are not seen."""
 
@@ -79,6 +88,10 @@ class Follower:
                 found.uses.append(self.uses.call(parent, scope, function, True, found.pattern))
             case ast.Call():
                 self._argument(node, parent, scope, method, found)
+            case ast.keyword() if method is None:
+                call = self.index.parents.get(parent)
+                if not (isinstance(call, ast.Call) and self._to_library(node, call, scope, found)):
+                    found.seen = False
             case ast.Assign() if parent.value is node:
                 for target in parent.targets:
                     self._target(target, parent, scope, method, found)
@@ -126,6 +139,8 @@ class Follower:
                 use = self.uses.call(call, scope, cast(Function, name), False, found.pattern)
                 found.uses.append(use)
                 return
+            if self._to_library(node, call, scope, found):
+                return
         elif isinstance(call.func, ast.Name) and call.args and call.args[0] is node:
             above = self.index.parents.get(call)
             tested = call.func.id == "filter" or (
@@ -138,6 +153,16 @@ class Follower:
                 found.uses.append(self.uses.tested_by(node, cast(Function, method), "truth"))
                 return
         found.seen = False
+
+    def _to_library(self, node: ast.expr, call: ast.Call, scope: Scope, found: Followed) -> bool:
+        """Whether the pattern object `node` is handed to a function that is known."""
+        taken = self.sinks.use_of(call, node, scope)
+        if taken is None:
+            return False
+        use, alone = taken
+        found.uses += [use] if use is not None else []
+        found.seen &= alone
+        return True
 
     def _denotes(self, node: ast.expr, scope: Scope) -> str | None:
         try:

@@ -28,6 +28,9 @@ from patlint.source.places import Text
 from patlint.source.reasons import Opaque
 from patlint.source.rows import Row
 from patlint.source.scopes import Scope
+from patlint.source.sinks import SinkTable
+from patlint.source.sinks_builtin import builtin_table
+from patlint.source.sinks_calls import SinkReader
 from patlint.source.sites import Family, Function, Module, Place, Site, Unresolved, Use
 from patlint.source.spelled import Spelled
 from patlint.source.usage import Uses
@@ -38,8 +41,10 @@ _IMPORT_RE = re.compile(r"import[ \t\f\\](?:[^#\n\r;]|(?<=\\)\r?\n|(?<=\\)\r)*?\
 _FROM_RE = re.compile(r"from[ \t\f\\\r\n]+re\b")
 
 
-def read_module(data: bytes | str, path: str) -> Module:
+def read_module(data: bytes | str, path: str, sinks: SinkTable | None = None) -> Module:
     """Everything the source side knows of one file, which is never run.
+
+    `sinks`: functions of other libraries that take patterns; None: the built-in ones.
 
     Errors: `SourceError` for what cannot be decoded or parsed.
     """
@@ -53,8 +58,9 @@ def read_module(data: bytes | str, path: str) -> Module:
         sites: tuple[Site, ...] = ()
         unresolved: tuple[Unresolved, ...] = ()
         families: tuple[Family, ...] = ()
-        if mentions_re(source.text):
-            reader = _Reader(tree, source.text, lines, path)
+        table = builtin_table() if sinks is None else sinks
+        if mentions_re(source.text) or table.mentioned(source.text):
+            reader = _Reader(tree, source.text, lines, path, table)
             try:
                 reader.read()
                 sites, unresolved = reader.results()
@@ -67,9 +73,11 @@ def read_module(data: bytes | str, path: str) -> Module:
     return Module(path, sites, unresolved, waivers, lines, bad_waivers, source.encoding, families)
 
 
-def find_patterns(text: bytes | str, path: str = "<text>") -> tuple[Site, ...]:
+def find_patterns(
+    text: bytes | str, path: str = "<text>", sinks: SinkTable | None = None
+) -> tuple[Site, ...]:
     """The patterns of one file whose text can be told, in the order of the file. Errors: `SourceError`."""
-    return read_module(text, path).sites
+    return read_module(text, path, sinks).sites
 
 
 def mentions_re(text: str) -> bool:
@@ -96,21 +104,27 @@ def parse(text: str, path: str) -> ast.Module:
 class _Reader:
     """One file while it is read."""
 
-    def __init__(self, tree: ast.Module, source: str, lines: tuple[str, ...], path: str) -> None:
+    def __init__(
+        self, tree: ast.Module, source: str, lines: tuple[str, ...], path: str, table: SinkTable
+    ) -> None:
         self.path = path
         self.index: Index = build_index(tree)
         self.text = Text(lines)
         self.engine = Engine(self.index)
         self.constants = Constants(self.index, self.text, self.engine)
         self.uses = Uses(self.index, self.text, self.constants)
-        self.follower = Follower(self.index, self.text, source, self.engine, self.constants, self.uses)
+        self.sinks = SinkReader(self.index, self.text, self.constants, path, table, self._where)
+        self.follower = Follower(
+            self.index, self.text, source, self.engine, self.constants, self.uses, self.sinks
+        )
         self.sites: list[Site] = []
         self.unresolved: list[Unresolved] = []
         self.made: Made = {}
 
     def results(self) -> tuple[tuple[Site, ...], tuple[Unresolved, ...]]:
-        sites = sorted(merge(self.sites), key=lambda site: site.place)
-        return tuple(sites), tuple(sorted(self.unresolved, key=lambda call: call.place))
+        sites = sorted(merge(self.sites + self.sinks.sites), key=lambda site: site.place)
+        unresolved = sorted(self.unresolved + self.sinks.unresolved, key=lambda call: call.place)
+        return tuple(sites), tuple(unresolved)
 
     def read(self) -> None:
         members = sorted(self._members(), key=lambda member: (member[0].lineno, member[0].col_offset))
@@ -125,13 +139,17 @@ class _Reader:
             called = isinstance(call, ast.Call) and call.func is node
             if name == "Scanner" and called:
                 assert isinstance(call, ast.Call)
-                self._refuse(call, name, reasons.SCANNER)
+                for sink in self.sinks.table.scanners:
+                    self.sinks.call(call, scope, sink)
+                if not self.sinks.table.scanners:
+                    self._refuse(call, name, reasons.SCANNER)
             elif name in FUNCTIONS:
                 if called:
                     assert isinstance(call, ast.Call)
                     self._call(call, scope, name)
                 elif not self._is_alias(node):
                     self._refuse(node, name, reasons.PASSED_ON)
+        self.sinks.read()
 
     def _members(self) -> Iterator[tuple[ast.expr, Scope]]:
         """Every expression that may be a member of `re`: `x.match`, or a name from a from-import or alias."""
@@ -294,6 +312,7 @@ def merge(sites: list[Site]) -> list[Site]:
             uses=tuple(sorted(uses, key=lambda use: use.place)),
             uses_seen=known.uses_seen and site.uses_seen,
             name=known.name or site.name,
+            embedded=known.embedded or site.embedded,
         )
     return list(merged.values())
 

@@ -45,6 +45,7 @@ def test_json(patlint: Patlint) -> None:
             "flags": ["IGNORECASE", "DOTALL"],
             "modes": ["match"],
             "looks_at": "truth",
+            "function": "match",
         },
         {
             "path": "a.py",
@@ -57,6 +58,7 @@ def test_json(patlint: Patlint) -> None:
             "flags": [],
             "modes": ["fullmatch"],
             "looks_at": "groups",
+            "function": "fullmatch",
         },
     ]
     (unresolved,) = report["unresolved"]

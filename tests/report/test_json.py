@@ -122,7 +122,7 @@ def test_a_run_beside_a_ledger() -> None:
 
 
 def test_list_report() -> None:
-    listed = Listed("dock.py", 1, 2, 3, 4, b"\xfe", ("DOTALL",), ("match", "search"), "span")
+    listed = Listed("dock.py", 1, 2, 3, 4, b"\xfe", ("DOTALL",), ("match", "search"), "span", "compile")
     inventory = Inventory("dock.py", (listed,), (Remark(8, 1, "compile: a parameter"),))
     text = list_report([inventory])
     assert text.isascii()
@@ -139,6 +139,7 @@ def test_list_report() -> None:
                 "flags": ["DOTALL"],
                 "modes": ["match", "search"],
                 "looks_at": "span",
+                "function": "compile",
             }
         ],
         "unresolved": [{"path": "dock.py", "line": 8, "column": 1, "reason": "compile: a parameter"}],

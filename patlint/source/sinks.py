@@ -1,0 +1,155 @@
+"""Functions of other libraries that take a pattern: what is known of each, as data.
+
+A `Sink` is one argument of one function, class or method. `SinkTable` holds those that are in force and says
+quickly whether a file can have any. The built-in ones stand in `sinks_builtin`, `sinks_calls` finds their
+calls.
+
+>>> table = SinkTable((Sink("freight.text.expect", (1, "pattern"), "search", "truth", seen=True),))
+>>> table.mentioned("from freight.text import expect"), table.mentioned("import freight")
+(True, False)
+
+Limits: a name is followed through imports, not through other names it is given. A method of an object that
+cannot be typed is told by its name alone (and by a module that the file must import), so only names that
+mean nothing else stand in the built-in table.
+"""
+
+from __future__ import annotations
+
+import re
+from dataclasses import dataclass
+from typing import Literal, TypeAlias
+
+from patlint.source.sites import Function, LooksAt
+
+Where: TypeAlias = tuple[int | str, ...]
+"""Where a call has an argument: a position, a keyword, or both (the position first)."""
+
+Kind: TypeAlias = Literal["call", "method", "attribute", "rows", "route", "result"]
+
+PART = "a part of a pattern that a library puts together"
+ENGINE = "a pattern for another engine than re"
+SCANNER = "re.Scanner"
+CONDITION = "an argument that cannot be told decides whether it is a pattern"
+
+
+@dataclass(frozen=True, slots=True)
+class Sink:
+    """One argument that takes a pattern.
+
+    `name` is the qualified name of what is called, or of the class whose attribute it is. `function` is the
+    function of `re` that comes to the same, None where it depends on what cannot be seen.
+
+    `kind` says how it is met: "call" of a function or class; "method" of any object, by the names in
+    `method` (("str", "contains") for `x.str.contains`); "attribute" of a class derived from `name`;
+    "rows", a sequence whose rows begin with a pattern; "route", a text with patterns in braces; "result",
+    a method of what `with name(…) as x` binds.
+    """
+
+    name: str
+    argument: Where
+    function: Function | None = None
+    looks_at: LooksAt = "unknown"
+    flags: int = 0
+    """Flags that the library adds."""
+    flags_argument: Where = ()
+    kind: Kind = "call"
+    method: tuple[str, ...] = ()
+    needs: tuple[str, ...] = ()
+    """For a method: modules of which the file must import one."""
+    seen: bool = False
+    """The use told here is the only one that the library makes of the pattern."""
+    part: bool = False
+    """The library puts the text into a larger pattern."""
+    embedded: bool = False
+    """The library reads the text of the pattern, so that another spelling may do something else."""
+    dollar: Function | None = None
+    """With `embedded`: the function where the pattern ends in `$`, which the library looks at; None: unknown."""
+    ends_open: bool = True
+    """With `embedded`: `function` holds also where the pattern does not end in `$`; else it is then a part."""
+    own: bool = False
+    """The text that is searched is the program's own (its messages, under test), not one from outside."""
+    selects: bool = False
+    """The pattern selects, so that one which takes everything may be meant."""
+    decorator: bool = False
+    """For a method: only where its call decorates a function or class."""
+    case: Where = ()
+    """An argument that stands for IGNORECASE where it is False."""
+    regex: Where = ()
+    """An argument that decides whether the text is a pattern at all."""
+    regex_default: bool | Literal["long"] = True
+    """What it is where it is not given; "long": a pattern if it is longer than one character."""
+    objects_only: bool = False
+    """Only compiled patterns are taken, never their texts."""
+    unless: Where = ()
+    """An argument that, where it is given, decides how the pattern is used: nothing is known then."""
+    refused: str | None = None
+    """A reason of `Unresolved`: what is given here is never judged."""
+    project: bool = False
+    """Told by the configuration: files may import it from beside them (`from .text import expect`)."""
+
+    @property
+    def words(self) -> tuple[str, ...]:
+        """Texts that a file with this sink must hold, beside one of `needs`."""
+        if self.kind == "method":
+            return self.method
+        words = [self.name.rpartition(".")[2]]
+        if self.kind == "attribute" or not any(isinstance(key, int) for key in self.argument):
+            words += [key for key in self.argument if isinstance(key, str)]
+        return tuple(dict.fromkeys((*words, *self.method)))
+
+
+class SinkTable:
+    """Sinks by the names under which a file can meet them."""
+
+    def __init__(self, sinks: tuple[Sink, ...]) -> None:
+        self.sinks = sinks
+        self.calls: dict[str, list[Sink]] = {}
+        self.methods: dict[str, list[Sink]] = {}
+        self.attributes: dict[str, list[Sink]] = {}
+        self.results: dict[str, list[Sink]] = {}
+        hints: dict[tuple[str, bool], set[tuple[str, ...]]] = {}
+        self.scanners = tuple(sink for sink in sinks if sink.name == SCANNER)
+        for sink in sinks:
+            if sink.name == SCANNER:
+                continue  # met as a member of re
+            if sink.kind == "method" or (sink.kind != "result" and sink.method):
+                self.methods.setdefault(sink.method[-1], []).append(sink)
+            elif sink.kind == "attribute":
+                self.attributes.setdefault(sink.name, []).append(sink)
+            elif sink.kind == "result":
+                self.results.setdefault(sink.name, []).append(sink)
+            else:
+                self.calls.setdefault(sink.name, []).append(sink)
+            if sink.project or (sink.kind == "method" and not sink.needs):
+                firsts: tuple[tuple[str, bool], ...] = ((sink.words[0], False),)
+            else:
+                firsts = tuple((top, True) for top in sink.needs or (sink.name.split(".")[0],))
+            for first in firsts:
+                hints.setdefault(first, set()).add(sink.words)
+        self._hints = tuple(
+            (first, _imports(first) if imported else None, tuple(sorted(words)))
+            for (first, imported), words in hints.items()
+        )
+        named = {*self.calls, *self.attributes, *self.results}
+        self.tops = frozenset(name.split(".")[0] for name in named)
+        self.members = frozenset(name.rpartition(".")[2] for name in named)
+        self.project = frozenset(sink.name for sink in sinks if sink.project)
+
+    def mentioned(self, text: str) -> bool:
+        """Whether a file with this text can have any of the sinks; cheap, and True rather too often."""
+        return any(
+            first in text
+            and any(all(word in text for word in words) for words in several)
+            and (imports is None or any(each.search(text) for each in imports))
+            for first, imports, several in self._hints
+        )
+
+
+def _imports(module: str) -> tuple[re.Pattern[str], ...]:
+    """What can stand before and after the name of a module where it is imported."""
+    name = re.escape(module)
+    return (
+        re.compile(rf"import[ \t\f\\\r\n]+{name}\b"),
+        re.compile(rf"from[ \t\f\\\r\n]+{name}\b"),
+        re.compile(rf",[ \t\f\\\r\n]*{name}\b"),
+    )

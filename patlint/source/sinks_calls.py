@@ -1,0 +1,509 @@
+"""The calls of one file that hand a pattern to another library -> sites, and what stays unresolved.
+
+`SinkReader.read()` finds the calls by the names that the file imports, by the names of methods, and by the
+bases of its classes; each argument becomes a `Site` whose `function` is the qualified name of what takes it.
+What a library does to the text (a `$` added, a place within a larger pattern) never makes another pattern of
+it here: where it may change the meaning, the site has no uses, and only what holds in every use is said of it.
+
+Limits: a class that a file derives from one of its own is not followed to a library's; functions that are
+kept under another name or applied in part are not seen.
+"""
+
+from __future__ import annotations
+
+import ast
+import re
+from collections.abc import Callable, Iterator
+
+from patlint.limits import LimitReached
+from patlint.source import reasons
+from patlint.source.constants import Constants
+from patlint.source.flags import evaluate_flags
+from patlint.source.index import Index
+from patlint.source.places import Text
+from patlint.source.reasons import Opaque
+from patlint.source.scopes import Binding, Scope
+from patlint.source.sinks import CONDITION, PART, SCANNER, Sink, SinkTable, Where
+from patlint.source.sites import Function, Place, Site, Unresolved, Use
+from patlint.source.spelled import Spelled, cut
+from patlint.syntax import tree as t
+from patlint.syntax.parser import PatternError, parse
+
+_ROUTE = re.compile(r"\{[_a-zA-Z][^{}]*(?:\{[^{}]*\}[^{}]*)*\}")
+_PIECE = re.compile(r"\{[_a-zA-Z][_a-zA-Z0-9]*:(.+)\}", re.DOTALL)
+_IGNORECASE = 2
+_MOST_ROWS = 2_000
+
+Locate = Callable[[ast.expr, Scope, Spelled], tuple[Place, int]]
+
+
+class SinkReader:
+    """One file while its sinks are read."""
+
+    def __init__(
+        self, index: Index, text: Text, constants: Constants, path: str, table: SinkTable, locate: Locate
+    ) -> None:
+        self.index = index
+        self.text = text
+        self.constants = constants
+        self.path = path
+        self.table = table
+        self.locate = locate
+        self.sites: list[Site] = []
+        self.unresolved: list[Unresolved] = []
+        self._package = [part for part in re.split(r"[/\\]", path)[:-1] if part]
+        self._imported: dict[str, bool] = {}
+
+    def read(self) -> None:
+        for node, scope, sinks in self._called():
+            call = self.index.parents.get(node)
+            if isinstance(call, ast.Call) and call.func is node:
+                for sink in sinks:
+                    self.call(call, scope, sink)
+        for attribute, several in self.table.methods.items():
+            for use in self.index.reads.get(attribute, ()):
+                call = self.index.parents.get(use.node)
+                if isinstance(call, ast.Call) and call.func is use.node:
+                    for sink in self._fitting(use.node, use.scope, several):
+                        self.call(call, use.scope, sink)
+        if self.table.results:
+            self._results()
+        if self.table.attributes:
+            for definition, inner in self.index.classes.items():
+                self._class(definition, inner)
+
+    def use_of(self, call: ast.Call, node: ast.expr, scope: Scope) -> tuple[Use | None, bool] | None:
+        """What a call does with the pattern object `node`, one of its arguments; None if it is no sink's.
+
+        The use (None where it is not known), and whether it is all that happens to the object.
+        """
+        for sink in self._sinks_of(call, scope):
+            if sink.kind in ("call", "method") and self._pick(call, sink.argument)[0] is node:
+                function = None if self._pick(call, sink.unless)[0] is not None else sink.function
+                if sink.embedded or sink.part or function is None:
+                    return None, False
+                return self._use(sink, function, self.text.place(call)), sink.seen
+        return None
+
+    def _sinks_of(self, call: ast.Call, scope: Scope) -> list[Sink]:
+        known = self.table.calls.get(self.qualified(call.func, scope) or "", [])
+        if not known and isinstance(call.func, ast.Attribute):
+            return self._fitting(call.func, scope, self.table.methods.get(call.func.attr, []))
+        return known
+
+    # names
+
+    def qualified(self, node: ast.expr, scope: Scope) -> str | None:
+        """The qualified name that an imported name or a member of it stands for, as far as the file tells."""
+        names: list[str] = []
+        while isinstance(node, ast.Attribute):
+            names.append(node.attr)
+            node = node.value
+        if not isinstance(node, ast.Name):
+            return None
+        owner = scope.find(node.id)
+        rest = "".join(f".{name}" for name in reversed(names))
+        if owner is None:
+            starred = [f"{module}.{node.id}{rest}" for _, module in self.index.module.stars]
+            return next((name for name in starred if self._known(name)), None)
+        bindings = [b for b in owner.bindings[node.id] if not b.is_none and b.kind != "deleted"]
+        found = {self._imported_name(binding) for binding in bindings}
+        if not found or None in found:
+            return None
+        whole = sorted(self._settled(f"{name}{rest}") for name in found)
+        return whole[0] if len(whole) == 1 or all(map(self._known, whole)) else None
+
+    def _known(self, name: str) -> bool:
+        return name in self.table.calls or name in self.table.attributes or name in self.table.results
+
+    def _imported_name(self, binding: Binding) -> str | None:
+        if binding.kind != "import" or binding.module is None:
+            return None
+        module = binding.module
+        if module.startswith("."):
+            level = len(module) - len(module.lstrip("."))
+            above = self._package[: len(self._package) - level + 1]
+            module = ".".join([*above, *([module[level:]] if module[level:] else [])])
+        return module if binding.member is None else f"{module}.{binding.member}"
+
+    def _settled(self, name: str) -> str:
+        """A project's own sink may lie in any folder: the end of its name decides."""
+        for known in self.table.project:
+            if name.endswith("." + known):
+                return known
+        return name
+
+    def _called(self) -> Iterator[tuple[ast.expr, Scope, list[Sink]]]:
+        """Every expression that names a sink, in whatever order."""
+        parents = self.index.parents
+        calls = self.table.calls
+        if not calls and not self.table.results:
+            return
+        names = self._names()
+        for scope in self.index.scopes:
+            for name in names & scope.loads.keys():
+                for node in scope.loads[name]:
+                    whole: ast.expr = node
+                    above = parents.get(whole)
+                    while isinstance(above, ast.Attribute):
+                        whole = above
+                        above = parents.get(whole)
+                    if not isinstance(above, ast.Call) or above.func is not whole:
+                        continue
+                    qualified = self.qualified(whole, scope)
+                    if qualified in calls:
+                        yield whole, scope, calls[qualified]
+
+    def _names(self) -> set[str]:
+        """Names that an import binds to something of a library with sinks."""
+        tops, members = self.table.tops, self.table.members
+        starred = any(module.split(".")[0] in tops for _, module in self.index.module.stars)
+        found: set[str] = set(members) if starred else set()
+        for scope in self.index.scopes:
+            for name, bindings in scope.bindings.items():
+                for binding in bindings:
+                    if binding.kind == "import" and binding.module is not None:
+                        top = binding.module.split(".")[0]
+                        if top in tops or (self.table.project and (not top or binding.member in members)):
+                            found.add(name)
+                            break
+        return found
+
+    def _fitting(self, node: ast.Attribute, scope: Scope, sinks: list[Sink]) -> list[Sink]:
+        """The sinks of a method that this attribute may be."""
+        chain: list[str] = []
+        base: ast.expr = node
+        while isinstance(base, ast.Attribute):
+            chain.insert(0, base.attr)
+            base = base.value
+        fit = [
+            sink
+            for sink in sinks
+            if tuple(chain[-len(sink.method) :]) == sink.method
+            and (not sink.needs or any(map(self._imports, sink.needs)))
+            and (not sink.decorator or self._decorates(node))
+        ]
+        if not fit:
+            return []
+        owner = self.constants.names.class_of(node.value, scope)
+        if owner is not None and node.attr in owner.bindings:
+            return []  # a method that the file writes itself
+        if self.qualified(node.value, scope) is not None and not any(sink.needs for sink in fit):
+            return []  # a function of a module, or a method with its object as an argument
+        return [sink for sink in fit if sink.refused] or fit
+
+    def _imports(self, module: str) -> bool:
+        """Whether the file imports `module` or something of it, anywhere."""
+        known = self._imported.get(module)
+        if known is None:
+            known = self._imported[module] = any(
+                binding.kind == "import" and (binding.module or "").split(".")[0] == module
+                for scope in self.index.scopes
+                for bindings in scope.bindings.values()
+                for binding in bindings
+            )
+        return known
+
+    def _decorates(self, node: ast.Attribute) -> bool:
+        call = self.index.parents.get(node)
+        above = self.index.parents.get(call) if call is not None else None
+        return isinstance(above, (ast.FunctionDef, ast.AsyncFunctionDef, ast.ClassDef)) and (
+            call in above.decorator_list
+        )
+
+    def _results(self) -> None:
+        """Methods of what a `with` statement binds: `with pytest.raises(…) as caught: … caught.match(…)`."""
+        methods = {sink.method[-1]: name for name, sinks in self.table.results.items() for sink in sinks}
+        for attribute, name in methods.items():
+            for use in self.index.reads.get(attribute, ()):
+                call = self.index.parents.get(use.node)
+                value = use.node.value
+                if not (isinstance(call, ast.Call) and call.func is use.node and isinstance(value, ast.Name)):
+                    continue
+                owner = use.scope.find(value.id)
+                bindings = owner.bindings[value.id] if owner is not None else []
+                made = {self._entered(binding) for binding in bindings}
+                if made == {name}:
+                    for sink in self.table.results[name]:
+                        self.call(call, use.scope, sink)
+
+    def _entered(self, binding: Binding) -> str | None:
+        """The qualified name of the call that a `with` statement enters to bind a name."""
+        item = self.index.parents.get(binding.node)
+        if isinstance(item, ast.withitem) and item.optional_vars is binding.node:
+            made = item.context_expr
+            return self.qualified(made.func, binding.scope) if isinstance(made, ast.Call) else None
+        return None
+
+    # calls
+
+    def _pick(self, call: ast.Call, where: Where) -> tuple[ast.expr | None, bool]:
+        """An argument, and whether `*` or `**` may give it where it is not written out."""
+        loose = False
+        for key in where:
+            if isinstance(key, int):
+                starred = any(isinstance(argument, ast.Starred) for argument in call.args[: key + 1])
+                if not starred and key < len(call.args):
+                    return call.args[key], False
+                loose |= starred
+            else:
+                for keyword in call.keywords:
+                    if keyword.arg == key:
+                        return keyword.value, False
+                loose |= any(keyword.arg is None for keyword in call.keywords)
+        return None, loose
+
+    def call(self, call: ast.Call, scope: Scope, sink: Sink) -> None:
+        """Takes up one argument of one call."""
+        self.constants.restart()
+        argument, loose = self._pick(call, sink.argument)
+        if argument is None:
+            if loose and sink.kind != "rows" and any(isinstance(key, int) for key in sink.argument):
+                self._refuse(call, sink, reasons.STARRED)
+            return
+        if isinstance(argument, ast.Constant) and argument.value is None:
+            return
+        if sink.refused:
+            self._refuse(call, sink, sink.refused)
+            return
+        flags_node, flags_loose = self._pick(call, sink.flags_argument)
+        try:
+            if flags_loose and flags_node is None:
+                raise Opaque(reasons.FLAGS)
+            flags = sink.flags | self._flags(flags_node, scope) | self._case(call, scope, sink)
+        except Opaque as opaque:
+            self._refuse(call, sink, opaque.reason)
+            return
+        if sink.kind == "rows":
+            self._rows(argument, scope, sink, flags, call)
+        else:
+            self._text(argument, scope, sink, flags, call)
+
+    def _flags(self, node: ast.expr | None, scope: Scope) -> int:
+        if isinstance(node, ast.Constant) and node.value is None:
+            return 0
+        return evaluate_flags(node, scope, self.constants)
+
+    def _case(self, call: ast.Call, scope: Scope, sink: Sink) -> int:
+        node, loose = self._pick(call, sink.case)
+        match node:
+            case None if not loose:
+                return 0
+            case ast.Constant(value=False):
+                return _IGNORECASE
+            case ast.Constant(value=True | None):
+                return 0
+        raise Opaque(reasons.FLAGS)
+
+    def _is_pattern(self, call: ast.Call, sink: Sink, pattern: Spelled) -> bool:
+        """Whether the text is a pattern and not taken as it is. Errors: `Opaque`."""
+        node, loose = self._pick(call, sink.regex)
+        decided: object = sink.regex_default
+        if node is not None:
+            if not isinstance(node, ast.Constant):
+                raise Opaque(CONDITION)
+            decided = sink.regex_default if node.value is None else node.value
+        elif loose:
+            raise Opaque(CONDITION)
+        return len(pattern.value) > 1 if decided == "long" else bool(decided)
+
+    def _text(self, argument: ast.expr, scope: Scope, sink: Sink, flags: int, call: ast.Call) -> None:
+        if self.constants.names.maker(argument, scope) is not None or self._taken_as_it_is(call, sink):
+            return  # the site of a pattern object is where it is made
+        known = self._pick(call, sink.unless) == (None, False)
+        refused: str | None = None
+        for pattern in self.constants.choices.each(lambda: self._told(argument, scope, sink, call)):
+            if pattern is None:
+                continue
+            if not isinstance(pattern, Opaque):
+                if sink.kind == "route":
+                    self._route(argument, scope, sink, pattern, call)
+                else:
+                    self._site(argument, scope, sink, pattern, flags, self.text.place(call), known)
+            elif pattern.reason != reasons.COMPILED:
+                refused = refused or pattern.reason
+            elif not isinstance(argument, (ast.Name, ast.Attribute)):
+                refused = refused or reasons.NOT_TEXT
+        if refused is not None:
+            self._refuse(call, sink, refused)
+
+    def _told(self, argument: ast.expr, scope: Scope, sink: Sink, call: ast.Call) -> Spelled | None:
+        """The text of an argument, None where it is no pattern. Errors: `Opaque`."""
+        pattern = self.constants.text_of(argument, scope)
+        if sink.objects_only:
+            raise Opaque(reasons.NOT_TEXT)
+        return pattern if self._is_pattern(call, sink, pattern) else None
+
+    def _taken_as_it_is(self, call: ast.Call, sink: Sink) -> bool:
+        """Whether what is given is no pattern, whatever its text."""
+        node, loose = self._pick(call, sink.regex)
+        if node is None:
+            return not loose and sink.regex_default is False
+        return isinstance(node, ast.Constant) and node.value is False
+
+    def _route(self, argument: ast.expr, scope: Scope, sink: Sink, pattern: Spelled, call: ast.Call) -> None:
+        if not isinstance(pattern.value, str):
+            return
+        for found in _ROUTE.finditer(pattern.value):
+            piece = _PIECE.fullmatch(found[0])
+            if piece is not None:
+                part = cut(pattern, found.start() + piece.start(1), found.start() + piece.end(1))
+                self._site(argument, scope, sink, part, 0, self.text.place(call))
+
+    def _rows(self, argument: ast.expr, scope: Scope, sink: Sink, flags: int, call: ast.Call) -> None:
+        for row, inner in self._items(argument, scope, sink, call, 0):
+            if isinstance(row, (ast.Tuple, ast.List)) and row.elts:
+                first = row.elts[0]
+            elif isinstance(row, ast.Call):
+                continue  # a call that makes a row is a sink of its own, or none
+            else:
+                self._refuse(row, sink, reasons.ELEMENT)
+                continue
+            if isinstance(first, ast.Call) and self._sinks_of(first, inner):
+                continue
+            try:
+                if self.constants.names.maker(first, inner) is not None:
+                    continue
+                pattern = self.constants.text_of(first, inner)
+            except Opaque as opaque:
+                self._refuse(first, sink, opaque.reason)
+                continue
+            self._site(first, inner, sink, pattern, flags, self.text.place(call))
+
+    def _items(
+        self, node: ast.expr, scope: Scope, sink: Sink, call: ast.Call, depth: int
+    ) -> Iterator[tuple[ast.expr, Scope]]:
+        """The rows of a written-out sequence."""
+        match node:
+            case ast.List(elts=rows) | ast.Tuple(elts=rows):
+                for row in rows[:_MOST_ROWS]:
+                    if isinstance(row, ast.Starred):
+                        yield from self._items(row.value, scope, sink, call, depth + 1)
+                    else:
+                        yield row, scope
+                return
+            case ast.BinOp(op=ast.Add()) if depth < 20:
+                yield from self._items(node.left, scope, sink, call, depth + 1)
+                yield from self._items(node.right, scope, sink, call, depth + 1)
+                return
+            case ast.Name() | ast.Attribute() if depth < 20:
+                try:
+                    definitions = self.constants.names.definitions(node, scope)
+                except Opaque as opaque:
+                    self._refuse(call, sink, opaque.reason)
+                    return
+                for value, inner in definitions:
+                    yield from self._items(value, inner, sink, call, depth + 1)
+                return
+        self._refuse(call, sink, reasons.SCANNER if sink.name == SCANNER else reasons.EXPRESSION)
+
+    # classes
+
+    def _class(self, definition: ast.ClassDef, inner: Scope) -> None:
+        outer = inner.parent
+        for base in definition.bases:
+            name = self.qualified(base, outer) if outer is not None else None
+            for sink in self.table.attributes.get(name or "", ()):
+                self._attribute(definition, inner, sink)
+
+    def _attribute(self, definition: ast.ClassDef, inner: Scope, sink: Sink) -> None:
+        (name,) = sink.argument
+        bindings = inner.bindings.get(str(name), [])
+        if not bindings:
+            return
+        if len(bindings) != 1 or bindings[0].value is None:
+            return  # a method or a property makes it
+        value = bindings[0].value
+        self.constants.restart()
+        try:
+            if isinstance(value, ast.Constant) and value.value is None:
+                return
+            flags = sink.flags | self._class_flags(inner, sink)
+            if self.constants.names.maker(value, inner) is not None:
+                return
+            pattern = self.constants.text_of(value, inner)
+        except Opaque as opaque:
+            if opaque.reason != reasons.COMPILED:
+                self._refuse(value, sink, opaque.reason)
+            return
+        self._site(value, inner, sink, pattern, flags, self.text.place(value))
+
+    def _class_flags(self, inner: Scope, sink: Sink) -> int:
+        if not sink.flags_argument:
+            return 0
+        bindings = inner.bindings.get(str(sink.flags_argument[0]), [])
+        if not bindings:
+            return _IGNORECASE if sink.name == "string.Template" else 0
+        if len(bindings) != 1 or bindings[0].value is None:
+            raise Opaque(reasons.FLAGS)
+        return self._flags(bindings[0].value, inner)
+
+    # sites
+
+    def _refuse(self, node: ast.expr, sink: Sink, reason: str) -> None:
+        self.unresolved.append(Unresolved(self.path, self.text.place(node), sink.name, reason))
+
+    def _use(self, sink: Sink, function: Function, place: Place) -> Use:
+        return Use(
+            function,
+            sink.looks_at,
+            place,
+            positioned=sink.kind == "rows" and sink.name == SCANNER,
+            own=sink.own,
+            selects=sink.selects,
+        )
+
+    def _site(
+        self,
+        argument: ast.expr,
+        scope: Scope,
+        sink: Sink,
+        pattern: Spelled,
+        flags: int,
+        call: Place,
+        known: bool = True,
+    ) -> None:
+        function = sink.function if known else None
+        part = sink.part
+        if sink.embedded and sink.kind != "attribute" and sink.name != SCANNER:
+            dollar: str | bytes = b"$" if isinstance(pattern.value, bytes) else "$"
+            if pattern.value.endswith(dollar):  # type: ignore[arg-type]
+                function = sink.dollar
+            elif not sink.ends_open:
+                function, part = None, True
+        if part and not stands_alone(pattern.value, flags):
+            self._refuse(argument, sink, PART)
+            return
+        place, statement = self.locate(argument, scope, pattern)
+        self.sites.append(
+            Site(
+                path=self.path,
+                pattern=pattern.value,
+                flags=flags,
+                function=sink.name,
+                place=place,
+                statement=statement,
+                pieces=pattern.pieces(),
+                uses=(self._use(sink, function, call),) if function is not None else (),
+                uses_seen=function is not None and sink.seen,
+                embedded=sink.embedded or part,
+            )
+        )
+
+
+def stands_alone(pattern: str | bytes, flags: int) -> bool:
+    """Whether what holds for the pattern by itself holds for it as a part of a larger one.
+
+    Not where it looks at what stands around it, counts groups, or sets flags; nor where its brackets may only
+    be balanced by what comes before and after.
+    """
+    try:
+        parsed = parse(pattern, flags)
+    except PatternError as error:
+        return "parenthesis" not in str(error)
+    except LimitReached:
+        return False
+    if parsed.inline:
+        return False
+    around = (t.Anchor, t.Look, t.BackReference, t.Conditional)
+    return not any(isinstance(node, around) for node in t.walk(parsed.root))

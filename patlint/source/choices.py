@@ -66,9 +66,13 @@ class Choices:
             self._open = was_open
 
     def each(self, make: Callable[[], Made]) -> Iterator[Made | Opaque]:
-        """What `make` gives for every combination of rows; an `Opaque` that it raises is one of these."""
+        """What `make` gives for every combination of rows; an `Opaque` that it raises is one of these.
+
+        What has no text at all (`reasons.ABSENT`) is left out, if anything has one.
+        """
         self._taken.clear()
         self._sizes.clear()
+        told = False
         for _ in range(MOST):
             made: Made | Opaque
             self._open = True
@@ -78,7 +82,9 @@ class Choices:
                 made = opaque
             finally:
                 self._open = False
-            yield made
+            if not isinstance(made, Opaque) or made.reason != reasons.ABSENT:
+                told = True
+                yield made
             while self._taken:
                 key, row = self._taken.popitem()
                 size = self._sizes.pop(key)
@@ -87,6 +93,8 @@ class Choices:
                     self._sizes[key] = size
                     break
             if not self._taken:
+                if not told:
+                    yield Opaque(reasons.ATTRIBUTE)
                 return
         self._taken.clear()
         self._sizes.clear()

@@ -12,6 +12,7 @@ import string
 from collections.abc import Sequence
 
 from patlint.source import calls, reasons
+from patlint.source.attributes import Attributes
 from patlint.source.choices import Choices
 from patlint.source.engine import Engine
 from patlint.source.formatting import percent
@@ -47,6 +48,7 @@ class Constants:
         self.choices = Choices()
         self.rows = Rows(self, index)
         self.helpers = Helpers(self, index)
+        self.attributes = Attributes(self, index)
         self._steps = 0
         self._active: set[ast.AST] = set()
         self._known: dict[ast.AST, Value | Opaque] = {}
@@ -143,9 +145,11 @@ class Constants:
 
     # names
 
-    def origin(self, node: ast.Name, scope: Scope) -> Item | None:
-        """What a loop's variable or a parameter stands for in the row or call that is taken now; None for
-        other names. Errors: `Opaque`."""
+    def origin(self, node: ast.Name | ast.Attribute, scope: Scope) -> Item | None:
+        """What a loop's variable, a parameter or an attribute stands for in the row, call or class that is
+        taken now; None for other names. Errors: `Opaque`."""
+        if isinstance(node, ast.Attribute):
+            return self.attributes.chosen(node, scope)
         owner = scope.find(node.id)
         if owner is not None and owner.kind == "function":
             bindings = owner.bindings[node.id]
@@ -203,13 +207,8 @@ class Constants:
             bindings = owner.bindings[node.value.id] if owner else []
             if bindings and all(b.module == "string" and b.member is None for b in bindings):
                 return without_spelling(str(getattr(string, node.attr)), self.text.place(node))
-        definitions = self.names.class_attribute(node, scope)
-        if any(isinstance(expression, MUTABLE) for expression, _ in definitions):
-            raise Opaque(reasons.CHANGED)
-        values = [self.remembered(expression, inner, depth) for expression, inner in definitions]
-        if all(same(values[0], value) for value in values):
-            return values[0]
-        raise Opaque(reasons.REASSIGNED)
+        row = self.attributes.chosen(node, scope)
+        return self.remembered(row.node, row.scope, depth)
 
     def _fail(self) -> Value:
         raise Opaque(reasons.CALL)

@@ -80,7 +80,7 @@ def _named(node: ast.Name | ast.Attribute, scope: Scope, constants: Constants, d
             return VALUES[parts[1]]
         raise Opaque(reasons.FLAGS)
     try:
-        item = constants.origin(node, scope) if isinstance(node, ast.Name) else None
+        item = constants.origin(node, scope)
         if isinstance(item, Row):
             return evaluate_flags(item.node, item.scope, constants, depth + 1)
         definitions = constants.names.definitions(node, scope)

@@ -277,7 +277,7 @@ class _Reader:
             if not isinstance(argument, (ast.Name, ast.Attribute)):
                 break
             try:
-                item = self.constants.origin(argument, scope) if isinstance(argument, ast.Name) else None
+                item = self.constants.origin(argument, scope)
                 if isinstance(item, Row):
                     argument, scope = item.node, item.scope
                 elif item is not None:

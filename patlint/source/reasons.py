@@ -38,8 +38,11 @@ UNREADABLE: Final = "a spelling that cannot be read"
 COMPILED: Final = "a compiled pattern"
 """Not a reason of an `Unresolved`: the value is a pattern object, which is followed from where it is made."""
 
+ABSENT: Final = "a class or row that has no text of its own"
+"""Not a reason of an `Unresolved` either: such a class or row is left out."""
+
 REASONS: Final = frozenset(
-    value for name, value in list(globals().items()) if name.isupper() and name != "COMPILED"
+    value for name, value in list(globals().items()) if name.isupper() and name not in ("COMPILED", "ABSENT")
 )
 
 

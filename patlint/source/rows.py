@@ -130,31 +130,34 @@ class Rows:
         """What the name that `item` is stands for."""
         node = item.node
         assert isinstance(node, (ast.Name, ast.Attribute))
-        if isinstance(node, ast.Name):
-            if item.env and node.id in item.env:
-                return Ready(item.env[node.id])
-            chosen = self.constants.origin(node, item.scope)
-            if chosen is not None:
-                listed = isinstance(chosen, Row) and isinstance(chosen.node, MUTABLE)
-                if listed and not self.constants.names.unchanged(node.id, item.scope):
-                    raise Opaque(reasons.CHANGED)
-                return chosen
+        if isinstance(node, ast.Name) and item.env and node.id in item.env:
+            return Ready(item.env[node.id])
+        chosen = self.constants.origin(node, item.scope)
+        if chosen is not None:
+            if isinstance(chosen, Row):
+                self._check_unchanged(node, item.scope, chosen.node)
+            return chosen
         definitions = self.constants.names.definitions(node, item.scope)
         if len(definitions) != 1:
             raise Opaque(reasons.REASSIGNED)
         expression, scope = definitions[0]
-        if isinstance(expression, MUTABLE) and not self._unchanged(node, item.scope, expression):
-            raise Opaque(reasons.CHANGED)
+        self._check_unchanged(node, item.scope, expression)
         return Row(expression, scope)
 
-    def _unchanged(self, node: ast.Name | ast.Attribute, scope: Scope, display: ast.expr) -> bool:
+    def _check_unchanged(self, node: ast.Name | ast.Attribute, scope: Scope, display: ast.expr) -> None:
+        """Nothing changes the list or dict that `node` stands for, nor one within. Errors: `Opaque`."""
         names = self.constants.names
         nested = any(isinstance(each, MUTABLE) for each in ast.walk(display) if each is not display)
+        if not isinstance(display, MUTABLE) and not nested:
+            return
         if isinstance(node, ast.Attribute):
-            return not nested and names.attribute_unchanged(node.attr)
-        return names.unchanged(node.id, scope) and (
-            not nested or names.rows_unchanged(node.id, scope, display)
-        )
+            if nested or not names.attribute_unchanged(node.attr):
+                raise Opaque(reasons.CHANGED)
+            return
+        if isinstance(display, MUTABLE) and not names.unchanged(node.id, scope):
+            raise Opaque(reasons.CHANGED)
+        if nested and not names.rows_unchanged(node.id, scope, display):
+            raise Opaque(reasons.CHANGED)
 
     def items(
         self, node: ast.expr, scope: Scope, env: Environment | None = None, depth: int = 0

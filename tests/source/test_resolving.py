@@ -213,8 +213,6 @@ UNRESOLVED = [
     ("import re\nP = 'a'\nglobals().update(x)\nre.match(P, '')", reasons.DYNAMIC),
     ("import re\nre.match(f(), '')", reasons.CALL),
     ("import re\nre.match(x.y, '')", reasons.ATTRIBUTE),
-    ("import re\nclass A:\n P = 'a'\n def f(self):\n  re.match(self.P, '')", reasons.ATTRIBUTE),
-    ("import re\nclass A(B):\n P = 'a'\nre.match(A.P, '')", reasons.ATTRIBUTE),
     ("import re\nclass A:\n P = 'a'\nA.P = 'b'\nre.match(A.P, '')", reasons.ATTRIBUTE),
     ("import re\nP = 'a'\nclass A:\n P = 'b'\n R = re.match(P, '')", reasons.REASSIGNED),
     ("import re\nW = ['a']\nW.append(x)\nre.match('|'.join(W), '')", reasons.CHANGED),

@@ -10,13 +10,14 @@ The first line has the form `path:line:column: level: rule: message`, which edit
 standards, "Formatting Error Messages"). Below stand the pattern with the part in question (`=`) and others it
 is about (`-`; a place between two characters is `|`), the evidence, a text that can be pasted into Python,
 what could stand instead, places elsewhere, advice. Of a long pattern the neighbourhood of the part is shown,
-of a pattern over several lines (VERBOSE) the lines concerned.
+of a pattern over several lines (VERBOSE) the lines concerned. Of findings that are marked as brief one line
+is told for each rule and file, with the lines of the others, so that they do not bury the rest.
 """
 
 from __future__ import annotations
 
 import textwrap
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
@@ -33,6 +34,8 @@ LABEL: Final = 11
 """Columns before the text of a row: two blanks, a label, at least one blank."""
 MOST_LINES: Final = 3
 """Lines that are shown of a pattern over several lines."""
+MOST_ALIKE: Final = 10
+"""Lines that are named of findings that are told in one."""
 CUT: Final = "..."
 _COLOURS: Final = {"error": "1;31", "warning": "1;33", "note": "1;34", "label": "2"}
 _KEEPS: Final = {
@@ -58,12 +61,15 @@ class Style:
 def lint_report(result: RunResult, style: Style, verbose: bool = False) -> Iterator[str]:
     """The report of a run as lines without line feeds."""
     short = False
-    for finding in result.findings:
-        if short and not (finding.brief and not verbose):
+    others = {} if verbose else _alike(result.findings)
+    for index, finding in enumerate(result.findings):
+        if finding.brief and not verbose and index not in others:
+            continue  # told with the first of its rule in the file
+        if short and index not in others:
             yield ""
-        short = finding.brief and not verbose
+        short = index in others
         if short:
-            yield _first_line(finding, style)
+            yield _first_line(finding, style) + _likewise(others[index])
         else:
             yield from finding_block(finding, style)
             yield ""
@@ -83,6 +89,28 @@ def lint_report(result: RunResult, style: Style, verbose: bool = False) -> Itera
         yield f"{name}: {many} gone from the code; `patlint ledger prune` takes out what is gone"
         yield ""
     yield summary_line(result)
+
+
+def _alike(findings: Sequence[PlacedFinding]) -> dict[int, list[int]]:
+    """Findings of which one line is enough: the first of its rule in each file, with the lines of the others."""
+    firsts: dict[tuple[str, str, str], int] = {}
+    lines: dict[int, list[int]] = {}
+    for index, finding in enumerate(findings):
+        if finding.brief:
+            first = firsts.setdefault((finding.path, finding.rule, finding.level), index)
+            lines.setdefault(first, [])
+            if first != index:
+                lines[first].append(finding.line)
+    return lines
+
+
+def _likewise(lines: list[int]) -> str:
+    if not lines:
+        return ""
+    shown = [str(line) for line in dict.fromkeys(lines)]
+    rest = len(shown) - MOST_ALIKE
+    named = ", ".join(shown[:MOST_ALIKE]) + (f" and {rest} more" if rest > 0 else "")
+    return f"; likewise in {'line' if len(shown) == 1 else 'lines'} {named}"
 
 
 def _first_line(finding: PlacedFinding, style: Style) -> str:

@@ -227,3 +227,26 @@ def test_a_whole_report_verbose() -> None:
         "1 file, 2 patterns: 0 errors, 2 warnings, 0 notes; "
         "0 waived, 1 unresolved, 1 inexact, 1 undecided, 0 skipped",
     ]
+
+
+def test_brief_findings_of_a_rule_are_one_line_a_file() -> None:
+    def brief(line: int, path: str = "dock.py", rule: str = "nullable") -> PlacedFinding:
+        return finding("a*", (0, 2), level="note", brief=True, line=line, path=path, rule=rule)
+
+    found: tuple[PlacedFinding, ...]
+    found = (brief(3), brief(5), finding("a*", (0, 2), line=6), brief(7), brief(7), brief(8, rule="other"))
+    found += tuple(brief(line, "crane.py") for line in range(1, 14))
+    result = RunResult((Outcome("dock.py", findings=found),), (), 0)
+    lines = list(lint_report(result, PLAIN))
+    assert [line for line in lines if not line.startswith(" ")] == [
+        "dock.py:3:9: note: nullable: says so; likewise in lines 5, 7",
+        "",
+        "dock.py:6:9: warning: nullable: says so",
+        "",
+        "dock.py:8:9: note: other: says so",
+        "crane.py:1:9: note: nullable: says so; likewise in lines 2, 3, 4, 5, 6, 7, 8, 9, 10, 11 and 2 more",
+        "",
+        summary_line(result),
+    ]
+    assert summary_line(result).startswith("1 file, 0 patterns: 0 errors, 1 warning, 18 notes; ")
+    assert sum("note:" in line for line in lint_report(result, PLAIN, verbose=True)) == 18

@@ -109,7 +109,7 @@ def _walk(top: str, settings: Settings, problems: list[str]) -> tuple[list[str],
             elif entry.name.endswith(".py") and not entry.name.startswith(".#"):
                 if settings.excludes(path):
                     excluded += 1
-                elif entry.is_file() or entry.is_symlink() and not entry.is_dir():
+                elif os.path.isfile(path) or os.path.islink(path) and not os.path.exists(path):
                     found.append(path)
         stack.extend(reversed(below))
     return found, excluded

@@ -92,7 +92,7 @@ def lint_paths(
     outcomes: dict[str, Outcome] = {}
     missing: list[str] = []
     for path in listed.paths:
-        if path == STDIN:
+        if path == STDIN or path.startswith(("/dev/", "/proc/")):  # open in this process alone
             name, data = read_source(path, stdin_name)
             outcomes[path] = failed(name, data) if isinstance(data, str) else lint_bytes(data, name, settings)
         elif folder is not None and (known := _known(path, folder, made_by)) is not None:
@@ -121,6 +121,8 @@ class _Job:
 
 
 def _known(path: str, folder: str, made_by: str) -> Outcome | None:
+    if not os.path.isfile(path):
+        return None  # a pipe can be read only once
     data = read_file(path)
     return None if isinstance(data, str) else fetch(folder, path, key_of(data, path, made_by))
 

@@ -39,6 +39,8 @@ class Parser(argparse.ArgumentParser):
             write(self.format_help())
 
     def error(self, message: str) -> NoReturn:
+        # argparse counts PATHS, of which there may be none, among what is missing beside something else.
+        message = message.replace(", PATHS", "")
         raise CallError(f"{message.removeprefix('argument ')}; see {self.prog} --help")
 
     def read(self, given: Sequence[str]) -> argparse.Namespace:

@@ -46,6 +46,7 @@ def say(line: str) -> None:
     if sys.stderr is None:
         return
     encoding = sys.stderr.encoding or "ascii"
+    line = "".join(char if char.isprintable() else ascii(char)[1:-1] for char in line)
     with contextlib.suppress(OSError):
         print(line.encode(encoding, "backslashreplace").decode(encoding), file=sys.stderr)
 

@@ -89,7 +89,7 @@ def lint_module(module: Module, settings: Settings) -> Outcome:
         _check(site, settings, enabled, levels, tally, subjects if id(site) in shared else None)
     for family in module.families:
         _check_family(family, settings, enabled, levels, tally, subjects)
-    kept, waived, used = _waive(_agreed(_one_cause(tally), module), module.waivers)
+    kept, waived, used = _waive(_settled(tally, module), module.waivers)
     stale, stale_waived = _stale_waivers(module, settings, enabled, levels, used, tally.undecided_lines)
     return Outcome(
         path=module.path,
@@ -106,7 +106,7 @@ def lint_module(module: Module, settings: Settings) -> Outcome:
     )
 
 
-def _one_cause(tally: _Tally) -> list[tuple[PlacedFinding, Site]]:
+def _settled(tally: _Tally, module: Module) -> list[tuple[PlacedFinding, Site]]:
     """All findings; those of families once for each pattern and rule, and without what they make idle about it."""
     from patlint.rules.registry import SILENCES
 
@@ -116,7 +116,7 @@ def _one_cause(tally: _Tally) -> list[tuple[PlacedFinding, Site]]:
         told.setdefault((id(site), finding.rule), (finding, site))
         quiet[id(site)] = quiet.get(id(site), frozenset()) | SILENCES.get(finding.rule, frozenset())
     single = [(each, site) for each, site in tally.placed if each.rule not in quiet.get(id(site), ())]
-    return [*single, *told.values()]
+    return [*_agreed(single, module), *told.values()]
 
 
 def _agreed(placed: list[tuple[PlacedFinding, Site]], module: Module) -> list[tuple[PlacedFinding, Site]]:
@@ -140,7 +140,7 @@ def _agreed(placed: list[tuple[PlacedFinding, Site]], module: Module) -> list[tu
             if (whole.line, whole.column) <= here < (whole.end_line, whole.end_column):
                 shared |= readers[whole]
         if len(shared) > 1:
-            if finding.rule == "unreachable-part" and not shared <= agreeing[spot]:
+            if finding.rule in ("unreachable-part", "covered-sibling") and not shared <= agreeing[spot]:
                 continue
             once = (*spot, finding.end_line, finding.end_column)
             if once in told:

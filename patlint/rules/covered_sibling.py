@@ -10,7 +10,7 @@ from patlint.machine.nfa import Nfa
 from patlint.machine.program import compile_tree
 from patlint.rules.equal_siblings import equal_branches, is_plain
 from patlint.rules.finding import Example, Finding, Related, Rule, TextWitness
-from patlint.rules.joined import Row
+from patlint.rules.joined import Row, joined_rows
 from patlint.rules.kin import Kin, Verdict
 from patlint.rules.subject import Subject
 from patlint.rules.unreachable_part import dead_parts, dead_rows, only_mode
@@ -81,7 +81,9 @@ def check(subject: Subject) -> Iterator[Finding]:
     if not rows:
         return
     equal = {node.branches[later].span for node, _, later in equal_branches(subject.pattern, subject.limits)}
+    spans_of = {node.span: _row_spans(rows) for node, rows in joined_rows(subject)}
     for node, row, _ in rows:
+        spans = spans_of[node.span]
         if all(branch.span in equal for branch in node.branches[row.first : row.last + 1]):
             continue
         takers = _takers(subject, node, row)
@@ -95,10 +97,13 @@ def check(subject: Subject) -> Iterator[Finding]:
             evidence="; ".join(f"{text!a} is taken by branch {each + 1}" for each, text in takers.items())
             or "whatever the text, another row succeeds first or this one fails",
             way_out="delete it, or move it before the rows that always win (the longer one first)",
-            related=tuple(
-                Related(f"takes {text!a}", node.branches[each].span) for each, text in takers.items()
-            ),
+            related=tuple(Related(f"takes {text!a}", spans[each]) for each, text in takers.items()),
         )
+
+
+def _row_spans(rows: list[Row]) -> dict[int, t.Span]:
+    """For each branch of an alternation the span of its row."""
+    return {branch: row.span for row in rows for branch in range(row.first, row.last + 1)}
 
 
 def _takers(subject: Subject, node: t.Alternation, row: Row) -> dict[int, str | bytes]:

@@ -134,6 +134,9 @@ class Chains:
             left = leaves(part.body, True)
             if not left:
                 changed |= stored_names(part.body)
+            calling = calling or has_calls([part.test], lambda call: call in self.tests)
+            if calling:
+                yield from self._ended(runs, lambda run: not run.asked.plain)
             for test, verdict in conditions.read(part.test):
                 needed = asked_by(test, scope)
                 if verdict == "refuses" or needed is None or needed.names & before:
@@ -145,9 +148,6 @@ class Chains:
                 if verdict == "takes" and not left:
                     going_on.add(test.key)
             changed |= before
-            calling = calling or has_calls([part.test], lambda call: call in self.tests)
-            if calling:
-                yield from self._ended(runs, lambda run: not run.asked.plain)
             rest = part.orelse
             part = rest[0] if _is_elif(part) and isinstance(rest[0], ast.If) else None
             if part is None and not leaves(rest, True):

@@ -21,6 +21,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass, field
 from typing import TypeAlias
 
+from patlint.source.engine import FUNCTIONS, bind_arguments
 from patlint.source.index import Index
 from patlint.source.names import Names
 from patlint.source.places import Text
@@ -89,7 +90,7 @@ class Tables:
         for table, scope in self._tables():
             yield self._family(table, scope)
         for call, sites in self.made.items():
-            if len(sites) > 1 and sites[0][0].function != "compile":
+            if len(sites) > 1:
                 family = self._called_in_loop(call, sites)
                 if family is not None:
                     yield family
@@ -448,11 +449,11 @@ class Tables:
 
     def _called_in_loop(self, call: ast.Call, sites: list[tuple[Site, Scope]]) -> Family | None:
         scope = sites[0][1]
-        test = read_test(call, scope, self.names.engine)
-        if test is None or not isinstance(test.pattern, ast.Name):
+        given = bind_arguments(call, FUNCTIONS.get(sites[0][0].function, ())).given.get("pattern")
+        if not isinstance(given, ast.Name):
             return None
-        members: list[tuple[ast.expr, Site, str | None]] = [(test.pattern, site, "") for site, _ in sites]
-        name = test.pattern.id
+        members: list[tuple[ast.expr, Site, str | None]] = [(given, site, "") for site, _ in sites]
+        name = given.id
         current: ast.AST | None = self.index.parents.get(call)
         while current is not None and not isinstance(current, ast.stmt | ast.comprehension):
             if isinstance(current, (ast.GeneratorExp, ast.ListComp, ast.SetComp)):

@@ -54,12 +54,16 @@ later."""
 
 def expression(dfa: Dfa, algebra: Algebra, longest: int = 400, *, backwards: bool = True) -> Expr | None:
     """A short expression of the automaton's language; None beyond a limit or above `longest` characters."""
-    results = []
+    good = expressions(dfa, algebra, longest, backwards=backwards)
+    return min(good, key=lambda found: rank(found, algebra), default=None)
+
+
+def expressions(dfa: Dfa, algebra: Algebra, longest: int = 400, *, backwards: bool = True) -> list[Expr]:
+    """What the orders of removal give, none above `longest` characters; an empty list beyond a limit."""
     forward = _edges(dfa)
     if forward is None:
-        return None
-    for keep_bridges in (True, False):
-        results.append(_eliminate(forward, algebra, longest, keep_bridges))
+        return []
+    results = [_eliminate(forward, algebra, longest, keep_bridges) for keep_bridges in (True, False)]
     if backwards:
         turned = _reversed(dfa)
         edges = None if turned is None else _edges(turned)
@@ -67,8 +71,7 @@ def expression(dfa: Dfa, algebra: Algebra, longest: int = 400, *, backwards: boo
             for keep_bridges in (True, False):
                 found = _eliminate(edges, algebra, longest, keep_bridges)
                 results.append(None if found is None else reverse(found, algebra))
-    good = [found for found in results if found is not None and len(algebra.text(found)) <= longest]
-    return min(good, key=lambda found: rank(found, algebra), default=None)
+    return [found for found in results if found is not None and len(algebra.text(found)) <= longest]
 
 
 def eliminated(dfa: Dfa, algebra: Algebra, order: Order, longest: int = 100_000) -> Expr | None:

@@ -10,7 +10,8 @@ The order of the places is a regular language of marked texts: { u # v : the par
 v, and the engine comes to the later place first }. Together with the plain language it fixes the whole
 order.
 
-`same_groups` walks two patterns side by side and compares by `ends` what differs; `same_language` and
+`same_groups` walks two patterns side by side and compares by `ends` what differs; `gives_nothing_back` is for
+repeats that are made possessive; `same_language` and
 `same_spans` compare whole patterns; `holds` asks what has to stay.
 Method: the ordered subset construction of `patlint.machine.priority`, without its cut.
 """
@@ -31,6 +32,7 @@ from patlint.machine.obligations import FREE
 from patlint.machine.priority import MARKER
 from patlint.machine.program import compile_tree
 from patlint.rewrite.islands import is_pure, shape
+from patlint.rewrite.possessive import END, rests
 from patlint.syntax import tree as t
 from patlint.syntax.charset import CharSet
 
@@ -143,12 +145,35 @@ def same_spans(old: t.Pattern, new: t.Pattern, scanning: bool, limits: Limits) -
         return False
 
 
+def spans_stay(old: t.Pattern, new: t.Pattern, mode: Mode, limits: Limits) -> bool:
+    """Whether both have the same outcome up to groups in `mode`, from every place of a text.
+
+    Equal spans under match say nothing about fullmatch, which tries further ways: it is the whole text or nothing.
+    """
+    if mode != "fullmatch":
+        return same_spans(old, new, mode == "search", limits)
+    if not _looks_left(old) and not _looks_left(new):
+        return same_language(old, new, mode, limits)
+    one, other = (replace(each, root=t.Sequence((0, 0), (each.root, END))) for each in (old, new))
+    return same_spans(one, other, False, limits)
+
+
+def _looks_left(pattern: t.Pattern) -> bool:
+    """Whether what stands to the left of a match may decide about it."""
+    return any(
+        (isinstance(node, t.Anchor) and node.kind not in ("$", r"\Z"))
+        or (isinstance(node, t.Look) and not node.ahead)
+        for node in t.walk(pattern.root)
+    )
+
+
 def holds(old: t.Pattern, new: t.Pattern, modes: Iterable[Mode], keeps: Keeps, limits: Limits) -> bool:
     """Whether `new` does as `old` in each of `modes`, as far as `keeps` goes; False where it is not proven."""
     if old.flags != new.flags:
         return False
+    modes = set(modes)
     if (old.groups, old.names) == (new.groups, new.names):
-        if same_groups(old, new, limits):
+        if same_groups(old, new, limits) or gives_nothing_back(old, new, modes, limits):
             return True
     elif keeps != "language":
         return False
@@ -156,13 +181,19 @@ def holds(old: t.Pattern, new: t.Pattern, modes: Iterable[Mode], keeps: Keeps, l
         case "groups":
             return False
         case "spans":
-            return all(
-                (mode == "fullmatch" and same_language(old, new, mode, limits))
-                or same_spans(old, new, mode == "search", limits)
-                for mode in modes
-            )
+            return all(spans_stay(old, new, mode, limits) for mode in modes)
         case "language":
             return all(same_language(old, new, mode, limits) for mode in modes)
+
+
+def gives_nothing_back(old: t.Pattern, new: t.Pattern, modes: Iterable[Mode], limits: Limits) -> bool:
+    """Whether `new` is `old` with repeats made possessive that never had to give back what they took, so that both
+    do the same in every way (`possessive.rests`); False where that is not proven."""
+    for whole in {mode == "fullmatch" for mode in modes}:
+        found = rests(old, new, whole)
+        if found is None or not all(same_spans(one, other, False, limits) for one, other in found):
+            return False
+    return True
 
 
 def same_groups(old: t.Pattern, new: t.Pattern, limits: Limits) -> bool:

@@ -31,7 +31,7 @@ from patlint.machine.program import compile_tree
 from patlint.machine.slow_text import Growth, ambiguity_of
 from patlint.rewrite.islands import shape, splice
 from patlint.rewrite.proof import Keeps as Keeps
-from patlint.rewrite.proof import same_language, same_spans
+from patlint.rewrite.proof import same_language, spans_stay
 from patlint.rewrite.search import Change, Search
 from patlint.rewrite.worth import worth_a_try
 from patlint.syntax import tree as t
@@ -127,7 +127,7 @@ def proven(search: Search, changes: list[Change], suspicious: bool) -> Proposal 
     keeps: Keeps
     if same_groups and all(change.certain for change in changes):
         keeps = "groups"
-    elif same_groups and search.keeps == "spans" and _same_spans(search, new):
+    elif same_groups and search.keeps == "spans" and spans_stay(old, new, search.mode, search.limits):
         keeps = "spans"
     elif search.keeps == "language" and same_language(old, new, search.mode, search.limits):
         keeps = "language"
@@ -136,13 +136,6 @@ def proven(search: Search, changes: list[Change], suspicious: bool) -> Proposal 
     if not new.text or _is_slower(search, new, suspicious):
         return None
     return Proposal(new.text, keeps, len(old.text) - len(new.text))
-
-
-def _same_spans(search: Search, new: t.Pattern) -> bool:
-    old, limits = search.parsed, search.limits
-    if search.mode == "fullmatch" and same_language(old, new, "fullmatch", limits):
-        return True  # the whole text or nothing
-    return same_spans(old, new, search.mode == "search", limits)
 
 
 def _is_slower(search: Search, new: t.Pattern, suspicious: bool) -> bool:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from patlint.rules.finding import Example, Finding, Level, Rule
-from patlint.rules.growth import evidence, grows, judged, mode_name, possessive, way_out, witness_of
+from patlint.rules.growth import advice, better, evidence, grows, judged, mode_name, suggestion_of, witness_of
 from patlint.rules.subject import Subject
 
 
@@ -15,9 +15,9 @@ def check(subject: Subject) -> Iterator[Finding]:
         if slow is None or slow.growth != "exponential":
             continue
         first, *others = slow.parts
-        level: Level = "note" if use is not None and use.bounded is not None else RULE.level
-        better = possessive(subject, use, manner, slow)
-        advice = "let only one part take each character: separate the repeats, or merge them into one"
+        harmless = use is not None and (use.bounded is not None or use.own)
+        level: Level = "note" if harmless else RULE.level
+        found = better(subject, manner, slow)
         yield Finding(
             RULE.name,
             level,
@@ -26,8 +26,8 @@ def check(subject: Subject) -> Iterator[Finding]:
             mode=mode_name(manner),
             witness=witness_of(slow),
             evidence=evidence(slow),
-            way_out=way_out(better, manner, slow, subject, advice),
-            suggestion=better,
+            way_out=advice(found, subject, slow),
+            suggestion=suggestion_of(found),
             marks=tuple(others),
         )
         return

@@ -2,24 +2,21 @@
 
 from __future__ import annotations
 
-import sys
-from collections.abc import Iterator
-from math import ceil, exp, inf, log
+from collections.abc import Iterator, Sequence
+from math import ceil, exp, log
 
-from patlint.limits import LimitReached
-from patlint.machine.program import compile_tree
-from patlint.machine.slow_text import Ambiguity, Growth, Manner, SlowText, ambiguity_of
-from patlint.rewrite.proof import holds
-from patlint.rules.finding import Keeps, SlowWitness, Suggestion
+from patlint.machine.program import one_character
+from patlint.machine.slow_text import Ambiguity, Growth, Manner, SlowText
+from patlint.rewrite.quicker import WayOut, quicker
+from patlint.rules.finding import SlowWitness, Suggestion
+from patlint.rules.shorter_equivalent import fences, needed
 from patlint.rules.subject import Subject, manner_of
-from patlint.source.sites import Mode, Use
+from patlint.source.sites import Use
 from patlint.syntax import tree as t
-from patlint.syntax.parser import PatternError, parse
+from patlint.syntax.classes import char_set
 
 LONG = 10_000
 """Length of the text for which a polynomial's steps are told, in characters."""
-CANDIDATES = 4
-"""Repeats that are tried as possessive ones."""
 ENDLESS = 1e9
 """Steps for which an exponential's text is sought: some seconds, and twice as long with every further pump."""
 
@@ -30,7 +27,7 @@ def judged(subject: Subject) -> Iterator[tuple[Manner, Use | None, Ambiguity]]:
     Where no use is seen, `match`: what is slow there is slow in search and fullmatch too.
     """
     seen: set[Manner] = set()
-    for use in sorted(subject.uses, key=lambda use: use.bounded is not None):
+    for use in sorted(subject.uses, key=lambda use: (use.own, use.bounded is not None)):
         manner = manner_of(use)
         if manner not in seen:
             seen.add(manner)
@@ -40,9 +37,7 @@ def judged(subject: Subject) -> Iterator[tuple[Manner, Use | None, Ambiguity]]:
 
 
 def witness_of(slow: SlowText) -> SlowWitness:
-    return SlowWitness(
-        slow.prefix, slow.pump, slow.suffix, slow.growth, slow.steps, slow.more, slow.bounded
-    )
+    return SlowWitness(slow.prefix, slow.pump, slow.suffix, slow.growth, slow.steps, slow.more, slow.bounded)
 
 
 def mode_name(manner: Manner) -> str:
@@ -74,6 +69,8 @@ def evidence(slow: SlowText) -> str:
     ways = f"both can take {shown}" if len(slow.parts) == 2 else f"{shown} can be taken in more than one way"
     if len(pumps) > 1:
         ways = f"{shown} can each be taken in more than one way"
+    if slow.by_restart:
+        ways += ", and the search begins afresh at every place"
     return f"{ways}; {figures(slow)}"
 
 
@@ -89,58 +86,78 @@ def grows(slow: SlowText) -> str:
     return f"{said}, up to a bound that is out of reach" if slow.bounded and slow.growth != 1 else said
 
 
-def possessive(subject: Subject, use: Use | None, manner: Manner, slow: SlowText) -> Suggestion | None:
-    """The pattern with one repeat made possessive, where that is proven to do the same, and less slowly.
-
-    The target must have possessive repeats (3.11), and the program must not look at groups.
-    """
-    if (
-        (subject.target or sys.version_info[:2]) < (3, 11)
-        or use is None
-        or use.looks_at in ("groups", "unknown")
-    ):
+def better(subject: Subject, manner: Manner, slow: SlowText) -> WayOut | None:
+    """A pattern that does the same in every use, and is less slow in `manner`, if one is found and proven."""
+    if subject.site.embedded:
         return None
-    keeps: Keeps = "language" if use.looks_at == "truth" and manner != "scan" else "spans"
-    mode: Mode = "search" if manner == "scan" else manner
-    text = subject.site.pattern
-    tried = 0
-    for node in t.walk(subject.pattern.root):
-        if not isinstance(node, t.Repeat) or node.kind != "greedy" or tried >= CANDIDATES:
-            continue
-        if not any(node.span[0] <= start and end <= node.span[1] for start, end in slow.parts):
-            continue
-        place = node.span[1]
-        plus = b"+" if isinstance(text, bytes) else "+"
-        changed = text[:place] + plus + text[place:]  # type: ignore[operator]
-        tried += 1
-        try:
-            new = parse(changed, subject.site.flags, subject.target, subject.limits)
-            program = compile_tree(new, subject.limits)
-            if holds(subject.pattern, new, [mode], keeps, subject.limits):
-                after = ambiguity_of(program, manner, subject.limits)
-                if after.undecided is None and degree(after.growth) < degree(slow.growth):
-                    return Suggestion(changed, keeps)
-        except (PatternError, LimitReached):
-            continue
+    modes, keeps = needed(subject.site)
+    manners: list[Manner] = [manner, *(manner_of(use) for use in subject.uses)]
+    if not subject.site.uses_seen:
+        manners += ["search", "fullmatch"]
+    return quicker(
+        subject.pattern,
+        {each: subject.ambiguity(each).growth for each in manners},
+        manner,
+        slow.parts,
+        modes,
+        keeps,
+        subject.target,
+        subject.limits,
+        fences(subject.site),
+    )
+
+
+def suggestion_of(found: WayOut | None) -> Suggestion | None:
+    return None if found is None else Suggestion(found.pattern, found.keeps)
+
+
+def advice(found: WayOut | None, subject: Subject, slow: SlowText) -> str:
+    """Growth as it is and with what is suggested, or else the advice that fits the cause."""
+    if found is not None:
+        return f"growth is {named(slow.growth)} as it stands, {named(found.growth)} with the pattern above"
+    stop = separator(subject.pattern.root, slow.parts, subject.pattern.is_bytes)
+    if stop is not None:
+        return (
+            f"let the first of them stop at {stop}, if it is not to run across it: take it out of its characters; "
+            "or bound the length of the text"
+        )
+    if slow.growth == "exponential":
+        return "let only one part take each character: separate the repeats, or merge them into one"
+    return "let the repeats take different characters, or put between them what only one can take"
+
+
+def separator(root: t.Node, parts: Sequence[t.Span], is_bytes: bool) -> str | None:
+    """The character, as a Python text, that stands behind the first of the parts and that this part can take."""
+    if len(parts) < 2:
+        return None
+    behind: t.Node | None = None
+    stack: list[tuple[t.Node, t.Node | None]] = [(root, None)]
+    while stack:
+        node, after = stack.pop()
+        if isinstance(node, t.Repeat) and node.span == parts[0]:
+            leaf, behind = one_character(node.body), after
+            if leaf is None or not isinstance(behind, t.Literal):
+                return None
+            inside = behind.code in char_set(leaf, is_bytes)
+            return ascii(chr(behind.code)) if inside else None
+        if isinstance(node, t.Sequence):
+            stack += zip(node.items, (*node.items[1:], after), strict=False)
+        elif isinstance(node, t.Group | t.Alternation):
+            stack += [(below, after) for below in t.children(node)]
     return None
 
 
-def degree(growth: Growth | None) -> float:
-    return inf if growth == "exponential" else growth or 1
-
-
-def way_out(
-    suggestion: Suggestion | None, manner: Manner, slow: SlowText, subject: Subject, advice: str
-) -> str:
-    """The suggestion's effect in words, or else the advice."""
-    if suggestion is None:
-        return advice
-    program = compile_tree(
-        parse(suggestion.pattern, subject.site.flags, subject.target, subject.limits), subject.limits
-    )
-    now = ambiguity_of(program, manner, subject.limits).growth
-    words = {1: "in line with the length", 2: "with its square", 3: "with its cube"}
-    return f"the possessive form matches the same, and its time grows {words.get(int(degree(now)), 'less')}"
+def named(growth: Growth | None) -> str:
+    """A growth in one word or two."""
+    match growth:
+        case None | 1:
+            return "linear"
+        case "exponential":
+            return "exponential"
+        case 2 | 3:
+            return "quadratic" if growth == 2 else "cubic"
+        case _:
+            return f"of power {growth}"
 
 
 def in_words(count: float) -> str:

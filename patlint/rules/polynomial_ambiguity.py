@@ -4,46 +4,74 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
+from patlint.machine.slow_text import Manner, SlowText
 from patlint.rules.finding import Example, Finding, Level, Rule
-from patlint.rules.growth import evidence, figures, grows, judged, mode_name, possessive, way_out, witness_of
+from patlint.rules.growth import (
+    advice,
+    better,
+    evidence,
+    figures,
+    grows,
+    judged,
+    mode_name,
+    suggestion_of,
+    witness_of,
+)
 from patlint.rules.subject import Subject
+from patlint.source.sites import Use
 
 
 def check(subject: Subject) -> Iterator[Finding]:
-    worst: Finding | None = None
+    worst: tuple[Manner, Use | None, SlowText] | None = None
     degree = 1
     for manner, use, ambiguity in judged(subject):
         slow = ambiguity.slow
+        if use is not None and use.own:
+            continue  # messages are short, and nobody hostile writes them
         if slow is None or slow.growth == "exponential" or slow.growth <= degree - slow.bounded:
             continue
         degree = slow.growth
-        restart = slow.by_restart and degree == 2
-        level: Level = RULE.level
-        if restart or (degree == 2 and not slow.bounded) or (use is not None and use.bounded is not None):
-            level = "note"
-        better = None if restart else possessive(subject, use, manner, slow)
-        advice = "let the repeats take different characters, or put between them what only one can take"
-        span, *others = slow.parts or [(0, len(subject.site.pattern))]
-        worst = Finding(
-            RULE.name,
-            level,
-            span,
-            f"the search begins afresh at every place, so time can grow with the square: {figures(slow)}"
-            if restart
-            else grows(slow),
-            mode=mode_name(manner),
-            witness=witness_of(slow),
-            evidence="" if restart else evidence(slow),
-            proof="counted by a matcher that walks as the engine does",
-            way_out="bound the repeat, or anchor the beginning: match or ^ where that is meant"
-            if restart
-            else way_out(better, manner, slow, subject, advice),
-            suggestion=better,
-            marks=tuple(others),
-            brief=restart,
-        )
+        worst = manner, use, slow
     if worst is not None:
-        yield worst
+        yield (
+            _restarting(subject, *worst) if degree == 2 and worst[2].by_restart else _finding(subject, *worst)
+        )
+
+
+def _restarting(subject: Subject, manner: Manner, use: Use | None, slow: SlowText) -> Finding:
+    """A square that comes from the search's beginning afresh alone."""
+    span, *others = slow.parts or [(0, len(subject.site.pattern))]
+    return Finding(
+        RULE.name,
+        "note",
+        span,
+        f"the search begins afresh at every place, so time can grow with the square: {figures(slow)}",
+        mode=mode_name(manner),
+        witness=witness_of(slow),
+        way_out="bound the repeat, or anchor the beginning: match or ^ where that is meant",
+        marks=tuple(others),
+        brief=True,
+    )
+
+
+def _finding(subject: Subject, manner: Manner, use: Use | None, slow: SlowText) -> Finding:
+    level: Level = RULE.level
+    if (slow.growth == 2 and not slow.bounded) or (use is not None and use.bounded is not None):
+        level = "note"
+    span, *others = slow.parts or [(0, len(subject.site.pattern))]
+    found = better(subject, manner, slow)
+    return Finding(
+        RULE.name,
+        level,
+        span,
+        grows(slow),
+        mode=mode_name(manner),
+        witness=witness_of(slow),
+        evidence=evidence(slow),
+        way_out=advice(found, subject, slow),
+        suggestion=suggestion_of(found),
+        marks=tuple(others),
+    )
 
 
 RULE = Rule(

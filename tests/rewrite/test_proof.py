@@ -9,6 +9,7 @@ import re
 import pytest
 
 from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
+from patlint.machine.determinise import Mode
 from patlint.rewrite.proof import ends, holds, part_language, same_groups, same_language, same_spans
 from patlint.syntax.parser import parse
 from tests.rewrite.oracle import ends_of, random_pattern
@@ -195,3 +196,18 @@ def test_same_groups_are_those_of_re() -> None:
                 assert (a and a.regs) == (b and b.regs), (one, other, text)
     assert asked == 2500
     assert alike > 20
+
+
+def test_spans_of_fullmatch_are_its_own() -> None:
+    """The first way of match says nothing about the further ways of fullmatch, nor the text's start about other
+    places."""
+
+    def kept(old: str, new: str, mode: Mode) -> bool:
+        return holds(parse(old), parse(new), [mode], "spans", DEFAULT_LIMITS)
+
+    assert kept("a|ab", "a", "match") and not kept("a|ab", "a", "fullmatch")
+    assert kept("a|ab", "ab|a", "fullmatch") and not kept("a|ab", "ab|a", "match")
+    assert kept(r"(?<=x)a|b", r"b|(?<=x)a", "fullmatch")
+    assert not kept(r"(?<=x)a|b", "b", "fullmatch")  # a match from a place inside the text
+    assert not kept(r"\Ba|b", "b", "fullmatch")
+    assert kept("a$|b", r"b|a$", "fullmatch")

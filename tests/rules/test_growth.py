@@ -122,8 +122,9 @@ def test_what_a_finding_says() -> None:
     found = one("(?:[a-z]+-?)+$")
     assert (found.rule, found.level, found.brief) == ("exponential-ambiguity", "error", False)
     assert found.evidence.startswith("'a' can be taken in more than one way; a text of ")
-    assert found.suggestion is not None and found.suggestion.pattern == "(?:[a-z]+-?)++$"
-    assert found.way_out == "the possessive form matches the same, and its time grows in line with the length"
+    assert found.suggestion is not None and found.suggestion.pattern == "(?:[a-z]-?)+$"
+    assert found.suggestion.keeps == "groups"
+    assert found.way_out == "growth is exponential as it stands, linear with the pattern above"
 
     found = one(".*x?.*=")
     assert (
@@ -131,6 +132,21 @@ def test_what_a_finding_says() -> None:
         and found.level == "note"
     )
     assert found.evidence.startswith("both can take 'a'; a text of 10,000 characters takes about ")
+    assert found.suggestion is not None and found.suggestion.pattern == ".*="
+    assert found.way_out == "growth is quadratic as it stands, linear with the pattern above"
+
+    found = one(r"(.*)=(.*);", "search", "groups")
+    assert ", and the search begins afresh at every place; " in found.evidence
+    assert found.suggestion is None
+
+    found = one(r"(.*)=(.*);", "match", "groups")
+    assert found.suggestion is None and found.evidence.startswith("both can take '")
+    assert found.way_out == (
+        "let the first of them stop at '=', if it is not to run across it: take it out of its characters; or bound "
+        "the length of the text"
+    )
+
+    found = one(r"(\w+)(\d+[a-z]*);", "match", "groups")
     assert found.suggestion is None and found.way_out.startswith("let the repeats take different characters")
 
     assert one(r"\d*,?\d*,?\d*;", "search").level == "warning"

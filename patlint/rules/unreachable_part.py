@@ -4,10 +4,12 @@ from __future__ import annotations
 
 from bisect import bisect_left
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+from itertools import pairwise
 
+from patlint.language import Language
 from patlint.machine.priority import shown_used
-from patlint.rules.equal_siblings import equal_branches
+from patlint.rules.equal_siblings import equal_branches, is_plain
 from patlint.rules.finding import Example, Finding, Rule
 from patlint.rules.joined import Row, joined_rows
 from patlint.rules.never import is_spelled_never
@@ -40,7 +42,7 @@ def check(subject: Subject) -> Iterator[Finding]:
         told.append(part.node.span)
         yield Finding(
             RULE.name,
-            RULE.level,
+            RULE.level if is_surprise(subject, part) else "note",
             part.node.span,
             f"no match ever takes this {part.kind}",
             mode=only_mode(subject),
@@ -63,6 +65,69 @@ def dead_parts(subject: Subject) -> list[Part]:
         return []
     used = _used_spans(subject)
     return [part for part in parts if not _is_read(part, used) and not is_spelled_never(part.node)]
+
+
+def is_surprise(subject: Subject, part: Part) -> bool:
+    """Whether the author of a dead part must expect something else of the outcome than comes.
+
+    A branch of which the earlier ones take only pieces; a group that is never set, or that takes what the part
+    behind it was written for; a lazy repeat that is left at once. What else is dead could be left out, and nobody
+    is misled (`\\w*\\d*:`), nor is anybody where only the truth of a match is asked.
+    """
+    uses, seen = subject.uses, subject.site.uses_seen and bool(subject.uses)
+    if seen and all(use.looks_at == "truth" and use.function not in SCANNING for use in uses):
+        return False
+    node = part.node
+    if part.kind == "branch":
+        return not _is_covered(subject, node)
+    if isinstance(node, t.Repeat) and node.kind == "lazy":
+        return True
+    if seen and not any(use.looks_at in ("groups", "unknown") for use in uses):
+        return False
+    return any(_captures(inner) for inner in t.walk(node)) or _follows_group(subject.pattern.root, node)
+
+
+def _is_covered(subject: Subject, branch: t.Node) -> bool:
+    """Whether the branches before `branch` together take every text that it takes, as a whole."""
+    for node in t.walk(subject.pattern.root):
+        if isinstance(node, t.Alternation) and any(each is branch for each in node.branches):
+            earlier = node.branches[: next(i for i, each in enumerate(node.branches) if each is branch)]
+            if not earlier or not all(map(is_plain, (*earlier, branch))):
+                return False
+            tree = earlier[0] if len(earlier) == 1 else t.Alternation(node.span, earlier)
+            own, others = (
+                Language(replace(subject.pattern, root=root), limits=subject.limits)
+                for root in (branch, tree)
+            )
+            return own.exact and others.exact and own <= others
+    return False
+
+
+def _captures(node: t.Node) -> bool:
+    return isinstance(node, t.Group) and node.index is not None
+
+
+def _follows_group(root: t.Node, part: t.Node) -> bool:
+    """Whether `part` stands directly behind a group that captures."""
+    for node in t.walk(root):
+        if isinstance(node, t.Sequence):
+            for before, after in pairwise(node.items):
+                inner = before.body if isinstance(before, t.Repeat) else before
+                if _captures(inner) and _begins_with(after, part):
+                    return True
+    return False
+
+
+def _begins_with(node: t.Node, part: t.Node) -> bool:
+    while node is not part:
+        match node:
+            case t.Sequence(items=(first, *_)):
+                node = first
+            case t.Group() | t.Repeat():
+                node = node.body
+            case _:
+                return False
+    return True
 
 
 def dead_rows(subject: Subject, dead: list[Part]) -> list[tuple[t.Alternation, Row, t.Span]]:
@@ -178,6 +243,11 @@ The verdict depends on the use: fullmatch does take the longer alternative.
 Where not all uses of a compiled pattern are seen, a part is reported only
 if none of the functions of re can take it. A part that is used but could be
 left out (`[a-za]`) is not reported here.
+
+A note where nobody is misled: only the truth of a match is asked, or the part
+could simply be left out (`\\w*\\d*:`). A warning where the outcome is not what
+the author must expect: a branch of which an earlier one takes a piece, a
+group that takes what the part behind it was written for (`(.*)\\r?\\n`).
 """,
     wrong=Example(
         'import re\n\n\ndef terminal(text):\n    return re.match(r"east|eastern", text).group()\n',

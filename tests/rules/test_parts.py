@@ -11,11 +11,12 @@ import random
 import re
 import sys
 import warnings
+from dataclasses import replace
 
 import pytest
 
 from patlint.rules.finding import Finding
-from patlint.source.sites import Function
+from patlint.source.sites import Function, LooksAt
 from patlint.syntax import tree as t
 from patlint.syntax.parser import parse
 from tests.rules.support import findings, site
@@ -148,3 +149,36 @@ EQUAL: list[tuple[str, str]] = [
 def test_siblings_by_hand(pattern: str, twin: str) -> None:
     found = findings(site(pattern, "fullmatch", "span"), "equal-siblings")
     assert [pattern[slice(*finding.span)] for finding in found] == ([twin] if twin else [])
+
+
+LEVELS: list[tuple[str, Function, LooksAt, str]] = [
+    ("east|eastern", "match", "span", "warning"),  # a piece wins
+    ("east|eastern", "match", "truth", "note"),
+    ("(?:east|eastern)s?", "search", "groups", "warning"),
+    ("[a-z]+|b", "match", "span", "note"),  # nothing is lost without it
+    (r"(?:\w|\d)x", "match", "span", "note"),
+    ("x.*?", "search", "span", "warning"),
+    ("x.*?", "search", "truth", "note"),
+    ("x(.*?)", "match", "groups", "warning"),
+    (r"\w*\d*:", "match", "groups", "note"),
+    (r"(\w*)\d*:", "match", "groups", "warning"),  # the group has the digits
+    (r"(\w*)\d*:", "match", "span", "note"),
+    (r"(\w+)(?:\d*)-", "match", "groups", "warning"),
+    (r"(\w*)+\d*:", "match", "groups", "warning"),
+    (r".*(\d)?;", "match", "groups", "warning"),  # a group that is never set
+    (r".*(\d)?;", "search", "span", "note"),
+    (r"(?:\d+(?:\.\d*)?|\d*\.\d+)", "match", "groups", "note"),
+]
+
+
+@pytest.mark.parametrize(("pattern", "function", "looks_at", "level"), LEVELS)
+def test_a_warning_only_where_somebody_is_misled(
+    pattern: str, function: Function, looks_at: LooksAt, level: str
+) -> None:
+    found = findings(site(pattern, function, looks_at), "unreachable-part")
+    assert {finding.level for finding in found} == {level}
+
+
+def test_uses_that_are_not_seen_may_look_at_groups() -> None:
+    public = replace(site(r"(\w*)\d*:", "match"), uses=(), uses_seen=False)
+    assert [finding.level for finding in findings(public, "unreachable-part")] == ["warning"]

@@ -12,6 +12,7 @@ if TYPE_CHECKING:
     from patlint.language import ambiguity as ambiguity
     from patlint.language import relate as relate
     from patlint.pairs import agreement as agreement
+    from patlint.report.text import explain as explain
     from patlint.rewrite import shorten as shorten
     from patlint.run import lint_source as lint_source
     from patlint.source import find_patterns as find_patterns
@@ -22,6 +23,7 @@ _HOMES = {
     "Language": "patlint.language",
     "agreement": "patlint.pairs",
     "ambiguity": "patlint.language",
+    "explain": "patlint.report.text",
     "find_patterns": "patlint.source",
     "lint_source": "patlint.run",
     "relate": "patlint.language",
@@ -33,6 +35,7 @@ __all__ = [
     "__version__",
     "agreement",
     "ambiguity",
+    "explain",
     "find_patterns",
     "lint_source",
     "relate",

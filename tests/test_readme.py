@@ -3,12 +3,16 @@
 from __future__ import annotations
 
 import doctest
+import json
 import os
 import re
+import shutil
 import subprocess
 import sys
 from dataclasses import asdict
 from pathlib import Path
+
+import pytest
 
 from patlint.cli.main import COMMANDS
 from patlint.config import _KEYS, load
@@ -45,6 +49,45 @@ def test_the_other_python_blocks_compile() -> None:
     assert others
     for body in others:
         compile(body, "README.md", "exec")
+
+
+def test_the_cell_of_a_notebook(capsys: pytest.CaptureFixture[str]) -> None:
+    (cell,) = [body for body in blocks("python") if "lint_source" in body and ">>>" not in body]
+    exec(compile(cell, "a cell", "exec"), {})
+    lines = capsys.readouterr().out.splitlines()
+    assert lines[0].startswith("a cell:5:26: error: exponential-ambiguity: ")
+    assert lines[1] == r"  pattern  (?:[A-Z0-9]+ ?)+$"
+    assert "  text     '0' * 30 + 'a'" in lines
+
+
+def test_the_lines_of_shell(tmp_path: Path) -> None:
+    """Every bash block but the one that installs, run as it stands; `patlint` is this checkout."""
+    shell = shutil.which("bash")
+    if shell is None:
+        pytest.skip("bash is not installed")
+    (tmp_path / "bin").mkdir()
+    program = tmp_path / "bin/patlint"
+    program.write_text(f'#!/bin/sh\nexec {sys.executable} -m patlint "$@"\n')
+    program.chmod(0o755)
+    (tmp_path / "src").mkdir()
+    (tmp_path / "src/orders.py").write_text("import re\nre.compile('a(b')\n")
+    statuses = []
+    for body in blocks("bash"):
+        script = "\n".join(line for line in body.splitlines() if " pip install " not in line)
+        ran = subprocess.run(
+            [shell, "-c", script],
+            cwd=tmp_path,
+            env=os.environ | {"PYTHONPATH": str(ROOT), "PATH": f"{tmp_path / 'bin'}:{os.environ['PATH']}"},
+            stdin=subprocess.DEVNULL,
+            capture_output=True,
+            text=True,
+        )
+        assert ran.stderr == ""
+        statuses.append(ran.returncode)
+    assert statuses == [0, 1, 1, 1]  # the ledger, two jobs, an editor
+    assert json.loads((tmp_path / "patlint.json").read_text())["findings"]
+    assert json.loads((tmp_path / "patlint.sarif").read_text())["version"] == "2.1.0"
+    assert len((tmp_path / "patlint.ledger").read_text().splitlines()) == 2
 
 
 def test_rules_are_those_of_the_registry() -> None:

@@ -147,6 +147,11 @@ def finding_block(finding: PlacedFinding, style: Style) -> Iterator[str]:
         yield from _rows("advice", finding.way_out, style)
 
 
+def explain(finding: PlacedFinding) -> str:
+    """The finding as the text report shows it, for a notebook or a log; several lines without the last line feed."""
+    return "\n".join(finding_block(finding, Style()))
+
+
 def summary_line(result: RunResult) -> str:
     """The last line: what was looked at, what was found, what stayed open."""
     counts = summary(result)

@@ -132,3 +132,29 @@ def test_interrupt_ends_quietly(folder: Path, jobs: int) -> None:
         assert process.wait() == 130
         for writer in writers:
             os.close(writer)
+
+
+def test_a_cached_run_loads_nothing_slow(folder: Path) -> None:
+    """Most of the time of a small run is imports; a run whose files are all known needs neither parser nor machine."""
+    (folder / "a.py").write_text(SLOW)
+    code = (
+        "import sys; from patlint.cli.main import main; status = main(['lint', *sys.argv[1:]]);"
+        "print(status, sorted(n for n in sys.modules if n.startswith(('libcst', 'patlint.machine', 'patlint.source.',"
+        " 'patlint.rewrite', 'patlint.language')) or n in ('ast', 'multiprocessing', 'asyncio')))"
+    )
+
+    def run(*words: str) -> str:
+        ran = subprocess.run(
+            [sys.executable, "-c", code, *words],
+            capture_output=True,
+            text=True,
+            check=True,
+            cwd=folder,
+            env=environment(),
+        )
+        return ran.stdout.splitlines()[-1]
+
+    first = run()
+    assert "libcst" in first and "patlint.machine.program" in first  # the check can fail
+    for words in ((), ("--format", "json")):
+        assert run(*words) == "1 ['ast']"  # with which the cache is read

@@ -2,9 +2,10 @@
 
 An entry is one file per linted path, named by the path's hash; its lines are the key it was made under, the
 outcome, and a hash of that. The key is a hash of the file's content and path and of everything else that
-decides the outcome: patlint's own source files (sizes and times), the Python that runs it, the settings. An
-entry that is missing, of another key or damaged is as good as none. A cache that cannot be written is not
-an error. The directory ignores itself in git.
+decides the outcome: patlint's own source files (sizes and times), the Python that runs it, the settings. What
+other files had a part in it (constants that are imported) stands in the outcome, with hashes of their content.
+An entry that is missing, of another key, damaged, or made beside other files is as good as none. A cache that
+cannot be written is not an error. The directory ignores itself in git.
 """
 
 from __future__ import annotations
@@ -57,7 +58,8 @@ def fetch(folder: str, path: str, key: str) -> Outcome | None:
             body, checksum = file.readline().rstrip("\n"), file.readline().rstrip("\n")
         if hashlib.sha256(body.encode("ascii")).hexdigest() != checksum:
             return None
-        return from_values(read(body))
+        outcome = from_values(read(body))
+        return outcome if not outcome.relied_on or _stands(outcome) else None
     except (OSError, ValueError, TypeError, KeyError, SyntaxError, MemoryError, RecursionError):
         return None
 
@@ -77,6 +79,13 @@ def store(folder: str, path: str, key: str, outcome: Outcome) -> None:
             with contextlib.suppress(OSError):
                 os.unlink(name)
             raise
+
+
+def _stands(outcome: Outcome) -> bool:
+    """Whether the other files that had a part in `outcome` are as they were."""
+    from patlint.source.disk import unchanged
+
+    return unchanged(dict(outcome.relied_on))
 
 
 def _prepare(folder: str) -> None:

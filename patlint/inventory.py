@@ -48,15 +48,18 @@ class Inventory:
     problems: tuple[str, ...] = ()
 
 
-def inventory_of(data: bytes, path: str, target: Target, sinks: SinkTable | None = None) -> Inventory:
-    """The patterns of a file with content `data`; `sinks` None: the built-in ones.
+def inventory_of(
+    data: bytes, path: str, target: Target, sinks: SinkTable | None = None, root: str | None = None
+) -> Inventory:
+    """The patterns of a file with content `data`; `sinks` None: the built-in ones. `root`: the project's directory.
 
     Raises nothing but KeyboardInterrupt.
     """
     from patlint.source import SourceError, read_module
+    from patlint.source.disk import Files
 
     try:
-        module = read_module(data, path, sinks)
+        module = read_module(data, path, sinks, Files(root))
     except SourceError as error:
         return Inventory(path, problems=failed(path, error.message, error.line).problems)
     except (RecursionError, MemoryError):

@@ -50,6 +50,8 @@ class Outcome:
     undecided: tuple[Remark, ...] = ()
     problems: tuple[str, ...] = ()
     linted: bool = True
+    relied_on: tuple[tuple[str, str], ...] = ()
+    """Other files that the outcome depends on, and their state (`patlint.source.disk`)."""
 
 
 @dataclass(slots=True)
@@ -67,9 +69,10 @@ class _Tally:
 def lint_bytes(data: bytes, path: str, settings: Settings) -> Outcome:
     """The outcome of a file with content `data`, named `path`. Raises nothing but KeyboardInterrupt."""
     from patlint.source import SourceError, read_module  # libcst is slow to import
+    from patlint.source.disk import Files
 
     try:
-        module = read_module(data, path, settings.sinks)
+        module = read_module(data, path, settings.sinks, Files(settings.root))
     except SourceError as error:
         return failed(path, error.message, error.line)
     except (RecursionError, MemoryError):
@@ -103,6 +106,7 @@ def lint_module(module: Module, settings: Settings) -> Outcome:
         inexact=tuple(tally.inexact),
         undecided=tuple(tally.undecided),
         problems=tuple(tally.problems),
+        relied_on=module.relied_on,
     )
 
 
@@ -362,13 +366,21 @@ def to_values(outcome: Outcome) -> tuple[Any, ...]:
         outcome.patterns,
         outcome.waived,
         *(tuple((each.line, each.column, each.reason) for each in group) for group in remarks),
+        outcome.relied_on,
     )
 
 
 def from_values(values: tuple[Any, ...]) -> Outcome:
     """The inverse of `to_values`; TypeError or ValueError where `values` is something else."""
-    path, findings, patterns, waived, *groups = values
+    path, findings, patterns, waived, *groups, relied_on = values
     unresolved, inexact, undecided = (tuple(Remark(*each) for each in group) for group in groups)
     return Outcome(
-        path, tuple(decode(each) for each in findings), patterns, waived, unresolved, inexact, undecided
+        path,
+        tuple(decode(each) for each in findings),
+        patterns,
+        waived,
+        unresolved,
+        inexact,
+        undecided,
+        relied_on=tuple((str(name), str(state)) for name, state in relied_on),
     )

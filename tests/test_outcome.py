@@ -179,7 +179,7 @@ def test_internal_without_a_trace() -> None:
 
 
 def test_an_error_in_reading_is_one_line(monkeypatch: pytest.MonkeyPatch) -> None:
-    def broken(data: bytes, path: str) -> Module:
+    def broken(*_: object) -> Module:
         raise RecursionError
 
     monkeypatch.setattr("patlint.source.read_module", broken, raising=False)

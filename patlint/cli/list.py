@@ -47,7 +47,7 @@ def run(given: Sequence[str]) -> int:
         if isinstance(data, str):
             inventories.append(Inventory(name, problems=(f"{name}: {data}",)))
         else:
-            inventories.append(inventory_of(data, name, settings.target, settings.sinks))
+            inventories.append(inventory_of(data, name, settings.target, settings.sinks, settings.root))
     problems = [*listed.problems, *(line for each in inventories for line in each.problems)]
     for line in problems:
         say(line)

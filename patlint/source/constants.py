@@ -22,8 +22,9 @@ from patlint.source.names import MUTABLE, Names
 from patlint.source.places import Text
 from patlint.source.quoted import f_string, literal
 from patlint.source.reasons import Opaque
-from patlint.source.rows import Item, Rows
-from patlint.source.scopes import Scope
+from patlint.source.rows import Item, Ready, Rows
+from patlint.source.scopes import Binding, Scope
+from patlint.source.siblings import Siblings
 from patlint.source.spelled import Listed, Spelled, cut, join, repeat, without_spelling
 from patlint.source.values import Environment, Value, arithmetic, same, small
 
@@ -40,7 +41,8 @@ _STRING_MODULE = frozenset(
 class Constants:
     """The constants of one file."""
 
-    def __init__(self, index: Index, text: Text, engine: Engine) -> None:
+    def __init__(self, index: Index, text: Text, engine: Engine, siblings: Siblings | None = None) -> None:
+        self.siblings = siblings
         self.index = index
         self.text = text
         self.engine = engine
@@ -149,13 +151,42 @@ class Constants:
         """What a loop's variable, a parameter or an attribute stands for in the row, call or class that is
         taken now; None for other names. Errors: `Opaque`."""
         if isinstance(node, ast.Attribute):
+            if self.siblings is not None:
+                value = self.siblings.attribute(node, scope, self.text.place(node))
+                if isinstance(value, (Listed, dict)) and not self.names.attribute_unchanged(node.attr):
+                    raise Opaque(reasons.CHANGED)
+                if value is not None:
+                    return Ready(value)
             return self.attributes.chosen(node, scope)
         owner = scope.find(node.id)
-        if owner is not None and owner.kind == "function":
-            bindings = owner.bindings[node.id]
-            if len(bindings) == 1 and bindings[0].kind == "parameter":
+        if owner is not None and len(owner.bindings[node.id]) == 1:
+            binding = owner.bindings[node.id][0]
+            if binding.kind == "parameter" and owner.kind == "function":
                 return self.helpers.argument(node.id, node, owner)
+            if binding.kind == "import" and self.siblings is not None:
+                return Ready(self._imported(binding, node, scope))
         return self.rows.chosen(node, scope)
+
+    def _imported(self, binding: Binding, node: ast.Name, scope: Scope) -> Value:
+        assert self.siblings is not None
+        value = self.siblings.name(binding, self.text.place(node))
+        if isinstance(value, (Listed, dict)) and not self.names.unchanged(node.id, scope):
+            raise Opaque(reasons.CHANGED)
+        if binding.scope.module is binding.scope and (self.index.dynamic or self.index.star_lines):
+            raise Opaque(reasons.IMPORTED)
+        return value
+
+    def exported(self, name: str) -> Value:
+        """What another file gets that imports `name` from this one. Errors: `Opaque`."""
+        module = self.index.module
+        values: list[Value] = []
+        for expression, scope in self.names.owned(module, name):
+            if isinstance(expression, MUTABLE) and not self.names.unchanged(name, module):
+                raise Opaque(reasons.CHANGED)
+            values.append(self.remembered(expression, scope, 0))
+            if not same(values[0], values[-1]):
+                raise Opaque(reasons.REASSIGNED)
+        return values[0]
 
     def _definition(self, node: ast.Name, scope: Scope, depth: int) -> Value:
         item = self.origin(node, scope)
@@ -207,8 +238,9 @@ class Constants:
             bindings = owner.bindings[node.value.id] if owner else []
             if bindings and all(b.module == "string" and b.member is None for b in bindings):
                 return without_spelling(str(getattr(string, node.attr)), self.text.place(node))
-        row = self.attributes.chosen(node, scope)
-        return self.remembered(row.node, row.scope, depth)
+        item = self.origin(node, scope)
+        assert item is not None
+        return self.rows.value(item, depth)
 
     def _fail(self) -> Value:
         raise Opaque(reasons.CALL)

@@ -14,8 +14,10 @@ Limits: encodings that are not supersets of ASCII cannot be declared by a cookie
 
 from __future__ import annotations
 
+import ast
 import codecs
 import re
+import warnings
 from dataclasses import dataclass
 
 BOM = b"\xef\xbb\xbf"
@@ -104,3 +106,19 @@ def split_lines(text: str) -> tuple[str, ...]:
     if not _ODD_BREAKS.search(text):
         return tuple(text.splitlines(keepends=True))
     return tuple(_LINES.findall(text))
+
+
+def parse(text: str, path: str) -> ast.Module:
+    """Errors: `SourceError`, whatever the parser comes to."""
+    try:
+        with warnings.catch_warnings():
+            warnings.simplefilter("ignore")
+            return ast.parse(text)
+    except SyntaxError as error:
+        raise SourceError(path, f"cannot be parsed: {error.msg}", error.lineno) from None
+    except RecursionError:
+        raise SourceError(path, "cannot be parsed: nested too deeply") from None
+    except MemoryError:
+        raise SourceError(path, "cannot be parsed: out of memory or nested too deeply") from None
+    except (ValueError, OverflowError) as error:
+        raise SourceError(path, f"cannot be parsed: {type(error).__name__}") from None

@@ -11,7 +11,7 @@ import ast
 from patlint.source import reasons
 from patlint.source.constants import Constants
 from patlint.source.reasons import Opaque
-from patlint.source.rows import Row
+from patlint.source.rows import Ready, Row
 from patlint.source.scopes import Scope
 
 _LETTERS = {"I": 2, "L": 4, "M": 8, "S": 16, "U": 32, "X": 64, "A": 256, "T": 1}
@@ -83,6 +83,8 @@ def _named(node: ast.Name | ast.Attribute, scope: Scope, constants: Constants, d
         item = constants.origin(node, scope)
         if isinstance(item, Row):
             return evaluate_flags(item.node, item.scope, constants, depth + 1)
+        if isinstance(item, Ready) and isinstance(item.value, int):
+            return item.value
         definitions = constants.names.definitions(node, scope)
     except Opaque:
         raise Opaque(reasons.FLAGS) from None

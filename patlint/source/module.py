@@ -12,13 +12,13 @@ from __future__ import annotations
 import ast
 import gc
 import re
-import warnings
 from collections.abc import Iterator
 from typing import cast
 
 from patlint.source import reasons
 from patlint.source.constants import Constants
-from patlint.source.decode import SourceError, decode, split_lines
+from patlint.source.decode import decode, parse, split_lines
+from patlint.source.disk import Files
 from patlint.source.engine import FUNCTIONS, Arguments, Engine, bind_arguments
 from patlint.source.families import Made, read_families
 from patlint.source.flags import evaluate_flags
@@ -28,6 +28,7 @@ from patlint.source.places import Text
 from patlint.source.reasons import Opaque
 from patlint.source.rows import Row
 from patlint.source.scopes import Scope
+from patlint.source.siblings import Shared, Siblings
 from patlint.source.sinks import SinkTable
 from patlint.source.sinks_builtin import builtin_table
 from patlint.source.sinks_calls import SinkReader
@@ -41,10 +42,13 @@ _IMPORT_RE = re.compile(r"import[ \t\f\\](?:[^#\n\r;]|(?<=\\)\r?\n|(?<=\\)\r)*?\
 _FROM_RE = re.compile(r"from[ \t\f\\\r\n]+re\b")
 
 
-def read_module(data: bytes | str, path: str, sinks: SinkTable | None = None) -> Module:
+def read_module(
+    data: bytes | str, path: str, sinks: SinkTable | None = None, files: Files | None = None
+) -> Module:
     """Everything the source side knows of one file, which is never run.
 
-    `sinks`: functions of other libraries that take patterns; None: the built-in ones.
+    `sinks`: functions of other libraries that take patterns; None: the built-in ones. `files`: where constants
+    that are imported are looked for; None: nowhere.
 
     Errors: `SourceError` for what cannot be decoded or parsed.
     """
@@ -60,17 +64,19 @@ def read_module(data: bytes | str, path: str, sinks: SinkTable | None = None) ->
         families: tuple[Family, ...] = ()
         table = builtin_table() if sinks is None else sinks
         if mentions_re(source.text) or table.mentioned(source.text):
-            reader = _Reader(tree, source.text, lines, path, table)
+            reader = _Reader(tree, source.text, lines, path, table, files)
             try:
                 reader.read()
                 sites, unresolved = reader.results()
                 families = read_families(reader.index, reader.text, reader.constants, reader.made, sites)
             finally:
-                reader.index.release()
+                reader.release()
     finally:
         if collecting:
             gc.enable()
-    return Module(path, sites, unresolved, waivers, lines, bad_waivers, source.encoding, families)
+    return Module(
+        path, sites, unresolved, waivers, lines, bad_waivers, source.encoding, families, _sorted(files)
+    )
 
 
 def find_patterns(
@@ -85,33 +91,29 @@ def mentions_re(text: str) -> bool:
     return _IMPORT_RE.search(text) is not None or _FROM_RE.search(text) is not None
 
 
-def parse(text: str, path: str) -> ast.Module:
-    """Errors: `SourceError`, whatever the parser comes to."""
-    try:
-        with warnings.catch_warnings():
-            warnings.simplefilter("ignore")
-            return ast.parse(text)
-    except SyntaxError as error:
-        raise SourceError(path, f"cannot be parsed: {error.msg}", error.lineno) from None
-    except RecursionError:
-        raise SourceError(path, "cannot be parsed: nested too deeply") from None
-    except MemoryError:
-        raise SourceError(path, "cannot be parsed: out of memory or nested too deeply") from None
-    except (ValueError, OverflowError) as error:
-        raise SourceError(path, f"cannot be parsed: {type(error).__name__}") from None
+def _sorted(files: Files | None) -> tuple[tuple[str, str], ...]:
+    return tuple(sorted(files.relied_on.items())) if files is not None else ()
 
 
 class _Reader:
     """One file while it is read."""
 
     def __init__(
-        self, tree: ast.Module, source: str, lines: tuple[str, ...], path: str, table: SinkTable
+        self,
+        tree: ast.Module,
+        source: str,
+        lines: tuple[str, ...],
+        path: str,
+        table: SinkTable,
+        files: Files | None,
     ) -> None:
         self.path = path
         self.index: Index = build_index(tree)
         self.text = Text(lines)
         self.engine = Engine(self.index)
-        self.constants = Constants(self.index, self.text, self.engine)
+        self.others = Shared(files) if files is not None else None
+        siblings = Siblings(self.index, path, self.others) if self.others is not None else None
+        self.constants = Constants(self.index, self.text, self.engine, siblings)
         self.uses = Uses(self.index, self.text, self.constants)
         self.sinks = SinkReader(self.index, self.text, self.constants, path, table, self._where)
         self.follower = Follower(
@@ -120,6 +122,11 @@ class _Reader:
         self.sites: list[Site] = []
         self.unresolved: list[Unresolved] = []
         self.made: Made = {}
+
+    def release(self) -> None:
+        self.index.release()
+        if self.others is not None:
+            self.others.release()
 
     def results(self) -> tuple[tuple[Site, ...], tuple[Unresolved, ...]]:
         sites = sorted(merge(self.sites + self.sinks.sites), key=lambda site: site.place)

@@ -65,9 +65,10 @@ class Names:
                 owner.kind == "module" and (self.index.dynamic or self.index.star_lines)
             ):
                 return [(value, scope)]
-        return self._owned(owner, node.id)
+        return self.owned(owner, node.id)
 
-    def _owned(self, owner: Scope, name: str) -> list[tuple[ast.expr, Scope]]:
+    def owned(self, owner: Scope, name: str) -> list[tuple[ast.expr, Scope]]:
+        """Every expression that the `name` of `owner` may stand for, whoever reads it. Errors: `Opaque`."""
         bindings = [binding for binding in owner.bindings[name] if binding.kind != "deleted"]
         if not bindings:
             raise Opaque(reasons.UNBOUND)

@@ -240,3 +240,5 @@ class Module:
     encoding: str = "utf-8"
     """The codec that turns the text back into the file's bytes (`utf-8-sig` where it began with a mark)."""
     families: tuple[Family, ...] = ()
+    relied_on: tuple[tuple[str, str], ...] = ()
+    """Other files that were looked at, and their state (`patlint.source.disk`)."""

@@ -40,7 +40,7 @@ class Limits:
     contexts: int = 40
     """Pairs of what two patterns know of the text to the left, for each of which their spans are compared, a few
     milliseconds each. `\\b|^x` and `(?<=a)b` have 4."""
-    turns: int = 60_000
+    turns: int = 100_000
     """Places that the counting of steps reckons in all confirmations of one question, about 100 ms. A place is
     reckoned once however often the engine comes there. `(a+)+$` with 60 pumps needs 240."""
     bounded_steps: int = 20_000_000

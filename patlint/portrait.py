@@ -18,7 +18,7 @@ from typing import Final, TypeVar
 from patlint.language import Language, Undecided
 from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
 from patlint.machine.program import compile_tree
-from patlint.machine.slow_text import ambiguity_of
+from patlint.machine.slow_text import REFERENCES, ambiguity_of
 from patlint.outcome import flag_names
 from patlint.placed import PlacedFinding, place_finding
 from patlint.rules.finding import Growth, SlowWitness
@@ -177,7 +177,11 @@ def _ambiguity(
     if found is None:
         return None, None
     if found.undecided is not None:
-        asked.reasons.append(f"limit {found.undecided} reached in the search for slow texts")
+        asked.reasons.append(
+            "whether texts are slow depends on back-references"
+            if found.undecided == REFERENCES
+            else f"limit {found.undecided} reached in the search for slow texts"
+        )
     slow = found.slow
     if slow is None:
         return (1 if found.undecided is None else None), None

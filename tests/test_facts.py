@@ -259,6 +259,13 @@ def test_numbers_of_accepting_paths(pattern: str, paths) -> None:  # type: ignor
     assert [accepting_paths(pattern, "a" * n) for n in range(1, 9)] == [paths(n) for n in range(1, 9)]
 
 
+def test_paths_of_a_chain_whose_words_differ() -> None:
+    """Source: Weber and Seidl 1991 (degree 2 on a**n b**n, 1 on any power of one word); the product rule."""
+    for n in range(1, 8):
+        assert accepting_paths("a*a*b*b*", "a" * n + "b" * n) == (n + 1) ** 2
+        assert accepting_paths("a*a*xb*b*", "a" * n + "x" + "b" * n) == (n + 1) ** 2
+
+
 # Common practice, no source.
 def test_facts_of_the_trade() -> None:
     assert Language("^a$", mode="match").accepts("a\n") and not Language(r"^a\Z", mode="match").accepts("a\n")

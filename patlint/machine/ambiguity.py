@@ -18,12 +18,12 @@ Limit: `product` nodes of each walk over pairs and triples.
 
 from __future__ import annotations
 
-from collections.abc import Iterator
-from dataclasses import dataclass
+from collections.abc import Iterable, Iterator
+from dataclasses import dataclass, replace
 from functools import reduce
 from itertools import pairwise
 from math import lcm
-from operator import and_
+from operator import and_, or_
 from typing import TypeAlias
 
 from patlint.limits import LimitReached
@@ -49,6 +49,8 @@ from patlint.machine.walks import SCAN, Walks
 
 Codes: TypeAlias = tuple[int, ...]
 Span: TypeAlias = tuple[int, int]
+FURTHER = 128
+"""Pairs that are walked from once two cycles on one text are known."""
 LONGEST = 12
 """Characters of the longest pump that is made to fit several links."""
 
@@ -57,19 +59,22 @@ LONGEST = 12
 class Suspect:
     """`prefix` leads to the cycle on `pump`; `degree` is 0 for exponential, else the expected power of steps.
 
-    `pump` has for each character the minterms of which one will do, as a mask. `nodes` are the nodes of the
-    graph between which the engine can choose, `parts` their spans. `by_restart` tells that one of them is the
-    search itself, beginning afresh. `more` are further pumps, each with the text before it: the ways part on each
-    of them, and `nodes` are those of the last.
+    Both have for each character the minterms of which one will do, as a mask. `positions` are those between which
+    the engine can choose, `parts` the spans of what competes, `loops` what one of them can take again and again,
+    `idle` what the first of them can, so that it may stand before the pumps.
+    `by_restart` tells that one of them is the search itself, beginning afresh (it has no position). `more` are
+    further pumps, each with the text before it: the ways part on each of them, and `positions` are those of the last.
     """
 
-    prefix: Codes
+    prefix: Masks
     pump: Masks
     degree: int
-    nodes: tuple[int, ...]
+    positions: frozenset[int]
     parts: tuple[Span, ...]
+    loops: int = 0
+    idle: int = 0
     by_restart: bool = False
-    more: tuple[tuple[Codes, Masks], ...] = ()
+    more: tuple[tuple[Masks, Masks], ...] = ()
 
 
 EXPONENTIAL = 0
@@ -101,8 +106,7 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
 
     Raises LimitReached.
     """
-    letter = Letters(nfa)
-    prefixes = _prefixes(graph, letter)
+    prefixes = _prefixes(graph)
     members: dict[int, list[int]] = {}
     for node, component in enumerate(graph.components):
         if component in graph.cyclic and node in prefixes:
@@ -113,7 +117,7 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
         if found:
             ambiguous.append(nodes)
         for node, pump, others in found:
-            yield Suspect(prefixes[node], pump, EXPONENTIAL, (node,), _parts(graph, node, *others))
+            yield _suspect(graph, prefixes, (node,), pump, EXPONENTIAL, (node, *others))
     reach = reachable(graph, members)
     links = links_of(graph, members, reach, nfa.limits.product) if len(members) > 1 else {}
     if links:
@@ -121,17 +125,17 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
     for nodes in ambiguous:
         yield from _within(graph, nodes, prefixes, nfa.limits.product)
     for chain in chains(links, reach):
-        yield _several(chain, links, graph, prefixes, letter)
+        yield _several(chain, links, graph, prefixes)
 
 
-def _linked(graph: Walks, links: Links, prefixes: dict[int, Codes]) -> Iterator[Suspect]:
+def _linked(graph: Walks, links: Links, prefixes: dict[int, Masks]) -> Iterator[Suspect]:
     """Suspicions of one pump: for each link some, and one for a longest chain as a whole."""
     depth = depths(links)
     ranked = sorted(links, key=lambda link: (-depth[link], len(links[link][0][2])))
 
     def suspect(link: Link, way: Way) -> Suspect:
         p, q, pump = way
-        return Suspect(prefixes[p], pump, depth[link], (p, q), _parts(graph, p, q), _afresh(graph, link))
+        return _suspect(graph, prefixes, (p, q), pump, depth[link], (p, q))
 
     yield suspect(ranked[0], links[ranked[0]][0])
     if depth[ranked[0]] > 2:
@@ -146,12 +150,27 @@ def _linked(graph: Walks, links: Links, prefixes: dict[int, Codes]) -> Iterator[
             yield suspect(link, way)
 
 
-def _afresh(graph: Walks, link: Link) -> bool:
-    """Whether the first of the two is the search itself."""
-    return graph.scan and link[0] == graph.components[SCAN]
+def _suspect(
+    graph: Walks,
+    prefixes: dict[int, Masks],
+    nodes: tuple[int, ...],
+    pump: Masks,
+    degree: int,
+    competing: Iterable[int],
+) -> Suspect:
+    """A suspicion of the ways between `nodes`, the first of which the prefix leads to."""
+    afresh = graph.scan and nodes[0] == SCAN
+    alone = [
+        reduce(or_, (edge.mask for edge in graph.edges[node] if edge.target == node), 0) for node in nodes
+    ]
+    loops = reduce(or_, alone[afresh:], 0)
+    positions = frozenset(graph.positions[node] for node in nodes) - {-1}
+    return Suspect(
+        prefixes[nodes[0]], pump, degree, positions, _parts(graph, *competing), loops, alone[0], afresh
+    )
 
 
-def _within(graph: Walks, nodes: list[int], prefixes: dict[int, Codes], limit: int) -> Iterator[Suspect]:
+def _within(graph: Walks, nodes: list[int], prefixes: dict[int, Masks], limit: int) -> Iterator[Suspect]:
     """Repeats inside a loop that compete within one iteration.
 
     The loop as a whole has two cycles on one text, but what follows may take every such text; an iteration that
@@ -164,14 +183,14 @@ def _within(graph: Walks, nodes: list[int], prefixes: dict[int, Codes], limit: i
         pump, spent = triple(graph, p, q, {p}, {q}, limit, inside)
         limit -= spent
         if pump is not None:
-            yield Suspect(prefixes[p], pump, min(len(alone), 3), (p, q), _parts(graph, p, q))
+            yield _suspect(graph, prefixes, (p, q), pump, min(len(alone), 3), (p, q))
             given += 1
         if limit <= 0 or given >= WAYS:
             return
 
 
 def _joined(
-    chain: list[Link], links: Links, depth: dict[Link, int], graph: Walks, prefixes: dict[int, Codes]
+    chain: list[Link], links: Links, depth: dict[Link, int], graph: Walks, prefixes: dict[int, Masks]
 ) -> Suspect:
     """One suspicion for a whole chain, with a pump that all links can take.
 
@@ -185,35 +204,31 @@ def _joined(
     pump = tuple(reduce(and_, (each[at % len(each)] for each in pumps)) for at in range(min(size, LONGEST)))
     if size > LONGEST or not all(pump):
         pump = sum(pumps, ())
-    parts = _parts(graph, *nodes)
-    return Suspect(prefixes[begin], pump, depth[chain[0]], (begin, end), parts, _afresh(graph, chain[0]))
+    return _suspect(graph, prefixes, (begin, end), pump, depth[chain[0]], nodes)
 
 
-def _several(
-    chain: tuple[Link, ...], links: Links, graph: Walks, prefixes: dict[int, Codes], letter: Letters
-) -> Suspect:
+def _several(chain: tuple[Link, ...], links: Links, graph: Walks, prefixes: dict[int, Masks]) -> Suspect:
     """A suspicion for a chain whose links have a pump each."""
     ways = [links[link][0] for link in chain]
-    more: list[tuple[Codes, Masks]] = []
+    more: list[tuple[Masks, Masks]] = []
     for (_, end, _), (begin, _, pump) in pairwise(ways):
         between = path(graph, end, begin, None)
         assert between is not None
-        more.append((tuple(map(letter, between)), pump))
+        more.append((between, pump))
     (first, _, pump), (p, q, _) = ways[0], ways[-1]
-    parts = _parts(graph, *(node for way in ways for node in way[:2]))
-    return Suspect(
-        prefixes[first], pump, len(chain) + 1, (p, q), parts, _afresh(graph, chain[0]), tuple(more)
-    )
+    last = _suspect(graph, prefixes, (p, q), pump, len(chain) + 1, (node for way in ways for node in way[:2]))
+    afresh = graph.scan and first == SCAN
+    return replace(last, prefix=prefixes[first], by_restart=afresh, more=tuple(more))
 
 
-def _prefixes(graph: Walks, letter: Letters) -> dict[int, Codes]:
+def _prefixes(graph: Walks) -> dict[int, Masks]:
     """A shortest text from the start to each node."""
-    out: dict[int, Codes] = {node: () for node in graph.entry}
+    out: dict[int, Masks] = {node: () for node in graph.entry}
     order = list(out)
     for node in order:
         for edge in graph.edges[node]:
             if edge.target not in out:
-                out[edge.target] = (*out[node], letter(edge.mask))
+                out[edge.target] = (*out[node], edge.mask)
                 order.append(edge.target)
     return out
 
@@ -244,13 +259,14 @@ def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> list[tuple[int, M
             if pair not in seen:
                 seen[pair] = None
                 order.append(pair)
-            origins.setdefault(pair, {})[node] = mask
+            begins = origins.setdefault(pair, {})
+            begins[node] = begins.get(node, 0) | mask
     if len(all_found) > WAYS:
         return _few(all_found)
-    more = min(len(nodes), 64)
+    more = max(len(nodes), FURTHER)
     for pair in order:
         if all_found:
-            more -= 1  # a meeting is known: look a little further for one with a shorter pump
+            more -= 1  # a meeting is known: look a little further for one with a shorter pump, or another
             if more < 0:
                 break
         for edge in graph.edges[pair[0]]:
@@ -261,13 +277,12 @@ def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> list[tuple[int, M
                 if not mask or other.target not in inside:
                     continue
                 target = (edge.target, other.target)
-                if target in seen:
-                    continue
-                if len(seen) >= limit:
-                    raise LimitReached("product", limit)
-                seen[target] = (pair, mask)
                 if target[0] != target[1]:
-                    order.append(target)
+                    if target not in seen:
+                        if len(seen) >= limit:
+                            raise LimitReached("product", limit)
+                        seen[target] = (pair, mask)
+                        order.append(target)
                     continue
                 first: tuple[int, ...] = pair
                 step = seen[first]
@@ -278,17 +293,20 @@ def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> list[tuple[int, M
                 node = target[0] if target[0] in begin else next(iter(begin))
                 back = path(graph, target[0], node, inside)
                 assert back is not None
-                pump = (begin[node], *spell(seen, target), *back)
+                pump = (begin[node], *spell(seen, pair), mask, *back)
                 all_found.append((node, pump, first))
     return _few(all_found)
 
 
 def _few(found: list[tuple[int, Masks, tuple[int, ...]]]) -> list[tuple[int, Masks, tuple[int, ...]]]:
-    """The shortest with different texts."""
+    """The shortest with different texts: what follows may take the characters of one and not those of another."""
     kept: dict[Masks, tuple[int, Masks, tuple[int, ...]]] = {}
+    sets: dict[frozenset[int], Masks] = {}
     for row in sorted(found, key=lambda row: len(row[1])):
         kept.setdefault(row[1], row)
-    return list(kept.values())[:WAYS]
+        sets.setdefault(frozenset(row[1]), row[1])
+    first = [kept.pop(pump) for pump in list(sets.values())[:WAYS]]
+    return [*first, *list(kept.values())[:WAYS]]
 
 
 def _parts(graph: Walks, *nodes: int) -> tuple[Span, ...]:

@@ -16,7 +16,6 @@ from patlint.machine.ambiguity import Letters, Suspect
 from patlint.machine.candidates import Text
 from patlint.machine.fit import Growth, rising
 from patlint.machine.program import can_be_empty, one_character
-from patlint.machine.walks import Walks
 from patlint.syntax import tree as t
 
 LONGEST = 4_000
@@ -75,15 +74,15 @@ def repeats_nothing(node: t.Node) -> bool:
     )
 
 
-def stretched(text: Text, suspect: Suspect, graph: Walks, letters: Letters) -> Iterator[Text]:
+def stretched(text: Text, suspect: Suspect, letters: Letters) -> Iterator[Text]:
     """The text, then the same with longer pumps: what a part can take again and again stands before each.
 
     `(.*a){20}` can have twenty pumps at most, but between them there is room.
     """
     yield text
-    loops = [edge.mask for node in suspect.nodes for edge in graph.edges[node] if edge.target == node]
-    used = {letters(mask) for mask in suspect.pump}
-    for mask in loops[:1]:
+    mask = suspect.loops
+    if mask:
+        used = {letters(each) for each in suspect.pump}
         others = [code for bit, code in enumerate(letters.letters) if mask >> bit & 1 and code not in used]
         code = min(others, key=lambda code: (not 32 < code < 127, code), default=letters(mask))
         for many in STRETCHES:

@@ -13,17 +13,22 @@ from typing import Literal, TypeAlias
 
 from patlint.machine.ambiguity import Codes, Letters, Suspect
 from patlint.machine.continuation import Continuations
+from patlint.machine.links import Masks
 
 VARIANTS = 5
 """Readings of a pump (with other characters of the same sets) that are tried."""
 READINGS = 2
 """Readings of which something had to be counted."""
-GUESSES = 5
+GUESSES = 4
+GUESSED = 4
+"""Readings for which suffixes are guessed."""
 ANYWAY = 2
+LEADS = 4
+"""Characters that are tried before the pumps."""
 LEAD = 2
 """How often each pump but the last stands in the text for which a suffix is sought."""
 
-Kind: TypeAlias = Literal["sure", "guess", "again"]
+Kind: TypeAlias = Literal["sure", "guess", "again", "led"]
 More: TypeAlias = tuple[tuple[Codes, Codes], ...]
 
 
@@ -78,35 +83,54 @@ def texts(
     """The candidates and what each is. With `anyway` some also where no suffix makes the engine go back.
 
     "sure": it makes the engine walk all ways; "again": the one before with a longer pump, needed only where
-    that showed nothing; "guess": not decided.
+    that showed nothing; "guess": not decided; "led": with a character before it, needed where nothing else showed
+    anything.
     """
-    readings = 0
-    for whole, more in _readings(suspect, letters):
-        lead, last = suspect.prefix, whole
+    readings = guessed = 0
+    for number, (prefix, whole, more) in enumerate(_readings(suspect, letters)):
+        lead, last = prefix, whole
         for between, pump in more:
             lead, last = lead + last * LEAD + between, pump
         suffix = continuations.failing(suspect, lead, last)
-        if suffix == "none" and not anyway:
-            continue
-        prefix, pump = without_pumps(suspect.prefix, _root(whole)), _root(whole)
-        short: list[tuple[Codes, Codes]] = []
-        before = pump
-        for between, each in more:
-            root = _root(each)
-            rest = _after(before, without_pumps(between, root))
-            if rest or root != before:
-                short.append((rest, root))
-            before = root
-        if isinstance(suffix, str):
-            for guess in _guesses(last, letters)[: GUESSES if suffix == "unknown" else ANYWAY]:
-                yield Text(prefix, pump, guess, is_bytes, tuple(short)), "guess"
-        else:
-            yield Text(prefix, pump, suffix, is_bytes, tuple(short)), "sure"
-            if pump != whole and not more:  # the number of short pumps may matter
-                yield Text(suspect.prefix, whole, suffix, is_bytes), "again"
-        readings += 1
-        if readings >= READINGS:
+        kind: Kind = "sure"
+        if suffix == "none":
+            suffix = continuations.failing(suspect, lead, last, but_last=True)
+            kind = "guess"
+        if suffix == "unknown":
+            for guess in _guesses(last, letters):
+                yield _text(prefix, whole, more, guess, is_bytes), "guess"
+        elif suffix != "none":
+            yield _text(prefix, whole, more, suffix, is_bytes), kind
+            if not more and _root(whole) != whole:  # the number of short pumps may matter
+                yield Text(prefix, whole, suffix, is_bytes), "again"
+        elif anyway:
+            for guess in _guesses(last, letters)[:ANYWAY]:
+                yield _text(prefix, whole, more, guess, is_bytes), "guess"
+        if suspect.idle and suffix != "unknown" and number < READINGS:
+            # What goes on from the text's start may be another than what begins later.
+            for code in _leads(suspect.idle, whole, letters):
+                led = continuations.failing(suspect, (*lead[: len(prefix)], code, *lead[len(prefix) :]), last)
+                if led == "none":
+                    led = continuations.failing(suspect, (*prefix, code), last, but_last=True)
+                if not isinstance(led, str):
+                    yield _text((*prefix, code), whole, more, led, is_bytes), "led"
+        readings += suffix not in ("none", "unknown")
+        guessed += suffix == "unknown"
+        if readings >= READINGS or guessed >= GUESSED:
             break
+
+
+def _text(prefix: Codes, whole: Codes, more: More, suffix: Codes, is_bytes: bool) -> Text:
+    """The text with the shortest pumps that say the same."""
+    pump = before = _root(whole)
+    short: list[tuple[Codes, Codes]] = []
+    for between, each in more:
+        root = _root(each)
+        rest = _after(before, without_pumps(between, root))
+        if rest or root != before:
+            short.append((rest, root))
+        before = root
+    return Text(without_pumps(prefix, pump), pump, suffix, is_bytes, tuple(short))
 
 
 def without_pumps(prefix: Codes, pump: Codes) -> Codes:
@@ -123,21 +147,23 @@ def _after(pump: Codes, between: Codes) -> Codes:
     return between
 
 
-def _readings(suspect: Suspect, letters: Letters) -> Iterator[tuple[Codes, More]]:
-    """The pumps in characters: the most readable, then others that may be treated better by what follows."""
-    seen: set[tuple[Codes, More]] = set()
+def _readings(suspect: Suspect, letters: Letters) -> Iterator[tuple[Codes, Codes, More]]:
+    """Prefix and pumps in characters: the most readable, then others that may be treated better by what follows."""
+    seen: set[tuple[Codes, Codes, More]] = set()
     union = 0
-    for mask in sum((pump for _, pump in suspect.more), suspect.pump):
+    for mask in sum((between + pump for between, pump in suspect.more), suspect.prefix + suspect.pump):
         union |= mask
     preferred = [0, *(1 << minterm for minterm in range(union.bit_length()) if union >> minterm & 1)]
     for prefer in preferred:
-        pump = tuple(letters(mask, prefer) for mask in suspect.pump)
-        more = tuple(
-            (between, tuple(letters(mask, prefer) for mask in masks)) for between, masks in suspect.more
-        )
-        if (pump, more) not in seen:
-            seen.add((pump, more))
-            yield pump, more
+
+        def read(masks: Masks, prefer: int = prefer) -> Codes:
+            return tuple(letters(mask, prefer) for mask in masks)
+
+        more = tuple((read(between), read(pump)) for between, pump in suspect.more)
+        reading = read(suspect.prefix), read(suspect.pump), more
+        if reading not in seen:
+            seen.add(reading)
+            yield reading
         if len(seen) >= VARIANTS:
             return
 
@@ -149,6 +175,12 @@ def _root(pump: Codes) -> Codes:
         if size % length == 0 and pump == pump[:length] * (size // length):
             return pump[:length]
     return pump
+
+
+def _leads(mask: int, pump: Codes, letters: Letters) -> list[int]:
+    """Characters of a set of minterms that may stand before the pumps."""
+    codes = [code for minterm, code in enumerate(letters.letters) if mask >> minterm & 1]
+    return sorted(codes, key=lambda code: (code in pump, not 32 < code < 127, code))[:LEADS]
 
 
 def _guesses(pump: Codes, letters: Letters) -> list[Codes]:

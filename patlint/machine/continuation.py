@@ -22,7 +22,6 @@ from patlint.machine.nfa import Nfa
 from patlint.machine.obligations import FREE, Thread
 from patlint.machine.ordered import Threads, prune, steps
 from patlint.machine.program import Accept, Atomic, Fork, Iterate, Look, Test
-from patlint.machine.walks import Walks
 
 Verdict: TypeAlias = Codes | Literal["none", "unknown"]
 """A suffix; "none": no text makes the engine walk all ways; "unknown": not decided here."""
@@ -38,21 +37,28 @@ State: TypeAlias = tuple[frozenset[Thread], int]
 class Continuations:
     """Asks for the suffixes of one program in one manner."""
 
-    def __init__(self, nfa: Nfa, graph: Walks, manner: str, letters: Letters) -> None:
-        self.nfa, self.graph, self.manner = nfa, graph, manner
+    def __init__(self, nfa: Nfa, manner: str, letters: Letters) -> None:
+        self.nfa, self.manner = nfa, manner
         self.full = manner == "fullmatch"
         self.outer = _outer_positions(nfa)
         self.order = sorted(range(len(nfa.alphabet)), key=lambda minterm: _pleasant(letters.letters[minterm]))
         self.letters = letters.letters
+        self.but_last = False
 
     def minterms(self, codes: Codes) -> list[int]:
         return [self.nfa.alphabet.classify(code) for code in codes]
 
-    def failing(self, suspect: Suspect, prefix: Codes, pump: Codes) -> Verdict:
-        """What to put behind many pumps; `pump` is one reading of the suspect's."""
+    def failing(self, suspect: Suspect, prefix: Codes, pump: Codes, but_last: bool = False) -> Verdict:
+        """What to put behind many pumps; `pump` is one reading of the suspect's.
+
+        With `but_last` the last of the ways need not fail: a lazy repeat comes behind all that it leads to.
+        """
         nfa = self.nfa
-        wanted = {self.graph.positions[node] for node in suspect.nodes} - {-1}
-        if nfa.inexact or not wanted <= self.outer:
+        if but_last and (len(suspect.positions) < 2 or suspect.by_restart):
+            return "none"
+        self.but_last = but_last
+        wanted = suspect.positions
+        if nfa.inexact or any(place not in self.outer and place < nfa.accept for place in wanted):
             return "unknown"
         lead, pumped = self.minterms(prefix), self.minterms(pump)
         if self.manner in ("match", "fullmatch"):
@@ -94,7 +100,12 @@ class Continuations:
         return out
 
     def part(
-        self, lead: list[int], pumped: list[int], begin: int, wanted: set[int] | None, not_empty: bool = False
+        self,
+        lead: list[int],
+        pumped: list[int],
+        begin: int,
+        wanted: frozenset[int] | None,
+        not_empty: bool = False,
     ) -> State | None:
         """The engine's threads, from an attempt at `begin`, up to the last of those wanted, after three pumps.
 
@@ -124,7 +135,7 @@ class Continuations:
                 found.setdefault(position, index)
         if len(found) < len(wanted):
             return None
-        part = threads[: max(found.values()) + 1]
+        part = threads[: max(found.values()) + (not self.but_last)]
         return frozenset(part), contexts[-1]
 
     def afresh(self, lead: list[int], pumped: list[int]) -> State | None:

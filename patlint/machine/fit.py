@@ -47,6 +47,10 @@ def fit(count: Count, long_pump: bool, expected: int = 0, multiplies: bool = Tru
     found = _order(values)
     if found is not None:
         return found
+    if long_pump:  # counts may come round every few pumps
+        found = _order(_row(count, 6, 6, SIZES)[1])
+        if found is not None:
+            return found
     if not multiplies and expected > HIGH:
         return expected if settled(count, expected) else None
     if len(values) < 5:

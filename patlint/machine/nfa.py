@@ -262,6 +262,26 @@ class Nfa:
         if any(self.reads[position] for position, _ in threads):
             yield FREE, self._position_of(pc, threads)
 
+    def atomic_at(self, pc: int, op: p.Atomic, context: int) -> Iterator[tuple[Conjunction, int | None]]:
+        """The ways out of an atomic group that is entered here, and the position under way, as `_atomic`."""
+        threads = ((thread, 0) for thread in self.closure(op.body, context))
+        yield from self._atomic(pc, prune(self, threads, cut=True)[0], context)
+
+    def atomic_after(
+        self, position: int, minterm: int, context: int
+    ) -> Iterator[tuple[Conjunction, int | None]]:
+        """The same for an atomic group under way that has read a character."""
+        moves = steps(self, self._lists[position], minterm, context, stays=True)
+        yield from self._atomic(self.pc_of[position], prune(self, moves, cut=True)[0], context)
+
+    def stopping(self, pc: int) -> Conjunction:
+        """The obligation under which a possessive run is left before it is full."""
+        op = self.program.code[pc]
+        if not (isinstance(op, p.Run) and op.kind == "possessive"):
+            return FREE
+        asked = self._not_in(pc)
+        return FREE if asked == ALL else frozenset((asked,))
+
     def _position_of(self, pc: int, threads: Threads) -> int:
         key = (pc, threads)
         found = self._atomics.get(key)

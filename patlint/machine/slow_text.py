@@ -14,6 +14,7 @@ Limit: `turns` of the counting for all suspicions of one question.
 
 from __future__ import annotations
 
+from contextlib import suppress
 from dataclasses import dataclass, replace
 from typing import Literal, TypeAlias
 
@@ -30,7 +31,7 @@ from patlint.machine.fit import fit, settled
 from patlint.machine.matcher import Matcher
 from patlint.machine.nfa import Nfa
 from patlint.machine.program import compile_node
-from patlint.machine.walks import walks
+from patlint.machine.walks import cut_walks, walks
 from patlint.syntax import tree as t
 
 Manner: TypeAlias = Literal["match", "fullmatch", "search", "scan"]
@@ -46,6 +47,8 @@ SCREEN_RATIO = 3.6
 SUSPECTS = 8
 SEVERAL = 4
 """Suspicions of several pumps of which something is counted."""
+REFERENCES = "back-references"
+"""What is undecided where back-references or conditionals let pass only some texts of a suspicion."""
 SHOWN_STEPS = 2_000_000_000
 """Exponential counts are told up to so many steps."""
 
@@ -88,7 +91,7 @@ class Ambiguity:
     """`growth` None means: no growth beyond linear was confirmed.
 
     `unconfirmed` counts suspicions that no text confirmed; `undecided` names the limit that cut the search
-    short, so that None is then no proof.
+    short, or REFERENCES where a suspicion depends on what groups hold, so that None is then no proof.
     """
 
     growth: Growth | None
@@ -130,6 +133,8 @@ def _unbounded(program: p.Program, manner: Manner, limits: Limits) -> tuple[Ambi
     single = [suspect for suspect in found if not suspect.more]
     most = max(suspect.degree for suspect in single)
     power = 0 if single[0].degree == EXPONENTIAL else max(suspect.degree for suspect in found)
+    if not countable(program):
+        power = 0  # a back-reference costs the length that it reads again, which no node of the graph shows
     counting = _Counting(program, manner, limits.turns, power)
     for suspect in single:
         if best is not None and _enough(best, suspect, most):
@@ -155,6 +160,8 @@ def _unbounded(program: p.Program, manner: Manner, limits: Limits) -> tuple[Ambi
             best = slow
     if counting.cut and best is None:
         undecided = "turns"
+    if best is None and counting.counter is None:
+        undecided = undecided or REFERENCES
     return Ambiguity(best.growth if best else None, best, unconfirmed, undecided), power
 
 
@@ -167,8 +174,24 @@ def _suspicions(
     found = list(suspects(nfa, graph)) if graph.cyclic else []
     if not found:
         return None
+    if any(
+        isinstance(op, p.Atomic) or (isinstance(op, p.Run) and op.kind == "possessive") for op in program.code
+    ):
+        with suppress(LimitReached):  # then the pumps of the greater graph must do
+            found = _merged(list(suspects(nfa, cut_walks(nfa, graph.scan))), found)
     letters = Letters(nfa)
-    return found, letters, Continuations(nfa, graph, manner, letters)
+    return found, letters, Continuations(nfa, manner, letters)
+
+
+def _merged(first: list[Suspect], second: list[Suspect]) -> list[Suspect]:
+    """The suspicions of both, exponential ones in front and those of several pumps at the end."""
+    both = [*first, *second]
+    kinds = (
+        [suspect for suspect in both if suspect.degree == EXPONENTIAL],
+        [suspect for suspect in both if suspect.degree != EXPONENTIAL and not suspect.more],
+        [suspect for suspect in both if suspect.more],
+    )
+    return [suspect for kind in kinds for suspect in kind]
 
 
 def _bounded(
@@ -192,8 +215,10 @@ def _bounded(
     for suspect in [suspect for suspect in asked[0] if not suspect.more][:SUSPECTS]:
         if suspect.degree == 2 and suspect.by_restart:
             continue  # the text times the bound: never enough
-        for text, _ in texts(suspect, asked[1], asked[2], program.is_bytes, anyway=True):
-            for longer in stretched(text, suspect, asked[2].graph, asked[1]):
+        for text, kind in texts(suspect, asked[1], asked[2], program.is_bytes, anyway=True):
+            if kind == "led":
+                continue
+            for longer in stretched(text, suspect, asked[1]):
                 counts = _Counts(counting, longer)
                 n, _ = passes(counts.at, longer.fixed, longer.period, limits.bounded_steps)
                 growth: Growth = 1 if n is None else growth_below(counts.at, n)
@@ -232,7 +257,8 @@ def _confirm(
     slow: SlowText | None = None
     for text, kind in texts(suspect, letters, continuations, counting.is_bytes):
         counts = _Counts(counting, text)
-        if (kind == "guess" and not counts.promising()) or (kind == "again" and slow is not None):
+        known = slow if kind == "again" else best if kind == "led" else None
+        if known is not None or (kind in ("guess", "led") and not counts.promising()):
             continue
         tried = True
         slow = counts.claim(suspect, None if best is None or alone else best.growth)

@@ -14,8 +14,9 @@ Limits: `product` nodes; closures of more than 4,096 equal paths are cut there (
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass
+from typing import TypeAlias
 
 from patlint.limits import LimitReached
 from patlint.machine import program as p
@@ -25,6 +26,10 @@ from patlint.machine.obligations import ALL, FREE, NONE, Conjunction, Thread
 PATH_LIMIT = 4_096
 SCAN = 0
 """The node of the search itself, where there is one."""
+
+
+Close: TypeAlias = Callable[[int, int], dict[Thread, int]]
+"""The threads that are reached from an instruction in a context without reading, and in how many ways."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -54,16 +59,22 @@ class Walks:
 
 def walks(nfa: Nfa, scan: bool) -> Walks:
     """The graph of the program of `nfa`. Raises LimitReached("product")."""
+    return _graph(nfa, scan, False)
+
+
+def cut_walks(nfa: Nfa, scan: bool) -> Walks:
+    """The graph of what is left where atomic groups and possessive repeats cut. Raises LimitReached.
+
+    The bodies of look-around and atomic groups are not in it, so it stands beside `walks`: it has the pumps that
+    no cut spoils.
+    """
+    return _graph(nfa, scan, True)
+
+
+def _graph(nfa: Nfa, scan: bool, cut: bool) -> Walks:
     limit = nfa.limits.product
     number: dict[Thread, int] = {}
     order: list[Thread | None] = [None] if scan else []
-    closures: dict[tuple[int, int], dict[Thread, int]] = {}
-
-    def close(pc: int, context: int) -> dict[Thread, int]:
-        key = (pc, context)
-        if key not in closures:
-            closures[key] = _paths(nfa, pc, context)
-        return closures[key]
 
     def node(thread: Thread) -> int:
         index = number.get(thread)
@@ -74,30 +85,35 @@ def walks(nfa: Nfa, scan: bool) -> Walks:
             order.append(thread)
         return index
 
-    entry = [node(thread) for thread in close(nfa.program.start, nfa.plain_start)]
+    closures: dict[tuple[int, int], dict[Thread, int]] = {}
+
+    def close(pc: int, context: int) -> dict[Thread, int]:
+        key = (pc, context)
+        if key not in closures:
+            closures[key] = _paths(nfa, pc, context, cut)
+        return closures[key]
+
     by_context: dict[int, int] = {}
     for minterm, context in enumerate(nfa.contexts):
         by_context[context] = by_context.get(context, 0) | 1 << minterm
+    entry = [node(thread) for thread in close(nfa.program.start, nfa.plain_start)]
     edges: list[tuple[Edge, ...]] = []
     work = 0
     for thread in order:
         out: dict[tuple[int, int], int] = {}
-        for context, minterms in by_context.items():
-            if thread is None:
+        if thread is None:
+            for context, minterms in by_context.items():
                 out[SCAN, minterms] = 1
-                for after, ways in close(nfa.program.start, context).items():
-                    out[node(after), minterms] = ways
-                continue
-            position, duty = thread
-            reads = nfa.reads[position] & minterms
-            for mask, rest in _after_duty(nfa, duty, reads):
-                for (after_position, more), ways in _follow(nfa, close, position, context).items():
-                    key = (node((after_position, rest | more)), mask)
-                    out[key] = min(out.get(key, 0) + ways, 2)
+                for target, ways in close(nfa.program.start, context).items():
+                    out[node(target), minterms] = ways
+        else:
+            for target, mask, ways in _after(nfa, close, thread, by_context, cut):
+                key = (node(target), mask)
+                out[key] = min(out.get(key, 0) + ways, 2)
         merged: dict[tuple[int, int], int] = {}
-        for (target, mask), ways in out.items():
-            merged[target, ways] = merged.get((target, ways), 0) | mask
-        edges.append(tuple(Edge(target, mask, ways) for (target, ways), mask in merged.items()))
+        for (end, mask), ways in out.items():
+            merged[end, ways] = merged.get((end, ways), 0) | mask
+        edges.append(tuple(Edge(end, mask, ways) for (end, ways), mask in merged.items()))
         work += len(merged)
         if work > nfa.limits.work:
             raise LimitReached("work", nfa.limits.work)
@@ -107,6 +123,38 @@ def walks(nfa: Nfa, scan: bool) -> Walks:
     components, cyclic = _components(edges)
     positions = tuple(-1 if t is None else t[0] for t in order)
     return Walks(tuple(edges), positions, spans, tuple(entry), scan, tuple(components), cyclic)
+
+
+def _after(
+    nfa: Nfa, close: Close, thread: Thread, by_context: dict[int, int], cut: bool
+) -> Iterator[tuple[Thread, int, int]]:
+    """What a thread goes on to, with the minterms that it reads and the ways there."""
+    position, duty = thread
+    if cut and isinstance(nfa.program.code[nfa.pc_of[position]], p.Atomic):
+        for minterm, context in enumerate(nfa.contexts):
+            rest = nfa.obligations.step(duty, minterm) if nfa.reads[position] >> minterm & 1 else None
+            if rest is not None:
+                for (target, more), ways in _under_way(nfa, close, position, minterm, context):
+                    yield (target, rest | more), 1 << minterm, ways
+        return
+    for context, minterms in by_context.items():
+        for mask, rest in _after_duty(nfa, duty, nfa.reads[position] & minterms):
+            for (target, more), ways in _follow(nfa, close, position, context, cut).items():
+                yield (target, rest | more), mask, ways
+
+
+def _under_way(
+    nfa: Nfa, close: Close, position: int, minterm: int, context: int
+) -> Iterator[tuple[Thread, int]]:
+    """The same for an atomic group under way."""
+    for duty, goes_on in nfa.atomic_after(position, minterm, context):
+        if goes_on is not None:
+            yield (goes_on, FREE), 1
+        else:
+            op = nfa.program.code[nfa.pc_of[position]]
+            assert isinstance(op, p.Atomic)
+            for (target, more), ways in close(op.next, context).items():
+                yield (target, more | duty), ways
 
 
 def _after_duty(nfa: Nfa, duty: Conjunction, reads: int) -> list[tuple[int, Conjunction]]:
@@ -123,9 +171,7 @@ def _after_duty(nfa: Nfa, duty: Conjunction, reads: int) -> list[tuple[int, Conj
     return [(mask, rest) for rest, mask in groups.items()]
 
 
-def _follow(
-    nfa: Nfa, close: Callable[[int, int], dict[Thread, int]], position: int, context: int
-) -> dict[Thread, int]:
+def _follow(nfa: Nfa, close: Close, position: int, context: int, cut: bool) -> dict[Thread, int]:
     pc = nfa.pc_of[position]
     op = nfa.program.code[pc]
     if isinstance(op, p.Run):
@@ -136,8 +182,9 @@ def _follow(
         elif count < op.maximum:
             out[position + 1, FREE] = 1
         if count >= op.minimum:
-            for thread, ways in close(op.next, context).items():
-                out[thread] = out.get(thread, 0) + ways
+            stops = nfa.stopping(pc) if cut and out else FREE
+            for (target, more), ways in close(op.next, context).items():
+                out[target, more | stops] = out.get((target, more | stops), 0) + ways
         return out
     assert isinstance(op, p.Char | p.Back)
     out = dict(close(op.next, context))
@@ -146,7 +193,7 @@ def _follow(
     return out
 
 
-def _paths(nfa: Nfa, entry: int, context: int) -> dict[Thread, int]:
+def _paths(nfa: Nfa, entry: int, context: int, cut: bool) -> dict[Thread, int]:
     """The threads reached from `entry` without reading, with the number of ways (2: two or more)."""
     ways: dict[Thread, int] = {}
     stack: list[tuple[int, frozenset[int], Conjunction]] = [(entry, FREE, FREE)]
@@ -169,7 +216,8 @@ def _paths(nfa: Nfa, entry: int, context: int) -> dict[Thread, int]:
                     reach(nfa.first[pc], duty)
                     paths += 1
                 if op.minimum == 0:
-                    stack.append((op.next, marks, duty))
+                    stops = nfa.stopping(pc) if cut and op.maximum != 0 else FREE
+                    stack.append((op.next, marks, duty | stops))
             case p.Fork():
                 stack += ((op.second, marks, duty), (op.first, marks, duty))
             case p.Save():
@@ -182,8 +230,9 @@ def _paths(nfa: Nfa, entry: int, context: int) -> dict[Thread, int]:
                     stack.append((op.body, marks | {op.loop}, duty))
             case p.Accept():
                 paths += 1
-                if pc in nfa.atomic_ends:
-                    stack.append((nfa.atomic_ends[pc], marks, duty))
+                ends = nfa.leads if cut else nfa.atomic_ends
+                if pc in ends:
+                    stack.append((ends[pc], marks, duty))
             case p.Assert():
                 asked = nfa.asked(pc, op, context)
                 if asked != NONE:
@@ -192,10 +241,18 @@ def _paths(nfa: Nfa, entry: int, context: int) -> dict[Thread, int]:
                 asked = nfa.look(pc, op, context)
                 if asked != NONE:
                     stack.append((op.next, marks, duty if asked == ALL else duty | {asked}))
-                if op.ahead:
+                if op.ahead and not cut:
                     stack.append((op.body, marks, duty))
             case p.Atomic():
-                stack.append((op.body, marks, duty))
+                if not cut or op.end in nfa.leads:
+                    stack.append((op.body, marks, duty))
+                    continue
+                for more, goes_on in nfa.atomic_at(pc, op, context):
+                    if goes_on is not None:
+                        reach(goes_on, duty)
+                        paths += 1
+                    else:
+                        stack.append((op.next, marks, duty | more))
             case p.Test():
                 stack += ((op.no, marks, duty), (op.yes, marks, duty))
         if paths > PATH_LIMIT:

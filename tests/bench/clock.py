@@ -1,7 +1,8 @@
 """A process that times the real `re`: one JSON object in, one out. Imports nothing of patlint.
 
-With "texts": the time of each of them. Without: the times of prefix + pump * n + suffix at sizes that suit
-"growth", from a run of "least" seconds on. Times are CPU seconds; "cpu" is the limit of the whole process.
+With "texts": the time of each of them. Without: the times of prefix + pump * n + suffix (with "more" pumps between)
+at the "sizes" given, or at such as suit "growth", from a run of "least" seconds on. Times are CPU seconds; "cpu" is
+the limit of the whole process.
 """
 
 from __future__ import annotations
@@ -63,19 +64,28 @@ def _times(request: dict[str, Any]) -> dict[str, Any]:
     """Times of a text at sizes that suit its growth: [[n, seconds], …]."""
     run = runner(_decoded(request["pattern"]), request["flags"], request["manner"])
     prefix, pump, suffix = (_decoded(request[key]) for key in ("prefix", "pump", "suffix"))
+    more = [(_decoded(between), _decoded(each)) for between, each in request.get("more", ())]
+
+    def text_at(n: int) -> Any:
+        text = prefix + pump * n
+        for between, each in more:
+            text += between + each * n
+        return text + suffix
 
     def time_at(n: int, runs: int = RUNS) -> float:
-        return seconds(run, prefix + pump * n + suffix, runs)
+        return seconds(run, text_at(n), runs)
 
     def roughly(n: int) -> float:
-        text = prefix + pump * n + suffix
+        text = text_at(n)
         begin = perf_counter()
         run(text)
         return perf_counter() - begin
 
     growth = request["growth"]
     rows: list[list[float]] = []
-    if growth == "exponential":
+    if "sizes" in request:
+        rows = [[n, time_at(n, request["runs"])] for n in request["sizes"]]
+    elif growth == "exponential":
         n = 1
         while roughly(n) < request["least"] and n < 2_000:
             n += 1 if n < 60 else n // 8

@@ -1,9 +1,10 @@
 """`python -m tests.bench.engine`: whether the counted steps grow as the time of `re` does, by the clock.
 
-First every row of `corpus.cost` on `re` itself. Then families that no row names: the rows' patterns in the other
-manners, on the same texts; what the counter's steps show must be what the times show. Prints what differs.
+First every row of `corpus.cost` on `re` itself, bounds included. Then families that no row names: the rows'
+patterns in the other manners, on the same texts; what the counter's steps show must be what the times show. The
+sizes are chosen by the steps that they take, so each family takes about a second. Prints what differs.
 
-    python -m tests.bench.engine --families 120 --python python3.13
+    python -m tests.bench.engine --families 250 --python python3.13
 """
 
 from __future__ import annotations
@@ -11,37 +12,114 @@ from __future__ import annotations
 import argparse
 import random
 import sys
+from collections.abc import Callable
+from itertools import pairwise
 from typing import Any
 
 from patlint.limits import LimitReached
 from patlint.machine.counting import Counter, countable
 from patlint.machine.fit import Growth, fit
+from patlint.machine.matcher import Matcher
 from patlint.machine.program import compile_tree
 from patlint.machine.slow_text import SlowText
 from patlint.syntax.parser import PatternError, parse
-from tests.bench.replay import Replayed, grows_as, replay
-from tests.corpus.cost import ROWS, Base, Text
+from tests.bench.replay import Replayed, grows_as
+from tests.bench.slowest import in_process
+from tests.corpus.cost import BOUNDS, ROWS, Base, Text
 from tests.corpus.cpython import compiled
 
 TURNS = 100_000
+BUDGETS = ((5e7, 1), (2e8, 3), (8e8, 3))
+"""Steps of the longest text that is timed, and how often; one after the other until times and steps agree."""
+PAUSE = 1_500
+"""Pumps from which on a linear count is taken as it is, without counting further."""
+
+Steps = Callable[[int], "int | None"]
 
 
-def timed(pattern: str, manner: str, text: Text, growth: Growth, python: str) -> Replayed:
-    slow = SlowText(*text, growth, (), (), False)
-    return replay(pattern, 0, manner, "", slow, python)
-
-
-def counted(pattern: str, manner: str, text: Text) -> Growth | None:
-    """The growth of the counted steps; None where it cannot be told."""
+def steps_of(pattern: str, manner: str, text: Text) -> Steps | None:
+    """Steps on n pumps; None where the pattern is not read."""
     try:
-        program = compile_tree(parse(pattern))
+        program = compile_tree(parse(pattern, target=(3, 13)))
     except (PatternError, LimitReached):
         return None
-    if not countable(program):
-        return None
-    counter = Counter(program)
     prefix, pump, suffix = text
-    return fit(lambda n: counter.steps(prefix + pump * n + suffix, manner, TURNS)[0], len(pump) >= 8)
+    if countable(program):
+        counter = Counter(program)
+        return lambda n: counter.steps(prefix + pump * n + suffix, manner, TURNS)[0]
+    matcher = Matcher(program)
+
+    def walked(n: int) -> int | None:
+        whole = prefix + pump * n + suffix
+        if manner == "scan":
+            _, steps, _, finished = matcher.scan(whole, TURNS)
+            return steps if finished else None
+        outcome = matcher.run(whole, manner, TURNS)
+        return outcome.steps if outcome.finished else None
+
+    return walked
+
+
+def sizes(steps: Steps, growth: Growth, budget: float) -> list[int]:
+    """Pumps at which the growth shows: the last takes about `budget` steps, as far as that can be counted."""
+    if growth == "exponential":
+        n, row = 1, []
+        while n < 2_000 and (count := steps(n)) is not None and count < budget:
+            if count > budget / 5_000:
+                row.append(n)
+            n += 1 if n < 60 else n // 16
+        return row[-13:]
+    known = 16
+    counted = steps(known) or 1
+    while known < PAUSE and (more := steps(2 * known)) is not None and more < budget:
+        known, counted = 2 * known, more
+    last = known * (budget / counted) ** (1 / growth) if growth else 1 << 16
+    factor = 2.0 if growth < 4 else 1.5
+    last = min(last, 4e6)
+    return [max(int(last / factor**2), 2), max(int(last / factor), 3), max(int(last), 4)]
+
+
+def timed(pattern: str, manner: str, text: Text, growth: Growth, steps: Steps, python: str) -> Replayed:
+    slow = SlowText(*text, growth, (), (), False)
+    request = {"pattern": pattern, "flags": 0, "manner": manner, "growth": growth}
+    request |= dict(zip(("prefix", "pump", "suffix"), text, strict=True))
+    for budget, runs in BUDGETS:
+        asked = request | {"sizes": sizes(steps, growth, budget), "runs": runs}
+        replayed = Replayed(pattern, 0, manner, "", slow, in_process(asked, python=python))
+        if replayed.agrees:
+            break
+    return replayed
+
+
+def bounded(
+    pattern: str, manner: str, text: str, growth: int | Base | str, python: str
+) -> tuple[bool, list[tuple[int, float]]]:
+    """Whether the time of a bounded pattern grows in K as told, and the times."""
+    letter, length = text.split("*")
+    rows: list[tuple[int, float]] = []
+    k, last = (2, 0.0) if isinstance(growth, int) else (1, 0.0)
+    while last < 0.4 and k < 30_000 and len(rows) < 24:
+        size = 4 * k if length == "4K" else int(length.rstrip("!"))
+        whole = letter * size + ("!" if length.endswith("!") else "")
+        shown = pattern.replace("K", str(k))
+        answer = in_process({"pattern": shown, "flags": 0, "manner": manner, "texts": [whole]}, python=python)
+        if "times" not in answer:
+            break
+        last = answer["times"][0]
+        rows.append((k, last))
+        k = k * 2 if isinstance(growth, int) else k + 1
+    long = [(k, t) for k, t in rows if t > (1e-3 if growth != 0 else 0)]
+    ratios = [u / t for (_, t), (_, u) in pairwise(long)][-3:]
+    if growth == 0:
+        return max(t for _, t in rows) < 0.01, rows
+    if not ratios:
+        return growth == "faster" and last > 0.4 and rows[-1][0] < 20, rows
+    if isinstance(growth, Base):
+        return any(abs(ratio / growth.factor - 1) < 0.2 for ratio in ratios), rows
+    if growth == "faster":
+        return min(ratios) > 4 or ratios == sorted(ratios), rows
+    assert isinstance(growth, int)
+    return any(abs(ratio / 2**growth - 1) < 0.3 for ratio in ratios), rows
 
 
 def main() -> int:
@@ -52,11 +130,13 @@ def main() -> int:
     parser.add_argument("--seed", type=int, default=1)
     parser.add_argument("--python", default=sys.executable, help="the interpreter whose re is timed")
     given = parser.parse_args()
-    cases: list[tuple[str, str, str, Text, Growth]] = []
+    cases: list[tuple[str, str, str, Text, Growth, Steps]] = []
     for row in ROWS:
-        if compiled(row.pattern) is not None:
+        steps = steps_of(row.pattern, row.manner, row.text)
+        if compiled(row.pattern) is not None and steps is not None:
             growth: Growth = "exponential" if isinstance(row.growth, Base) else row.growth
-            cases.append(("row", row.pattern, row.manner, row.text, growth))
+            cases.append(("row", row.pattern, row.manner, row.text, growth, steps))
+    rows = len(cases)
     named = {row.key for row in ROWS}
     others = sorted(
         {
@@ -67,20 +147,26 @@ def main() -> int:
         }
     )
     random.Random(given.seed).shuffle(others)
-    more = 0
     for pattern, manner, text in others:
-        found = counted(pattern, manner, text)
-        if found is not None and more < given.families:
-            more += 1
-            cases.append(("family", pattern, manner, text, found))
+        steps = steps_of(pattern, manner, text)
+        found = None if steps is None else fit(steps, len(text[1]) >= 8)
+        if steps is not None and found is not None and len(cases) - rows < given.families:
+            cases.append(("family", pattern, manner, text, found, steps))
     differ: list[Any] = []
-    for kind, pattern, manner, text, growth in cases:
-        replayed = timed(pattern, manner, text, growth, given.python)
+    for kind, pattern, manner, text, growth, steps in cases:
+        replayed = timed(pattern, manner, text, growth, steps, given.python)
         if not grows_as(growth, replayed):
             differ.append((kind, pattern, manner, text, growth, replayed.answer))
             print("DIFFERS", *differ[-1], flush=True)
-    print(f"{len(cases)} families ({len(cases) - more} of them rows), {len(cases) - len(differ)} alike")
-    return 1 if differ else 0
+    print(f"{len(cases)} families ({rows} of them rows), {len(cases) - len(differ)} alike", flush=True)
+    off = 0
+    for pattern, manner, text_of, _, in_k in BOUNDS:
+        alike, times = bounded(pattern, manner, text_of, in_k, given.python)
+        if not alike:
+            off += 1
+            print("DIFFERS bound", pattern, manner, text_of, in_k, times[-6:], flush=True)
+    print(f"{len(BOUNDS)} rows of bounds, {len(BOUNDS) - off} alike")
+    return 1 if differ or off else 0
 
 
 if __name__ == "__main__":

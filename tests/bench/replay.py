@@ -117,6 +117,7 @@ def replay(
         "prefix": slow.prefix,
         "pump": slow.pump,
         "suffix": slow.suffix,
+        "more": slow.more,
         "growth": slow.growth,
     }
     for least in LEAST_TIMES:
@@ -157,7 +158,9 @@ def report(
         if not replayed.agrees:
             slow = ambiguity.slow
             print(f"NOT AS CLAIMED {slow.growth} {manner} {pattern!r} flags {flags} {replayed.where}")
-            print(f"    {slow.prefix!r} + {slow.pump!r} * n + {slow.suffix!r}: {replayed.answer}")
+            print(
+                f"    {slow.prefix!r} + {slow.pump!r} * n + {slow.more} + {slow.suffix!r}: {replayed.answer}"
+            )
     print(f"replayed {ran}, as claimed {agreed} ({agreed / ran if ran else 1:.1%})")
     return 0 if ran == agreed else 1
 

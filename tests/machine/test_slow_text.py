@@ -11,7 +11,7 @@ import pytest
 from patlint.limits import DEFAULT_LIMITS
 from patlint.machine.nfa import Nfa
 from patlint.machine.program import compile_tree
-from patlint.machine.slow_text import Ambiguity, Growth, ambiguity_of
+from patlint.machine.slow_text import REFERENCES, Ambiguity, Growth, ambiguity_of
 from patlint.machine.walks import walks
 from patlint.syntax.parser import parse
 from tests.corpus.cost import ROWS, Base
@@ -135,12 +135,105 @@ MENDED: tuple[tuple[str, str, Growth | None], ...] = (
         "exponential",
     ),  # None: its pump was one of another suspicion
     (r"(?!-)[a-z\d\*-]{1,63}(?<!-)", "match", None),  # fitted as 2 where the bound was near
+    (r"(?:(?:(?:\n)*+)|(?:(?s:.)))*b", "scan", "exponential"),  # 2: enough was seen before all had been tried
+    (r"(?:(?:(?:(?:a|[^\W])){2}+))*(?:((?:b)+?))!", "scan", 3),  # 2: the turns had gone on suffixes by guess
+    (
+        r"(?:a(?=a*b)|a)*c",
+        "match",
+        "exponential",
+    ),  # 2: ways to one thread under other obligations are two ways
+    (r"(?=a)a*\b(a+)?", "scan", 2),  # None: only the attempt at the text's start was looked at
+    (r"(?:ab)*^(?:a|b)*b?\s*", "scan", 2),  # None: the same
+    (r"^[-0-9]+|-+$", "scan", 2),  # None: the same, in real code
+    (
+        r"(?:(?:(?:(?:[ab])++)?+)*+|(?>(?s:.)[A-b]))*b",
+        "search",
+        "exponential",
+    ),  # 3: pumps that the cuts spoil
+    (r"(?:(?:(?<=\w\b))|(?:(?:[^a]|[^\W])(?:[ab])+?))*b", "search", "exponential"),  # 2: its pump had a b
+    (r"(?s)\bb(a+)?.*?a*?$", "fullmatch", 2),  # None: the last way of a lazy repeat need not fail
+    (r"(?:(?:(?:[ab]b){2,})|(?:(?>(?:b|\n)))|)*b", "match", "exponential"),  # None: its pumps all had bb
+    (r"(?:((?:(?:\b|(?s:.))|(?:b){2,3}))\1)*(?=\n)b", "fullmatch", "exponential"),  # None: b was not tried
+    (
+        r"(?:(?:(?:(?:\b){2}|(b))){2}+(?:(?:|a)|()))*!",
+        "match",
+        "exponential",
+    ),  # None: equal empty ways in a cut
 )
 
 
 @pytest.mark.parametrize(("pattern", "manner", "growth"), MENDED)
 def test_mended(pattern: str, manner: str, growth: Growth | None) -> None:
     assert decide(pattern, manner).growth == growth
+
+
+# One pump shows less of these. The first is Weber and Seidl's: the words of a chain may differ; the others are
+# shapes of real code: an assignment, a path with a version, an entry point, a tag.
+SEVERAL: tuple[tuple[str, str, Growth], ...] = (
+    ("a*a*xb*b*y", "match", 3),
+    ("a*a*b*b*c*c*!", "match", 4),
+    ("a*[ab]*b*!", "match", 3),
+    (r"(.*?)\s*[=:]\s*(.*)$", "match", 3),
+    (r"([\w ]+) ([\w.]+) .*\[.* ([\d.]+)\]", "match", 3),
+    (r"\s*(.+?)\s*=\s*([\w.]+)\s*(?::\s*([\w.]+))?\s*$", "match", 4),
+    (r"([^-]+)-(\d+[^-]*)(?:-(\d+[^-]*))?$", "match", 3),
+)
+
+
+@pytest.mark.parametrize(("pattern", "manner", "growth"), SEVERAL)
+def test_several_pumps(pattern: str, manner: str, growth: Growth) -> None:
+    found = decide(pattern, manner)
+    assert found.growth == growth and found.slow is not None
+    slow = found.slow
+    assert 1 <= len(slow.more) < growth
+    assert slow.text(3) == slow.prefix + slow.pump * 3 + "".join(  # type: ignore[operator]
+        str(between) + str(pump) * 3 for between, pump in slow.more
+    ) + str(slow.suffix)
+    assert len(slow.text(7)) == slow.fixed + 7 * slow.period
+    counts = [matcher_of(pattern).run(slow.text(n), manner).steps for n in (8, 16, 32)]
+    early, late = (math.log2(b / a) for a, b in zip(counts, counts[1:], strict=False))
+    assert round(2 * late - early) == growth
+
+
+def test_one_pump_is_told_where_it_will_do() -> None:
+    assert decide("a*a*xb*b*y", "match").slow == replace(
+        decide("a*a*xb*b*y", "match").slow, prefix="", pump="a", more=(("x", "b"),)
+    )
+    for pattern in ("a*a*a*!", "(?:a|aa)*xb*b*y", r"x*\s*x*\s*!"):
+        found = decide(pattern, "match").slow
+        assert found is not None and not found.more
+
+
+def test_a_high_power_is_not_exponential() -> None:
+    found = decide("^(?:.*?,){11}P", "match")
+    assert found.growth == 11 and found.slow is not None and not found.slow.bounded
+    assert decide("a*" * 9 + "!", "match").growth == 9
+    assert decide("(?:.*?,){3}P", "search").growth == 4
+
+
+@pytest.mark.parametrize("manner", ["match", "search"])
+def test_room_between_pumps_that_are_bounded(manner: str) -> None:
+    """Twenty pumps at most, and at the end it matches; what lies between them makes each way long."""
+    found = decide("(.*a){20}", manner).slow
+    assert found is not None and found.growth == "exponential" and found.bounded
+    assert len(found.pump) > 1 and len(found.text(found.steps[-1][0])) <= 4_000
+
+
+@pytest.mark.parametrize(
+    ("pattern", "growth", "undecided"),
+    [
+        (r"(['\"]).*?\1", None, REFERENCES),
+        (r"(a)?(?(1)b+|c+)x", None, None),  # nothing competes: linear whatever the group holds
+        (r"(a|b)\1", None, None),  # the same
+        (r"(a+)\1!", 2, None),
+        (r"(?:(a*)\1)*b", "exponential", None),
+    ],
+)
+def test_back_references_are_decided_or_not(
+    pattern: str, growth: Growth | None, undecided: str | None
+) -> None:
+    found = decide(pattern, "match")
+    assert (found.growth, found.undecided) == (growth, undecided)
 
 
 def brute_force_base(pattern: str, manner: str, letters: str) -> float:

@@ -57,7 +57,8 @@ possessive repeat `a++` forbids trying again.
         "letters without a hyphen can be cut into pieces at will",
     ),
     right=Example(
-        'import re\n\n\ndef is_manifest_name(text):\n    return re.fullmatch(r"[a-z]+(?:-[a-z]+)*-?", text) is not None\n'
+        "import re\n\n\ndef is_manifest_name(text):\n"
+        '    return re.fullmatch(r"[a-z]+(?:-[a-z]+)*-?", text) is not None\n'
     ),
     check=check,
 )

@@ -18,7 +18,8 @@ from patlint.syntax.classes import char_set
 LONG = 10_000
 """Length of the text for which a polynomial's steps are told, in characters."""
 ENDLESS = 1e9
-"""Steps for which an exponential's text is sought: some seconds, and twice as long with every further pump."""
+"""Steps that are out of reach for a program that has more to do: some seconds. For so many an exponential's text is
+sought, and with every further pump it takes twice as long."""
 
 
 def judged(subject: Subject) -> Iterator[tuple[Manner, Use | None, Ambiguity]]:
@@ -57,9 +58,15 @@ def figures(slow: SlowText) -> str:
         wanted = max(n + ceil((log(ENDLESS) - log(steps)) / base), n)
         count = exp(log(steps) + base * (wanted - n))
     else:
-        wanted = max((LONG - slow.fixed) // slow.period, n)
-        count = steps * (wanted / n) ** slow.growth
+        wanted, count = at_length(slow, LONG)
     return f"a text of {slow.fixed + wanted * slow.period:,} characters takes {in_words(count)} steps"
+
+
+def at_length(slow: SlowText, length: int) -> tuple[int, float]:
+    """How many pumps make a text of about `length` characters, and the steps that it takes; not for "exponential"."""
+    n, steps = slow.steps[-1]
+    wanted = max((length - slow.fixed) // slow.period, n)
+    return wanted, steps * (wanted / n) ** int(slow.growth)
 
 
 def evidence(slow: SlowText) -> str:

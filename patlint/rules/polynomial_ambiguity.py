@@ -7,7 +7,10 @@ from collections.abc import Iterator
 from patlint.machine.slow_text import Manner, SlowText
 from patlint.rules.finding import Example, Finding, Level, Rule
 from patlint.rules.growth import (
+    ENDLESS,
+    LONG,
     advice,
+    at_length,
     better,
     evidence,
     figures,
@@ -56,7 +59,8 @@ def _restarting(subject: Subject, manner: Manner, use: Use | None, slow: SlowTex
 
 def _finding(subject: Subject, manner: Manner, use: Use | None, slow: SlowText) -> Finding:
     level: Level = RULE.level
-    if (slow.growth == 2 and not slow.bounded) or (use is not None and use.bounded is not None):
+    small = not slow.bounded and (slow.growth == 2 or at_length(slow, LONG)[1] < ENDLESS)
+    if small or (use is not None and use.bounded is not None):
         level = "note"
     span, *others = slow.parts or [(0, len(subject.site.pattern))]
     found = better(subject, manner, slow)
@@ -71,6 +75,7 @@ def _finding(subject: Subject, manner: Manner, use: Use | None, slow: SlowText) 
         way_out=advice(found, subject, slow),
         suggestion=suggestion_of(found),
         marks=tuple(others),
+        brief=small and found is None,
     )
 
 
@@ -85,9 +90,11 @@ of the text's length, with three of them with the cube. A search adds a power,
 since it begins afresh at every character: `\\s+$` takes quadratic time on a
 long run of blanks even though match with it is linear.
 
-A note where the growth is a square: it matters only for texts of
-ten thousand characters and more. Where only the beginning afresh makes it a
-square, the note has one line; `--verbose` shows the text. A warning from the
+A note where the growth is a square, or where a text of ten thousand
+characters takes less than a thousand million steps (a long piece of text has
+to be repeated): it matters only for texts of that length. Where no better
+pattern is known, and where only the beginning afresh makes it a square, such
+notes have one line a file; `--verbose` shows the texts. A warning from the
 cube on.
 
 The finding gives a text: prefix, pump (to be repeated) and suffix. It was

@@ -168,6 +168,20 @@ def test_restart_alone_is_one_line() -> None:
     assert found.brief and found.level == "note" and found.evidence == ""
 
 
+def test_small_figures_are_a_note() -> None:
+    """A cube of which 10,000 characters are nothing, because much has to be written for each turn of it."""
+    longer = one("<letterhead[^;]*name=([^;]*)name=[^;]*;", "search", "groups")
+    assert longer.message == "matching time can grow with the 4th power of the text's length"
+    small = one("<letterhead of the terminal[^;]*name of the ship=[^;]*;", "search", "groups")
+    assert small.message == "matching time can grow with the cube of the text's length"
+    assert (longer.level, longer.brief, small.level, small.brief) == ("warning", False, "note", True)
+
+
+def test_a_square_with_a_way_out_is_told_at_length() -> None:
+    assert not one(".*x?.*=").brief
+    assert one(r"(\w+)(\d+[a-z]*);", "match", "groups").brief
+
+
 def test_a_bounded_input_makes_a_note() -> None:
     use = Use("match", "truth", HERE, bounded=20)
     made = Site("made.py", "(a+)+$", 0, "match", HERE, 1, (Piece(0, HERE, True),), (use,), True)

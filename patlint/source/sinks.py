@@ -24,7 +24,7 @@ from patlint.source.sites import Function, LooksAt
 Where: TypeAlias = tuple[int | str, ...]
 """Where a call has an argument: a position, a keyword, or both (the position first)."""
 
-Kind: TypeAlias = Literal["call", "method", "attribute", "rows", "route", "result"]
+Kind: TypeAlias = Literal["call", "method", "attribute", "rows", "route", "result", "lookup"]
 
 PART = "a part of a pattern that a library puts together"
 ENGINE = "a pattern for another engine than re"
@@ -42,7 +42,7 @@ class Sink:
     `kind` says how it is met: "call" of a function or class; "method" of any object, by the names in
     `method` (("str", "contains") for `x.str.contains`); "attribute" of a class derived from `name`;
     "rows", a sequence whose rows begin with a pattern; "route", a text with patterns in braces; "result",
-    a method of what `with name(…) as x` binds.
+    a method of what `with name(…) as x` binds; "lookup", keywords of any call that end in `method`.
     """
 
     name: str
@@ -90,7 +90,7 @@ class Sink:
     @property
     def words(self) -> tuple[str, ...]:
         """Texts that a file with this sink must hold, beside one of `needs`."""
-        if self.kind == "method":
+        if self.kind in ("method", "lookup"):
             return self.method
         words = [self.name.rpartition(".")[2]]
         if self.kind == "attribute" or not any(isinstance(key, int) for key in self.argument):
@@ -107,12 +107,15 @@ class SinkTable:
         self.methods: dict[str, list[Sink]] = {}
         self.attributes: dict[str, list[Sink]] = {}
         self.results: dict[str, list[Sink]] = {}
+        self.lookups: dict[str, Sink] = {}
         hints: dict[tuple[str, bool], set[tuple[str, ...]]] = {}
         self.scanners = tuple(sink for sink in sinks if sink.name == SCANNER)
         for sink in sinks:
             if sink.name == SCANNER:
                 continue  # met as a member of re
-            if sink.kind == "method" or (sink.kind != "result" and sink.method):
+            if sink.kind == "lookup":
+                self.lookups[sink.method[-1]] = sink
+            elif sink.kind == "method" or (sink.kind != "result" and sink.method):
                 self.methods.setdefault(sink.method[-1], []).append(sink)
             elif sink.kind == "attribute":
                 self.attributes.setdefault(sink.name, []).append(sink)

@@ -118,6 +118,19 @@ def _django() -> Iterator[Sink]:
         yield Sink(name, (0, "regex"), "search", "truth", seen=True)
 
 
+def _lookups() -> Iterator[Sink]:
+    # What the data base understands, by its own engine: `filter(name__regex=…)`.
+    for name in ("regex", "iregex"):
+        yield Sink(
+            f"django.db.models.lookups.{name}",
+            (name,),
+            kind="lookup",
+            method=(f"__{name}",),
+            needs=("django",),
+            refused=ENGINE,
+        )
+
+
 def _aiohttp() -> Iterator[Sink]:
     verbs = ("get", "post", "put", "patch", "delete", "head", "options", "view")
     for verb in verbs:
@@ -271,7 +284,7 @@ def _validation() -> Iterator[Sink]:
         )
     for name in ("wtforms.validators.Regexp", "wtforms.validators.regexp"):
         yield Sink(name, (0, "regex"), "match", "unknown", flags_argument=(1, "flags"))
-    for name in ("marshmallow.validate.Regexp", "marshmallow.validators.Regexp"):
+    for name in ("marshmallow.validate.Regexp",):
         yield Sink(name, (0, "regex"), "match", "truth", flags_argument=(1, "flags"), seen=True)
 
 
@@ -335,6 +348,7 @@ BUILTIN: tuple[Sink, ...] = (
     *_pandas(),
     *_validation(),
     *_other_engines(),
+    *_lookups(),
 )
 
 _table: SinkTable | None = None

@@ -23,7 +23,7 @@ from patlint.source.index import Index
 from patlint.source.places import Text
 from patlint.source.reasons import Opaque
 from patlint.source.scopes import Binding, Scope
-from patlint.source.sinks import CONDITION, PART, SCANNER, Sink, SinkTable, Where
+from patlint.source.sinks import CONDITION, ENGINE, PART, SCANNER, Sink, SinkTable, Where
 from patlint.source.sites import Function, Place, Site, Unresolved, Use
 from patlint.source.spelled import Spelled, cut
 from patlint.syntax import tree as t
@@ -68,6 +68,8 @@ class SinkReader:
                         self.call(call, use.scope, sink)
         if self.table.results:
             self._results()
+        if self.table.lookups:
+            self._lookups()
         if self.table.attributes:
             for definition, inner in self.index.classes.items():
                 self._class(definition, inner)
@@ -188,6 +190,8 @@ class SinkReader:
         owner = self.constants.names.class_of(node.value, scope)
         if owner is not None and node.attr in owner.bindings:
             return []  # a method that the file writes itself
+        if self.qualified(node, scope) in self.table.calls:
+            return []
         if self.qualified(node.value, scope) is not None and not any(sink.needs for sink in fit):
             return []  # a function of a module, or a method with its object as an argument
         return [sink for sink in fit if sink.refused] or fit
@@ -226,6 +230,19 @@ class SinkReader:
                 if made == {name}:
                     for sink in self.table.results[name]:
                         self.call(call, use.scope, sink)
+
+    def _lookups(self) -> None:
+        """Keywords that end like a lookup: `filter(name__regex=…)`."""
+        wanted = {
+            ending: sink
+            for ending, sink in self.table.lookups.items()
+            if any(map(self._imports, sink.needs)) and any(ending in line for line in self.text.lines)
+        }
+        for node in self.index.parents if wanted else ():
+            if isinstance(node, ast.keyword) and node.arg is not None:
+                for ending, sink in wanted.items():
+                    if node.arg.endswith(ending):
+                        self._refuse(node.value, sink, sink.refused or ENGINE)
 
     def _entered(self, binding: Binding) -> str | None:
         """The qualified name of the call that a `with` statement enters to bind a name."""

@@ -160,7 +160,7 @@ def _unbounded(program: p.Program, manner: Manner, limits: Limits) -> tuple[Ambi
             best = slow
     if counting.cut and best is None:
         undecided = "turns"
-    if best is None and counting.counter is None:
+    if counting.counter is None and (best is None or not _enough(best, found[0], most)):
         undecided = undecided or REFERENCES
     return Ambiguity(best.growth if best else None, best, unconfirmed, undecided), power
 

@@ -185,8 +185,10 @@ def search(
 
         seen = as_number(fit(count, len(at(text, 1)) >= 8))
         if seen > max(claimed, 1) and (countable(program) or claimed == 1 or seen == math.inf):
-            tried.misses.append(Miss(pattern, flags, manner, text, claimed, seen))
-            break
+            few, more = count(60), count(120)  # counts that come round every few pumps are alike at these
+            if few is None or more is None or math.log2(more / few) > claimed + 0.4:
+                tried.misses.append(Miss(pattern, flags, manner, text, claimed, seen))
+                break
     if claimed == 1:
         tried.linear.append((pattern, flags, manner, text))
 

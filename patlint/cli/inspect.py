@@ -166,15 +166,17 @@ def _texts(portrait: Portrait) -> str:
 
 
 def _growth(portrait: Portrait) -> str:
+    slow = portrait.slow
+    limit = ", up to a bound that is out of reach" if slow is not None and slow.bounded else ""
     match portrait.growth:
         case None:
             return "not known"
         case 1:
-            return "no growth beyond the text's length was found"
+            return "can be endless on any text" if limit else "no growth beyond the text's length was found"
         case "exponential":
-            return "exponential in the number of repetitions"
+            return f"exponential in the number of repetitions{limit}"
         case degree:
-            return f"grows with the text's length to the power {degree}"
+            return f"grows with the text's length to the power {degree}{limit}"
 
 
 def _known(number: int | None) -> str:

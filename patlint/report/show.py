@@ -68,6 +68,8 @@ def witness_expression(witness: Witness) -> str:
             return expression(witness.text)
         case SlowWitness():
             count = REPEATS.get(witness.growth, LEAST_REPEATS)
+            if witness.bounded and witness.steps:
+                count = witness.steps[-1][0]
             parts = [ascii(witness.prefix)] if witness.prefix else []
             parts.append(f"{ascii(witness.pump)} * {count}")
             for between, pump in witness.more:

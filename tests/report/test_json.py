@@ -9,7 +9,7 @@ from patlint.inventory import Inventory, Listed
 from patlint.ledger import Entry
 from patlint.outcome import Outcome, Remark
 from patlint.placed import PlacedFinding, RelatedPlace
-from patlint.report.json import lint_report, list_report
+from patlint.report.json import lint_report, list_report, witness_object
 from patlint.rules.finding import SlowWitness, Suggestion, TextWitness
 from patlint.run import RunResult
 
@@ -143,4 +143,22 @@ def test_list_report() -> None:
             }
         ],
         "unresolved": [{"path": "dock.py", "line": 8, "column": 1, "reason": "compile: a parameter"}],
+    }
+
+
+def test_a_witness_of_several_pumps_and_one_below_a_bound() -> None:
+    several = SlowWitness(b"", b"a", b"!", 3, (), ((b"x", b"\xff"),))
+    assert witness_object(several) == {
+        "prefix": "",
+        "pump": "a",
+        "suffix": "!",
+        "growth": 3,
+        "more": [{"between": "x", "pump": "\xff"}],
+    }
+    assert witness_object(SlowWitness("", "a", "!", "exponential", ((8, 90),), (), True)) == {
+        "prefix": "",
+        "pump": "a",
+        "suffix": "!",
+        "growth": "exponential",
+        "bounded": True,
     }

@@ -29,6 +29,9 @@ from patlint.rewrite.reach import other_readers
 from patlint.rules.shorter_equivalent import needed
 from patlint.source import Module, SourceError, read_module
 from patlint.source.engine import FUNCTIONS
+from patlint.source.sinks import Sink
+from patlint.source.sinks_builtin import builtin_table
+from patlint.source.sinks_calls import pick
 from patlint.source.sites import Site
 from patlint.syntax.parser import PatternError, parse
 
@@ -165,7 +168,7 @@ def _applied(data: bytes, module: Module, claim: Claim, settings: Settings) -> b
     reason = "the new text cannot be spelled there"
     for edits in edits_of(site, claim.pattern, file):
         for start in _literal_starts(site, edits, file):
-            told = _readers(module, start)
+            told = _readers(module, start, settings)
             if told is not None:
                 raise NoEdit(told)
         try:
@@ -188,7 +191,7 @@ def _literal_starts(site: Site, edits: tuple[Edit, ...], file: FileText) -> Iter
             yield piece.whole.line, len(line[: piece.whole.column - 1].encode())
 
 
-def _readers(module: Module, start: tuple[int, int]) -> str | None:
+def _readers(module: Module, start: tuple[int, int], settings: Settings) -> str | None:
     tree = _tree("".join(module.lines))
     modules: set[str] = set()
     functions: set[str] = set()
@@ -202,6 +205,7 @@ def _readers(module: Module, start: tuple[int, int]) -> str | None:
                 pass
     lines = FileText(module.lines)
     refused = {(each.place.line, each.place.column) for each in module.unresolved}
+    taken = _taken(module, settings)
 
     def is_known(call: ast.Call, below: ast.AST) -> bool:
         match call.func:
@@ -212,13 +216,29 @@ def _readers(module: Module, start: tuple[int, int]) -> str | None:
             case _:
                 known = False
         column = len(lines.lines[call.lineno - 1].encode()[: call.col_offset].decode("utf-8", "ignore")) + 1
-        if not known or (call.lineno, column) in refused:
+        if (call.lineno, column) in refused:
+            return False
+        argument = below.value if isinstance(below, ast.keyword) else below
+        if any(pick(call, sink.argument)[0] is argument for sink in taken.get((call.lineno, column), ())):
+            return True
+        if not known:
             return False
         if call.args and call.args[0] is below:
             return True
         return any(each is below and each.arg == "pattern" for each in call.keywords)
 
     return other_readers(tree, start, is_known)
+
+
+def _taken(module: Module, settings: Settings) -> dict[tuple[int, int], list[Sink]]:
+    """What the calls of other libraries' functions take, by the places of the calls."""
+    table = builtin_table() if settings.sinks is None else settings.sinks
+    found: dict[tuple[int, int], list[Sink]] = {}
+    for site in module.sites:
+        for use in site.uses:
+            sinks = [sink for sink in table.sinks if sink.name == site.function]
+            found.setdefault((use.place.line, use.place.column), []).extend(sinks)
+    return found
 
 
 def _reads_pattern(module: Module, name: str) -> bool:

@@ -11,6 +11,8 @@ from patlint.config import ConfigError, Settings, load
 from patlint.globs import fits
 from patlint.limits import Limits
 from patlint.nearest import nearest
+from patlint.source.sinks import ENGINE, Sink
+from patlint.source.sinks_builtin import BUILTIN
 from patlint.target import TARGETS, lowest_target, running_target
 
 RULES = ("nullable", "empty-language", "exponential-ambiguity", "overlapping-siblings", "stale-waiver")
@@ -106,6 +108,122 @@ REFUSED = [
 
 @pytest.mark.parametrize(("table", "message"), REFUSED)
 def test_refused(tmp_path: Path, table: str, message: str) -> None:
+    with pytest.raises(ConfigError) as caught:
+        configured(tmp_path, table)
+    assert str(caught.value) == f"{tmp_path / 'pyproject.toml'}: {message}"
+
+
+def test_sinks(tmp_path: Path) -> None:
+    table = configured(
+        tmp_path,
+        """
+        [tool.patlint.sinks]
+        "terminal.text.expect" = { argument = [1, "pattern"], mode = "match", looks-at = "truth", flags = ["I", "S"] }
+        "terminal.text.Rule" = [
+            { argument = 0, flags-argument = [1, "flags"], own-text = true },
+            { argument = "until", part = true },
+        ]
+        ".str.must_fit" = { argument = 0, mode = "fullmatch", selects = true }
+        "pytest.warns" = { argument = "pattern", engine = "other" }
+        "pytest.raises" = false
+        """,
+    ).sinks
+    assert table is not None
+    assert table.sinks[len(table.sinks) - 5 :] == (
+        Sink("terminal.text.expect", (1, "pattern"), "match", "truth", 2 | 16, seen=True, project=True),
+        Sink("terminal.text.Rule", (0,), flags_argument=(1, "flags"), own=True, project=True),
+        Sink("terminal.text.Rule", ("until",), part=True, project=True),
+        Sink(
+            ".str.must_fit",
+            (0,),
+            "fullmatch",
+            kind="method",
+            method=("str", "must_fit"),
+            seen=True,
+            selects=True,
+            project=True,
+        ),
+        Sink("pytest.warns", ("pattern",), refused=ENGINE, project=True),
+    )
+    kept = tuple(sink for sink in BUILTIN if sink.name not in ("pytest.raises", "pytest.warns"))
+    assert table.sinks[: len(table.sinks) - 5] == kept and len(kept) < len(BUILTIN)
+    assert configured(tmp_path, "").sinks is None
+
+
+@pytest.mark.parametrize(
+    "table, message",
+    [
+        ("sinks = 1", "sinks must be a table, not the number 1"),
+        (
+            'sinks = { "f()" = false }',
+            "sinks.'f()' is no name of a function: write package.function, or .method",
+        ),
+        (
+            'sinks = { "pytest.raise" = false }',
+            "sinks.'pytest.raise' is false, but no built-in one has this name; the nearest is pytest.raises",
+        ),
+        ('sinks = { "a.b" = true }', "sinks.'a.b' must be a table, a list of tables, or false"),
+        ('sinks = { "a.b" = [] }', "sinks.'a.b' is an empty list: write false to switch a built-in one off"),
+        ('sinks = { "a.b" = [1] }', "sinks.'a.b' must be a table, a list of tables, or false"),
+        (
+            'sinks = { "a.b" = {} }',
+            "sinks.'a.b' does not say which argument: argument = 0, a keyword, or both in a list",
+        ),
+        (
+            'sinks = { "a.b" = { argument = 0, modus = 1 } }',
+            "sinks.'a.b' has an unknown key modus; the nearest is mode",
+        ),
+        (
+            'sinks = { "a.b" = { argument = 0, mode = "serch" } }',
+            "sinks.'a.b'.mode must be one of search, match, fullmatch, findall, finditer, split, sub, subn, "
+            "not 'serch'; the nearest is search",
+        ),
+        (
+            'sinks = { "a.b" = { argument = 0, looks-at = 1 } }',
+            "sinks.'a.b'.looks-at must be one of truth, span, groups, unknown, not 1",
+        ),
+        ('sinks = { "a.b" = { argument = -1 } }', "sinks.'a.b'.argument must be a position from 0, not -1"),
+        (
+            'sinks = { "a.b" = { argument = true } }',
+            "sinks.'a.b'.argument must be a position from 0, a keyword, or both in a list",
+        ),
+        (
+            'sinks = { "a.b" = { argument = "a b" } }',
+            "sinks.'a.b'.argument must be a position from 0 or a keyword, not 'a b'",
+        ),
+        ('sinks = { "a.b" = { argument = [] } }', "sinks.'a.b'.argument is empty"),
+        (
+            'sinks = { "a.b" = { argument = 0, flags-argument = 1.5 } }',
+            "sinks.'a.b'.flags-argument must be a position from 0, a keyword, or both in a list",
+        ),
+        (
+            'sinks = { "a.b" = { argument = 0, flags = ["IGNORCASE"] } }',
+            "sinks.'a.b'.flags must be names of flags such as IGNORECASE, not 'IGNORCASE'; "
+            "the nearest is IGNORECASE",
+        ),
+        (
+            'sinks = { "a.b" = { argument = 0, flags = "I" } }',
+            "sinks.'a.b'.flags must be a list of names of flags",
+        ),
+        (
+            'sinks = { "a.b" = { argument = 0, flags = [2] } }',
+            "sinks.'a.b'.flags must be names of flags such as IGNORECASE, not '2'",
+        ),
+        (
+            'sinks = { "a.b" = { argument = 0, own-text = "yes" } }',
+            "sinks.'a.b'.own-text must be true or false, not 'yes'",
+        ),
+        (
+            'sinks = { "a.b" = { argument = 0, engine = "pcre" } }',
+            "sinks.'a.b'.engine must be one of re, other, not 'pcre'; the nearest is re",
+        ),
+        (
+            'sinks = { "a.b" = { argument = 0, mode = "search", part = true } }',
+            "sinks.'a.b' is a part of a larger pattern, so it can have no mode of its own",
+        ),
+    ],
+)
+def test_refused_sinks(tmp_path: Path, table: str, message: str) -> None:
     with pytest.raises(ConfigError) as caught:
         configured(tmp_path, table)
     assert str(caught.value) == f"{tmp_path / 'pyproject.toml'}: {message}"

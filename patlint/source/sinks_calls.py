@@ -80,8 +80,8 @@ class SinkReader:
         The use (None where it is not known), and whether it is all that happens to the object.
         """
         for sink in self._sinks_of(call, scope):
-            if sink.kind in ("call", "method") and self._pick(call, sink.argument)[0] is node:
-                function = None if self._pick(call, sink.unless)[0] is not None else sink.function
+            if sink.kind in ("call", "method") and pick(call, sink.argument)[0] is node:
+                function = None if pick(call, sink.unless)[0] is not None else sink.function
                 if sink.embedded or sink.part or function is None:
                     return None, False
                 return self._use(sink, function, self.text.place(call)), sink.seen
@@ -254,26 +254,10 @@ class SinkReader:
 
     # calls
 
-    def _pick(self, call: ast.Call, where: Where) -> tuple[ast.expr | None, bool]:
-        """An argument, and whether `*` or `**` may give it where it is not written out."""
-        loose = False
-        for key in where:
-            if isinstance(key, int):
-                starred = any(isinstance(argument, ast.Starred) for argument in call.args[: key + 1])
-                if not starred and key < len(call.args):
-                    return call.args[key], False
-                loose |= starred
-            else:
-                for keyword in call.keywords:
-                    if keyword.arg == key:
-                        return keyword.value, False
-                loose |= any(keyword.arg is None for keyword in call.keywords)
-        return None, loose
-
     def call(self, call: ast.Call, scope: Scope, sink: Sink) -> None:
         """Takes up one argument of one call."""
         self.constants.restart()
-        argument, loose = self._pick(call, sink.argument)
+        argument, loose = pick(call, sink.argument)
         if argument is None:
             if loose and sink.kind != "rows" and any(isinstance(key, int) for key in sink.argument):
                 self._refuse(call, sink, reasons.STARRED)
@@ -283,7 +267,7 @@ class SinkReader:
         if sink.refused:
             self._refuse(call, sink, sink.refused)
             return
-        flags_node, flags_loose = self._pick(call, sink.flags_argument)
+        flags_node, flags_loose = pick(call, sink.flags_argument)
         try:
             if flags_loose and flags_node is None:
                 raise Opaque(reasons.FLAGS)
@@ -302,7 +286,7 @@ class SinkReader:
         return evaluate_flags(node, scope, self.constants)
 
     def _case(self, call: ast.Call, scope: Scope, sink: Sink) -> int:
-        node, loose = self._pick(call, sink.case)
+        node, loose = pick(call, sink.case)
         match node:
             case None if not loose:
                 return 0
@@ -314,7 +298,7 @@ class SinkReader:
 
     def _is_pattern(self, call: ast.Call, sink: Sink, pattern: Spelled) -> bool:
         """Whether the text is a pattern and not taken as it is. Errors: `Opaque`."""
-        node, loose = self._pick(call, sink.regex)
+        node, loose = pick(call, sink.regex)
         decided: object = sink.regex_default
         if node is not None:
             if not isinstance(node, ast.Constant):
@@ -327,7 +311,7 @@ class SinkReader:
     def _text(self, argument: ast.expr, scope: Scope, sink: Sink, flags: int, call: ast.Call) -> None:
         if self.constants.names.maker(argument, scope) is not None or self._taken_as_it_is(call, sink):
             return  # the site of a pattern object is where it is made
-        known = self._pick(call, sink.unless) == (None, False)
+        known = pick(call, sink.unless) == (None, False)
         refused: str | None = None
         for pattern in self.constants.choices.each(lambda: self._told(argument, scope, sink, call)):
             if pattern is None:
@@ -353,7 +337,7 @@ class SinkReader:
 
     def _taken_as_it_is(self, call: ast.Call, sink: Sink) -> bool:
         """Whether what is given is no pattern, whatever its text."""
-        node, loose = self._pick(call, sink.regex)
+        node, loose = pick(call, sink.regex)
         if node is None:
             return not loose and sink.regex_default is False
         return isinstance(node, ast.Constant) and node.value is False
@@ -506,6 +490,23 @@ class SinkReader:
                 embedded=sink.embedded or part,
             )
         )
+
+
+def pick(call: ast.Call, where: Where) -> tuple[ast.expr | None, bool]:
+    """An argument of a call, and whether `*` or `**` may give it where it is not written out."""
+    loose = False
+    for key in where:
+        if isinstance(key, int):
+            starred = any(isinstance(argument, ast.Starred) for argument in call.args[: key + 1])
+            if not starred and key < len(call.args):
+                return call.args[key], False
+            loose |= starred
+        else:
+            for keyword in call.keywords:
+                if keyword.arg == key:
+                    return keyword.value, False
+            loose |= any(keyword.arg is None for keyword in call.keywords)
+    return None, loose
 
 
 def stands_alone(pattern: str | bytes, flags: int) -> bool:

@@ -140,7 +140,7 @@ def _pytest() -> dict[str, Adapter]:
     def entered(make: Callable[[str], Any], act: Callable[[str], None]) -> Adapter:
         def takes(pattern: str, text: str, flags: int) -> bool:
             try:
-                with warnings.catch_warnings():
+                with warnings.catch_warnings(record=True):  # those that do not fit are given again
                     warnings.simplefilter("always")
                     with make(pattern):
                         act(text)

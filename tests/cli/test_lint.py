@@ -186,6 +186,23 @@ def test_the_cache_is_beside_the_configuration(patlint: Patlint) -> None:
     assert patlint("lint", "sub") == first
 
 
+def test_sinks_of_the_configuration(patlint: Patlint) -> None:
+    """Linted, mended and cached by the same table."""
+    Path("a.py").write_text("from terminal.text import expect\nexpect('(?:a|b|c)x', s)\n")
+    assert patlint("lint").out.endswith(
+        "1 file, 0 patterns: 0 errors, 0 warnings, 0 notes; 0 waived, "
+        "0 unresolved, 0 inexact, 0 undecided, 0 skipped\n"
+    )
+    told = '[tool.patlint.sinks]\n"terminal.text.expect" = { argument = 0, mode = "match", looks-at = "truth" }\n'
+    Path("pyproject.toml").write_text(told)
+    assert "shorter-equivalent" in patlint("lint").out
+    patlint("mend", "--write")
+    assert Path("a.py").read_text() == "from terminal.text import expect\nexpect('[abc]x', s)\n"
+    Path("pyproject.toml").write_text(told.replace("match", "serch"))
+    ran = patlint("lint")
+    assert (ran.status, ran.out) == (2, "") and "sinks.'terminal.text.expect'.mode must be one of" in ran.err
+
+
 def test_surrogates_and_bytes_survive_in_json(patlint: Patlint) -> None:
     Path("a.py").write_text("import re\nre.compile('\\ud800(')\nre.compile(b'\\xff(')\n")
     ran = patlint("lint", "--format", "json")

@@ -30,6 +30,28 @@ def test_text(patlint: Patlint) -> None:
     assert third.startswith("a.py:6:") and ": unresolved: search: " in third
 
 
+def test_what_another_library_takes(patlint: Patlint) -> None:
+    Path("a.py").write_text(
+        "import pytest\nfrom django.urls import re_path\nfrom terminal.text import expect\n"
+        "pytest.raises(E, match='a+')\nre_path('^a$', v)\nexpect('b+')\nimport regex\nregex.match('c', s)\n"
+    )
+    assert patlint("list").out.splitlines() == [
+        "a.py:4:24: 'a+' (search, truth) for pytest.raises",
+        "a.py:5:9: '^a$' (use not known, unknown) for django.urls.re_path",
+        "a.py:8:1: unresolved: regex.match: a pattern for another engine than re",
+    ]
+    Path("pyproject.toml").write_text(
+        '[tool.patlint.sinks]\n"terminal.text.expect" = { argument = 0, mode = "match", flags = ["X"] }\n'
+        '"pytest.raises" = false\n"regex.match" = false\n'
+    )
+    assert patlint("list").out.splitlines() == [
+        "a.py:5:9: '^a$' (use not known, unknown) for django.urls.re_path",
+        "a.py:6:8: 'b+' VERBOSE (match, unknown) for terminal.text.expect",
+    ]
+    functions = [each["function"] for each in json.loads(patlint("list", "--format", "json").out)["patterns"]]
+    assert functions == ["django.urls.re_path", "terminal.text.expect"]
+
+
 def test_json(patlint: Patlint) -> None:
     Path("a.py").write_text(SOURCE)
     report = json.loads(patlint("list", "--format", "json").out)

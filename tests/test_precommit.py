@@ -90,32 +90,95 @@ def test_what_the_manifest_says() -> None:
     )
 
 
-def test_commits_are_stopped_and_passed(folder: Path) -> None:
-    repository = folder / "repository"
+def install(folder: Path, *more: str) -> None:
+    """The hook of the manifest in the repository, run from this checkout, with `more` words in its call."""
     said = hook()
     entry = said["entry"].split()
     assert entry[0] == "patlint"
     local = said | {
         "language": "system",
-        "entry": " ".join([sys.executable, "-m", "patlint", *entry[1:]]),
+        "entry": " ".join([sys.executable, "-m", "patlint", *entry[1:], *more]),
     }
     config = {"repos": [{"repo": "local", "hooks": [local]}]}
-    (repository / ".pre-commit-config.yaml").write_text(json.dumps(config))
+    (folder / "repository/.pre-commit-config.yaml").write_text(json.dumps(config))
     installed = pre_commit(folder, "install")
     assert installed.returncode == 0, installed.stdout
 
-    (repository / "gate.py").write_text("import re\nre.compile('a(b')\n")
+
+def commit(folder: Path) -> subprocess.CompletedProcess[str]:
+    return run(folder, "git", "commit", "-m", "a change")
+
+
+BAD = "import re\nre.compile('a(b')\n"
+GOOD = "import re\nre.compile('a(b)')\n"
+
+
+def test_commits_are_stopped_and_passed(folder: Path) -> None:
+    repository = folder / "repository"
+    install(folder)
+    (repository / "gate.py").write_text(BAD)
     (repository / "notes.txt").write_text("re.compile('a(b')\n")
     run(folder, "git", "add", ".")
-    stopped = run(folder, "git", "commit", "-m", "a gate")
+    stopped = commit(folder)
     assert stopped.returncode != 0
     assert "\ngate.py:2:14: error: invalid-pattern: " in stopped.stdout
     assert "\n1 file, 1 pattern: 1 error," in stopped.stdout
+    assert "- exit code: 1\n" in stopped.stdout
     assert "notes.txt" not in stopped.stdout
 
-    (repository / "gate.py").write_text("import re\nre.compile('a(b)')\n")
+    (repository / "gate.py").write_text(GOOD)
     run(folder, "git", "add", ".")
-    passed = run(folder, "git", "commit", "-m", "a gate")
+    passed = commit(folder)
     assert passed.returncode == 0, passed.stdout
     assert "Passed" in passed.stdout
     assert run(folder, "git", "status", "--porcelain").stdout == ""  # the cache ignores itself
+
+    (repository / "gate.py").write_text("import re\nre.compile(\n")
+    run(folder, "git", "add", ".")
+    unread = commit(folder)
+    assert unread.returncode != 0
+    assert "- exit code: 2\n" in unread.stdout and "\ngate.py:2: " in unread.stdout
+
+
+def test_what_is_staged_counts(folder: Path) -> None:
+    """pre-commit puts unstaged changes aside while the hook runs, and puts them back."""
+    gate = folder / "repository/gate.py"
+    install(folder)
+    gate.write_text(GOOD)
+    run(folder, "git", "add", ".")
+    gate.write_text(BAD)
+    passed = commit(folder)
+    assert passed.returncode == 0, passed.stdout
+    assert gate.read_text() == BAD
+
+    run(folder, "git", "add", ".")
+    gate.write_text(GOOD + "# mended, and not staged\n")
+    stopped = commit(folder)
+    assert stopped.returncode != 0
+    assert "\ngate.py:2:14: error: invalid-pattern: " in stopped.stdout
+    assert gate.read_text() == GOOD + "# mended, and not staged\n"
+
+
+def test_only_changed_files_beside_a_ledger(folder: Path) -> None:
+    """Old findings in files that a commit does not touch stay untold, and those of the ledger in files that it does."""
+    repository = folder / "repository"
+    for name in ("old.py", "gate.py"):
+        (repository / name).write_text(BAD)
+    written = run(folder, sys.executable, "-m", "patlint", "ledger", "write", "--ledger", "known", "gate.py")
+    assert written.stdout == "known: 1 known; 1 new, 0 gone\n"
+    run(folder, "git", "add", ".")
+    assert commit(folder).returncode == 0  # before there is a hook
+    install(folder, "--ledger", "known")
+
+    (repository / "gate.py").write_text("# A gate.\n\n" + BAD)
+    run(folder, "git", "add", ".")
+    passed = commit(folder)
+    assert passed.returncode == 0, passed.stdout
+
+    (repository / "gate.py").write_text(BAD + "re.compile('c)')\n")
+    run(folder, "git", "add", ".")
+    stopped = commit(folder)
+    assert stopped.returncode != 0
+    assert "\ngate.py:3:14: error: invalid-pattern: " in stopped.stdout
+    assert "1 file, 2 patterns: 1 error, 0 warnings, 0 notes; 1 known," in stopped.stdout
+    assert "old.py" not in stopped.stdout

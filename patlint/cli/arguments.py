@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import argparse
 import os
+import textwrap
 from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, NoReturn
@@ -22,8 +23,8 @@ class Parser(argparse.ArgumentParser):
         super().__init__(
             prog=f"patlint {command}",
             usage=f"patlint {command} {usage}",
-            description=description,
-            epilog=epilog,
+            description=fitted(description),
+            epilog=None if epilog is None else fitted(epilog),
             allow_abbrev=False,
             add_help=False,
             formatter_class=argparse.RawDescriptionHelpFormatter,
@@ -47,15 +48,30 @@ class Parser(argparse.ArgumentParser):
         """The arguments; an option that does not exist is told with the nearest one."""
         # Options may stand among the paths; after `--` nothing is one.
         parse = self.parse_known_args if "--" in given else self.parse_known_intermixed_args
+        for word in given[: given.index("--")] if "--" in given else given:
+            if word.startswith("--"):
+                self._check_option(word)
         known, rest = parse(list(given))
         for word in rest:
             if word.startswith("-") and word != "-":
-                name = word.partition("=")[0]
-                options = [each for each in self._option_string_actions if each.startswith("--")]
-                raise CallError(f"unknown option {name!r}{nearest(name, options)}")
+                self._check_option(word)
         if rest:
             raise CallError(f"one argument too many: {rest[0]!r}; see {self.prog} --help")
         return known
+
+    def _check_option(self, word: str) -> None:
+        name = word.partition("=")[0]
+        options = [each for each in self._option_string_actions if each.startswith("--")]
+        if name not in options:
+            raise CallError(f"unknown option {name!r}{nearest(name, options)}")
+
+
+def fitted(text: str) -> str:
+    """`text` with the paragraphs that have a line of more than 80 characters filled anew."""
+    return "\n\n".join(
+        textwrap.fill(each, 80) if max(map(len, each.split("\n"))) > 80 else each
+        for each in text.split("\n\n")
+    )
 
 
 @dataclass(frozen=True, slots=True)

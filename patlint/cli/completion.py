@@ -44,7 +44,8 @@ def parser() -> Parser:
     made = Parser(
         "completion",
         "SHELL",
-        "Give the script with which a shell completes patlint's commands, options and rules.\n\n"
+        "Give the script with which a shell completes patlint's commands, options and\n"
+        "rules.\n\n"
         "bash   source <(patlint completion bash)\n"
         "zsh    source <(patlint completion zsh)       behind compinit\n"
         "fish   patlint completion fish | source",

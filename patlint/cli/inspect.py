@@ -23,8 +23,9 @@ def parser() -> Parser:
     made = Parser(
         "inspect",
         "[OPTIONS] PATTERN",
-        "Show everything that is known about one pattern: whether it is taken, its groups,\n"
-        "its automata, its texts, how long matching can take, and what the rules say.",
+        "Show everything that is known about one pattern: whether it is taken, its\n"
+        "groups, its automata, its texts, how long matching can take, and what the rules\n"
+        "say.",
         "exit status: 0, or 1 where `re` refuses the pattern",
     )
     made.add_argument("pattern", metavar="PATTERN", help="the regular expression")

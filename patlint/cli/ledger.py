@@ -18,15 +18,15 @@ def parser() -> Parser:
     made = Parser(
         "ledger",
         "[OPTIONS] write|prune [PATHS ...]",
-        "Keep a ledger: a file of known findings, which `patlint lint --ledger FILE` leaves\n"
-        "out, so that only new ones are told. A finding is known by what it says of which\n"
-        "pattern in which file, not by its line.\n\n"
+        "Keep a ledger: a file of known findings. `patlint lint --ledger FILE` leaves\n"
+        "them out, so that only new ones are told. A finding is known by its rule, file,\n"
+        "pattern and flags, not by its line.\n\n"
         "write  enter everything that is found now, and take out what is gone\n"
         "prune  take out what is gone, enter nothing",
-        "Only files among PATHS are looked at; entries of others stay. With --only or --skip\n"
-        "entries of the other rules stay.\n\n"
-        "exit status: 0 written, 2 a wrong call or configuration, a file that could not be\n"
-        "read or parsed (its entries stay), or a ledger that could not be written",
+        "Only files among PATHS are looked at; entries of others stay. With --only or\n"
+        "--skip entries of the other rules stay.\n\n"
+        "exit status: 0 written, 2 a wrong call or configuration, a file that could not\n"
+        "be read or parsed (its entries stay), or a ledger that could not be written",
     )
     made.add_argument("action", type=one_of(*ACTIONS), metavar="write|prune", help="see above")
     add_file_options(made, stdin=False)

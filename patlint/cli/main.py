@@ -91,7 +91,7 @@ def _run(given: list[str]) -> int:
 
         words = ("--help", "--version") if command.startswith("-") else tuple(COMMANDS)
         kind = "option" if command.startswith("-") else "command"
-        return complain(f"unknown {kind} {command!r}{nearest(command, words)}")
+        return complain(f"unknown {kind} {command!r}{nearest(command, words) or '; see patlint --help'}")
     from importlib import import_module
 
     return int(import_module(f"patlint.cli.{command}").run(rest))

@@ -57,7 +57,8 @@ def _page(rule: Rule, style: Style) -> Iterator[str]:
     from patlint.target import running_target
 
     asked = Settings(running_target(), NAMES, levels=((rule.name, rule.level),))  # on, even if off by default
-    yield f"{rule.name} ({rule.level}): {rule.summary}"
+    head = f"{rule.name} ({rule.level}): {rule.summary}"
+    yield from textwrap.wrap(head, style.columns, subsequent_indent="  ", break_on_hyphens=False)
     yield ""
     yield from rule.page.strip().splitlines()
     for title, example in (("Found:", rule.wrong), ("Not found:", rule.right)):

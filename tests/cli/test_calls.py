@@ -5,6 +5,7 @@ from __future__ import annotations
 import subprocess
 import sys
 from collections.abc import Callable
+from importlib import import_module
 from pathlib import Path
 
 import pytest
@@ -19,7 +20,7 @@ Patlint = Callable[..., Ran]
 WRONG = [
     ((), "no command; see patlint --help"),
     (("lintt",), "unknown command 'lintt'; the nearest is lint"),
-    (("xyz",), "unknown command 'xyz'"),
+    (("xyz",), "unknown command 'xyz'; see patlint --help"),
     (("--versoin",), "unknown option '--versoin'; the nearest is --version"),
     (("lint", "--fromat", "json"), "unknown option '--fromat'; the nearest is --format"),
     (("lint", "--fromat=json"), "unknown option '--fromat'; the nearest is --format"),
@@ -64,6 +65,28 @@ WRONG = [
 ]
 
 
+OPTIONS = [
+    (command, option)
+    for command in COMMANDS
+    for action in import_module(f"patlint.cli.{command}").parser()._actions
+    for option in action.option_strings
+    if option.startswith("--")
+]
+
+
+@pytest.mark.parametrize(("command", "option"), OPTIONS)
+def test_every_option_with_a_slip(patlint: Patlint, command: str, option: str) -> None:
+    """A letter doubled, and one left out where enough are left to know the word by."""
+    slips = [f"{option[:3]}{option[2:]}"] + [f"{option[:-2]}{option[-1]}"] * (len(option) > 5)
+    for slip in slips:
+        ran = patlint(command, slip, "x")
+        assert ran == Ran(2, "", f"patlint: unknown option {slip!r}; the nearest is {option}\n")
+
+
+def test_there_are_options() -> None:
+    assert len(OPTIONS) >= 35
+
+
 @pytest.mark.parametrize(("words", "message"), WRONG)
 def test_wrong_calls(patlint: Patlint, words: tuple[str, ...], message: str) -> None:
     Path("a.py").write_text(CLEAN)
@@ -91,12 +114,15 @@ def test_version(patlint: Patlint) -> None:
 
 
 @pytest.mark.parametrize("command", sorted(COMMANDS))
-def test_each_option_says_its_default(patlint: Patlint, command: str) -> None:
-    from importlib import import_module
-
+def test_each_option_says_its_default(
+    patlint: Patlint, capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch, command: str
+) -> None:
+    monkeypatch.setenv("COLUMNS", "80")
     with pytest.raises(SystemExit) as caught:
         patlint(command, "--help")
     assert caught.value.code == 0
+    shown = capsys.readouterr().out
+    assert [line for line in shown.splitlines() if len(line) > 80] == []
     parser = import_module(f"patlint.cli.{command}").parser()
     seen = 0
     for action in parser._actions:

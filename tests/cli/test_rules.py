@@ -29,7 +29,11 @@ def test_page(patlint: Patlint, name: str) -> None:
     assert (ran.status, ran.err) == (0, "")
     (rule,) = [each for each in RULES if each.name == name]
     lines = ran.out.splitlines()
-    assert lines[0] == f"{name} ({rule.level}): {rule.summary}"
+    head = " ".join(line.strip() for line in lines[: lines.index("")])
+    assert head == f"{name} ({rule.level}): {rule.summary}"
+    source = f"{rule.wrong.source}{rule.right.source}"
+    for line in lines:  # the first line of a finding is one line, however long, and code is code
+        assert len(line) <= 80 or line.startswith("example.py:") or line.strip() in source
     found, quiet = ran.out.split("\nNot found:")
     assert f": {name}: " in found.split("\nFound:")[1]
     assert f": {name}: " not in quiet

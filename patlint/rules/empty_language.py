@@ -7,14 +7,17 @@ from collections.abc import Iterator
 from patlint.rules.finding import Example, Finding, Rule
 from patlint.rules.never import is_spelled_never
 from patlint.rules.subject import Subject
-from patlint.source.sites import Mode
+from patlint.rules.used_here import used_here
+from patlint.source.sites import Mode, Use
 
 
 def check(subject: Subject) -> Iterator[Finding]:
     if is_spelled_never(subject.pattern.root):
         return
     site = subject.site
-    modes: dict[Mode, None] = dict.fromkeys("search" if use.positioned else use.mode for use in subject.uses)
+    modes: dict[Mode, Use] = {}
+    for use in subject.uses:
+        modes.setdefault("search" if use.positioned else use.mode, use)
     # Where no use is seen only what holds in every use counts: search finds whatever any of them can.
     asked: tuple[Mode, ...] = tuple(modes) or ("search",)
     for mode in asked:
@@ -30,6 +33,7 @@ def check(subject: Subject) -> Iterator[Finding]:
             proof=f"the automaton of the pattern in {mode} accepts no text",
             evidence="its automaton accepts no text at all",
             way_out="look for an anchor on the wrong side, or conditions that cannot hold together",
+            related=used_here(subject, modes.get(mode)),
         )
         return
 

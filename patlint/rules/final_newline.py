@@ -13,6 +13,7 @@ from dataclasses import replace
 from patlint.language import Language
 from patlint.rules.finding import Example, Finding, Rule, TextWitness
 from patlint.rules.subject import Subject
+from patlint.rules.used_here import used_here
 from patlint.rules.variants import with_part
 from patlint.source.sites import Mode
 from patlint.syntax import tree as t
@@ -42,6 +43,7 @@ def check(subject: Subject) -> Iterator[Finding]:
         evidence=f"on this text {use.function} succeeds, as it does without the line feed",
         way_out=f"write {hard} in place of $, or take fullmatch in place of {use.function}",
         marks=tuple(other.span for other in others),
+        related=used_here(subject, use),
         brief=True,
     )
 

@@ -11,8 +11,9 @@ from dataclasses import replace
 
 from patlint.language import Language
 from patlint.machine.engine_tree import same
-from patlint.rules.finding import Example, Finding, Related, Rule, TextWitness
+from patlint.rules.finding import Example, Finding, Rule, TextWitness
 from patlint.rules.subject import Subject
+from patlint.rules.used_here import used_here
 from patlint.source.sites import Mode, Use
 from patlint.syntax import tree as t
 
@@ -124,9 +125,7 @@ def _finding(
         way_out=f"write {begin}(?:{branches}){end} if all are meant, or else a group around each branch with "
         "its anchor",
         marks=tuple(others),
-        related=()
-        if use is None or subject.site.function != "compile"
-        else (Related(f"used here with {use.function}", place=use.place),),
+        related=used_here(subject, use),
     )
 
 

@@ -11,6 +11,7 @@ from patlint.machine.priority import MARKER
 from patlint.machine.words import distances
 from patlint.rules.finding import Example, Finding, Rule, TextWitness
 from patlint.rules.subject import Subject
+from patlint.rules.used_here import used_here
 from patlint.source.sites import Use
 
 SPLITTING = ("split", "findall", "finditer")
@@ -44,6 +45,7 @@ def check(subject: Subject) -> Iterator[Finding]:
         witness=TextWitness(text),
         evidence=f"on this text there are empty matches at {shown}",
         way_out=_WAYS.get(use.function, "demand at least one character, with + in place of *"),
+        related=used_here(subject, use),
     )
 
 
@@ -60,8 +62,11 @@ def _outcome_changes(use: Use) -> bool:
     if use.maximum == 1:
         return False
     match use.function:
-        case "split" | "findall" | "finditer":
+        case "split":
             return True
+        case "findall" | "finditer":
+            # Where only the truth is asked, vacuous-test speaks.
+            return not use.drops_empty and use.looks_at != "truth"
         case "sub" | "subn":
             # Where the replacement is not constant, an empty match may well be what it expects.
             text = use.replacement
@@ -147,8 +152,9 @@ that goes on from the end of the last match stands still on an empty one.
 Reported where the pattern matches empty and other texts, in the middle of a
 text, and the call's outcome depends on it. Quiet: a replacement that leaves
 the empty match as it is (`sub(r"\\s*", "", s)`), an anchored pattern
-(`sub(r"^\\s*", "> ", s)`), and patterns that match only the empty text
-(zero-width splits).
+(`sub(r"^\\s*", "> ", s)`), patterns that match only the empty text
+(zero-width splits), and empty texts that are taken out on the spot
+(`[x for x in re.findall(r"\\d*", s) if x]`).
 """,
     wrong=Example(
         'import re\n\n\ndef fields(line):\n    return re.split(r"\\s*;?\\s*", line)\n',

@@ -6,18 +6,23 @@ from collections.abc import Iterator
 
 from patlint.rules.finding import Example, Finding, Rule, TextWitness
 from patlint.rules.subject import Subject
+from patlint.rules.used_here import used_here
+
+_TESTED = {
+    "match": "succeeds",
+    "fullmatch": "succeeds",
+    "search": "succeeds",
+    "findall": "finds something",
+    "finditer": "finds something",
+}
+"""Functions of which the truth may be asked, and what makes it true."""
 
 
 def check(subject: Subject) -> Iterator[Finding]:
     if not subject.site.pattern or not subject.exact:
         return
     for use in subject.uses:
-        if (
-            use.selects
-            or use.looks_at != "truth"
-            or use.positioned
-            or use.function not in ("match", "fullmatch", "search")
-        ):
+        if use.selects or use.looks_at != "truth" or use.positioned or use.function not in _TESTED:
             continue
         if not subject.language(use.mode).is_universal():
             continue
@@ -30,8 +35,9 @@ def check(subject: Subject) -> Iterator[Finding]:
             mode=use.mode,
             witness=TextWitness(text),
             proof=f"the automaton of the pattern in {use.mode} accepts every text",
-            evidence=f"on the empty text {use.function} succeeds, as on every other",
+            evidence=f"on the empty text {use.function} {_TESTED[use.function]}, as on every other",
             way_out="demand at least one character, or anchor both ends",
+            related=used_here(subject, use),
         )
         return
 

@@ -91,6 +91,7 @@ class Outcomes:
         outcome = Outcome()
         if not always_some and self._is_test(node, self.index.parents.get(node)):
             outcome.saw("truth")
+            outcome.tests.append(node)
         else:
             outcome.saw("groups" if has_groups else "span")
         return outcome

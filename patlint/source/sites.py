@@ -70,6 +70,8 @@ class Use:
     """A text without an outcome is refused: an exception, `return False`, or the truth is what a function returns."""
     end_settled: bool = False
     """What stands at the text's end is plain to see: it was stripped, or it is a line of a file."""
+    drops_empty: bool = False
+    """Empty texts are taken out of the outcome of findall or finditer."""
     own: bool = False
     """The text is the program's own (a message under test), not one from outside."""
     selects: bool = False

@@ -7,6 +7,7 @@ import re
 
 from patlint.source.constants import Constants
 from patlint.source.engine import FUNCTIONS, METHODS, Arguments, bind_arguments
+from patlint.source.filtering import drops_empty
 from patlint.source.flags import evaluate_flags
 from patlint.source.index import Index
 from patlint.source.outcome import Outcome, Outcomes
@@ -61,6 +62,7 @@ class Uses:
             tested=outcome.tested if outcome else False,
             validates=outcome is not None and any(refuses(test, self.index) for test in outcome.tests),
             end_settled=end_is_settled(given.get("string"), scope, self.index),
+            drops_empty=function in ("findall", "finditer") and drops_empty(call, self.index),
         )
 
     def tested_by(self, node: ast.expr, function: Function, looks_at: LooksAt) -> Use:

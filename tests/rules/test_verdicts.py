@@ -44,6 +44,13 @@ CASES: list[tuple[str, str, bool]] = [
     ("m = re.match(r'\\d*', s)\nuse(m.group())", "vacuous-test", False),
     ("_p = re.compile(r'\\d*')\nok = bool(_p.match(s, 3))", "vacuous-test", False),
     ("ok = bool(re.match(r'(?=a*)', s))", "vacuous-test", True),
+    ("ok = bool(re.findall(r'\\d*', s))", "vacuous-test", True),
+    ("if not re.findall(r'\\d*', s): raise ValueError(s)", "vacuous-test", True),
+    ("ok = any(re.finditer(r'\\d*', s))", "vacuous-test", True),
+    ("ok = bool(re.findall(r'\\d+', s))", "vacuous-test", False),
+    ("ok = any(re.findall(r'\\d*', s))", "vacuous-test", False),
+    ("ok = bool(re.split(r'\\d*', s))", "vacuous-test", False),
+    ("ok = bool(re.findall(r'^a?$', s))", "vacuous-test", False),
     # RFC 3986, appendix B (from memory): the expression matches every text that has no line feed in its fragment
     (
         r"ok = bool(re.match(r'^(([^:/?#]+):)?(//([^/?#]*))?([^?#]*)(\?([^#]*))?(#(.*))?', s))",
@@ -57,6 +64,22 @@ CASES: list[tuple[str, str, bool]] = [
     ("x = re.split(r'\\s*$', s)", "nullable", False),
     ("x = re.findall(r'\\d*', s)", "nullable", True),
     ("x = re.findall(r'\\d+', s)", "nullable", False),
+    ("x = [y for y in re.findall(r'\\d*', s)]", "nullable", True),
+    ("x = [y for y in re.findall(r'\\d*', s) if y]", "nullable", False),
+    ("x = [y for y in re.findall(r'\\d*', s) if y in t]", "nullable", True),
+    ("x = {y: 1 for y in re.findall(r'\\d*', s) if y != '' and y in t}", "nullable", False),
+    ("x = [y.end() for y in re.finditer(r'\\d*', s) if y.group()]", "nullable", False),
+    ("x = [y.end() for y in re.finditer(r'\\d*', s) if y[0]]", "nullable", False),
+    ("x = [y.end() for y in re.finditer(r'(\\d*)', s) if y[1]]", "nullable", True),
+    ("x = list(filter(None, re.findall(r'\\d*', s)))", "nullable", False),
+    ("x = list(filter(f, re.findall(r'\\d*', s)))", "nullable", True),
+    ("for y in re.findall(r'\\d*', s):\n    if not y:\n        continue\n    go(y)", "nullable", False),
+    ("for y in re.findall(r'\\d*', s):\n    if y:\n        go(y)", "nullable", False),
+    ("for y in re.findall(r'\\d*', s):\n    if y:\n        go(y)\n    stop()", "nullable", True),
+    ("for y in re.findall(r'\\d*', s):\n    if not y:\n        break\n    go(y)", "nullable", True),
+    ("for n, y in enumerate(re.findall(r'\\d*', s)):\n    if y:\n        go(y)", "nullable", True),
+    # the text is cut all the same
+    ("x = [y for y in re.split(r',?', s) if y]", "nullable", True),
     ("x = re.sub(r'\\s*', '', s)", "nullable", False),
     ("x = re.sub(r'\\s*', '-', s)", "nullable", True),
     ("x = re.sub(r'^\\s*', '> ', s)", "nullable", False),
@@ -131,6 +154,31 @@ def replay(finding: PlacedFinding, text: str | bytes) -> None:
             assert isinstance(outcome, re.Match) or outcome is None
         case _:
             raise AssertionError(f"{finding.rule} has a text witness that nobody replays")
+
+
+NAMED = [
+    ("_P = re.compile(r'a$b')\n\nok = _P.search(s) is None\n", "empty-language", "search", 4),
+    ("_P = re.compile(r'a*')\n\nok = _P.match(s) is None\n", "vacuous-test", "match", 4),
+    ("_P = r'a*'\n\nok = re.match(_P, s) is None\n", "vacuous-test", "match", 4),
+    ("_P = re.compile(r'a*')\n\nx = _P.split(s)\n", "nullable", "split", 4),
+    ("_P = re.compile(r'^a|b|c$')\n\nok = _P.search(s) is None\n", "lopsided-anchor", "search", 4),
+    ("_P = re.compile(r'a+$')\n\ndef f(s):\n    return bool(_P.match(s))\n", "final-newline", "match", 5),
+]
+
+
+@pytest.mark.parametrize(("code", "rule", "function", "line"), NAMED)
+def test_the_call_is_named_where_the_pattern_stands_elsewhere(
+    code: str, rule: str, function: str, line: int
+) -> None:
+    (found,) = (each for each in lint_source(f"import re\n{code}", "case.py") if each.rule == rule)
+    assert [(each.message, each.path, each.line) for each in found.related] == [
+        (f"used here with {function}", "case.py", line)
+    ]
+
+
+def test_no_call_is_named_where_the_pattern_stands_in_it() -> None:
+    (found,) = lint_source("import re\nok = re.match(r'a*', s) is None\n", "case.py")
+    assert (found.rule, found.related) == ("vacuous-test", ())
 
 
 def test_one_cause_one_finding() -> None:

@@ -472,7 +472,9 @@ class SinkReader:
                 function = sink.dollar
             elif not sink.ends_open:
                 function, part = None, True
-        if part and not stands_alone(pattern.value, flags):
+        if (part and not stands_alone(pattern.value, flags)) or (
+            sink.name == SCANNER and _sets_flags(pattern.value, flags)
+        ):
             self._refuse(argument, sink, PART)
             return
         place, statement = self.locate(argument, scope, pattern)
@@ -507,6 +509,14 @@ def pick(call: ast.Call, where: Where) -> tuple[ast.expr | None, bool]:
                     return keyword.value, False
             loose |= any(keyword.arg is None for keyword in call.keywords)
     return None, loose
+
+
+def _sets_flags(pattern: str | bytes, flags: int) -> bool:
+    """Whether the pattern sets flags for all of itself: `re.Scanner` loses them."""
+    try:
+        return parse(pattern, flags).inline != 0
+    except (PatternError, LimitReached):
+        return False
 
 
 def stands_alone(pattern: str | bytes, flags: int) -> bool:

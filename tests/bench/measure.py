@@ -38,6 +38,9 @@ class Measured:
     unreadable: list[str] = field(default_factory=list)
     sites: int = 0
     unresolved: Counter[str] = field(default_factory=Counter)
+    sinks: Counter[str] = field(default_factory=Counter)
+    """Patterns that other libraries take, by the library: not among `sites`."""
+    sinks_unresolved: Counter[str] = field(default_factory=Counter)
     findings: list[PlacedFinding] = field(default_factory=list)
     patterns: set[Pattern] = field(default_factory=set)
     inexact: dict[Pattern, tuple[str, ...]] = field(default_factory=dict)
@@ -72,7 +75,9 @@ def measure(
         measured.parse_time += middle - begin
         measured.read_time += process_time() - middle
         measured.files += 1
-        measured.unresolved.update(each.reason for each in module.unresolved)
+        for each in module.unresolved:
+            counts = measured.sinks_unresolved if "." in each.function else measured.unresolved
+            counts[each.reason] += 1
         for site in module.sites:
             _site(site, rules, target, measured, seen)
         if progress is not None:
@@ -81,7 +86,10 @@ def measure(
 
 
 def _site(site: Site, rules: frozenset[str], target: Target, measured: Measured, seen: set[object]) -> None:
-    measured.sites += 1
+    if "." in site.function:
+        measured.sinks[site.function.split(".")[0]] += 1
+    else:
+        measured.sites += 1
     where = f"{site.path}:{site.place.line}"
     begin = process_time()
     try:

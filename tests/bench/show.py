@@ -29,6 +29,8 @@ def summary(measured: Measured) -> dict[str, Any]:
         "resolved": measured.sites,
         "resolved_share": _share(measured.sites, calls),
         "unresolved": dict(measured.unresolved.most_common()),
+        "sinks": dict(measured.sinks.most_common()),
+        "sinks_unresolved": dict(measured.sinks_unresolved.most_common()),
         "findings": {
             rule: dict(Counter(each.level for each in measured.findings if each.rule == rule))
             for rule in sorted({each.rule for each in measured.findings})
@@ -64,6 +66,10 @@ def lines(numbers: dict[str, Any]) -> Iterator[str]:
     share = f"({numbers['resolved_share']:.1%})"
     yield f"calls            {numbers['calls']}, resolved {numbers['resolved']} {share}"
     yield from _counts(numbers["unresolved"])
+    taken, open_ = numbers["sinks"], numbers["sinks_unresolved"]
+    yield f"other libraries  {sum(taken.values())} patterns taken, {sum(open_.values())} unresolved"
+    yield from _counts(taken)
+    yield from _counts(open_)
     yield f"unique patterns  {numbers['unique_patterns']}, exact {numbers['exact_share']:.2%}"
     yield from _counts(numbers["inexact"])
     yield f"undecided        {numbers['undecided_patterns']} patterns"

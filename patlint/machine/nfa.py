@@ -55,7 +55,9 @@ class Nfa:
         self.inexact: list[tuple[str, Span]] = [("locale", span) for span in program.locale]
         self.inexact += [("scoped class at the beginning", span) for span in program.misread]
         self.atomic_ends: dict[int, int] = {}
-        self.behind: dict[Span, int] = {}
+        self.body_of: dict[int, int] = {}
+        """For each look-around the first body that says the same as its own."""
+        self.behind: dict[int, int] = {}
         self.trackers: list[int] = []
         self.up = 0
         """Positions that lead to the next position and nowhere else: inside a run, below its minimum."""
@@ -64,6 +66,7 @@ class Nfa:
         reads: list[CharSet] = []
         asserts: set[str] = set()
         words: dict[CharSet, None] = {}
+        bodies: dict[p.Shape, int] = {}
         for pc, op in enumerate(program.code):
             width = 0
             match op:
@@ -78,10 +81,12 @@ class Nfa:
                     self.inexact.append(("conditional", program.spans[pc]))
                 case p.Atomic():
                     self.atomic_ends[op.end] = op.next
-                case p.Look(ahead=False):
-                    if program.spans[pc] not in self.behind:  # copies of one look-behind share their tracker
-                        self.behind[program.spans[pc]] = len(self.trackers)
-                        self.trackers.append(op.body)
+                case p.Look():
+                    body = bodies.setdefault(p.shape(program, op.body), op.body)
+                    self.body_of[pc] = body
+                    if not op.ahead and body not in self.behind:
+                        self.behind[body] = len(self.trackers)
+                        self.trackers.append(body)
                 case p.Assert():
                     asserts.add(op.kind)
                     if op.kind in ("word", "not-word"):
@@ -118,6 +123,7 @@ class Nfa:
         self.newline = mask_of.get(NEWLINE, 0)
         self.word_masks = [mask_of[chars] for chars in self.words]
         self.readers: list[int] = [0] * width
+        self._minterms_of: dict[int, tuple[int, ...]] = {}
         for position in range(self.accept):
             self._add_reader(position)
         self._spent = 0
@@ -127,7 +133,7 @@ class Nfa:
         self._lists: dict[int, Threads] = {}
         self._closures: dict[tuple[int, int], tuple[Thread, ...]] = {}
         self._after: dict[tuple[int, int, int], tuple[Thread, ...]] = {}
-        self._looks: dict[tuple[int, int], int] = {}
+        self._looks: dict[tuple[Threads, int], int] = {}
         self.context_table = Contexts(self)
         self.contexts = self.context_table.plain
         """The context after a character of each minterm, without trackers."""
@@ -135,11 +141,18 @@ class Nfa:
         self.start_context = self.context_table.with_trackers(AT_START if self.asks_start else 0, None, 0)
 
     def _add_reader(self, position: int) -> None:
-        mask = self.reads[position]
-        while mask:
-            low = mask & -mask
-            self.readers[low.bit_length() - 1] |= 1 << position
-            mask ^= low
+        bit = 1 << position
+        for minterm in self.minterms_of(self.reads[position]):
+            self.readers[minterm] |= bit
+
+    def minterms_of(self, mask: int) -> tuple[int, ...]:
+        """The minterms whose bits are in `mask`, rising."""
+        found = self._minterms_of.get(mask)
+        if found is None:
+            found = self._minterms_of[mask] = tuple(
+                minterm for minterm in range(mask.bit_length()) if mask >> minterm & 1
+            )
+        return found
 
     def _widened(self) -> frozenset[int]:
         """The bodies, and the ends of atomic groups, in which something is not said exactly."""
@@ -418,17 +431,19 @@ class Nfa:
 
     def look(self, pc: int, op: p.Look, context: int) -> int:
         """What a look-around asks of the rest of the text, as an obligation."""
+        body = self.body_of[pc]
         if op.body in self.widened and (op.negated or not op.ahead):
             return ALL
         if op.ahead:
-            key = (pc, context)
+            threads = self.closure(body, context)
+            key = (threads, context if self.trackers else 0)  # else the context has said its all
             found = self._looks.get(key)
             if found is None:
-                table, accepting = subset_table(self, "match", self.closure(op.body, context), context)
+                table, accepting = subset_table(self, "match", threads, context)
                 self.charge(len(table))
                 found = self._looks[key] = self.obligations.intern(table, accepting)[0]
         else:
-            index = self.behind[self.program.spans[pc]]
+            index = self.behind[body]
             trackers = self.context_table.parts[context][1]
             if index >= len(trackers):
                 return ALL  # a context without trackers: nothing is known of the text before

@@ -6,7 +6,7 @@ cannot be met. Obligations are stepped with each character that is read (`step`)
 text (`holds_at_end`).
 
 Interning costs a minimisation of the new states; those from which at most LARGEST states are reached are compared
-by their spelling, larger ones by minimising them together with all known ones.
+by their spelling, larger ones by minimising them together with all known ones where one of those begins alike.
 """
 
 from __future__ import annotations
@@ -30,23 +30,26 @@ FREE: Conjunction = frozenset()
 LARGEST = 24
 
 
-def key_of(table: Sequence[tuple[int, ...]], ends: Sequence[bool], start: int) -> Key | None:
-    """The spelling of a state of a minimal automaton, None where more than LARGEST states are reached from it."""
+def key_of(table: Sequence[tuple[int, ...]], ends: Sequence[bool], start: int) -> tuple[Key, bool]:
+    """The spelling of a state of a minimal automaton, and whether it is whole.
+
+    It is cut off where more than LARGEST states are reached; equal languages have equal beginnings too.
+    """
     number = {start: 0}
     order = [start]
-    rows = []
+    rows: list[tuple[tuple[int, ...], bool]] = []
     for state in order:
         row = []
         for target in table[state]:
             index = number.get(target)
             if index is None:
                 if len(order) >= LARGEST:
-                    return None
+                    return tuple(rows), False
                 index = number[target] = len(order)
                 order.append(target)
             row.append(index)
         rows.append((tuple(row), ends[state]))
-    return tuple(rows)
+    return tuple(rows), True
 
 
 class Obligations:
@@ -59,6 +62,8 @@ class Obligations:
         self.table: list[tuple[int, ...]] = [(ALL,) * width, (NONE,) * width]
         self.at_end: list[bool] = [True, False]
         self._keys: dict[Key, int] = {(((0,) * width, True),): ALL, (((0,) * width, False),): NONE}
+        self._beginnings: set[Key] = set()
+        """The cut spellings of the obligations that have no whole one."""
         self._complements: dict[int, int] = {ALL: NONE, NONE: ALL}
         self._simple: dict[tuple[int, bool, bool], int] = {}
         self._unions: dict[frozenset[Conjunction], int] = {}
@@ -80,35 +85,39 @@ class Obligations:
     def _intern_minimal(self, rows: list[tuple[int, ...]], ends: list[bool]) -> list[int]:
         keys = [key_of(rows, ends, state) for state in range(len(rows))]
         known = len(self.table)
-        out: list[int] = []
-        if None in keys:
-            # Too large to be compared by their spelling: all known ones are minimised together with these.
-            self.charge(known + len(rows))
-            joined = self.table + [tuple(target + known for target in row) for row in rows]
-            classes = equivalence(joined, [int(end) for end in self.at_end + ends])
-            number = {classes[state]: state for state in range(known)}
-            fresh = 0
-            for state in range(known, len(joined)):
-                if classes[state] not in number:
-                    number[classes[state]] = known + fresh
-                    fresh += 1
-                out.append(number[classes[state]])
+        if any(not whole and key in self._beginnings for key, whole in keys):
+            out = self._compared(rows, ends)
         else:
             self.charge(len(rows))
-            fresh = 0
-            for key in keys:
-                same = self._keys.get(key or ())
+            out = []
+            fresh = known
+            for key, whole in keys:
+                same = self._keys.get(key) if whole else None
                 if same is None:
-                    same = known + fresh
+                    same = fresh
                     fresh += 1
                 out.append(same)
         for state, obligation in enumerate(out):
             if obligation >= known:
                 self.table.append(tuple(out[target] for target in rows[state]))
                 self.at_end.append(ends[state])
-                key = keys[state]
-                if key is not None:
+                key, whole = keys[state]
+                if whole:
                     self._keys[key] = obligation
+                else:
+                    self._beginnings.add(key)
+        return out
+
+    def _compared(self, rows: list[tuple[int, ...]], ends: list[bool]) -> list[int]:
+        """The obligations of states too large to be compared by their spelling: minimised with all known ones."""
+        known = len(self.table)
+        self.charge(known + len(rows))
+        joined = self.table + [tuple(target + known for target in row) for row in rows]
+        classes = equivalence(joined, [int(end) for end in self.at_end + ends])
+        number = {classes[state]: state for state in range(known)}
+        out = []
+        for state in range(known, len(joined)):
+            out.append(number.setdefault(classes[state], len(number)))
         return out
 
     def next_in(self, mask: int, or_end: bool) -> int:
@@ -168,9 +177,11 @@ class Obligations:
                         index[target] = len(order)
                         order.append(target)
             table = [tuple(index[target] for target in self.table[state]) for state in order]
-            found = self.intern(table, [not self.at_end[state] for state in order])[0]
-            self._complements[obligation] = found
-            self._complements[found] = obligation
+            others = self._intern_minimal(table, [not self.at_end[state] for state in order])
+            for state, other in zip(order, others, strict=True):
+                self._complements[state] = other
+                self._complements[other] = state
+            found = others[0]
         return found
 
     def step(self, duty: Conjunction, minterm: int) -> Conjunction | None:

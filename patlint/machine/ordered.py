@@ -8,7 +8,7 @@ everything behind it, and never ends again.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable, Iterator, Sequence
 from typing import TYPE_CHECKING, TypeAlias
 
 from patlint.machine.determinise import subset_table
@@ -42,24 +42,45 @@ def prune(nfa: Nfa, moves: Iterable[tuple[Thread, int]], cut: bool) -> tuple[Thr
 
 
 def steps(
-    nfa: Nfa, threads: Threads, minterm: int, context: int, stays: bool
+    nfa: Nfa, threads: Threads, minterm: int, context: int, stays: bool, among: Sequence[int] | None = None
 ) -> Iterator[tuple[Thread, int]]:
     """The threads after reading a character, which leaves `context`, with the index each came from.
 
-    `stays`: a thread at the end goes on as pending.
+    `stays`: a thread at the end goes on as pending. `among`: the row of `movers` for this character.
     """
     readers = nfa.readers[minterm]
-    for index, (position, duty) in enumerate(threads):
+    for index in range(len(threads)) if among is None else among:
+        position, duty = threads[index]
         if position == nfa.accept or position == nfa.pending:
             if stays:
                 rest = nfa.obligations.step(duty, minterm)
                 if rest is not None:
                     yield (nfa.pending, rest), index
         elif readers >> position & 1:
+            if not duty:
+                for thread in nfa.after(position, minterm, context):
+                    yield thread, index
+                continue
             rest = nfa.obligations.step(duty, minterm)
             if rest is not None:
                 for after, more in nfa.after(position, minterm, context):
                     yield (after, rest | more), index
+
+
+def movers(nfa: Nfa, threads: Threads, stays: bool) -> list[list[int]]:
+    """For each minterm the indexes of the threads that may go on when it is read.
+
+    Long lists mostly hold threads of which each reads little, the beginnings of many words.
+    """
+    rows: list[list[int]] = [[] for _ in nfa.readers]
+    for index, (position, _) in enumerate(threads):
+        if stays and (position == nfa.accept or position == nfa.pending):
+            for row in rows:
+                row.append(index)
+        else:
+            for minterm in nfa.minterms_of(nfa.reads[position]):
+                rows[minterm].append(index)
+    return rows
 
 
 def ends_here(nfa: Nfa, threads: Threads, context: int) -> Iterator[Conjunction]:

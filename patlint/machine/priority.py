@@ -14,20 +14,32 @@ Limits: `states`, `work`.
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 
 from patlint.limits import LimitReached
 from patlint.machine.alphabet import Alphabet
 from patlint.machine.dfa import Dfa, minimal
 from patlint.machine.nfa import Nfa
-from patlint.machine.obligations import FREE
-from patlint.machine.ordered import Threads, ends_here, prune, steps
+from patlint.machine.obligations import FREE, Conjunction, Thread
+from patlint.machine.ordered import Threads, ends_here, movers, prune, steps
 from patlint.syntax.charset import CharSet
 
-ORDERED_COST = 4
-"""A thread of an ordered list takes about as long as four of the subset construction, for which `work` is made."""
+ORDERED_COST = 2
+"""A thread put into an ordered list takes about as long as two of the subset construction, for which `work` is made."""
 MARKER = 0x110000
 """Stands for the end of the match in marked texts; no character has this code."""
+
+
+class _Counted:
+    """Passes on what is iterated over and counts it in `number`."""
+
+    def __init__(self) -> None:
+        self.number = 0
+
+    def __call__(self, moves: Iterable[tuple[Thread, int]]) -> Iterator[tuple[Thread, int]]:
+        for move in moves:
+            self.number += 1
+            yield move
 
 
 def _start(nfa: Nfa, context: int, not_empty: bool, cut: bool) -> Threads:
@@ -44,6 +56,7 @@ def spans(nfa: Nfa, context: int, not_empty: bool = False) -> Dfa:
     number: dict[object, int] = {first: 0}
     order: list[tuple[str, object, int]] = [first]
     table: list[tuple[int, ...]] = []
+    counted = _Counted()
     work = 0
 
     def index_of(state: tuple[str, object, int]) -> int:
@@ -62,10 +75,9 @@ def spans(nfa: Nfa, context: int, not_empty: bool = False) -> Dfa:
         work += width
         if kind == "before":
             threads: Threads = content  # type: ignore[assignment]
-            for minterm in range(width):
-                work += len(threads)
+            for minterm, among in enumerate(movers(nfa, threads, True)):
                 context = nfa.next_context(before, minterm)
-                after, _ = prune(nfa, steps(nfa, threads, minterm, context, True), True)
+                after, _ = prune(nfa, counted(steps(nfa, threads, minterm, context, True, among)), True)
                 if all(position == nfa.pending for position, _ in after):
                     row.append(index_of(dead))  # only vetoes are left, and nothing to veto
                 else:
@@ -83,7 +95,7 @@ def spans(nfa: Nfa, context: int, not_empty: bool = False) -> Dfa:
                 row.append(index_of(("after", left, 0)) if left else index_of(dead))
             row.append(index_of(dead))
             accepting.append(any(nfa.obligations.holds_at_end(duty) for duty in held))
-        if work > nfa.limits.work:
+        if work + ORDERED_COST * counted.number > nfa.limits.work:
             raise LimitReached("work", nfa.limits.work)
         table.append(tuple(row))
     alphabet = Alphabet(
@@ -120,16 +132,16 @@ def used_positions(nfa: Nfa, mode: str, not_empty: bool) -> set[int]:
         if not_empty:
             index_of(_start(nfa, context, True, cut), context)
     sources: dict[tuple[int, int], list[tuple[int, int]]] = {}
-    work = 0
+    counted = _Counted()
     for state, (threads, before) in enumerate(order):
-        for minterm in range(len(nfa.alphabet)):
-            work += ORDERED_COST * (1 + len(threads))
+        for minterm, among in enumerate(movers(nfa, threads, False)):
+            counted.number += 1
             context = nfa.next_context(before, minterm)
-            after, origins = prune(nfa, steps(nfa, threads, minterm, context, False), cut)
+            after, origins = prune(nfa, counted(steps(nfa, threads, minterm, context, False, among)), cut)
             target = index_of(after, context)
             for place, origin in enumerate(origins):
                 sources.setdefault((target, place), []).append((state, origin))
-        if work > nfa.limits.work:
+        if ORDERED_COST * counted.number > nfa.limits.work:
             raise LimitReached("work", nfa.limits.work)
     waiting = [
         (state, place)
@@ -151,10 +163,11 @@ def used_positions(nfa: Nfa, mode: str, not_empty: bool) -> set[int]:
 def shown_used(nfa: Nfa, mode: str, wanted: Iterable[int]) -> set[int]:
     """Positions that a match reads, shown by one text for each of `wanted`: quick, and not all.
 
-    For each position a shortest way through it is spelled and run; what its winning thread reads is used.
+    For each position a shortest way through it is spelled and run; what its winning thread reads is used. Texts
+    that begin alike share their steps. Stops where these come to `work`.
     """
     back, onward = _ways(nfa)
-    start = _start(nfa, nfa.start_context, False, mode != "fullmatch")
+    runs = _Runs(nfa, mode != "fullmatch")
     used: set[int] = set()
     for position in wanted:
         if position in used or position not in back or position not in onward:
@@ -165,7 +178,9 @@ def shown_used(nfa: Nfa, mode: str, wanted: Iterable[int]) -> set[int]:
         way.reverse()
         while (after := onward[way[-1]]) is not None:
             way.append(after)
-        used |= _winner(nfa, mode != "fullmatch", start, [_some_minterm(nfa, each) for each in way])
+        used |= runs.winner([_some_minterm(nfa, each) for each in way])
+        if ORDERED_COST * runs.counted.number > nfa.limits.work:
+            break
     return used
 
 
@@ -201,30 +216,61 @@ def _ways(nfa: Nfa) -> tuple[dict[int, int | None], dict[int, int | None]]:
     return back, onward
 
 
-def _winner(nfa: Nfa, cut: bool, threads: Threads, minterms: list[int]) -> set[int]:
-    """The positions that the winning thread reads on a text given by minterms; nothing where that is not sure."""
-    layers: list[tuple[Threads, tuple[int, ...]]] = [(threads, ())]
-    context = nfa.start_context
-    for minterm in minterms:
-        context = nfa.next_context(context, minterm)
-        threads, origins = prune(nfa, steps(nfa, threads, minterm, context, False), cut)
-        if not threads:
-            break
-        layers.append((threads, origins))
-    if not cut and len(layers) <= len(minterms):
+class _Runs:
+    """Texts run one after the other from the start; what was stepped once is remembered."""
+
+    def __init__(self, nfa: Nfa, cut: bool) -> None:
+        self.nfa, self.cut, self.counted = nfa, cut, _Counted()
+        self.lists: list[tuple[Threads, int]] = []
+        """The threads and the context of each state."""
+        self.ends: list[list[tuple[int, Conjunction]]] = []
+        """Where in a state's list the threads at the end stand, with their obligations."""
+        self._numbers: dict[tuple[Threads, int], int] = {}
+        self._moves: dict[tuple[int, int], tuple[int, tuple[int, ...]]] = {}
+        self.start = self._number(_start(nfa, nfa.start_context, False, cut), nfa.start_context)
+
+    def _number(self, threads: Threads, context: int) -> int:
+        key = (threads, context)
+        number = self._numbers.get(key)
+        if number is None:
+            number = self._numbers[key] = len(self.lists)
+            self.lists.append(key)
+            accept = self.nfa.accept
+            ends = [(place, duty) for place, (position, duty) in enumerate(threads) if position == accept]
+            self.ends.append(ends)
+        return number
+
+    def _move(self, state: int, minterm: int) -> tuple[int, tuple[int, ...]]:
+        """The next state, and where in the list before each of its threads came from."""
+        found = self._moves.get((state, minterm))
+        if found is None:
+            threads, before = self.lists[state]
+            self.counted.number += 1 + len(threads) // 4
+            context = self.nfa.next_context(before, minterm)
+            moves = self.counted(steps(self.nfa, threads, minterm, context, False))
+            after, origins = prune(self.nfa, moves, self.cut)
+            found = self._moves[state, minterm] = self._number(after, context), origins
+        return found
+
+    def winner(self, minterms: list[int]) -> set[int]:
+        """The positions that the winning thread reads on a text; nothing where that is not sure."""
+        layers: list[tuple[int, tuple[int, ...]]] = [(self.start, ())]
+        for minterm in minterms:
+            state, origins = self._move(layers[-1][0], minterm)
+            if not self.lists[state][0]:
+                break
+            layers.append((state, origins))
+        if not self.cut and len(layers) <= len(minterms):
+            return set()
+        last = len(layers) - 1
+        for index in range(last, -1, -1) if self.cut else (last,):
+            for place, duty in self.ends[layers[index][0]]:
+                if duty and not (index == last == len(minterms) and self.nfa.obligations.holds_at_end(duty)):
+                    return set()
+                used = set()
+                while index:
+                    place = layers[index][1][place]
+                    index -= 1
+                    used.add(self.lists[layers[index][0]][0][place][0])
+                return used
         return set()
-    last = len(layers) - 1
-    for index in range(last, -1, -1) if cut else (last,):
-        for place, (position, duty) in enumerate(layers[index][0]):
-            if position != nfa.accept:
-                continue
-            if duty and not (index == last == len(minterms) and nfa.obligations.holds_at_end(duty)):
-                return set()
-            used = set()
-            while index:
-                threads, origins = layers[index]
-                place = origins[place]
-                index -= 1
-                used.add(layers[index][0][place][0])
-            return used
-    return set()

@@ -165,6 +165,32 @@ class Program:
     """What it was compiled from, as the engine rewrites it."""
 
 
+_TARGETS = frozenset({"next", "first", "second", "body", "end", "exit", "yes", "no"})
+"""The fields of instructions that name other instructions."""
+
+Shape: TypeAlias = tuple[tuple[object, ...], ...]
+
+
+def shape(program: Program, entry: int) -> Shape:
+    """What stands at `entry`, told without its place: equal shapes mean the same."""
+    number = {entry: 0}
+    order = [entry]
+    rows: list[tuple[object, ...]] = []
+    for pc in order:
+        op = program.code[pc]
+        row: list[object] = [type(op), program.spans[pc] in program.locale]
+        for name in op.__dataclass_fields__:
+            value = getattr(op, name)
+            if name in _TARGETS:
+                if value not in number:
+                    number[value] = len(order)
+                    order.append(value)
+                value = number[value]
+            row.append(value)
+        rows.append(tuple(row))
+    return tuple(rows)
+
+
 @dataclass(slots=True)
 class _Builder:
     is_bytes: bool

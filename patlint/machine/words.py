@@ -55,7 +55,10 @@ def _rank(move: tuple[int, int]) -> tuple[bool, bool, int]:
 
 
 def words(dfa: Dfa) -> Iterator[Codes]:
-    """Texts in the order of their length, one for each path; endless where the language is infinite."""
+    """Texts in the order of their length, one for each path; endless where the language is infinite.
+
+    Each takes as many steps as it has characters, times minterms, however many paths lead nowhere.
+    """
     left = distances(dfa)
     if left[0] is None:
         return
@@ -63,19 +66,48 @@ def words(dfa: Dfa) -> Iterator[Codes]:
         ((representative(chars), minterm) for minterm, chars in enumerate(dfa.alphabet.classes)),
         key=_rank,
     )
-    layer: list[tuple[Codes, int]] = [((), 0)]
-    while layer:
-        for codes, state in layer:
-            if dfa.accepting[state]:
-                yield codes
-        layer = [
-            ((*codes, letter), dfa.table[state][minterm])
-            for codes, state in layer
-            for letter, minterm in letters
-            if left[dfa.table[state][minterm]] is not None
-        ]
-        if len(layer) > 50_000:
-            layer = layer[:50_000]
+    before = [0] * len(dfa)
+    for state, row in enumerate(dfa.table):
+        for target in set(row):
+            before[target] |= 1 << state
+    last = None if total(dfa) is None else len(dfa) - 1  # a longer text goes through a state twice
+    within = [sum(1 << state for state, end in enumerate(dfa.accepting) if end)]
+    """At n the states from which a text of n characters is accepted, as a bit mask."""
+    while last is None or len(within) <= last + 1:
+        if within[-1] & 1:
+            yield from _of_length(dfa, letters, within)
+        closer, further = within[-1], 0
+        while closer:
+            low = closer & -closer
+            closer ^= low
+            further |= before[low.bit_length() - 1]
+        within.append(further)
+
+
+def _of_length(dfa: Dfa, letters: list[tuple[int, int]], within: list[int]) -> Iterator[Codes]:
+    """The texts of one character fewer than `within` has entries: no step leads where none can be finished."""
+    left = len(within) - 1
+    if not left:
+        yield ()
+        return
+    codes: list[int] = []
+    states, waiting = [0], [iter(letters)]
+    while waiting:
+        row, useful = dfa.table[states[-1]], within[left - len(states)]
+        for letter, minterm in waiting[-1]:
+            if useful >> row[minterm] & 1:
+                if len(states) == left:
+                    yield (*codes, letter)
+                    continue
+                codes.append(letter)
+                states.append(row[minterm])
+                waiting.append(iter(letters))
+                break
+        else:
+            waiting.pop()
+            states.pop()
+            if codes:
+                codes.pop()
 
 
 def count(dfa: Dfa, length: int) -> int:

@@ -78,6 +78,10 @@ class Suspect:
 
 
 EXPONENTIAL = 0
+MANY_MINTERMS = 12
+"""Sets of like characters up to which pumps are sought that do without one of them."""
+Cycles: TypeAlias = tuple[int, Masks, tuple[int, ...]]
+"""A node that has two cycles on one text, the text, and the nodes that compete."""
 
 
 class Letters:
@@ -116,6 +120,7 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
         found = _two_cycles(graph, nodes, nfa.limits.product)
         if found:
             ambiguous.append(nodes)
+            found = _others(graph, nodes, nfa.limits.product, found, len(nfa.alphabet))
         for node, pump, others in found:
             yield _suspect(graph, prefixes, (node,), pump, EXPONENTIAL, (node, *others))
     reach = reachable(graph, members)
@@ -233,25 +238,39 @@ def _prefixes(graph: Walks) -> dict[int, Masks]:
     return out
 
 
-def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> list[tuple[int, Masks, tuple[int, ...]]]:
-    """Nodes of one component that have two cycles on one text, the text, and the nodes that compete; a few."""
+def _others(graph: Walks, nodes: list[int], limit: int, found: list[Cycles], minterms: int) -> list[Cycles]:
+    """With pumps added that do without a character which those found all have: what follows may take that one."""
+    out = list(found)
+    for minterm in range(minterms if minterms <= MANY_MINTERMS else 0):
+        bit = 1 << minterm
+        if all(bit in pump for _, pump, _ in out):
+            out += _two_cycles(graph, nodes, limit, ~bit)[:1]
+    return out
+
+
+def _two_cycles(graph: Walks, nodes: list[int], limit: int, allowed: int = -1) -> list[Cycles]:
+    """Nodes of one component that have two cycles on one text, the text, and the nodes that compete; a few.
+
+    `allowed`: minterms of which the text may be.
+    """
     inside = set(nodes)
-    all_found: list[tuple[int, Masks, tuple[int, ...]]] = []
+    all_found: list[Cycles] = []
     divergences: list[tuple[int, tuple[int, int], int]] = []
     for node in nodes:
-        edges = [edge for edge in graph.edges[node] if edge.target in inside]
+        edges = [edge for edge in graph.edges[node] if edge.target in inside and edge.mask & allowed]
         for place, edge in enumerate(edges):
             if edge.ways > 1:
-                divergences.append((node, (edge.target, edge.target), edge.mask))
+                divergences.append((node, (edge.target, edge.target), edge.mask & allowed))
             for other in edges[place + 1 :]:
-                if edge.mask & other.mask and edge.target != other.target:
-                    divergences.append((node, (edge.target, other.target), edge.mask & other.mask))
+                common = edge.mask & other.mask & allowed
+                if common and edge.target != other.target:
+                    divergences.append((node, (edge.target, other.target), common))
     seen: Seen = {}
     origins: dict[tuple[int, ...], dict[int, int]] = {}
     order: list[tuple[int, int]] = []
     for node, pair, mask in divergences:
         if pair[0] == pair[1]:
-            back = path(graph, pair[0], node, inside)
+            back = path(graph, pair[0], node, inside, allowed)
             if back is not None:
                 pump = (mask, *back)
                 all_found.append((node, pump, (pair[0],)))
@@ -273,7 +292,7 @@ def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> list[tuple[int, M
             if edge.target not in inside:
                 continue
             for other in graph.edges[pair[1]]:
-                mask = edge.mask & other.mask
+                mask = edge.mask & other.mask & allowed
                 if not mask or other.target not in inside:
                     continue
                 target = (edge.target, other.target)
@@ -291,16 +310,17 @@ def _two_cycles(graph: Walks, nodes: list[int], limit: int) -> list[tuple[int, M
                     step = seen[first]
                 begin = origins[first]
                 node = target[0] if target[0] in begin else next(iter(begin))
-                back = path(graph, target[0], node, inside)
-                assert back is not None
+                back = path(graph, target[0], node, inside, allowed)
+                if back is None:
+                    continue
                 pump = (begin[node], *spell(seen, pair), mask, *back)
                 all_found.append((node, pump, first))
     return _few(all_found)
 
 
-def _few(found: list[tuple[int, Masks, tuple[int, ...]]]) -> list[tuple[int, Masks, tuple[int, ...]]]:
+def _few(found: list[Cycles]) -> list[Cycles]:
     """The shortest with different texts: what follows may take the characters of one and not those of another."""
-    kept: dict[Masks, tuple[int, Masks, tuple[int, ...]]] = {}
+    kept: dict[Masks, Cycles] = {}
     sets: dict[frozenset[int], Masks] = {}
     for row in sorted(found, key=lambda row: len(row[1])):
         kept.setdefault(row[1], row)

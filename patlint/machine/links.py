@@ -54,7 +54,7 @@ def spell(seen: Seen, end: tuple[int, ...]) -> Masks:
     return tuple(reversed(masks))
 
 
-def path(graph: Walks, start: int, end: int, inside: set[int] | None) -> Masks | None:
+def path(graph: Walks, start: int, end: int, inside: set[int] | None, allowed: int = -1) -> Masks | None:
     """A shortest text from one node to another, empty where they are the same."""
     seen: Seen = {(start,): None}
     order = [start]
@@ -62,8 +62,9 @@ def path(graph: Walks, start: int, end: int, inside: set[int] | None) -> Masks |
         if node == end:
             return spell(seen, (end,))
         for edge in graph.edges[node]:
-            if (inside is None or edge.target in inside) and (edge.target,) not in seen:
-                seen[edge.target,] = ((node,), edge.mask)
+            mask = edge.mask & allowed
+            if mask and (inside is None or edge.target in inside) and (edge.target,) not in seen:
+                seen[edge.target,] = ((node,), mask)
                 order.append(edge.target)
     return None
 

@@ -23,12 +23,11 @@ import json
 import os
 from collections import Counter
 from collections.abc import Callable, Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any, Final
 
 from patlint.identity import VERSION, content
 from patlint.outcome import Outcome
-from patlint.placed import PlacedFinding
 from patlint.whole import write_whole
 
 HEAD: Final = "patlint-ledger"
@@ -113,56 +112,55 @@ def judge(
     """
     base = os.path.dirname(os.path.abspath(ledger.path))
     left = Counter(entry.line for entry in ledger.entries)
-    at_home: list[list[tuple[PlacedFinding, str, bool]]] = []
-    for outcome in outcomes:
-        row = []
-        for finding in outcome.findings:
-            line = content(finding, _relative(finding.path, base))
-            row.append((finding, line, left[line] > 0))
-            left[line] -= left[line] > 0
-        at_home.append(row)
-
-    sure = {_relative(each.path, base) for each in outcomes if each.linted and not each.problems}
-    names = {_relative(each.path, base): each.path for each in outcomes}
-    walked = [os.path.abspath(path) for path in paths]
-    free: list[Entry] = []
-    unjudged: list[Entry] = []
-    for entry in ledger.entries:
-        if left[entry.line] <= 0:
-            continue
-        left[entry.line] -= 1
-        if entry.path in names:
-            matched_nothing = entry.path in sure and is_on(names[entry.path], entry.rule)
-        else:
-            matched_nothing = not os.path.lexists(_full(entry, base))
-        (free if matched_nothing else unjudged).append(entry)
+    rows = [
+        [(each, content(each, _relative(each.path, base))) for each in outcome.findings]
+        for outcome in outcomes
+    ]
+    at_home = [[_take(left, line) for _, line in row] for row in rows]
+    unmatched = [entry for entry in ledger.entries if _take(left, entry.line)]
+    read = {_relative(each.path, base): each for each in outcomes}
+    free = [entry for entry in unmatched if _is_free(entry, read, base, is_on)]
 
     movable = Counter(entry.elsewhere for entry in free)
     kept: list[Outcome] = []
     known: list[str] = []
     new: list[str] = []
-    for outcome, row in zip(outcomes, at_home, strict=True):
+    for outcome, row, found in zip(outcomes, rows, at_home, strict=True):
         shown = []
-        for finding, line, found in row:
-            if not found:
-                elsewhere = content(finding, "")
-                found = movable[elsewhere] > 0
-                movable[elsewhere] -= found
-            if found:
+        for (finding, line), is_known in zip(row, found, strict=True):
+            if is_known or _take(movable, content(finding, "")):
                 known.append(line)
             else:
                 new.append(line)
                 shown.append(finding)
-        kept.append(_with_findings(outcome, tuple(shown)))
+        kept.append(outcome if len(shown) == len(row) else replace(outcome, findings=tuple(shown)))
 
-    gone: list[Entry] = []
-    for entry in free:
-        if movable[entry.elsewhere] <= 0:
-            continue
-        movable[entry.elsewhere] -= 1
-        told = entry.path in sure or any(_is_within(_full(entry, base), top) for top in walked)
-        (gone if told else unjudged).append(entry)
-    return Judged(tuple(kept), tuple(known), tuple(new), tuple(gone), tuple(unjudged))
+    walked = [os.path.abspath(path) for path in paths]
+    lost = [entry for entry in free if _take(movable, entry.elsewhere)]
+    gone = [
+        entry
+        for entry in lost
+        if entry.path in read or any(_is_within(_full(entry, base), top) for top in walked)
+    ]
+    apart = {id(entry) for entry in free} - {id(entry) for entry in lost} | {id(entry) for entry in gone}
+    unjudged = tuple(entry for entry in unmatched if id(entry) not in apart)
+    return Judged(tuple(kept), tuple(known), tuple(new), tuple(gone), unjudged)
+
+
+def _take(counts: Counter[str], line: str) -> bool:
+    """Whether one is left of `line`, which is then used up."""
+    if counts[line] <= 0:
+        return False
+    counts[line] -= 1
+    return True
+
+
+def _is_free(entry: Entry, read: dict[str, Outcome], base: str, is_on: Callable[[str, str], bool]) -> bool:
+    """Whether it is certain that no finding stands where the entry says."""
+    outcome = read.get(entry.path)
+    if outcome is None:
+        return not os.path.lexists(_full(entry, base))
+    return outcome.linted and not outcome.problems and is_on(outcome.path, entry.rule)
 
 
 def entered(judged: Judged) -> list[str]:
@@ -173,12 +171,6 @@ def entered(judged: Judged) -> list[str]:
 def pruned(judged: Judged) -> list[str]:
     """The lines of the ledger without what is gone; what moved is entered at its new place."""
     return [*judged.known, *(entry.line for entry in judged.unjudged)]
-
-
-def _with_findings(outcome: Outcome, findings: tuple[PlacedFinding, ...]) -> Outcome:
-    from dataclasses import replace
-
-    return outcome if len(findings) == len(outcome.findings) else replace(outcome, findings=findings)
 
 
 def _relative(path: str, base: str) -> str:

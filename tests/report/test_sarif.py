@@ -16,6 +16,8 @@ from pathlib import Path
 from typing import Any
 
 import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
 
 from patlint.cli.main import main
 from patlint.outcome import Outcome, Remark
@@ -180,7 +182,10 @@ def test_lone_surrogates_are_escaped() -> None:
     (result,) = run["results"]
     assert result["message"]["text"] == "Odd: \\ud800. Text: '\\udc80'."
     assert (result["properties"]["pattern"], result["properties"]["text"]) == ("'\\ud800*'", "'\\udc80'")
-    json.dumps(run, ensure_ascii=False).encode("utf-8")  # there is none left
+    bad = Outcome("\udcff.py", problems=("\udcff.py: no",), linted=False)
+    told = run_of(bad, problems=bad.problems)
+    assert told["invocations"][0]["toolExecutionNotifications"][0]["message"]["text"] == "\\udcff.py: no"
+    json.dumps([run, told], ensure_ascii=False).encode("utf-8")  # there is none left
 
 
 def test_a_finding_without_a_pattern() -> None:
@@ -307,3 +312,45 @@ def test_columns_count_code_points(
     region = run["results"][0]["locations"][0]["physicalLocation"]["region"]
     start, end = region["startColumn"] - 1, region["endColumn"] - 1
     assert (region["startLine"], line[start:end]) == (2, "(")
+
+
+RESULT = jsonschema.Draft7Validator({"$ref": "#/definitions/result", "definitions": SCHEMA["definitions"]})
+texts = st.one_of(
+    st.text(max_size=8),
+    st.lists(
+        st.sampled_from(["{", "}", "[a]", "(b)", "]", "(", "0", "\ud800", "\n", "\\", "x"]), max_size=8
+    ).map("".join),
+)
+odd = st.builds(
+    PlacedFinding,
+    rule=st.sampled_from(NAMES),
+    level=st.sampled_from(("error", "warning", "note")),
+    path=st.just("dock.py"),
+    line=st.just(3),
+    column=st.just(1),
+    end_line=st.just(3),
+    end_column=st.integers(min_value=1, max_value=9),
+    message=texts,
+    pattern=st.one_of(st.none(), texts, st.binary(max_size=6)),
+    witness=st.one_of(st.none(), texts.map(TextWitness)),
+    suggestion=st.one_of(st.none(), texts.map(lambda each: Suggestion(each, "spans"))),
+    proof=texts,
+    evidence=texts,
+    way_out=texts,
+)
+
+
+@settings(max_examples=40, deadline=None)
+@given(st.lists(odd, min_size=1, max_size=6))
+def test_whatever_the_texts_are(found: list[PlacedFinding]) -> None:
+    result = RunResult((Outcome("dock.py", tuple(found)),), (), 0)
+    report = json.loads(lint_report(result, (3, 12), RULES, 1))
+    json.dumps(report, ensure_ascii=False).encode("utf-8")
+    results = report["runs"][0]["results"]
+    assert len(results) == len(found)
+    for each in results:
+        assert [str(error) for error in RESULT.iter_errors(each)] == []
+        text = each["message"]["text"]
+        assert not re.search(r"\[[^\[\]]*\]\(", text)
+        assert re.fullmatch(r"(?:[^{}]|\{\{|\}\})*", text)
+    assert len({each["partialFingerprints"][FINGERPRINT] for each in results}) == len(found)

@@ -107,7 +107,7 @@ def common(a: Alphabet, b: Alphabet) -> tuple[Alphabet, tuple[int, ...], tuple[i
     return alphabet, tuple(map(a.classify, firsts)), tuple(map(b.classify, firsts))
 
 
-_PREFERRED = tuple(map(ord, "abcdefghijklmnopqrstuvwxyz0123456789-_.,:;/ ABCDEFGHIJKLMNOPQRSTUVWXYZ"))
+PREFERRED = tuple(map(ord, "abcdefghijklmnopqrstuvwxyz0123456789-_.,:;/ ABCDEFGHIJKLMNOPQRSTUVWXYZ"))
 _PRINTABLE = CharSet.of_range(32, 126)
 _LETTERS_AND_UP = CharSet.of_ranges([(0xA1, 0xAC), (0xAE, 0x377)])
 
@@ -115,7 +115,7 @@ _LETTERS_AND_UP = CharSet.of_ranges([(0xA1, 0xAC), (0xAE, 0x377)])
 @lru_cache(maxsize=4096)
 def representative(chars: CharSet) -> int:
     """The member of a set that is the most pleasant to read; `chars` must not be empty."""
-    for code in _PREFERRED:
+    for code in PREFERRED:
         if code in chars:
             return code
     for pleasant in (_PRINTABLE, _LETTERS_AND_UP):

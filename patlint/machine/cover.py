@@ -1,67 +1,39 @@
 """Whether the texts of one automaton are all taken by others, which of them are needed, and a text that is not.
 
-`cover(one, others)` grows the set of others from texts: as long as `one` has a text that none of the chosen takes,
-the first that takes it is added, and where none does, that text is the answer. So no union of hundreds of automata is
-built: most are told apart by a single text, and only those that share texts are compared.
+`Rivals.cover(one, others)` grows the set of others from texts: as long as `one` has a text that none of the chosen
+takes, the first that takes it is added, and where none does, that text is the answer. So no union of hundreds of
+automata is built: most are told apart by a single text, and only those that share texts are walked together.
 
 >>> from patlint.language import Language
 >>> patterns = ("a[0-9]", "b", "a[0-4]", "a[5-9]x?", "a1")
->>> one, *others = (Side(Language(each, mode="match").dfa) for each in patterns)
->>> cover(one, dict(enumerate(others)), 1000).takers
-{1: (97, 48), 2: (97, 53)}
->>> cover(one, dict(enumerate(others[:2])), 1000).text
+>>> rivals = Rivals({at: Language(each, mode="match").dfa for at, each in enumerate(patterns)}, 1000)
+>>> rivals.cover(0, [1, 2, 3, 4]).takers
+{2: (97, 48), 3: (97, 53)}
+>>> rivals.missing(0, [1, 2])
 (97, 53)
 
-Cost: one text against each of the others, and a walk over tuples of states for each of the few that are compared.
-Limit: `product` tuples. Source of the method: refinement from counterexamples (Clarke, Grumberg, Jha, Lu and Veith,
+Cost: a few texts against each of the others, and a walk over tuples of states for each of the few that are compared.
+Limit: `product` pairs of states. Source of the method: refinement from counterexamples (Clarke, Grumberg, Jha, Lu and Veith,
 Counterexample-guided abstraction refinement, CAV 2000), here of a union.
 """
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from bisect import bisect_right
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
 from patlint.limits import LimitReached
-from patlint.machine.alphabet import minterms, representative
-from patlint.machine.dfa import Dfa
-from patlint.machine.relations import letter_rank
-from patlint.machine.words import Codes, distances, shortest
-from patlint.syntax.charset import CharSet
+from patlint.machine.alphabet import PREFERRED
+from patlint.machine.dfa import Dfa, canonical
+from patlint.machine.words import Codes, distances, sample, shortest
 
-
-class Side:
-    """An automaton with what is asked of it again and again."""
-
-    def __init__(self, dfa: Dfa) -> None:
-        self.dfa = dfa
-
-    @cached_property
-    def settled(self) -> frozenset[int]:
-        """The states that no character leads out of."""
-        return frozenset(
-            state
-            for state, row in enumerate(self.dfa.table)
-            if row[0] == state and row.count(state) == len(row)
-        )
-
-    @cached_property
-    def left(self) -> list[int | None]:
-        return distances(self.dfa)
-
-    @cached_property
-    def shortest(self) -> Codes | None:
-        return shortest(self.dfa)
-
-    def accepts(self, codes: Codes) -> bool:
-        """Stops as soon as the rest of the text makes no difference."""
-        dfa, settled, state = self.dfa, self.settled, 0
-        for code in codes:
-            if state in settled:
-                break
-            state = dfa.table[state][dfa.alphabet.classify(code)]
-        return dfa.accepting[state]
+SAMPLES = 6
+"""Random texts that are tried before automata are walked in pairs."""
+MORE_SAMPLES = 100
+"""Those before many are walked together."""
+_PLEASANT = {code: place for place, code in enumerate((*PREFERRED, *range(33, 127), 32, 10))}
 
 
 @dataclass(frozen=True, slots=True)
@@ -73,118 +45,237 @@ class Cover:
     text: Codes | None = None
 
 
-def cover(one: Side, others: Mapping[int, Side], product: int) -> Cover:
-    """Fewest others first: one alone, where one is enough. Raises LimitReached("product")."""
-    word = one.shortest
-    if word is None:
-        return Cover()
-    takers = [key for key, other in others.items() if other.accepts(word)]
-    if not takers:
-        return Cover(None, word)
-    texts = [word]
-    alone = takers
-    while alone:
-        missed = missing(one, [others[alone[0]]], product)
-        if missed is None:
-            return Cover({alone[0]: word})
-        texts.append(missed)
-        if not any(other.accepts(missed) for other in others.values()):
-            return Cover(None, missed)
-        alone = [key for key in alone if others[key].accepts(missed)]
-    chosen: dict[int, Codes] = {}
-    while True:
-        for text in texts:
-            if not any(others[key].accepts(text) for key in chosen):
-                taker = next((key for key, other in others.items() if other.accepts(text)), None)
-                if taker is None:
-                    return Cover(None, text)
-                chosen[taker] = text
-        left = missing(one, [others[key] for key in chosen], product)
-        if left is None:
-            break
-        texts = [left]
-    for key in list(chosen):
-        fewer = [others[each] for each in chosen if each != key]
-        if fewer and missing(one, fewer, product) is None:
-            del chosen[key]
-    return Cover(dict(sorted(chosen.items())))
+class _Side:
+    """One automaton with what is asked of it again and again."""
+
+    def __init__(self, dfa: Dfa) -> None:
+        self.dfa = dfa
+        self._classes: dict[int, int] = {}
+
+    @cached_property
+    def settled(self) -> frozenset[int]:
+        """The states that no character leads out of."""
+        return frozenset(
+            state
+            for state, row in enumerate(self.dfa.table)
+            if row[0] == state and row.count(state) == len(row)
+        )
+
+    @cached_property
+    def full(self) -> frozenset[int]:
+        """Those of them that accept."""
+        return frozenset(state for state in self.settled if self.dfa.accepting[state])
+
+    @cached_property
+    def left(self) -> list[int | None]:
+        return distances(self.dfa)
+
+    @cached_property
+    def shortest(self) -> Codes | None:
+        return shortest(self.dfa)
+
+    @cached_property
+    def samples(self) -> list[Codes]:
+        return list(dict.fromkeys(sample(self.dfa, 0, SAMPLES)))
+
+    def more_samples(self) -> list[Codes]:
+        return list(dict.fromkeys(sample(self.dfa, 1, MORE_SAMPLES)))
+
+    @cached_property
+    def canonical(self) -> Dfa:
+        return canonical(self.dfa)
+
+    def accepts(self, codes: Codes) -> bool:
+        """Stops as soon as the rest of the text makes no difference."""
+        table, settled, classes, state = self.dfa.table, self.settled, self._classes, 0
+        for code in codes:
+            if state in settled:
+                break
+            minterm = classes.get(code)
+            if minterm is None:
+                minterm = classes[code] = self.dfa.alphabet.classify(code)
+            state = table[state][minterm]
+        return self.dfa.accepting[state]
 
 
-def missing(first: Side, others: Sequence[Side], product: int) -> Codes | None:
-    """A shortest text of `one` that none of the others takes. Raises LimitReached("product")."""
-    left, one = first.left, first.dfa
-    if left[0] is None:
+class Rivals:
+    """Automata over one universe, by numbers, and how their languages lie to each other."""
+
+    def __init__(self, automata: Mapping[int, Dfa], product: int) -> None:
+        self._sides = {number: _Side(dfa) for number, dfa in automata.items()}
+        self._product = product
+        self._visited = 0
+        self._spreads: dict[int, list[int]] = {}
+
+    def shortest(self, one: int) -> Codes | None:
+        return self._sides[one].shortest
+
+    def is_universal(self, one: int) -> bool:
+        return all(self._sides[one].dfa.accepting)
+
+    def equal(self, one: int, other: int) -> bool:
+        a, b = self._sides[one], self._sides[other]
+        if len(a.dfa) != len(b.dfa) or a.left[0] != b.left[0]:
+            return False
+        if a.shortest is not None and not b.accepts(a.shortest):
+            return False
+        return a.canonical == b.canonical
+
+    def cover(self, one: int, others: Sequence[int]) -> Cover:
+        """Fewest others: one alone, where one is enough. Raises LimitReached("product")."""
+        sides = self._sides
+        first = sides[one]
+        word = first.shortest
+        if word is None:
+            return Cover()
+        alone = [each for each in others if sides[each].accepts(word)]
+        if not alone:
+            return Cover(None, word)
+        texts = [word]
+        for text in first.samples:
+            kept = [each for each in alone if sides[each].accepts(text)]
+            if not kept and not any(sides[each].accepts(text) for each in others):
+                return Cover(None, text)
+            alone = kept
+        while alone:
+            missed = self.missing(one, alone[:1])
+            if missed is None:
+                return Cover({alone[0]: word})
+            if not any(sides[each].accepts(missed) for each in others):
+                return Cover(None, missed)
+            texts.append(missed)
+            alone = [each for each in alone if sides[each].accepts(missed)]
+        return self._several(one, others, texts)
+
+    def _several(self, one: int, others: Sequence[int], texts: list[Codes]) -> Cover:
+        """As `cover`, where none is enough alone; `texts` of `one` are known to be taken.
+
+        All walks together visit at most `product` tuples, each counted as often as it has others.
+        """
+        sides = self._sides
+        for text in sides[one].more_samples():
+            if not any(sides[each].accepts(text) for each in others):
+                return Cover(None, text)
+        self._visited = 0
+        chosen: dict[int, Codes] = {}
+        while True:
+            for text in texts:
+                if not any(sides[each].accepts(text) for each in chosen):
+                    taker = next((each for each in others if sides[each].accepts(text)), None)
+                    if taker is None:
+                        return Cover(None, text)
+                    chosen[taker] = text
+            left = self.missing(one, list(chosen), again=True)
+            if left is None:
+                break
+            texts = [left]
+        for each in list(chosen):
+            fewer = [other for other in chosen if other != each]
+            if fewer and self.missing(one, fewer, again=True) is None:
+                del chosen[each]
+        return Cover(dict(sorted(chosen.items())))
+
+    def missing(self, one: int, others: Sequence[int], again: bool = False) -> Codes | None:
+        """A shortest text of `one` that none of the others takes. Raises LimitReached("product").
+
+        `again`: what was visited before counts as well.
+        """
+        self._visited = self._visited if again else 0
+        first = self._sides[one]
+        rest = [self._sides[each] for each in others]
+        full = [each.full for each in rest]
+        accepting = [each.dfa.accepting for each in rest]
+
+        def found(place: tuple[int, ...]) -> bool:
+            return first.dfa.accepting[place[0]] and not any(
+                ends[at] for ends, at in zip(accepting, place[1:], strict=True)
+            )
+
+        def hopeless(place: tuple[int, ...]) -> bool:
+            return first.left[place[0]] is None or any(
+                at in ends for at, ends in zip(place[1:], full, strict=True)
+            )
+
+        return self._walk([one, *others], found, hopeless)
+
+    def shared(self, one: int, other: int) -> Codes | None:
+        """A shortest text that both take. Raises LimitReached("product")."""
+        a, b = self._sides[one], self._sides[other]
+        self._visited = 0
+        return self._walk(
+            [one, other],
+            lambda place: a.dfa.accepting[place[0]] and b.dfa.accepting[place[1]],
+            lambda place: a.left[place[0]] is None or b.left[place[1]] is None,
+        )
+
+    def _walk(
+        self,
+        numbers: Sequence[int],
+        found: Callable[[tuple[int, ...]], bool],
+        hopeless: Callable[[tuple[int, ...]], bool],
+    ) -> Codes | None:
+        """Breadth-first over tuples of states: the text of the first that is `found`."""
+        tables = [self._sides[number].dfa.table for number in numbers]
+        start = (0,) * len(tables)
+        if hopeless(start):
+            return None
+        seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None] = {start: None}
+        order = [start]
+        moves: list[tuple[tuple[int, ...], int]] = []
+        for place in order:
+            if found(place):
+                codes: list[int] = []
+                step = seen[place]
+                while step is not None:
+                    codes.append(step[1])
+                    step = seen[step[0]]
+                return tuple(reversed(codes))
+            moves = moves or self._moves(numbers)
+            rows = [table[state] for table, state in zip(tables, place, strict=True)]
+            for minterms, letter in moves:
+                after = tuple([row[minterm] for row, minterm in zip(rows, minterms, strict=True)])
+                if after in seen:
+                    continue
+                seen[after] = (place, letter)
+                if not hopeless(after):
+                    order.append(after)
+                    self._visited += len(place) - 1
+                    if self._visited > self._product:
+                        raise LimitReached("product", self._product)
         return None
-    automata = [other.dfa for other in others]
-    moves = _moves(one, automata)
-    full = [frozenset(state for state in each.settled if each.dfa.accepting[state]) for each in others]
-    start = (0, *(0 for _ in others))
-    seen: dict[tuple[int, ...], tuple[tuple[int, ...], int] | None] = {start: None}
-    order = [start]
-    for place in order:
-        state, *rest = place
-        if one.accepting[state] and not any(
-            other.accepting[at] for other, at in zip(automata, rest, strict=True)
-        ):
-            codes: list[int] = []
-            step = seen[place]
-            while step is not None:
-                codes.append(step[1])
-                step = seen[step[0]]
-            return tuple(reversed(codes))
-        row = one.table[state]
-        rows = [other.table[at] for other, at in zip(automata, rest, strict=True)]
-        for letter, minterm, *minterms_of in moves:
-            target = row[minterm]
-            if left[target] is None:
-                continue
-            after = (target, *[each[number] for each, number in zip(rows, minterms_of, strict=True)])
-            if after in seen or any(at in ends for at, ends in zip(after[1:], full, strict=True)):
-                continue
-            if len(seen) >= product:
-                raise LimitReached("product", product)
-            seen[after] = (place, letter)
-            order.append(after)
-    return None
 
+    # letters
 
-def shared(first: Side, second: Side, product: int) -> Codes | None:
-    """A shortest text that both take. Raises LimitReached("product")."""
-    if first.left[0] is None or second.left[0] is None:
-        return None
-    one, two = first.dfa, second.dfa
-    seen: dict[tuple[int, int], tuple[tuple[int, int], int] | None] = {(0, 0): None}
-    order = [(0, 0)]
-    moves: list[tuple[int, ...]] = []
-    for place in order:
-        if one.accepting[place[0]] and two.accepting[place[1]]:
-            codes: list[int] = []
-            step = seen[place]
-            while step is not None:
-                codes.append(step[1])
-                step = seen[step[0]]
-            return tuple(reversed(codes))
-        moves = moves or _moves(one, [two])
-        row, other = one.table[place[0]], two.table[place[1]]
-        for letter, minterm, second_minterm in moves:
-            after = (row[minterm], other[second_minterm])
-            if after in seen or first.left[after[0]] is None or second.left[after[1]] is None:
-                continue
-            if len(seen) >= product:
-                raise LimitReached("product", product)
-            seen[after] = (place, letter)
-            order.append(after)
-    return None
+    @cached_property
+    def _points(self) -> list[int]:
+        """One character for each stretch in which no automaton tells characters apart; the readable ones first."""
+        points = set(_PLEASANT)
+        for side in self._sides.values():
+            points.update(side.dfa.alphabet.cuts)
+        end = min(
+            side.dfa.alphabet.classes[side.dfa.alphabet.owners[-1]].bounds[-1]
+            for side in self._sides.values()
+        )
+        far = len(_PLEASANT)
+        return sorted(
+            (point for point in points if point < end),
+            key=lambda point: (_PLEASANT.get(point, far), point < 161, point),
+        )
 
+    def _spread(self, number: int) -> list[int]:
+        """The minterm of each point."""
+        spread = self._spreads.get(number)
+        if spread is None:
+            alphabet = self._sides[number].dfa.alphabet
+            cuts, owners = alphabet.cuts, alphabet.owners
+            spread = self._spreads[number] = [owners[bisect_right(cuts, point) - 1] for point in self._points]
+        return spread
 
-def _moves(one: Dfa, others: Sequence[Dfa]) -> list[tuple[int, ...]]:
-    """For each minterm of all automata together a letter, and the minterm of each automaton; readable ones first."""
-    automata = (one, *others)
-    sets = tuple(dict.fromkeys(chars for each in automata for chars in each.alphabet.classes))
-    whole = CharSet((0, max(chars.bounds[-1] for chars in one.alphabet.classes)))
-    alphabet, _ = minterms(sets, whole, True)
-    rows = []
-    for chars in alphabet.classes:
-        first = chars.bounds[0]
-        rows.append((representative(chars), *(each.alphabet.classify(first) for each in automata)))
-    return sorted(rows, key=lambda row: letter_rank(row[0]))
+    def _moves(self, numbers: Sequence[int]) -> list[tuple[tuple[int, ...], int]]:
+        """What a character may do to the automata together, each with a letter that does it; readable ones first."""
+        columns = [self._spread(number) for number in numbers]
+        first: dict[tuple[int, ...], int] = {}
+        for minterms, point in zip(zip(*columns, strict=True), self._points, strict=True):
+            if minterms not in first:
+                first[minterms] = point
+        return list(first.items())

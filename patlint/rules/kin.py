@@ -16,7 +16,7 @@ from functools import cached_property
 
 from patlint.limits import LimitReached, Limits
 from patlint.machine.agreement import same_spans
-from patlint.machine.cover import Side, cover, missing, shared
+from patlint.machine.cover import Rivals
 from patlint.machine.determinise import subset_table
 from patlint.machine.dfa import Dfa, canonical, minimal
 from patlint.machine.nfa import Nfa
@@ -59,7 +59,6 @@ class Kin:
         self.subjects = [subject_of(member) for member in family.members]
         self.undecided: dict[int, str] = {}
         """Members of which a limit left a question open, with its name."""
-        self._sides: dict[tuple[int, int], Side | None] = {}
         self._verdicts: dict[int, Verdict | None] = {}
 
     def text(self, member: int, codes: Codes) -> str | bytes:
@@ -103,14 +102,8 @@ class Kin:
                 pass
         return False
 
-    def side(self, member: int, column: int) -> Side | None:
+    def _dfa(self, member: int, column: int) -> Dfa | None:
         """The automaton of a member in a column; None where it has none or a limit was reached."""
-        key = (member, column)
-        if key not in self._sides:
-            self._sides[key] = self._side(member, column)
-        return self._sides[key]
-
-    def _side(self, member: int, column: int) -> Side | None:
         subject = self.subjects[member]
         if subject is None or subject.parsed is None:
             return None
@@ -120,29 +113,41 @@ class Kin:
             if self.family.trials[trial].positioned and subject.nfa.trackers:
                 return None  # a look-behind sees more than the one character before
             if before is None:
-                return Side(subject.language(mode).dfa)
-            return Side(_language_after(subject.nfa, mode, before))
+                return subject.language(mode).dfa
+            return _language_after(subject.nfa, mode, before)
         except LimitReached as reached:
             self.undecided[member] = reached.limit
             return None
 
-    def _sides_of(self, member: int) -> list[Side] | None:
-        sides = []
-        for column in range(len(self._columns)):
-            side = self.side(member, column)
-            if side is None:
-                return None
-            sides.append(side)
-        return sides
+    @cached_property
+    def _dfas(self) -> dict[int, list[Dfa]]:
+        """The automata of each member, one for each column; members that lack one are left out."""
+        found = {}
+        for member in range(len(self.members)):
+            own = [self._dfa(member, column) for column in range(len(self._columns))]
+            whole = [dfa for dfa in own if dfa is not None]
+            if len(whole) == len(own):
+                found[member] = whole
+        return found
 
     @cached_property
-    def _takers(self) -> list[int]:
-        """The members that may take something for sure."""
-        return [
-            number
-            for number, member in enumerate(self.members)
-            if member.takes and self._sides_of(number) is not None and self._exact(number)
-        ]
+    def _rivals(self) -> dict[bool, list[Rivals]]:
+        """For bytes and for texts, the automata of each column."""
+        product = self.limits.product
+        return {
+            is_bytes: [
+                Rivals(
+                    {
+                        each: own[column]
+                        for each, own in self._dfas.items()
+                        if self._is_bytes(each) == is_bytes
+                    },
+                    product,
+                )
+                for column in range(len(self._columns))
+            ]
+            for is_bytes in (False, True)
+        }
 
     def _exact(self, member: int) -> bool:
         subject = self.subjects[member]
@@ -150,6 +155,16 @@ class Kin:
 
     def _is_bytes(self, member: int) -> bool:
         return isinstance(self.members[member].site.pattern, bytes)
+
+    @cached_property
+    def _takers(self) -> list[int]:
+        """The members that take something for sure where they match."""
+        return [each for each in self._dfas if self.members[each].takes and self._exact(each)]
+
+    def _earlier(self, member: int) -> list[int]:
+        """Those of them that stand before `member` and are asked about the same kind of text."""
+        is_bytes = self._is_bytes(member)
+        return [each for each in self._takers if each < member and self._is_bytes(each) == is_bytes]
 
     # questions
 
@@ -165,63 +180,36 @@ class Kin:
         return self._verdicts[member]
 
     def _verdict(self, member: int) -> Verdict | None:
-        sides = self._sides_of(member)
         subject = self.subjects[member]
-        if sides is None or subject is None or not sides:
+        earlier = self._earlier(member)
+        if not earlier or member not in self._dfas or not self._columns or subject is None:
             return None
-        if any(side.shortest is None for side in sides[:1]) or is_spelled_never(subject.pattern.root):
-            return None
-        earlier = [
-            each for each in self._takers if each < member and self._is_bytes(each) == self._is_bytes(member)
-        ]
-        if not earlier:
+        columns = self._rivals[self._is_bytes(member)]
+        shortest = columns[0].shortest(member)
+        if shortest is None or is_spelled_never(subject.pattern.root):
             return None
         takers: dict[int, Codes] = {}
-        for column, side in enumerate(sides):
-            if side.shortest is None:
-                continue
+        for rivals in columns:
             # Those that have taken texts in another column come first, so that few are named.
-            order = [*takers, *(each for each in earlier if each not in takers)]
-            others = {each: self._certain(each, column) for each in order}
-            found = cover(side, others, self.limits.product)
-            if found.takers is None:
+            found = rivals.cover(member, [*takers, *(each for each in earlier if each not in takers)])
+            if found.takers is None and found.text is not None:
                 return None
-            takers = found.takers | takers
-        catch_all = len(takers) == 1 and all(
-            all(side.dfa.accepting) for side in self._certain_of(next(iter(takers)))
-        )
-        twin = next((each for each in earlier if self._equal(each, member)), None)
+            takers = (found.takers or {}) | takers
+        exact = self._exact(member)
+        catch_all = len(takers) == 1 and all(rivals.is_universal(next(iter(takers))) for rivals in columns)
+        twin = None
+        if exact:
+            twin = next((each for each in earlier if all(r.equal(each, member) for r in columns)), None)
         if twin is not None:
-            shortest = sides[0].shortest
-            takers = {twin: () if shortest is None else shortest}
+            takers = {twin: shortest}
         step = self.members[member].step
-        shortest = sides[0].shortest
-        assert shortest is not None
         return Verdict(
             {each: self.text(member, codes) for each, codes in sorted(takers.items())},
             twin is not None,
             catch_all and twin is None,
             all(self.members[each].step == step for each in takers),
-            self.text(member, shortest) if self._exact(member) else None,
+            self.text(member, shortest) if exact else None,
         )
-
-    def _equal(self, one: int, other: int) -> bool:
-        """Whether two members match the same texts in every trial. Raises LimitReached."""
-        if not self._exact(other):
-            return False
-        pairs = list(zip(self._certain_of(one), self._certain_of(other), strict=True))
-        if any(len(a.dfa) != len(b.dfa) for a, b in pairs):
-            return False
-        product = self.limits.product
-        return all(missing(a, [b], product) is None and missing(b, [a], product) is None for a, b in pairs)
-
-    def _certain_of(self, member: int) -> list[Side]:
-        return [self._certain(member, column) for column in range(len(self._columns))]
-
-    def _certain(self, member: int, column: int) -> Side:
-        side = self.side(member, column)
-        assert side is not None
-        return side
 
     def overlaps(self, member: int, most: int) -> dict[int, str | bytes]:
         """Up to `most` earlier members that match some text which `member` matches, with such a text.
@@ -229,28 +217,24 @@ class Kin:
         Only texts that a trial may begin with, and not for `search`.
         """
         found: dict[int, str | bytes] = {}
-        subject = self.subjects[member]
+        if member not in self._dfas or not self._exact(member):
+            return found
         for column, (trial, before) in enumerate(self._columns):
-            side = self.side(member, column)
-            if before is not None or side is None or self.members[member].modes[trial] == "search":
+            if before is not None or self.members[member].modes[trial] == "search":
                 continue
-            if not self._exact(member) or side.shortest is None:
-                continue
-            for each in self._takers:
-                if each >= member or len(found) >= most:
+            rivals = self._rivals[self._is_bytes(member)][column]
+            for each in self._earlier(member):
+                if len(found) >= most:
                     break
                 if self.members[each].modes[trial] == "search" or each in found:
                     continue
-                if self._is_bytes(each) != self._is_bytes(member):
-                    continue
                 try:
-                    both = shared(side, self._certain(each, column), self.limits.product)
+                    both = rivals.shared(member, each)
                 except LimitReached as reached:
                     self.undecided[member] = reached.limit
                     continue
                 if both is not None:
-                    assert subject is not None
-                    found[each] = subject.text(both)
+                    found[each] = self.text(member, both)
         return found
 
     def twins(self) -> dict[int, int]:

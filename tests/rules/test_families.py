@@ -20,6 +20,7 @@ from patlint import lint_source
 from patlint.config import Settings
 from patlint.language import Language
 from patlint.limits import DEFAULT_LIMITS, Limits
+from patlint.machine.cover import Rivals
 from patlint.outcome import lint_module
 from patlint.placed import PlacedFinding
 from patlint.rules import check_family
@@ -271,17 +272,15 @@ def test_messages() -> None:
 
 def test_hundreds_of_members_need_few_comparisons(monkeypatch: pytest.MonkeyPatch) -> None:
     """Counted, not timed: a member that one text tells apart is not compared with any other."""
-    import patlint.machine.cover as cover
-
     calls = 0
-    missing = cover.missing
+    walk = Rivals._walk
 
     def counted(*given: Any) -> Any:
         nonlocal calls
         calls += 1
-        return missing(*given)
+        return walk(*given)
 
-    monkeypatch.setattr(cover, "missing", counted)
+    monkeypatch.setattr(Rivals, "_walk", counted)
     words = [f"{a}{b}{c}" for a in "abcdefg" for b in "hijklmn" for c in "opqrst"]
     members = [member(rf"{word}[0-9]+", "match", line) for line, word in enumerate(words, 1)]
     members.append(member("(?:abc|aho|bip)[0-9]{2}", "match", 999))

@@ -32,7 +32,7 @@ Made = TypeVar("Made")
 class Choices:
     """The rows that are taken at the moment."""
 
-    __slots__ = ("consulted", "_taken", "_sizes", "_open")
+    __slots__ = ("consulted", "_taken", "_sizes", "_open", "_alone")
 
     def __init__(self) -> None:
         self.consulted = 0
@@ -40,6 +40,7 @@ class Choices:
         self._taken: dict[Hashable, int] = {}
         self._sizes: dict[Hashable, int] = {}
         self._open = False
+        self._alone: set[Hashable] = set()
 
     def take(self, key: Hashable, size: int, reason: str) -> int:
         """The row of `key`, from 0 to `size` - 1. Errors: `Opaque(reason)` where none may be taken now."""
@@ -51,6 +52,13 @@ class Choices:
             known = self._taken[key] = 0
             self._sizes[key] = size
         return known
+
+    def take_alone(self, key: Hashable, size: int, reason: str) -> int:
+        """Like `take`, for what may not be combined: `Opaque(reason)` where another such key is taken."""
+        if any(other != key for other in self._alone & self._taken.keys()):
+            raise Opaque(reason)
+        self._alone.add(key)
+        return self.take(key, size, reason)
 
     def taken(self, key: Hashable) -> int | None:
         """The row of `key`, None where it was not asked for."""

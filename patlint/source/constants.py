@@ -13,6 +13,7 @@ from collections.abc import Sequence
 
 from patlint.source import calls, reasons
 from patlint.source.attributes import Attributes
+from patlint.source.branches import Branches
 from patlint.source.choices import Choices
 from patlint.source.engine import Engine
 from patlint.source.formatting import percent
@@ -51,6 +52,7 @@ class Constants:
         self.rows = Rows(self, index)
         self.helpers = Helpers(self, index)
         self.attributes = Attributes(self, index)
+        self.branches = Branches(self, index)
         self._steps = 0
         self._active: set[ast.AST] = set()
         self._known: dict[ast.AST, Value | Opaque] = {}
@@ -90,10 +92,7 @@ class Constants:
                     return percent(template, self.evaluate(node.right, scope, env, depth + 1))
                 raise Opaque(reasons.EXPRESSION)
             case ast.IfExp():
-                body = self.evaluate(node.body, scope, env, depth + 1)
-                if same(body, self.evaluate(node.orelse, scope, env, depth + 1)):
-                    return body
-                raise Opaque(reasons.EXPRESSION)
+                return self._one_or_other(node, scope, env, depth)
             case ast.NamedExpr():
                 return self.evaluate(node.value, scope, env, depth + 1)
             case ast.Tuple():
@@ -145,6 +144,19 @@ class Constants:
             case _:
                 raise Opaque(reasons.NOT_TEXT)
 
+    def _one_or_other(self, node: ast.IfExp, scope: Scope, env: Environment | None, depth: int) -> Value:
+        with self.choices.aside():
+            try:
+                body = self.evaluate(node.body, scope, env, depth + 1)
+                if same(body, self.evaluate(node.orelse, scope, env, depth + 1)):
+                    return body
+            except Opaque as opaque:
+                if opaque.reason == reasons.TOO_DEEP:
+                    raise
+        if env:
+            raise Opaque(reasons.EXPRESSION)
+        return self.evaluate(self.branches.way(node, scope), scope, env, depth + 1)
+
     # names
 
     def origin(self, node: ast.Name | ast.Attribute, scope: Scope) -> Item | None:
@@ -165,6 +177,10 @@ class Constants:
                 return self.helpers.argument(node.id, node, owner)
             if binding.kind == "import" and self.siblings is not None:
                 return Ready(self._imported(binding, node, scope))
+        elif owner is not None:
+            row = self.branches.chosen(node, scope)
+            if row is not None:
+                return row
         return self.rows.chosen(node, scope)
 
     def _imported(self, binding: Binding, node: ast.Name, scope: Scope) -> Value:

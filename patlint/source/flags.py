@@ -71,7 +71,10 @@ def evaluate_flags(node: ast.expr | None, scope: Scope, constants: Constants, de
 
 
 def _named(node: ast.Name | ast.Attribute, scope: Scope, constants: Constants, depth: int) -> int:
-    denoted = constants.engine.denotes(node, scope)
+    try:
+        denoted = constants.engine.denotes(node, scope)
+    except Opaque:  # a flag on one way, a number on another
+        denoted = None
     if denoted is not None:
         parts = denoted.split(".")
         if parts[:2] == ["re", "RegexFlag"] and len(parts) == 3:

@@ -49,8 +49,14 @@ class Helpers:
         self._inside: dict[ast.AST, Scope] = {}
         self._calls: dict[ast.AST, Calls] = {}
         self._reached: dict[tuple[ast.AST, ast.AST], bool] = {}
+        self._given_names: dict[Scope, frozenset[str]] = {}
         self._frames: dict[ast.AST, Environment] = {}
         self._depth = 0
+
+    @property
+    def inside(self) -> bool:
+        """A function is being called: its parameters have the values of that call."""
+        return self._depth > 0
 
     def outcome(self, call: ast.Call, scope: Scope, env: Environment | None, depth: int) -> Value:
         """What `call` returns, a function of this file being called. Errors: `Opaque`."""
@@ -93,7 +99,7 @@ class Helpers:
         number = self.constants.choices.take(function, size, reasons.PARAMETER)
         if number == len(calls.seen):
             raise Opaque(reasons.PARAMETER)
-        self._check_reached(read, function, owner, calls)
+        self._check_reached(read, function, owner)
         call, scope = calls.seen[number]
         return _parameter(name, call, scope, function, owner)
 
@@ -137,16 +143,27 @@ class Helpers:
             complete = False
         return Calls(tuple(found), complete)
 
-    def _check_reached(self, read: ast.AST, function: Function, owner: Scope, calls: Calls) -> None:
+    def _check_reached(self, read: ast.AST, function: Function, owner: Scope) -> None:
         """No condition on what the calls give stands before `read`."""
         known = self._reached.get((function, read))
         if known is None:
-            known = self._reached[function, read] = self._is_reached(read, function, owner, calls)
+            names = self.given_names(owner)
+            known = self._reached[function, read] = not depends_on(read, function, names, self.index, owner)
         if not known:
             raise Opaque(reasons.PARAMETER)
 
-    def _is_reached(self, read: ast.AST, function: Function, owner: Scope, calls: Calls) -> bool:
+    def given_names(self, owner: Scope) -> frozenset[str]:
+        """The parameters of a function for which one of its calls gives a constant."""
+        if owner not in self._given_names:
+            self._given_names[owner] = self._find_given(owner)
+        return self._given_names[owner]
+
+    def _find_given(self, owner: Scope) -> frozenset[str]:
         names = set()
+        function = owner.node
+        if not isinstance(function, (ast.FunctionDef, ast.Lambda)):
+            return frozenset()
+        calls = self.calls(function, owner)
         for name in owner.bindings:
             for call, scope in calls.seen:
                 try:
@@ -155,7 +172,7 @@ class Helpers:
                     continue
                 if _is_constant(row, self.constants):
                     names.add(name)
-        return not depends_on(read, function, frozenset(names), self.index, owner)
+        return frozenset(names)
 
     def _function(self, node: ast.expr, scope: Scope) -> tuple[Function, Scope]:
         """The one function that `node` stands for, and the scope that it is defined in."""

@@ -1,9 +1,11 @@
 """A file with its suggestions applied: what `patlint mend` shows and writes.
 
-`mended(data, path, settings)` takes the suggestions of a file's findings one by one. Each is written into the
-text (`patlint.rewrite.edits`), the text is read again from its bytes, and the change is kept only where
-nothing but the literals differs, the site is found again at its place with the suggested pattern, and every
-site whose pattern changed is proven to do the same. What is left as it was is told with a reason.
+`mended(data, path, settings)` takes the suggestions of a file's findings one by one, one for each site: shorter
+patterns, and such that match in less time. Each is written into the text (`patlint.rewrite.edits`), the text is
+read again from its bytes, and the change is kept only where nothing but the literals differs, the site is found
+again at its place with the suggested pattern, and every site whose pattern changed is proven to do the same.
+What is left as it was is told with a reason. That a pattern matches in less time was found for this very text,
+with these flags, in these uses, and is not asked again where they are found again.
 
 >>> from patlint.config import Settings
 >>> from patlint.target import running_target
@@ -100,16 +102,21 @@ def _mended(data: bytes, path: str, settings: Settings) -> Mended:
     now = data
     for finding in wanted:
         assert finding.suggestion is not None
+        touched = False
         try:
             number = _site_of(finding, module, claims)
+            if number is None:
+                continue
             current = read_module(now, path, settings.sinks)
+            touched = current.sites[number].pattern != module.sites[number].pattern
             claim = Claim(number, finding.suggestion.pattern, finding.suggestion.keeps)
             # Where a literal is shared, a part of the change may be done, or all of it.
             if current.sites[number].pattern != claim.pattern:
-                now = _applied(now, current, claim, settings)
+                now = _applied(now, current, (*claims.values(), claim), settings)
             claims[number] = claim
         except NoEdit as leave:
-            left_out.append(Left(finding.line, finding.column, str(leave)))
+            if not touched:  # else one of its literals was mended for another site, in another way
+                left_out.append(Left(finding.line, finding.column, str(leave)))
     made = tuple(claims[number] for number in sorted(claims))
     if made:
         unsure = unproven(data, now, path, made, settings)
@@ -149,18 +156,24 @@ def unproven(old: bytes, new: bytes, path: str, claims: tuple[Claim, ...], setti
     return None
 
 
-def _site_of(finding: PlacedFinding, module: Module, claims: dict[int, Claim]) -> int:
-    """The number of the site that a finding is about."""
+def _site_of(finding: PlacedFinding, module: Module, claims: dict[int, Claim]) -> int | None:
+    """The number of the site that a finding is about; None where it has its new pattern. Errors: `NoEdit`."""
+    done = False
     for number, site in enumerate(module.sites):
         place = site.place_of_span(*finding.span)
         here = (place.line, place.column) == (finding.line, finding.column)
-        if site.pattern == finding.pattern and number not in claims and here:
-            return number
+        if site.pattern == finding.pattern and here:
+            if number not in claims:
+                return number
+            done = True
+    if done:
+        return None
     raise NoEdit("its place is not found")
 
 
-def _applied(data: bytes, module: Module, claim: Claim, settings: Settings) -> bytes:
-    """`data` with one claim made true. Errors: `NoEdit`."""
+def _applied(data: bytes, module: Module, claims: tuple[Claim, ...], settings: Settings) -> bytes:
+    """`data` with the last of the claims made true, as the others are. Errors: `NoEdit`."""
+    claim = claims[-1]
     site = module.sites[claim.number]
     if site.name is not None and _reads_pattern(module, site.name):
         raise NoEdit(f"the program reads {site.name}.pattern")
@@ -175,7 +188,7 @@ def _applied(data: bytes, module: Module, claim: Claim, settings: Settings) -> b
             new = apply(file.text, edits).encode(module.encoding)
         except UnicodeEncodeError:
             continue
-        found = unproven(data, new, module.path, (claim,), settings)
+        found = unproven(data, new, module.path, claims, settings)
         if found is None:
             return new
         reason = found

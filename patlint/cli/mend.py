@@ -20,8 +20,9 @@ def parser() -> Parser:
     made = Parser(
         "mend",
         "[OPTIONS] [PATHS ...]",
-        "Put proven shorter equivalents in the place of patterns. Shows a unified diff and\n"
-        "changes nothing, unless --write is given. Only string literals are edited.",
+        "Put what is suggested and proven in the place of patterns: shorter equivalents, and\n"
+        "such that match in less time. Shows a unified diff and changes nothing, unless\n"
+        "--write is given. Only string literals are edited.",
         "exit status: 0 nothing to mend, or written; 1 a diff was shown; 2 a wrong call or\n"
         "configuration, or a file that could not be read, parsed or written\n\n"
         "Each file is read again after it was written, and put back where what was proven\n"
@@ -161,5 +162,12 @@ def _summary(count: _Count, written: bool) -> str:
     else:
         patterns = f"{count.patterns} pattern{'s' * (count.patterns != 1)}"
         files = f"{count.files} file{'s' * (count.files != 1)}"
-        said = f"{patterns} in {files} {'mended' if written else 'to mend'}, {count.saved} bytes shorter"
+        said = f"{patterns} in {files} {'mended' if written else 'to mend'}, {_saved(count.saved)}"
     return f"{said}; {count.left} left as they were, {count.errors} errors"
+
+
+def _saved(size: int) -> str:
+    """What the files lose, in words."""
+    if not size:
+        return "no longer and no shorter"
+    return f"{abs(size)} byte{'s' * (abs(size) != 1)} {'shorter' if size > 0 else 'longer'}"

@@ -68,6 +68,8 @@ def check_site(
             continue
         if found:
             quiet |= SILENCES.get(rule.name, frozenset())
+            if rule.name in _WAYS_OUT and any(each.suggestion is not None for each in found):
+                quiet.add("shorter-equivalent")
             findings += found
     inexact: tuple[str, ...] = ()
     if subject.parsed is not None:
@@ -115,5 +117,7 @@ def check_family(
     return CheckedFamily(tuple(findings), undecided)
 
 
+_WAYS_OUT = frozenset({"exponential-ambiguity", "polynomial-ambiguity"})
+"""What one of these suggests is the one pattern to take, though a shorter one may be known."""
 _FIRST = frozenset({"invalid-pattern", "swallowed-escape"})
 """Rules about what the author meant to write come before those about what was written."""

@@ -267,6 +267,51 @@ def test_configuration_waivers_and_only(patlint: Patlint, tmp_path: Path) -> Non
     assert patlint("mend", "--only", "shorter", "a.py").status == 2
 
 
+SLOW = call("'(?:a*)*b'")
+SLOWER = "import re\nassert re.match('(?:a*)*b', input())\nassert re.match('(?:c|d)+e', input())\n"
+
+
+def test_what_is_quicker_is_applied_too(patlint: Patlint, tmp_path: Path) -> None:
+    """One change for each pattern, and a longer file is said to be longer."""
+    file = tmp_path / "a.py"
+    for only, after in (
+        ((), SLOWER.replace("(?:a*)*b", "a*b").replace("(?:c|d)+", "[cd]+")),
+        (("--only", "exponential-ambiguity"), SLOWER.replace("(?:a*)*b", "a*b")),
+        (("--only", "shorter-equivalent"), SLOWER.replace("(?:a*)*b", "a*b").replace("(?:c|d)+", "[cd]+")),
+        (("--only", "polynomial-ambiguity"), SLOWER),
+    ):
+        file.write_text(SLOWER, encoding="utf-8")
+        assert patlint("mend", "--write", *only, "a.py").status == 0
+        assert file.read_text(encoding="utf-8") == after
+    file.write_text(SLOW, encoding="utf-8")
+    ran = patlint("mend", "a.py")
+    assert ran.err == "1 pattern in 1 file to mend, 5 bytes shorter; 0 left as they were, 0 errors\n"
+    file.write_text(call(r"r'\s*,?\s*='"), encoding="utf-8")
+    ran = patlint("mend", "--write", "--target", "3.10", "a.py")
+    assert ran.err == "1 pattern in 1 file mended, 4 bytes longer; 0 left as they were, 0 errors\n"
+    assert file.read_text(encoding="utf-8") == call(r"r'\s*(?:,\s*)?='")
+
+
+def test_waived_ambiguity_is_not_mended(patlint: Patlint, tmp_path: Path) -> None:
+    waiver = "  # patlint: waive exponential-ambiguity, shorter-equivalent -- twenty characters at most"
+    (tmp_path / "a.py").write_text(call("'(?:a*)*b'", waiver), encoding="utf-8")
+    ran = patlint("mend", "--write", "a.py")
+    assert (ran.status, ran.err) == (0, "nothing to mend; 0 left as they were, 0 errors\n")
+    assert (tmp_path / "a.py").read_text(encoding="utf-8") == call("'(?:a*)*b'", waiver)
+
+
+def test_two_ideas_for_one_text_are_one_change() -> None:
+    """Two sites read it, and what is best for one is not what is best for the other; nothing is said of that."""
+    source = (
+        "import re\n_R = '(?:x|y)a*a*'\nif re.fullmatch(_R, input()): pass\nif re.match(_R, input()): pass\n"
+    )
+    rules = ("exponential-ambiguity", "polynomial-ambiguity", "shorter-equivalent")
+    made = mended(source.encode(), "x.py", Settings(running_target(), rules))
+    assert (made.left, made.problems) == ((), ())
+    assert made.data.decode() == source.replace("(?:x|y)a*a*", "[xy]a*")
+    assert len(made.claims) in (1, 2)
+
+
 def test_standard_input(patlint: Patlint, monkeypatch: pytest.MonkeyPatch) -> None:
     source = call("'(?:a|b)+c'")
     ran = patlint("mend", "--as", "x/y.py", "-", stdin=source)

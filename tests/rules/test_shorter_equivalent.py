@@ -4,7 +4,10 @@ from __future__ import annotations
 
 import pytest
 
+from patlint.limits import DEFAULT_LIMITS
+from patlint.rules import check_site
 from patlint.run import lint_source
+from patlint.source import find_patterns
 
 # Lines after the pattern P, and the suggestion. Source: written for this test.
 USES = [
@@ -34,3 +37,14 @@ def test_what_is_joined_from_constants_is_not_merged() -> None:
     assert not [each for each in lint_source(source) if each.rule == "shorter-equivalent"]
     side_by_side = "import re\n_P = re.compile('(?:a' '|b)+x')\n_P.match(input())\n"
     assert [each.rule for each in lint_source(side_by_side)] == ["shorter-equivalent"]
+
+
+def test_one_pattern_is_suggested() -> None:
+    """Where time can be saved, that pattern is the one to take; where that rule is off, the shorter one is."""
+    source = "import re\nif re.match('(?:a*)*b', input()): pass\n"
+    found = [(each.rule, each.suggestion and each.suggestion.pattern) for each in lint_source(source)]
+    assert found == [("exponential-ambiguity", "a*b")]
+    alone = check_site(
+        find_patterns(source)[0], None, DEFAULT_LIMITS, frozenset({"shorter-equivalent"})
+    ).findings
+    assert [each.suggestion and each.suggestion.pattern for each in alone] == ["a*b"]

@@ -106,6 +106,7 @@ def _plain(settings: Settings) -> tuple[object, ...]:
         settings.target,
         settings.rules,
         settings.limits,
+        settings.saving,
         sorted(settings.only),
         sorted(settings.skip),
         settings.levels,

@@ -12,6 +12,7 @@ wrong type or an unknown rule is a `ConfigError` that names the file, the key an
     ledger = "patlint.ledger"       # known findings, left out of the report
     levels = { nullable = "error", overlapping-siblings = "note", shorter-equivalent = "off" }
     limits = { states = 5000 }
+    shorter = { characters = 2, percent = 10 }
     sinks = { "terminal.text.expect" = { argument = 0, mode = "search" }, "pytest.raises" = false }
     per-path = { "tests/**" = { skip = ["nullable"], levels = { final-newline = "off" } } }
 
@@ -29,7 +30,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any, Final, Literal, TypeAlias
 
 from patlint.globs import fits
-from patlint.limits import DEFAULT_LIMITS, Limits
+from patlint.limits import DEFAULT_LIMITS, DEFAULT_SAVING, Limits, Saving
 from patlint.nearest import nearest
 from patlint.target import Target, lowest_target, running_target, target_named, unknown_target
 
@@ -55,6 +56,7 @@ _KEYS: Final = (
     "ledger",
     "levels",
     "limits",
+    "shorter",
     "sinks",
     "per-path",
 )
@@ -84,6 +86,7 @@ class Settings:
     rules: tuple[str, ...]
     root: str | None = None
     limits: Limits = DEFAULT_LIMITS
+    saving: Saving = DEFAULT_SAVING
     fail_on: FailOn = DEFAULT_FAIL_ON
     only: frozenset[str] = frozenset()
     skip: frozenset[str] = frozenset()
@@ -243,6 +246,8 @@ def _checked(settings: Settings, table: dict[str, Any], path: str) -> Settings:
         changes["levels"] = check.level_table(table["levels"], "levels")
     if "limits" in table:
         changes["limits"] = check.limits(table["limits"])
+    if "shorter" in table:
+        changes["saving"] = check.saving(table["shorter"])
     if "sinks" in table:
         changes["sinks"] = check.sinks(table["sinks"])
     if "per-path" in table:
@@ -315,6 +320,21 @@ class _Checker:
                 raise self.wrong(f"limits.{name}", f"must be a whole number above 0, not {_kind(number)}")
             changes[name] = number
         return replace(DEFAULT_LIMITS, **changes)
+
+    def saving(self, value: object) -> Saving:
+        """What a shorter pattern has to save: at least one character, and at most all of them."""
+        most = {"characters": None, "percent": 100}
+        changes: dict[str, int] = {}
+        for name, number in self.table(value, "shorter").items():
+            if name not in most:
+                raise self.wrong("shorter", f"has an unknown key {name}{nearest(name, list(most))}")
+            least, high = int(name == "characters"), most[name]
+            whole = isinstance(number, int) and not isinstance(number, bool)
+            if not whole or number < least or (high is not None and number > high):
+                allowed = f"from {least} to {high}" if high is not None else f"above {least - 1}"
+                raise self.wrong(f"shorter.{name}", f"must be a whole number {allowed}, not {_kind(number)}")
+            changes[name] = number
+        return replace(DEFAULT_SAVING, **changes)
 
     def sinks(self, value: object) -> SinkTable:
         from patlint.source.sinks_config import SinkError, sink_table

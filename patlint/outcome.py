@@ -206,7 +206,7 @@ def _check(
 
     line, column = site.place.line, site.place.column
     try:
-        checked = check_site(site, settings.target, settings.limits, enabled, subjects)
+        checked = check_site(site, settings.target, settings.limits, enabled, subjects, settings.saving)
         flags = site_flag_names(site, settings.target) if checked.findings else ()
         for finding in checked.findings:
             level = _level(finding.rule, finding.level, levels)

@@ -10,7 +10,7 @@ import pytest
 import patlint.cache as cache
 from patlint.cache import FOLDER, fetch, fingerprint, folder_of, key_of, store
 from patlint.config import PathSettings, Settings
-from patlint.limits import Limits
+from patlint.limits import Limits, Saving
 from patlint.outcome import Outcome
 from patlint.placed import PlacedFinding
 
@@ -88,6 +88,8 @@ def test_what_changes_the_fingerprint(monkeypatch: pytest.MonkeyPatch, tmp_path:
         replace(SETTINGS, target=(3, 11)),
         replace(SETTINGS, rules=("nullable", "empty-language")),
         replace(SETTINGS, limits=Limits(states=7)),
+        replace(SETTINGS, saving=Saving(2, 11)),
+        replace(SETTINGS, saving=Saving(3, 10)),
         replace(SETTINGS, only=frozenset({"nullable"})),
         replace(SETTINGS, skip=frozenset({"nullable"})),
         replace(SETTINGS, levels=(("nullable", "error"),)),

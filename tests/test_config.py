@@ -9,7 +9,7 @@ import pytest
 
 from patlint.config import ConfigError, Settings, load
 from patlint.globs import fits
-from patlint.limits import Limits
+from patlint.limits import Limits, Saving
 from patlint.nearest import nearest
 from patlint.source.sinks import ENGINE, Sink
 from patlint.source.sinks_builtin import BUILTIN
@@ -34,12 +34,14 @@ def test_every_key(tmp_path: Path) -> None:
         exclude = ["vendor"]
         levels = { empty-language = "note" }
         limits = { states = 7 }
+        shorter = { percent = 0 }
         per-path = { "tests/**" = { skip = ["empty-language"], levels = { nullable = "off" } } }
         """,
     )
     assert settings.target == (3, 12)
     assert settings.fail_on == "error"
     assert settings.limits == Limits(states=7)
+    assert settings.saving == Saving(2, 0)
     assert settings.root == str(tmp_path)
     assert settings.for_path(str(tmp_path / "a.py")) == (
         frozenset({"empty-language"}),
@@ -92,6 +94,19 @@ REFUSED = [
     ("limits = { stats = 1 }", "limits has an unknown key stats; the nearest is states"),
     ("limits = { states = 0 }", "limits.states must be a whole number above 0, not the number 0"),
     ("limits = { states = true }", "limits.states must be a whole number above 0, not true"),
+    ("shorter = { chars = 1 }", "shorter has an unknown key chars; the nearest is characters"),
+    ("shorter = { characters = 0 }", "shorter.characters must be a whole number above 0, not the number 0"),
+    ("shorter = { characters = true }", "shorter.characters must be a whole number above 0, not true"),
+    (
+        "shorter = { percent = 101 }",
+        "shorter.percent must be a whole number from 0 to 100, not the number 101",
+    ),
+    ("shorter = { percent = -1 }", "shorter.percent must be a whole number from 0 to 100, not the number -1"),
+    (
+        "shorter = { percent = 0.5 }",
+        "shorter.percent must be a whole number from 0 to 100, not the number 0.5",
+    ),
+    ("shorter = 2", "shorter must be a table, not the number 2"),
     ("limits = { states = 1.5 }", "limits.states must be a whole number above 0, not the number 1.5"),
     ("per-path = { a = 1 }", "per-path.'a' must be a table, not the number 1"),
     ("per-path = { a = { skp = [] } }", "per-path.'a' has an unknown key skp; the nearest is skip"),

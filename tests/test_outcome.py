@@ -60,7 +60,7 @@ def module(sites: list[Site], waivers: list[Waiver] | None = None) -> Module:
 def one_finding_of_each_rule(monkeypatch: pytest.MonkeyPatch) -> None:
     """`check_site` finds each enabled rule but stale-waiver, in every pattern that holds its first letter."""
 
-    def check(site: Site, target: object, limits: object, enabled: frozenset[str], _: object) -> Checked:
+    def check(site: Site, target: object, limits: object, enabled: frozenset[str], *_: object) -> Checked:
         if site.pattern == "boom":
             raise ValueError("no\nluck")
         names = [name for name in RULES[:-1] if name in enabled and name[0] in str(site.pattern)]

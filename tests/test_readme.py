@@ -16,7 +16,7 @@ import pytest
 
 from patlint.cli.main import COMMANDS
 from patlint.config import _KEYS, load
-from patlint.limits import DEFAULT_LIMITS
+from patlint.limits import DEFAULT_LIMITS, DEFAULT_SAVING
 from patlint.rules.registry import RULES
 
 ROOT = Path(__file__).resolve().parent.parent
@@ -117,6 +117,7 @@ def test_configuration_is_read_and_complete(tmp_path: Path) -> None:
     settings = load(NAMES, start=tmp_path)
     assert settings.target == (3, 11)
     assert asdict(settings.limits) == asdict(DEFAULT_LIMITS)
+    assert settings.saving == DEFAULT_SAVING
     assert [key for key in _KEYS if not re.search(rf"(?m)^(?:\[tool\.patlint\.)?{key}\b", body)] == []
 
 

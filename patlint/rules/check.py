@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from patlint.limits import LimitReached, Limits
+from patlint.limits import DEFAULT_SAVING, LimitReached, Limits, Saving
 from patlint.rules.finding import Finding
 from patlint.rules.kin import Kin
 from patlint.rules.registry import RULES, SILENCES
@@ -38,15 +38,16 @@ def check_site(
     limits: Limits,
     enabled: frozenset[str],
     subjects: Subjects | None = None,
+    saving: Saving = DEFAULT_SAVING,
 ) -> Checked:
     """What the `enabled` rules say of `site`. A limit silences the rule that meets it and no other.
 
-    `subjects` keeps the subject for `check_family`.
+    `subjects` keeps the subject for `check_family`; `saving` is the least that a shorter pattern has to save.
     """
     findings: list[Finding] = []
     undecided: dict[str, None] = {}
     try:
-        subject = Subject(site, target, limits)
+        subject = Subject(site, target, limits, saving)
     except LimitReached as reached:
         return Checked((), (), (reached.limit,))
     if subjects is not None:

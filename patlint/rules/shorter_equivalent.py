@@ -58,7 +58,13 @@ def _proposal(subject: Subject, modes: set[Mode], keeps: Keeps) -> Proposal | No
     # The same language in one mode says nothing about another; the same spans in search do.
     for kept in dict.fromkeys((keeps, "spans" if len(modes) > 1 and keeps == "language" else keeps)):
         found = suggest(
-            subject.pattern, mode, kept, subject.target, subject.limits, fences=fences(subject.site)
+            subject.pattern,
+            mode,
+            kept,
+            subject.target,
+            subject.limits,
+            saving=subject.saving,
+            fences=fences(subject.site),
         )
         if found is not None:
             new = parse(found.pattern, subject.site.flags, subject.target, subject.limits)

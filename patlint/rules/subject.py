@@ -12,7 +12,7 @@ from functools import cached_property
 from typing import TypeVar, cast
 
 from patlint.language import Language
-from patlint.limits import LimitReached, Limits
+from patlint.limits import DEFAULT_SAVING, LimitReached, Limits, Saving
 from patlint.machine.dfa import Dfa
 from patlint.machine.matcher import Matcher
 from patlint.machine.nfa import Nfa
@@ -29,11 +29,14 @@ Answer = TypeVar("Answer")
 class Subject:
     """`site` for the target version; `parsed` is None where `re` refuses the pattern (`error` says why)."""
 
-    def __init__(self, site: Site, target: tuple[int, int] | None, limits: Limits) -> None:
+    def __init__(
+        self, site: Site, target: tuple[int, int] | None, limits: Limits, saving: Saving = DEFAULT_SAVING
+    ) -> None:
         """Raises LimitReached("nesting")."""
         self.site = site
         self.target = target
         self.limits = limits
+        self.saving = saving
         self.error: PatternError | None = None
         self.parsed: t.Pattern | None = None
         try:

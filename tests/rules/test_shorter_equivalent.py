@@ -2,10 +2,15 @@
 
 from __future__ import annotations
 
+from pathlib import Path
+
 import pytest
 
+from patlint.config import load
 from patlint.limits import DEFAULT_LIMITS
+from patlint.outcome import lint_bytes
 from patlint.rules import check_site
+from patlint.rules.registry import NAMES
 from patlint.run import lint_source
 from patlint.source import find_patterns
 
@@ -48,3 +53,23 @@ def test_one_pattern_is_suggested() -> None:
         find_patterns(source)[0], None, DEFAULT_LIMITS, frozenset({"shorter-equivalent"})
     ).findings
     assert [each.suggestion and each.suggestion.pattern for each in alone] == ["a*b"]
+
+
+@pytest.mark.parametrize(
+    ("table", "found"),
+    [
+        ("", True),  # it saves 3 of 24 characters
+        ("shorter = { characters = 3 }", True),
+        ("shorter = { characters = 4 }", False),
+        ("shorter = { percent = 12 }", True),
+        ("shorter = { percent = 13 }", False),
+        ("shorter = { characters = 1, percent = 0 }", True),
+    ],
+)
+def test_the_least_saving_is_configured(tmp_path: Path, table: str, found: bool) -> None:
+    (tmp_path / "pyproject.toml").write_text(f"[tool.patlint]\n{table}\n", encoding="utf-8")
+    settings = load(NAMES, start=tmp_path)
+    outcome = lint_bytes(
+        b"import re\nif re.match('(?:a|b)cdefghijklmnopqrst', input()): pass\n", "x.py", settings
+    )
+    assert [each.rule for each in outcome.findings] == ["shorter-equivalent"] * found

@@ -72,6 +72,10 @@ class Sink:
     """The pattern selects, so that one which takes everything may be meant."""
     decorator: bool = False
     """For a method: only where its call decorates a function or class."""
+    narrows: bool = False
+    """The pattern narrows what is tested in another way already: spelled as everything (`.*`), it is meant so."""
+    elsewhere: bool = False
+    """Another engine than `re` may get the pattern as well: one that `re` refuses is for that engine."""
     case: Where = ()
     """An argument that stands for IGNORECASE where it is False."""
     regex: Where = ()

@@ -37,6 +37,7 @@ def _unittest() -> Iterator[Sink]:
             method=(method,),
             seen=True,
             own=True,
+            narrows="Raises" in method or "Warns" in method,
         )
 
 
@@ -71,7 +72,7 @@ def _standard() -> Iterator[Sink]:
 
 def _pytest() -> Iterator[Sink]:
     for name in ("raises", "warns", "deprecated_call", "RaisesExc", "RaisesGroup"):
-        yield Sink(f"pytest.{name}", ("match",), "search", "truth", seen=True, own=True)
+        yield Sink(f"pytest.{name}", ("match",), "search", "truth", seen=True, own=True, narrows=True)
     yield Sink(
         "pytest.raises",
         (0, "regexp"),
@@ -86,7 +87,7 @@ def _pytest() -> Iterator[Sink]:
 
 def _numpy() -> Iterator[Sink]:
     for name in ("numpy.testing.assert_raises_regex",):
-        yield Sink(name, (1, "expected_regexp"), "search", "truth", seen=True, own=True)
+        yield Sink(name, (1, "expected_regexp"), "search", "truth", seen=True, own=True, narrows=True)
 
 
 def _django() -> Iterator[Sink]:
@@ -253,6 +254,7 @@ def _pandas() -> Iterator[Sink]:
             method=("str", method),
             needs=("pandas",),
             selects=True,
+            elsewhere=True,
             case=case or (),
             regex={"contains": (4, "regex"), "replace": (5, "regex"), "split": ("regex",)}.get(method, ()),
             regex_default={"replace": False, "split": "long"}.get(method, True),  # type: ignore[arg-type]

@@ -34,6 +34,9 @@ _PIECE = re.compile(r"\{[_a-zA-Z][_a-zA-Z0-9]*:(.+)\}", re.DOTALL)
 _IGNORECASE = 2
 _MOST_ROWS = 2_000
 
+EVERYTHING = (".*", "(?s).*", ".*?")
+"""What everybody reads as "any text"."""
+
 Locate = Callable[[ast.expr, Scope, Spelled], tuple[Place, int]]
 
 
@@ -444,14 +447,14 @@ class SinkReader:
     def _refuse(self, node: ast.expr, sink: Sink, reason: str) -> None:
         self.unresolved.append(Unresolved(self.path, self.text.place(node), sink.name, reason))
 
-    def _use(self, sink: Sink, function: Function, place: Place) -> Use:
+    def _use(self, sink: Sink, function: Function, place: Place, everything: bool = False) -> Use:
         return Use(
             function,
             sink.looks_at,
             place,
             positioned=sink.kind == "rows" and sink.name == SCANNER,
             own=sink.own,
-            selects=sink.selects,
+            selects=sink.selects or (sink.narrows and everything),
         )
 
     def _site(
@@ -477,6 +480,10 @@ class SinkReader:
         ):
             self._refuse(argument, sink, PART)
             return
+        if sink.elsewhere and _is_refused(pattern.value, flags):
+            self._refuse(argument, sink, ENGINE)
+            return
+        everything = pattern.value in EVERYTHING
         place, statement = self.locate(argument, scope, pattern)
         self.sites.append(
             Site(
@@ -487,7 +494,7 @@ class SinkReader:
                 place=place,
                 statement=statement,
                 pieces=pattern.pieces(),
-                uses=(self._use(sink, function, call),) if function is not None else (),
+                uses=() if function is None else (self._use(sink, function, call, everything),),
                 uses_seen=function is not None and sink.seen,
                 embedded=sink.embedded or part,
             )
@@ -509,6 +516,17 @@ def pick(call: ast.Call, where: Where) -> tuple[ast.expr | None, bool]:
                     return keyword.value, False
             loose |= any(keyword.arg is None for keyword in call.keywords)
     return None, loose
+
+
+def _is_refused(pattern: str | bytes, flags: int) -> bool:
+    """Whether `re` of the newest Python refuses the pattern."""
+    try:
+        parse(pattern, flags, (3, 13))
+    except PatternError:
+        return True
+    except LimitReached:
+        pass
+    return False
 
 
 def _sets_flags(pattern: str | bytes, flags: int) -> bool:

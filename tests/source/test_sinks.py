@@ -254,6 +254,7 @@ UNRESOLVED = (
     ("import regex\nregex.compile('a')", "regex.compile", ENGINE),
     ("import regex as re\nre.match('a', s)", "regex.match", ENGINE),
     ("import polars as pl\ncol.str.contains('a')", "polars.Series.str.contains", ENGINE),
+    (PANDAS + r"s.str.contains(r'\p{Lu}')", "pandas.Series.str.contains", ENGINE),
     ("import pandas, polars\ncol.str.contains('a')", "polars.Series.str.contains", ENGINE),
     ("from pydantic import Field\nField(pattern='a')", "pydantic.Field", ENGINE),
     ("from fastapi import Query\nQuery(None, pattern='a')", "fastapi.Query", ENGINE),
@@ -330,6 +331,9 @@ def test_rows_of_a_loop_are_seen_one_by_one() -> None:
 # What the rules say: source -> (rule, level)
 SAID = (
     (UNITTEST + "self.assertRegex(text, '.*')", [("vacuous-test", "error")]),
+    (UNITTEST + "self.assertRaisesRegex(E, 'a*')", [("vacuous-test", "error")]),
+    (UNITTEST + "self.assertRaisesRegex(E, '.*')", []),
+    ("import pytest\npytest.raises(E, match='.*')", []),
     (UNITTEST + "self.assertRegex(text, 'x$y')", [("empty-language", "error")]),
     (UNITTEST + r"self.assertRegex(text, r'(a+)+\Z')", [("exponential-ambiguity", "note")]),
     (UNITTEST + r"self.assertRegex(text, r'[ab]*[bc]*[cd]*;')", []),

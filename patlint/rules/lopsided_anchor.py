@@ -6,7 +6,7 @@ alone. That this was not meant is likely, not certain; certain is only what the 
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from dataclasses import replace
 
 from patlint.language import Language
@@ -24,9 +24,7 @@ _LONGEST = 60
 
 
 def check(subject: Subject) -> Iterator[Finding]:
-    root = subject.pattern.root
-    while isinstance(root, t.Group) and not (root.add_flags or root.del_flags):
-        root = root.body
+    root = _whole(subject.pattern.root)
     if not isinstance(root, t.Alternation):
         return
     for mode, use in _asked(subject):
@@ -43,6 +41,21 @@ def check(subject: Subject) -> Iterator[Finding]:
             continue
         yield _finding(subject, root, mode, use, sides, text)
         return
+
+
+def _whole(root: t.Node) -> t.Node:
+    """The pattern without groups around all of it."""
+    while isinstance(root, t.Group) and not (root.add_flags or root.del_flags):
+        root = root.body
+    return root
+
+
+def looks_lopsided(pattern: t.Pattern, modes: Iterable[Mode]) -> bool:
+    """Whether a pattern has the form of which this rule speaks, in one of the modes."""
+    root = _whole(pattern.root)
+    return isinstance(root, t.Alternation) and any(
+        lopsided(root, mode) for mode in modes if mode != "fullmatch"
+    )
 
 
 def _asked(subject: Subject) -> list[tuple[Mode, Use | None]]:

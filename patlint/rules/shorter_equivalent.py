@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from patlint.rewrite.proof import holds
 from patlint.rewrite.shorten import Proposal, suggest
 from patlint.rules.finding import Example, Finding, Keeps, Rule, Suggestion
+from patlint.rules.lopsided_anchor import looks_lopsided
 from patlint.rules.subject import Subject
 from patlint.source.sites import SCANNING, Mode, Site
 from patlint.syntax.parser import parse
@@ -20,6 +21,9 @@ def check(subject: Subject) -> Iterator[Finding]:
     if proposal is None:
         return
     before, after = subject.site.pattern, proposal.pattern
+    new = parse(after, subject.site.flags, subject.target, subject.limits)
+    if looks_lopsided(new, modes) and not looks_lopsided(subject.pattern, modes):
+        return  # groups that say for which branch an anchor is meant
     start, end = changed_part(before, after)
     yield Finding(
         RULE.name,

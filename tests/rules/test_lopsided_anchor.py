@@ -96,6 +96,12 @@ def test_uses_that_are_not_seen() -> None:
     assert lint_source("import re\nSTATE = re.compile('in|out$')\n") == ()
 
 
+def test_the_form_that_is_advised_is_left_alone() -> None:
+    for pattern in ("(?:^ab)|cd|(?:ef$)", "ab|cd|(?:ef$)"):
+        function = "search" if "^" in pattern else "match"
+        assert lint_source(f"import re\nok = re.{function}({pattern!r}, s) is None\n") == ()
+
+
 def test_random_alternations_against_re() -> None:
     generator = random.Random(20260202)
     told = 0

@@ -13,6 +13,8 @@ from patlint.config import PathSettings, Settings
 from patlint.limits import Limits, Saving
 from patlint.outcome import Outcome
 from patlint.placed import PlacedFinding
+from patlint.source.sinks import SinkTable
+from patlint.source.sinks_builtin import BUILTIN
 
 SETTINGS = Settings((3, 12), ("nullable",), root=".")
 OUTCOME = Outcome("dock.py", (PlacedFinding("nullable", "note", "dock.py", 1, 2, 3, 4, "m", "\ud800"),), 7)
@@ -94,6 +96,8 @@ def test_what_changes_the_fingerprint(monkeypatch: pytest.MonkeyPatch, tmp_path:
         replace(SETTINGS, skip=frozenset({"nullable"})),
         replace(SETTINGS, levels=(("nullable", "error"),)),
         replace(SETTINGS, per_path=(PathSettings("a"),)),
+        replace(SETTINGS, sinks=SinkTable(())),
+        replace(SETTINGS, sinks=SinkTable(BUILTIN)),
         replace(SETTINGS, per_path=(PathSettings("a", skip=frozenset({"nullable"})),)),
     ]
     assert len({fingerprint(each) for each in changes}) == len(changes)

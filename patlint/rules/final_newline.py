@@ -41,7 +41,8 @@ def check(subject: Subject) -> Iterator[Finding]:
         mode=use.mode,
         witness=TextWitness(text),
         evidence=f"on this text {use.function} succeeds, as it does without the line feed",
-        way_out=f"write {hard} in place of $, or take fullmatch in place of {use.function}",
+        way_out=f"write {hard} in place of $"
+        + ("" if "." in subject.site.function else f", or take fullmatch in place of {use.function}"),
         marks=tuple(other.span for other in others),
         related=used_here(subject, use),
         brief=True,

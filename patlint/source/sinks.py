@@ -72,6 +72,10 @@ class Sink:
     """The pattern selects, so that one which takes everything may be meant."""
     decorator: bool = False
     """For a method: only where its call decorates a function or class."""
+    validates: bool = False
+    """A text that is not taken is refused."""
+    inverted: Where = ()
+    """With `validates`: an argument, or attribute of the class, that turns the sense round where it is given."""
     narrows: bool = False
     """The pattern narrows what is tested in another way already: spelled as everything (`.*`), it is meant so."""
     elsewhere: bool = False

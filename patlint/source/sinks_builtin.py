@@ -106,6 +106,8 @@ def _django() -> Iterator[Sink]:
         "truth",
         flags_argument=(4, "flags"),
         seen=True,
+        validates=True,
+        inverted=(3, "inverse_match"),
     )
     yield Sink(
         "django.core.validators.RegexValidator",
@@ -114,9 +116,11 @@ def _django() -> Iterator[Sink]:
         "truth",
         flags_argument=("flags",),
         kind="attribute",
+        validates=True,
+        inverted=("inverse_match",),
     )
     for name in ("django.forms.RegexField", "django.forms.fields.RegexField"):
-        yield Sink(name, (0, "regex"), "search", "truth", seen=True)
+        yield Sink(name, (0, "regex"), "search", "truth", seen=True, validates=True)
 
 
 def _lookups() -> Iterator[Sink]:
@@ -285,9 +289,11 @@ def _validation() -> Iterator[Sink]:
             unless=(2, "func"),
         )
     for name in ("wtforms.validators.Regexp", "wtforms.validators.regexp"):
-        yield Sink(name, (0, "regex"), "match", "unknown", flags_argument=(1, "flags"))
+        yield Sink(name, (0, "regex"), "match", "truth", flags_argument=(1, "flags"), validates=True)
     for name in ("marshmallow.validate.Regexp",):
-        yield Sink(name, (0, "regex"), "match", "truth", flags_argument=(1, "flags"), seen=True)
+        yield Sink(
+            name, (0, "regex"), "match", "truth", flags_argument=(1, "flags"), seen=True, validates=True
+        )
 
 
 def _other_engines() -> Iterator[Sink]:

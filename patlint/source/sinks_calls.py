@@ -87,7 +87,8 @@ class SinkReader:
                 function = None if pick(call, sink.unless)[0] is not None else sink.function
                 if sink.embedded or sink.part or function is None:
                     return None, False
-                return self._use(sink, function, self.text.place(call)), sink.seen
+                sense = pick(call, sink.inverted) == (None, False)
+                return self._use(sink, function, self.text.place(call), validates=sense), sink.seen
         return None
 
     def _sinks_of(self, call: ast.Call, scope: Scope) -> list[Sink]:
@@ -315,6 +316,7 @@ class SinkReader:
         if self.constants.names.maker(argument, scope) is not None or self._taken_as_it_is(call, sink):
             return  # the site of a pattern object is where it is made
         known = pick(call, sink.unless) == (None, False)
+        sense = pick(call, sink.inverted) == (None, False)
         refused: str | None = None
         for pattern in self.constants.choices.each(lambda: self._told(argument, scope, sink, call)):
             if pattern is None:
@@ -323,7 +325,7 @@ class SinkReader:
                 if sink.kind == "route":
                     self._route(argument, scope, sink, pattern, call)
                 else:
-                    self._site(argument, scope, sink, pattern, flags, self.text.place(call), known)
+                    self._site(argument, scope, sink, pattern, flags, self.text.place(call), known, sense)
             elif pattern.reason != reasons.COMPILED:
                 refused = refused or pattern.reason
             elif not isinstance(argument, (ast.Name, ast.Attribute)):
@@ -430,7 +432,8 @@ class SinkReader:
             if opaque.reason != reasons.COMPILED:
                 self._refuse(value, sink, opaque.reason)
             return
-        self._site(value, inner, sink, pattern, flags, self.text.place(value))
+        sense = not any(isinstance(key, str) and inner.bindings.get(key) for key in sink.inverted)
+        self._site(value, inner, sink, pattern, flags, self.text.place(value), sense=sense)
 
     def _class_flags(self, inner: Scope, sink: Sink) -> int:
         if not sink.flags_argument:
@@ -447,7 +450,9 @@ class SinkReader:
     def _refuse(self, node: ast.expr, sink: Sink, reason: str) -> None:
         self.unresolved.append(Unresolved(self.path, self.text.place(node), sink.name, reason))
 
-    def _use(self, sink: Sink, function: Function, place: Place, everything: bool = False) -> Use:
+    def _use(
+        self, sink: Sink, function: Function, place: Place, everything: bool = False, validates: bool = True
+    ) -> Use:
         return Use(
             function,
             sink.looks_at,
@@ -455,6 +460,7 @@ class SinkReader:
             positioned=sink.kind == "rows" and sink.name == SCANNER,
             own=sink.own,
             selects=sink.selects or (sink.narrows and everything),
+            validates=sink.validates and validates,
         )
 
     def _site(
@@ -466,6 +472,7 @@ class SinkReader:
         flags: int,
         call: Place,
         known: bool = True,
+        sense: bool = True,
     ) -> None:
         function = sink.function if known else None
         part = sink.part
@@ -494,7 +501,7 @@ class SinkReader:
                 place=place,
                 statement=statement,
                 pieces=pattern.pieces(),
-                uses=() if function is None else (self._use(sink, function, call, everything),),
+                uses=() if function is None else (self._use(sink, function, call, everything, sense),),
                 uses_seen=function is not None and sink.seen,
                 embedded=sink.embedded or part,
             )

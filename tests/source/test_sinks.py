@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import compileall
 import itertools
+import pickle
 import re
 import sys
 import warnings
@@ -134,7 +135,7 @@ SEEN: tuple[tuple[str, str, int, str | None, str, bool, bool], ...] = (
     ("from attrs import validators\nvalidators.matches_re('a')", "a", 0, "fullmatch", "truth", True, False),
     ("import attr\nattr.validators.matches_re('a', 2)", "a", I, "fullmatch", "truth", True, False),
     ("import attr, re\nattr.validators.matches_re('a', func=re.match)", "a", 0, None, "", False, False),
-    ("from wtforms.validators import Regexp\nRegexp('a', 2)", "a", I, "match", "unknown", False, False),
+    ("from wtforms.validators import Regexp\nRegexp('a', 2)", "a", I, "match", "truth", False, False),
     ("from marshmallow import validate\nvalidate.Regexp('a')", "a", 0, "match", "truth", True, False),
 )
 
@@ -302,6 +303,11 @@ def test_pattern_objects(source: str, functions: list[str], seen: bool) -> None:
     assert site.function == "compile"
 
 
+def test_a_table_goes_to_another_process() -> None:
+    copy = pickle.loads(pickle.dumps(OWN))
+    assert copy.sinks == OWN.sinks and copy.mentioned("expect") and not copy.mentioned("import re")
+
+
 def test_without_sinks_nothing_is_seen() -> None:
     for source, *_ in SEEN:
         assert not [site for site in read_module(source, "a.py", NONE).sites if "." in site.function]
@@ -344,6 +350,12 @@ SAID = (
     ("from django.urls import re_path\nre_path('^(?:a|a)/', v)", [("equal-siblings", "warning")]),
     ("from django.urls import re_path\nre_path('^[ab]*[bc]*/', v)", [("polynomial-ambiguity", "note")]),
     ("from tornado.web import url\nurl('/.*$', v)", []),
+    (VALIDATOR + "RegexValidator('^[a-z]+$')", [("final-newline", "note")]),
+    (VALIDATOR + "RegexValidator('^[a-z]+$', inverse_match=True)", []),
+    (VALIDATOR + "class V(RegexValidator):\n regex = '^[a-z]+$'", [("final-newline", "note")]),
+    (VALIDATOR + "class V(RegexValidator):\n regex = '^[a-z]+$'\n inverse_match = True", []),
+    ("from attrs import validators\nvalidators.matches_re('[a-z]+$')", []),
+    ("from wtforms.validators import Regexp\nRegexp('[a-z]+$')", [("final-newline", "note")]),
     (VALIDATOR + "RegexValidator('[a-z]*')", [("vacuous-test", "error")]),
     (VALIDATOR + r"RegexValidator(r'^(?:\w+-?)+\Z')", [("exponential-ambiguity", "error")]),
     ("from aiohttp import web\nweb.get('/{n:(?:a+)+b}', h)", [("exponential-ambiguity", "error")]),
@@ -352,7 +364,7 @@ SAID = (
 )
 ASKED = frozenset(
     {"vacuous-test", "empty-language", "invalid-pattern", "equal-siblings", "shorter-equivalent"}
-    | {"exponential-ambiguity", "polynomial-ambiguity", "unreachable-part"}
+    | {"exponential-ambiguity", "polynomial-ambiguity", "unreachable-part", "final-newline"}
 )
 
 

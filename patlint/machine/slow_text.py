@@ -91,7 +91,8 @@ class Ambiguity:
     """`growth` None means: no growth beyond linear was confirmed.
 
     `unconfirmed` counts suspicions that no text confirmed; `undecided` names the limit that cut the search
-    short, or REFERENCES where a suspicion depends on what groups hold, so that None is then no proof.
+    short, or REFERENCES where a suspicion depends on what groups hold, so that None is then no proof, and a power
+    the least one.
     """
 
     growth: Growth | None
@@ -140,7 +141,7 @@ def _unbounded(program: p.Program, manner: Manner, limits: Limits) -> tuple[Ambi
         if best is not None and _enough(best, suspect, most):
             break
         if fitted >= SUSPECTS or counting.turns <= 0:
-            undecided = "turns" if best is None else None
+            undecided = "turns"
             break
         tried, slow = _confirm(suspect, most, letters, continuations, counting)
         fitted += tried
@@ -151,6 +152,8 @@ def _unbounded(program: p.Program, manner: Manner, limits: Limits) -> tuple[Ambi
     for suspect in found:
         if not suspect.more or (best is not None and not _worse(suspect.degree, best.growth)):
             continue
+        if counting.turns <= 0:
+            undecided = "turns"
         if fitted >= SEVERAL or counting.turns <= 0:
             break
         tried, slow = _confirm(suspect, suspect.degree, letters, continuations, counting)
@@ -160,8 +163,10 @@ def _unbounded(program: p.Program, manner: Manner, limits: Limits) -> tuple[Ambi
             best = slow
     if counting.cut and best is None:
         undecided = "turns"
-    if counting.counter is None and (best is None or not _enough(best, found[0], most)):
-        undecided = undecided or REFERENCES
+    if best is not None and _enough(best, found[0], max(suspect.degree for suspect in found)):
+        undecided = None
+    elif counting.counter is None:
+        undecided = REFERENCES
     return Ambiguity(best.growth if best else None, best, unconfirmed, undecided), power
 
 

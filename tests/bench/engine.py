@@ -12,7 +12,6 @@ from __future__ import annotations
 import argparse
 import random
 import sys
-from collections.abc import Callable
 from itertools import pairwise
 from typing import Any
 
@@ -23,18 +22,12 @@ from patlint.machine.matcher import Matcher
 from patlint.machine.program import compile_tree
 from patlint.machine.slow_text import SlowText
 from patlint.syntax.parser import PatternError, parse
-from tests.bench.replay import Replayed, grows_as
+from tests.bench.replay import Steps, grows_as, replay
 from tests.bench.slowest import in_process
 from tests.corpus.cost import BOUNDS, ROWS, Base, Text
 from tests.corpus.cpython import compiled
 
 TURNS = 100_000
-BUDGETS = ((5e7, 1), (2e8, 3), (8e8, 3))
-"""Steps of the longest text that is timed, and how often; one after the other until times and steps agree."""
-PAUSE = 1_500
-"""Pumps from which on a linear count is taken as it is, without counting further."""
-
-Steps = Callable[[int], "int | None"]
 
 
 def steps_of(pattern: str, manner: str, text: Text) -> Steps | None:
@@ -58,37 +51,6 @@ def steps_of(pattern: str, manner: str, text: Text) -> Steps | None:
         return outcome.steps if outcome.finished else None
 
     return walked
-
-
-def sizes(steps: Steps, growth: Growth, budget: float) -> list[int]:
-    """Pumps at which the growth shows: the last takes about `budget` steps, as far as that can be counted."""
-    if growth == "exponential":
-        n, row = 1, []
-        while n < 2_000 and (count := steps(n)) is not None and count < budget:
-            if count > budget / 5_000:
-                row.append(n)
-            n += 1 if n < 60 else n // 16
-        return row[-13:]
-    known = 16
-    counted = steps(known) or 1
-    while known < PAUSE and (more := steps(2 * known)) is not None and more < budget:
-        known, counted = 2 * known, more
-    last = known * (budget / counted) ** (1 / growth) if growth else 1 << 16
-    factor = 2.0 if growth < 4 else 1.5
-    last = min(last, 4e6)
-    return [max(int(last / factor**2), 2), max(int(last / factor), 3), max(int(last), 4)]
-
-
-def timed(pattern: str, manner: str, text: Text, growth: Growth, steps: Steps, python: str) -> Replayed:
-    slow = SlowText(*text, growth, (), (), False)
-    request = {"pattern": pattern, "flags": 0, "manner": manner, "growth": growth}
-    request |= dict(zip(("prefix", "pump", "suffix"), text, strict=True))
-    for budget, runs in BUDGETS:
-        asked = request | {"sizes": sizes(steps, growth, budget), "runs": runs}
-        replayed = Replayed(pattern, 0, manner, "", slow, in_process(asked, python=python))
-        if replayed.agrees:
-            break
-    return replayed
 
 
 def bounded(
@@ -154,7 +116,8 @@ def main() -> int:
             cases.append(("family", pattern, manner, text, found, steps))
     differ: list[Any] = []
     for kind, pattern, manner, text, growth, steps in cases:
-        replayed = timed(pattern, manner, text, growth, steps, given.python)
+        slow = SlowText(*text, growth, (), (), False)
+        replayed = replay(pattern, 0, manner, "", slow, given.python, steps)
         if not grows_as(growth, replayed):
             differ.append((kind, pattern, manner, text, growth, replayed.answer))
             print("DIFFERS", *differ[-1], flush=True)

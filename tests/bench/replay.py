@@ -1,8 +1,9 @@
 """`python -m tests.bench.replay`: every slow text that patlint reports on the bench, replayed on the real `re`.
 
 For each pattern of the standard library and the packages, in each manner in which it is used, the reported
-text is timed at growing n, each in a process of its own. A power d must show itself as 2 ** d on doubling, an
-exponential as a factor for each further pump that does not sink. Prints what does not, and the share.
+text is timed at growing n, each in a process of its own; the sizes are chosen by the steps that they take. A power
+d must show itself as 2 ** d on doubling, an exponential as a factor for each further pump that does not sink. Prints
+what does not, and the share.
 Exit status 1 where a text does not grow as claimed.
 
     python -m tests.bench.replay --dir ../bench-env --no-install
@@ -15,10 +16,10 @@ import math
 import sys
 import tempfile
 from collections import Counter
-from collections.abc import Iterable
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 from pathlib import Path
-from typing import Any
+from typing import Any, TypeAlias
 
 from patlint.limits import DEFAULT_LIMITS, LimitReached
 from patlint.machine import counting
@@ -33,9 +34,16 @@ from tests.bench.environment import PACKAGES, install, python_files
 from tests.bench.slowest import asked, in_process, sites_of
 
 TOLERANCE = 0.35
+TURNS = 200_000
+BUDGETS = ((5e7, 1), (2e8, 3), (8e8, 3))
+"""Steps of the longest text that is timed, and how often; one after the other until the times agree with the claim:
+a busy machine gives one wrong time in fifty."""
+PAUSE = 1_500
+"""Pumps from which on a count is drawn on by its power, without counting further."""
 LEAST_TIMES = (4e-3, 8e-3, 2e-2, 4e-2)
-"""Seconds of the smallest run that is compared, so that what grows slower is small beside it; one after the other
-until the times agree with the claim: a busy machine gives one wrong time in fifty."""
+"""The same where steps cannot be counted: seconds of the smallest run that is compared."""
+
+Steps: TypeAlias = Callable[[int], "int | None"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,10 +115,36 @@ def ambiguities(sites: Iterable[Site]) -> list[tuple[str | bytes, int, Manner, S
     return found
 
 
+def sizes(steps: Steps, growth: Growth, budget: float) -> list[int]:
+    """Pumps at which the growth shows: the last takes about `budget` steps, as far as that can be counted."""
+    if growth == "exponential":
+        n, row = 1, []
+        while n < 2_000 and (count := steps(n)) is not None and count < budget:
+            if count > budget / 5_000:
+                row.append(n)
+            n += 1 if n < 60 else n // 16
+        return row[-13:]
+    known = 16
+    counted = steps(known) or 1
+    while known < PAUSE and (more := steps(2 * known)) is not None and more < budget:
+        known, counted = 2 * known, more
+    last = known * (budget / counted) ** (1 / growth) if growth else 1 << 16
+    factor = 2.0 if growth < 4 else 1.5
+    last = min(last, 4e6)
+    return [max(int(last / factor**2), 2), max(int(last / factor), 3), max(int(last), 4)]
+
+
 def replay(
-    pattern: str | bytes, flags: int, manner: str, where: str, slow: SlowText, python: str = sys.executable
+    pattern: str | bytes,
+    flags: int,
+    manner: str,
+    where: str,
+    slow: SlowText,
+    python: str = sys.executable,
+    steps: Steps | None = None,
 ) -> Replayed:
-    request = {
+    """The times of a slow text on `re`. `steps` are those on n pumps; without them they are counted here."""
+    request: dict[str, Any] = {
         "pattern": pattern,
         "flags": flags,
         "manner": manner,
@@ -120,10 +154,17 @@ def replay(
         "more": slow.more,
         "growth": slow.growth,
     }
-    for least in LEAST_TIMES:
-        replayed = Replayed(
-            pattern, flags, manner, where, slow, in_process(request | {"least": least}, python=python)
-        )
+    if steps is None:
+        program = compile_tree(parse(pattern, flags))
+        if counting.countable(program):
+            counter = counting.Counter(program)
+            steps = lambda n: counter.steps(slow.text(n), manner, TURNS)[0]  # noqa: E731
+    tries: list[dict[str, Any]] = [{"least": least} for least in LEAST_TIMES]
+    if steps is not None:
+        tries = [{"sizes": sizes(steps, slow.growth, most), "runs": runs} for most, runs in BUDGETS]
+    for how in tries:
+        answer = in_process(request | how, python=python)
+        replayed = Replayed(pattern, flags, manner, where, slow, answer)
         if replayed.agrees:
             break
     return replayed

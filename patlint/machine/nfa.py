@@ -131,6 +131,7 @@ class Nfa:
         self.obligations = Obligations(width, self.charge)
         self._atomics: dict[tuple[int, Threads], int] = {}
         self._lists: dict[int, Threads] = {}
+        self._entered: dict[tuple[int, int], tuple[tuple[Conjunction, int | None], ...]] = {}
         self._closures: dict[tuple[int, int], tuple[Thread, ...]] = {}
         self._after: dict[tuple[int, int, int], tuple[Thread, ...]] = {}
         self._looks: dict[tuple[Threads, int], int] = {}
@@ -295,6 +296,16 @@ class Nfa:
         asked = self._not_in(pc)
         return FREE if asked == ALL else frozenset((asked,))
 
+    def _enter(self, pc: int, op: p.Atomic, context: int) -> tuple[tuple[Conjunction, int | None], ...]:
+        """The ways out of an atomic group that begins here, as `_atomic` gives them."""
+        key = (pc, context)
+        found = self._entered.get(key)
+        if found is None:
+            threads, _ = prune(self, ((thread, 0) for thread in self.closure(op.body, context)), cut=True)
+            found = self._entered[key] = tuple(self._atomic(pc, threads, context))
+        self.charge(len(found))
+        return found
+
     def _position_of(self, pc: int, threads: Threads) -> int:
         key = (pc, threads)
         found = self._atomics.get(key)
@@ -386,8 +397,7 @@ class Nfa:
                     if op.end in self.leads:
                         stack.append((op.body, marks, duty))
                         continue
-                    body_threads = ((thread, 0) for thread in self.closure(op.body, context))
-                    for more, goes_on in self._atomic(pc, prune(self, body_threads, cut=True)[0], context):
+                    for more, goes_on in self._enter(pc, op, context):
                         if goes_on is not None:
                             threads[goes_on, duty] = None
                         else:

@@ -51,11 +51,23 @@ def main(arguments: Sequence[str] | None = None) -> int:
         return _run(given)
     except CallError as error:
         return complain(str(error))
+    except OSError as error:
+        return complain(_said(error))
     except KeyboardInterrupt:
         # On 3.10 the worker pool's own clean-up can fail at exit, and would say so on the terminal.
         with suppress(OSError, ValueError):
             os.dup2(os.open(os.devnull, os.O_WRONLY), 2)
         return EXIT_INTERRUPTED
+
+
+def _said(error: OSError) -> str:
+    """One line about an error that no command expects."""
+    try:
+        os.getcwd()
+    except OSError:
+        return "the working directory is no more"
+    what = error.strerror or str(error) or type(error).__name__
+    return what if error.filename is None else f"{os.fsdecode(error.filename)}: {what}"
 
 
 def complain(message: str) -> int:

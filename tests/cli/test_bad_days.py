@@ -326,6 +326,35 @@ def test_a_file_that_changes_while_it_is_read(patlint: Patlint, monkeypatch: pyt
     assert patlint("lint").status == 0
 
 
+def test_the_working_directory_is_gone(tmp_path: Path) -> None:
+    folder = tmp_path / "gone"
+    folder.mkdir()
+    (tmp_path / "good.py").write_text(INVALID)
+
+    def leave() -> None:
+        os.chdir(folder)
+        folder.rmdir()
+
+    ran = process(tmp_path, "lint", preexec_fn=leave)
+    assert (ran.returncode, ran.stderr) == (2, "patlint: the working directory is no more\n")
+
+
+def test_an_error_that_no_command_expects(patlint: Patlint, monkeypatch: pytest.MonkeyPatch) -> None:
+    from patlint.cli import list as command
+
+    for error, said in [
+        (OSError(errno.EIO, "Input/output error"), "Input/output error"),
+        (OSError(errno.EIO, "Input/output error", "a.py"), "a.py: Input/output error"),
+        (OSError(), "OSError"),
+    ]:
+
+        def fail(given: object, error: OSError = error) -> int:
+            raise error
+
+        monkeypatch.setattr(command, "run", fail)
+        assert patlint("list") == Ran(2, "", f"patlint: {said}\n")
+
+
 @pytest.mark.parametrize("jobs", ["1", "2"])
 def test_many_files(patlint: Patlint, jobs: str) -> None:
     """The short form of ten thousand files."""

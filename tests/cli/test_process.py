@@ -43,7 +43,15 @@ def test_module_and_pipeline(folder: Path) -> None:
     assert ran.stdout.startswith("x.py:2:")
 
 
-@pytest.mark.parametrize("words", [("lint", "a.py"), ("lint", "a.py", "--format", "json"), ("list", "a.py")])
+@pytest.mark.parametrize(
+    "words",
+    [
+        ("lint", "a.py"),
+        ("lint", "a.py", "--format", "json"),
+        ("lint", "a.py", "--format", "sarif"),
+        ("list", "a.py"),
+    ],
+)
 def test_a_reader_that_leaves_early(folder: Path, words: tuple[str, ...]) -> None:
     (folder / "a.py").write_text(INVALID)
     with subprocess.Popen(

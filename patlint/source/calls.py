@@ -7,9 +7,9 @@ from __future__ import annotations
 
 import ast
 import re
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
-from patlint.source import reasons
+from patlint.source import library, reasons
 from patlint.source.engine import FUNCTIONS, bind_arguments
 from patlint.source.formatting import braces, plain
 from patlint.source.reasons import Opaque
@@ -24,7 +24,6 @@ _PURE_METHODS = frozenset(
     {"strip", "lstrip", "rstrip", "replace", "lower", "upper", "encode", "decode"}
     | {"removeprefix", "removesuffix"}
 )
-_TO_SEQUENCE = frozenset({"list", "tuple", "reversed", "sorted"})
 
 
 def pattern_argument(call: ast.Call) -> ast.expr | None:
@@ -45,7 +44,11 @@ def evaluate_call(
         raise Opaque(reasons.CALL)
     match node.func:
         case ast.Name(id=name) if scope.find(name) is None and not constants.index.star_lines:
-            return _builtin(constants, name, node, scope, env, depth)
+            if name == "map":
+                return _mapped(constants, node, scope, env, depth)
+            return library.builtin(constants, name, node, scope, env, depth)
+        case ast.Name() | ast.Attribute() if (known := library.dotted(node.func, scope)) is not None:
+            return library.imported(constants, known, node, scope, env, depth)
         case ast.Name():
             return constants.helpers.outcome(node, scope, env, depth)
         case ast.Attribute():
@@ -65,56 +68,11 @@ def _escaped(text: str | bytes) -> str | bytes:
     return re.escape(text) if isinstance(text, str) else re.escape(text)
 
 
-def _builtin(
-    constants: Constants, name: str, node: ast.Call, scope: Scope, env: Environment | None, depth: int
-) -> Value:
-    if not node.args or any(isinstance(argument, ast.Starred) for argument in node.args):
+def _mapped(constants: Constants, node: ast.Call, scope: Scope, env: Environment | None, depth: int) -> Value:
+    """`map(re.escape, …)`."""
+    if len(node.args) != 2 or constants.engine.denotes(node.args[0], scope) != "re.escape":
         raise Opaque(reasons.CALL)
-    if name == "map" and len(node.args) == 2:
-        if constants.engine.denotes(node.args[0], scope) != "re.escape":
-            raise Opaque(reasons.CALL)
-        items = constants.evaluate(node.args[1], scope, env, depth + 1)
-        if not isinstance(items, tuple):
-            raise Opaque(reasons.CALL)
-        return Listed(_escape(item) for item in items)
-    if len(node.args) != 1:
-        raise Opaque(reasons.CALL)
-    if name in _TO_SEQUENCE:
-        items = constants.evaluate(node.args[0], scope, env, depth + 1)
-        if not isinstance(items, tuple):
-            raise Opaque(reasons.CALL)
-        if name == "sorted":
-            return _sorted(node, items)
-        return tuple(items) if name == "tuple" else Listed(reversed(items) if name == "reversed" else items)
-    if node.keywords:
-        raise Opaque(reasons.CALL)
-    value = constants.evaluate(node.args[0], scope, env, depth + 1)
-    if name == "str" and isinstance(value, Spelled) and isinstance(value.value, str):
-        return value
-    if name in ("str", "chr") and isinstance(value, int) and not isinstance(value, bool):
-        try:
-            made = str(value) if name == "str" else chr(value)
-        except (ValueError, OverflowError):
-            raise Opaque(reasons.CALL) from None
-        return without_spelling(made, constants.text.place(node))
-    raise Opaque(reasons.CALL)
-
-
-def _sorted(node: ast.Call, items: tuple[Value, ...]) -> tuple[Value, ...]:
-    texts = [item for item in items if isinstance(item, Spelled)]
-    options: dict[str, Any] = {}
-    for keyword in node.keywords:
-        match keyword:
-            case ast.keyword(arg="reverse", value=ast.Constant(value=bool() as reverse)):
-                options["reverse"] = reverse
-            case ast.keyword(arg="key", value=ast.Name(id="len")):
-                options["key"] = lambda item: len(item.value)
-            case _:
-                raise Opaque(reasons.CALL)
-    options.setdefault("key", lambda item: item.value)
-    if len(texts) != len(items) or len({type(item.value) for item in texts}) > 1:
-        raise Opaque(reasons.CALL)
-    return Listed(sorted(texts, **options))
+    return Listed(_escape(item) for item in library.sequence(constants, node.args[1], scope, env, depth))
 
 
 def _method(
@@ -133,6 +91,8 @@ def _method(
         raise Opaque(reasons.CALL)
     if any(isinstance(a, ast.Starred) for a in node.args) or any(k.arg is None for k in node.keywords):
         raise Opaque(reasons.STARRED)
+    if name == "join" and len(node.args) == 1 and not node.keywords:
+        return _join(base, library.sequence(constants, node.args[0], scope, env, depth))
     positional = [constants.evaluate(argument, scope, env, depth + 1) for argument in node.args]
     named = {
         str(keyword.arg): constants.evaluate(keyword.value, scope, env, depth + 1)
@@ -143,9 +103,7 @@ def _method(
     if name == "format":
         return braces(base, positional, named)
     if name == "join":
-        if len(positional) != 1 or named or not isinstance(positional[0], tuple):
-            raise Opaque(reasons.CALL)
-        return _join(base, positional[0])
+        raise Opaque(reasons.CALL)
     try:
         made = getattr(base.value, name)(*map(plain, positional), **{k: plain(v) for k, v in named.items()})
     except Exception:  # whatever a method makes of these arguments

@@ -11,7 +11,7 @@ import ast
 import string
 from collections.abc import Sequence
 
-from patlint.source import calls, reasons
+from patlint.source import calls, library, reasons
 from patlint.source.attributes import Attributes
 from patlint.source.branches import Branches
 from patlint.source.choices import Choices
@@ -19,7 +19,7 @@ from patlint.source.engine import Engine
 from patlint.source.formatting import percent
 from patlint.source.helpers import Helpers
 from patlint.source.index import Index
-from patlint.source.names import MUTABLE, Names
+from patlint.source.names import MUTABLE, Names, path_to
 from patlint.source.places import Text
 from patlint.source.quoted import f_string, literal
 from patlint.source.reasons import Opaque
@@ -358,12 +358,23 @@ class Constants:
         generator = node.generators[0]
         if len(node.generators) != 1 or generator.ifs or generator.is_async:
             raise Opaque(reasons.EXPRESSION)
-        if not isinstance(generator.target, ast.Name):
-            raise Opaque(reasons.EXPRESSION)
-        items = self.evaluate(generator.iter, scope, env, depth + 1)
-        if not isinstance(items, tuple):
-            raise Opaque(reasons.EXPRESSION)
-        name = generator.target.id
-        return Listed(
-            self.evaluate(node.elt, scope, {**(env or {}), name: item}, depth + 1) for item in items
-        )
+        if isinstance(generator.target, ast.Name):
+            name = generator.target.id
+            items = library.sequence(self, generator.iter, scope, env, depth)
+            return Listed(
+                self.evaluate(node.elt, scope, {**(env or {}), name: item}, depth + 1) for item in items
+            )
+        read = {each.id for each in ast.walk(node.elt) if isinstance(each, ast.Name)}
+        targets = [
+            each for each in ast.walk(generator.target) if isinstance(each, ast.Name) and each.id in read
+        ]
+        paths = {each.id: path_to(each, generator.target) for each in targets}
+        made: list[Value] = []
+        for row in self.rows.ordered(generator.iter, scope, env):
+            inner = dict(env or {})
+            for name, path in paths.items():
+                if path is None:
+                    raise Opaque(reasons.UNPACKED)
+                inner[name] = self.rows.value(self.rows.part(row, path), depth)
+            made.append(self.evaluate(node.elt, scope, inner, depth + 1))
+        return Listed(made)

@@ -24,6 +24,7 @@ from patlint.source.families import Made, read_families
 from patlint.source.flags import evaluate_flags
 from patlint.source.follow import Follower
 from patlint.source.index import Index, build_index
+from patlint.source.library import dotted
 from patlint.source.places import Text
 from patlint.source.reasons import Opaque
 from patlint.source.rows import Row
@@ -68,7 +69,9 @@ def read_module(
             try:
                 reader.read()
                 sites, unresolved = reader.results()
-                families = read_families(reader.index, reader.text, reader.constants, reader.made, sites)
+                families = read_families(
+                    reader.index, reader.text, reader.constants, reader.made, reader.sinks.rows, sites
+                )
             finally:
                 reader.release()
     finally:
@@ -154,7 +157,7 @@ class _Reader:
                 if called:
                     assert isinstance(call, ast.Call)
                     self._call(call, scope, name)
-                elif not self._is_alias(node):
+                elif not self._is_alias(node) and not self._handed(node, call, scope, name):
                     self._refuse(node, name, reasons.PASSED_ON)
         self.sinks.read()
 
@@ -214,6 +217,30 @@ class _Reader:
             case _:
                 return False
 
+    def _handed(self, node: ast.expr, call: ast.AST | None, scope: Scope, function: str) -> bool:
+        """`map(re.compile, TABLE)` and `partial(re.sub, PATTERN, …)`: calls that others make."""
+        if not isinstance(call, ast.Call) or not call.args or call.args[0] is not node:
+            return False
+        if dotted(call.func, scope) == "functools.partial" and len(call.args) > 1:
+            made = ast.Call(node, call.args[1:], call.keywords)
+            ast.copy_location(made, call)
+            self._call(made, scope, function, handed=True)
+            return True
+        by_name = isinstance(call.func, ast.Name) and call.func.id == "map" and scope.find("map") is None
+        if function != "compile" or not by_name or len(call.args) != 2:
+            return False
+        self.constants.restart()
+        refused: str | None = None
+        for told in self.constants.choices.each(lambda: self.constants.rows.each(call, call.args[1], scope)):
+            if isinstance(told, Opaque):
+                refused = refused or told.reason
+            else:
+                value, row = told
+                self._site(call, row.scope, function, row.node, value, 0)
+        if refused is not None:
+            self._refuse(node, function, refused)
+        return True
+
     def _doubtful(self, node: ast.expr, opaque: Opaque) -> None:
         call = self.index.parents.get(node)
         name = node.attr if isinstance(node, ast.Attribute) else getattr(node, "id", "")
@@ -223,7 +250,8 @@ class _Reader:
     def _refuse(self, node: ast.expr, function: str, reason: str) -> None:
         self.unresolved.append(Unresolved(self.path, self.text.place(node), function, reason))
 
-    def _call(self, call: ast.Call, scope: Scope, function: str) -> None:
+    def _call(self, call: ast.Call, scope: Scope, function: str, handed: bool = False) -> None:
+        """A call of a function of `re`; `handed`: others make it, so that its uses are not seen."""
         self.constants.restart()
         arguments = bind_arguments(call, FUNCTIONS[function])
         argument = arguments.given.get("pattern")
@@ -235,10 +263,10 @@ class _Reader:
         refused: str | None = None
         for told in self.constants.choices.each(lambda: self._told(argument, arguments, scope)):
             if not isinstance(told, Opaque):
-                self._site(call, scope, function, argument, *told)
+                self._site(call, scope, function, argument, *told, handed=handed)
             elif told.reason != reasons.COMPILED:
                 refused = refused or told.reason
-            elif not isinstance(argument, (ast.Name, ast.Attribute)):
+            elif not _may_be_object(argument):
                 refused = refused or reasons.NOT_TEXT
         if refused is not None:
             self._refuse(call, function, refused)
@@ -251,10 +279,19 @@ class _Reader:
         return pattern, evaluate_flags(arguments.given.get("flags"), scope, self.constants)
 
     def _site(
-        self, call: ast.Call, scope: Scope, function: str, argument: ast.expr, pattern: Spelled, flags: int
+        self,
+        call: ast.Call,
+        scope: Scope,
+        function: str,
+        argument: ast.expr,
+        pattern: Spelled,
+        flags: int,
+        handed: bool = False,
     ) -> None:
         uses: tuple[Use, ...]
-        if function == "compile":
+        if handed:
+            uses, seen, name = (), False, None
+        elif function == "compile":
             found = self.follower.follow(call, scope, pattern.value)
             uses = tuple(sorted(found.uses, key=lambda use: use.place))
             seen, name = found.seen and not self.follower.leads_back, found.name
@@ -296,6 +333,13 @@ class _Reader:
         statement = self.index.statement(argument)
         line = statement.lineno if statement is not None else argument.lineno
         return self.text.place(argument), line
+
+
+def _may_be_object(node: ast.expr) -> bool:
+    """Whether the argument as a whole may be the pattern object that was met in it."""
+    return isinstance(node, (ast.Name, ast.Attribute)) or (
+        isinstance(node, ast.Call) and isinstance(node.func, ast.Name)
+    )
 
 
 def merge(sites: list[Site]) -> list[Site]:

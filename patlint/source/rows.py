@@ -21,12 +21,14 @@ from patlint.source.index import Index
 from patlint.source.names import MUTABLE, path_to
 from patlint.source.reasons import Opaque
 from patlint.source.scopes import Binding, Scope
+from patlint.source.spelled import Spelled
 from patlint.source.values import Environment, Value
 
 if TYPE_CHECKING:
     from patlint.source.constants import Constants
 
 _SAME_ROWS = frozenset({"list", "tuple", "set", "frozenset", "sorted", "reversed", "iter"})
+_DISORDERED = frozenset({"set", "frozenset", "sorted", "reversed"})
 _MOST_ROWS = 3_000
 _DEEPEST = 12
 
@@ -74,6 +76,8 @@ class Rows:
         self.constants = constants
         self.index = index
         self._loops: dict[ast.Name, Loop | None] = {}
+        self._disordered = 0
+        """How often rows were taken from something whose order is not that of the file."""
         self._tables: dict[ast.AST, list[Item]] = {}
 
     def chosen(self, read: ast.Name, scope: Scope) -> Item | None:
@@ -94,6 +98,15 @@ class Rows:
             if choices.consulted == before:
                 self._tables[loop.node] = table
         return self.part(table[choices.take(loop.node, len(table), reasons.LOOP_VARIABLE)], loop.path)
+
+    def each(self, key: ast.AST, table: ast.expr, scope: Scope) -> tuple[Spelled, Row]:
+        """The text of the row that is taken now, and where it stands. Errors: `Opaque`."""
+        rows = self.items(table, scope)
+        item = rows[self.constants.choices.take(key, len(rows), reasons.LOOP_VARIABLE)]
+        value = self.value(item, 0)
+        if not isinstance(value, Spelled):
+            raise Opaque(reasons.NOT_TEXT)
+        return value, item if isinstance(item, Row) else Row(table, scope)
 
     def value(self, item: Item, depth: int) -> Value:
         """Errors: `Opaque`."""
@@ -169,6 +182,7 @@ class Rows:
         found: list[Item] = []
         match node:
             case ast.Tuple() | ast.List() | ast.Set():
+                self._disordered += isinstance(node, ast.Set)
                 for each in node.elts:
                     if isinstance(each, ast.Starred):
                         found += self.items(each.value, scope, env, depth + 1)
@@ -207,6 +221,7 @@ class Rows:
     ) -> list[Item]:
         if self.index.star_lines or any(isinstance(each, ast.Starred) for each in node.args):
             raise Opaque(reasons.LOOP_VARIABLE)
+        self._disordered += name in _DISORDERED
         if name in _SAME_ROWS and len(node.args) == 1:
             return self.items(node.args[0], scope, env, depth + 1)
         if name == "enumerate" and len(node.args) <= 2:
@@ -221,20 +236,31 @@ class Rows:
     def _of_dict(
         self, node: ast.expr, what: str, scope: Scope, env: Environment | None, depth: int
     ) -> list[Item]:
-        item: Item = Row(node, scope, env)
-        for _ in range(_DEEPEST):
-            match item:
-                case Row(node=ast.Dict() as display):
-                    rows = [(Row(k, item.scope, item.env), Row(v, item.scope, item.env))
+        item = self.display(Row(node, scope, env))
+        match item:
+            case Row(node=ast.Dict() as display):
+                rows = [(Row(k, item.scope, item.env), Row(v, item.scope, item.env))
                             for k, v in self._entries(display)]  # fmt: skip
-                    if what == "items":
-                        return [Pair(pair) for pair in rows]
-                    return [pair[what == "values"] for pair in rows]
-                case Row(node=ast.Name() | ast.Attribute()):
-                    item = self._named(item)
-                case _:
-                    break
+                if what == "items":
+                    return [Pair(pair) for pair in rows]
+                return [pair[what == "values"] for pair in rows]
         raise Opaque(reasons.LOOP_VARIABLE)
+
+    def ordered(self, node: ast.expr, scope: Scope, env: Environment | None) -> list[Item]:
+        """Like `items`, where their order counts. Errors: `Opaque`, also for what has no order of its own."""
+        before = self._disordered
+        found = self.items(node, scope, env)
+        if self._disordered != before:
+            raise Opaque(reasons.LOOP_VARIABLE)
+        return found
+
+    def display(self, item: Item) -> Item:
+        """The expression that a name stands for, through names. Errors: `Opaque`."""
+        for _ in range(_DEEPEST):
+            if not (isinstance(item, Row) and isinstance(item.node, (ast.Name, ast.Attribute))):
+                return item
+            item = self._named(item)
+        raise Opaque(reasons.TOO_DEEP)
 
     def _entries(self, node: ast.Dict) -> list[tuple[ast.expr, ast.expr]]:
         """Keys and values of a display, if no key can stand there twice."""

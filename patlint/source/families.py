@@ -21,7 +21,7 @@ from patlint.source.constants import Constants
 from patlint.source.index import Index
 from patlint.source.places import Text
 from patlint.source.scopes import Scope
-from patlint.source.sites import Family, Place, Site
+from patlint.source.sites import Family, Member, Place, Site, Trial
 from patlint.source.tables import Tables
 from patlint.source.trials import TESTING, Test, read_test
 
@@ -30,16 +30,35 @@ Made: TypeAlias = dict[ast.Call, list[tuple[Site, Scope]]]
 
 
 def read_families(
-    index: Index, text: Text, constants: Constants, made: Made, sites: Iterable[Site]
+    index: Index,
+    text: Text,
+    constants: Constants,
+    made: Made,
+    rows: Iterable[list[Site]],
+    sites: Iterable[Site],
 ) -> tuple[Family, ...]:
-    """The families of a file whose sites, merged, are `sites`; in the order of their first members."""
-    if sum(map(len, made.values())) < 2:
+    """The families of a file whose sites, merged, are `sites`; in the order of their first members.
+
+    `rows` are sequences of which a library takes the first that matches.
+    """
+    ordered = [each for each in rows if len(each) > 1]
+    if sum(map(len, made.values())) < 2 and not ordered:
         return ()
     final = {(site.place, site.pattern, site.flags): site for site in sites}
     found = list(Tables(index, text, constants.names, made).find())
     found += Chains(index, text, _tests(index, constants, made)).find()
+    found += filter(None, map(_ordered, ordered))
     settled = filter(None, (_settled(family, final) for family in found))
     return tuple(sorted(settled, key=lambda family: family.members[0].site.place))
+
+
+def _ordered(rows: list[Site]) -> Family | None:
+    """Rows that a library tries in their order; None where it is not known how."""
+    if any(len(site.uses) != 1 for site in rows):
+        return None
+    positioned = any(site.uses[0].positioned for site in rows)
+    members = tuple(Member(site, (site.uses[0].mode,), True, step, None) for step, site in enumerate(rows))
+    return Family("table", "first", members, (Trial(rows[0].uses[0].place, positioned),))
 
 
 def _settled(family: Family, final: Mapping[tuple[Place, str | bytes, int], Site]) -> Family | None:

@@ -24,7 +24,7 @@ from patlint.source.sites import Function, LooksAt
 Where: TypeAlias = tuple[int | str, ...]
 """Where a call has an argument: a position, a keyword, or both (the position first)."""
 
-Kind: TypeAlias = Literal["call", "method", "attribute", "rows", "route", "result", "lookup"]
+Kind: TypeAlias = Literal["call", "method", "attribute", "rows", "states", "route", "result", "lookup"]
 
 PART = "a part of a pattern that a library puts together"
 ENGINE = "a pattern for another engine than re"
@@ -41,7 +41,8 @@ class Sink:
 
     `kind` says how it is met: "call" of a function or class; "method" of any object, by the names in
     `method` (("str", "contains") for `x.str.contains`); "attribute" of a class derived from `name`;
-    "rows", a sequence whose rows begin with a pattern; "route", a text with patterns in braces; "result",
+    "rows", a sequence whose rows begin with a pattern; "states", an attribute of a class derived from `name`
+    that is a dict of such sequences, each tried in its order; "route", a text with patterns in braces; "result",
     a method of what `with name(…) as x` binds; "lookup", keywords of any call that end in `method`.
     """
 
@@ -125,7 +126,7 @@ class SinkTable:
                 self.lookups[sink.method[-1]] = sink
             elif sink.kind == "method" or (sink.kind != "result" and sink.method):
                 self.methods.setdefault(sink.method[-1], []).append(sink)
-            elif sink.kind == "attribute":
+            elif sink.kind in ("attribute", "states"):
                 self.attributes.setdefault(sink.name, []).append(sink)
             elif sink.kind == "result":
                 self.results.setdefault(sink.name, []).append(sink)

@@ -13,6 +13,7 @@ from patlint.source.sinks import ENGINE, SCANNER, Sink, SinkTable
 from patlint.source.sites import Function, LooksAt
 
 _IGNORECASE = 2
+_MULTILINE = 8
 _VERBOSE = 64
 
 
@@ -345,8 +346,24 @@ def _other_engines() -> Iterator[Sink]:
     )
 
 
+def _pygments() -> Iterator[Sink]:
+    """A state's rules are tried in their order at a position, by match; MULTILINE unless the class gives flags."""
+    for name in ("pygments.lexer.RegexLexer", "pygments.lexer.ExtendedRegexLexer"):
+        yield Sink(
+            name,
+            ("tokens",),
+            "match",
+            "groups",
+            _MULTILINE,
+            ("flags",),
+            "states",
+            seen=True,
+        )
+
+
 BUILTIN: tuple[Sink, ...] = (
     *_standard(),
+    *_pygments(),
     *_pytest(),
     *_numpy(),
     *_django(),

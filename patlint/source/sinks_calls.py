@@ -54,6 +54,8 @@ class SinkReader:
         self.locate = locate
         self.sites: list[Site] = []
         self.unresolved: list[Unresolved] = []
+        self.rows: list[list[Site]] = []
+        """The sites of each sequence of rows that is tried in its order."""
         self._package = [part for part in re.split(r"[/\\]", path)[:-1] if part]
         self._imported: dict[str, bool] = {}
 
@@ -356,17 +358,20 @@ class SinkReader:
                 part = cut(pattern, found.start() + piece.start(1), found.start() + piece.end(1))
                 self._site(argument, scope, sink, part, 0, self.text.place(call))
 
-    def _rows(self, argument: ast.expr, scope: Scope, sink: Sink, flags: int, call: ast.Call) -> None:
+    def _rows(self, argument: ast.expr, scope: Scope, sink: Sink, flags: int, call: ast.expr) -> None:
+        made: list[Site] = []
+        self.rows.append(made)
         for row, inner in self._items(argument, scope, sink, call, 0):
             if isinstance(row, (ast.Tuple, ast.List)) and row.elts:
                 first = row.elts[0]
-            elif isinstance(row, ast.Call):
+            elif isinstance(row, ast.Call) or sink.kind == "states":
                 continue  # a call that makes a row is a sink of its own, or none
             else:
                 self._refuse(row, sink, reasons.ELEMENT)
                 continue
-            if isinstance(first, ast.Call) and self._sinks_of(first, inner):
-                continue
+            if isinstance(first, ast.Call) and (sink.kind == "states" or self._sinks_of(first, inner)):
+                continue  # a list of words, made by a call
+            self.constants.restart()
             try:
                 if self.constants.names.maker(first, inner) is not None:
                     continue
@@ -374,10 +379,12 @@ class SinkReader:
             except Opaque as opaque:
                 self._refuse(first, sink, opaque.reason)
                 continue
+            before = len(self.sites)
             self._site(first, inner, sink, pattern, flags, self.text.place(call))
+            made += self.sites[before:]
 
     def _items(
-        self, node: ast.expr, scope: Scope, sink: Sink, call: ast.Call, depth: int
+        self, node: ast.expr, scope: Scope, sink: Sink, call: ast.expr, depth: int
     ) -> Iterator[tuple[ast.expr, Scope]]:
         """The rows of a written-out sequence."""
         match node:
@@ -410,7 +417,11 @@ class SinkReader:
         for base in definition.bases:
             name = self.qualified(base, outer) if outer is not None else None
             for sink in self.table.attributes.get(name or "", ()):
-                self._attribute(definition, inner, sink)
+                if sink.kind == "states":
+                    if len(definition.bases) == 1:  # another base might give the flags
+                        self._states(inner, sink)
+                else:
+                    self._attribute(definition, inner, sink)
 
     def _attribute(self, definition: ast.ClassDef, inner: Scope, sink: Sink) -> None:
         (name,) = sink.argument
@@ -435,12 +446,27 @@ class SinkReader:
         sense = not any(isinstance(key, str) and inner.bindings.get(key) for key in sink.inverted)
         self._site(value, inner, sink, pattern, flags, self.text.place(value), sense=sense)
 
+    def _states(self, inner: Scope, sink: Sink) -> None:
+        """A dict of sequences of rows, all with the flags that the class gives."""
+        bindings = inner.bindings.get(str(sink.argument[0]), [])
+        if len(bindings) != 1 or not isinstance(bindings[0].value, ast.Dict):
+            return
+        self.constants.restart()
+        try:
+            flags = self._class_flags(inner, sink)
+        except Opaque as opaque:
+            self._refuse(bindings[0].value, sink, opaque.reason)
+            return
+        for rows in bindings[0].value.values:
+            if isinstance(rows, (ast.List, ast.Tuple, ast.BinOp)):
+                self._rows(rows, inner, sink, flags, rows)
+
     def _class_flags(self, inner: Scope, sink: Sink) -> int:
         if not sink.flags_argument:
             return 0
         bindings = inner.bindings.get(str(sink.flags_argument[0]), [])
         if not bindings:
-            return _IGNORECASE if sink.name == "string.Template" else 0
+            return _IGNORECASE if sink.name == "string.Template" else sink.flags
         if len(bindings) != 1 or bindings[0].value is None:
             raise Opaque(reasons.FLAGS)
         return self._flags(bindings[0].value, inner)
@@ -457,7 +483,7 @@ class SinkReader:
             function,
             sink.looks_at,
             place,
-            positioned=sink.kind == "rows" and sink.name == SCANNER,
+            positioned=sink.kind == "states" or (sink.kind == "rows" and sink.name == SCANNER),
             own=sink.own,
             selects=sink.selects or (sink.narrows and everything),
             validates=sink.validates and validates,

@@ -449,11 +449,32 @@ def _made(make: Callable[[], dict[str, Adapter]]) -> dict[str, Adapter]:
         return {}
 
 
+def _pygments() -> dict[str, Adapter]:
+    from pygments import lexer, token
+
+    def by_class(base: Any, context: bool) -> Adapter:
+        def takes(pattern: str, text: str, flags: int) -> bool:
+            rules = [(pattern, token.Name), (r"[\s\S]", token.Error)]
+            body: dict[str, Any] = {"tokens": {"root": rules}} | ({"flags": flags} if flags else {})
+            made = type("Made", (base,), body)()
+            given = {"context": lexer.LexerContext(text, 0)} if context else {"text": text}
+            return next(made.get_tokens_unprocessed(**given))[1] is token.Name
+
+        return takes
+
+    return {
+        key("pygments.lexer.RegexLexer", "states", "tokens"): by_class(lexer.RegexLexer, False),
+        key("pygments.lexer.ExtendedRegexLexer", "states", "tokens"): by_class(
+            lexer.ExtendedRegexLexer, True
+        ),
+    }
+
+
 def adapters(libraries: bool = True) -> dict[str, Adapter]:
     """All adapters that can be made here; without `libraries`, those of the standard library and pytest."""
     found = _standard() | _made(_pytest)
     if libraries:
-        for make in (_numpy, _django, _aiohttp, _werkzeug, _tornado, _pandas):
+        for make in (_pygments, _numpy, _django, _aiohttp, _werkzeug, _tornado, _pandas):
             found |= _made(make)
         for made in _validation().values():
             found |= made

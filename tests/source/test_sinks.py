@@ -30,7 +30,7 @@ UNITTEST = "import unittest\nclass T(unittest.TestCase):\n def test(self):\n  "
 TEMPLATE = "import string\nclass T(string.Template):\n "
 VALIDATOR = "from django.core.validators import RegexValidator\n"
 PANDAS = "import pandas as pd\n"
-I, S, X = 2, 16, 64  # noqa: E741
+I, M, S, X = 2, 8, 16, 64  # noqa: E741
 
 # source, pattern, flags, function of the use (None: none), looks at, all seen, embedded
 SEEN: tuple[tuple[str, str, int, str | None, str, bool, bool], ...] = (
@@ -121,6 +121,15 @@ SEEN: tuple[tuple[str, str, int, str | None, str, bool, bool], ...] = (
     ),
     ("from tornado.web import url\nurl('/a$', H)", "/a$", 0, "match", "groups", False, True),
     ("import tornado.web\napp.add_handlers(host, [('/a$', H)])", "/a$", 0, "match", "groups", False, True),
+    (
+        "from pygments.lexer import RegexLexer\nclass L(RegexLexer):\n tokens = {'root': [('a+', T), ('', D)]}",
+        *("a+", M, "match", "groups", True, False),
+    ),
+    (
+        "from pygments import lexer\nimport re\nclass L(lexer.ExtendedRegexLexer):\n flags = re.I\n"
+        " tokens = {'root': [include('x'), ('a+', T, '#pop'), (words(('a',)), T)]}",
+        *("a+", I, "match", "groups", True, False),
+    ),
     (PANDAS + "s.str.contains('a+')", "a+", 0, "search", "truth", False, False),
     (PANDAS + "s.str.contains('a+', case=False)", "a+", I, "search", "truth", False, False),
     (PANDAS + "s.str.contains('a+', regex=True)", "a+", 0, "search", "truth", False, False),

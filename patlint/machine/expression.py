@@ -39,10 +39,8 @@ from patlint.machine.expr import (
     nullable,
 )
 from patlint.machine.words import distances
-from patlint.syntax import tree as t
 from patlint.syntax.charset import EMPTY as NO_CHARS
 from patlint.syntax.charset import CharSet
-from patlint.syntax.render import char_node, render_set
 
 MOST_STATES = 40
 """Useful states of an automaton that is turned into an expression; 40 states take about 20 ms."""
@@ -79,32 +77,6 @@ def eliminated(dfa: Dfa, algebra: Algebra, order: Order, longest: int = 100_000)
     alone."""
     edges = _edges(dfa)
     return None if edges is None else _eliminate(edges, algebra, longest, False, order == "natural")
-
-
-def tree_of(dfa: Dfa, flags: int = 0, is_bytes: bool = False, longest: int = 400) -> t.Node | None:
-    """The expression of the automaton's language as a tree whose leaves carry `flags`."""
-    algebra = Algebra(lambda chars: render_set(chars, flags, is_bytes))
-    found = expression(dfa, algebra, longest)
-    return None if found is None else to_tree(found, flags, is_bytes)
-
-
-def to_tree(expr: Expr, flags: int, is_bytes: bool) -> t.Node:
-    """`expr`, which must hold nothing opaque, as a tree."""
-    nowhere = (0, 0)
-    match expr:
-        case Chars():
-            return char_node(expr.chars, flags, is_bytes)
-        case Chain():
-            return t.Sequence(nowhere, tuple(to_tree(item, flags, is_bytes) for item in expr.items))
-        case Choice(branches=()):
-            return t.Look(nowhere, t.Sequence(nowhere, ()), True, True)
-        case Choice():
-            return t.Alternation(nowhere, tuple(to_tree(branch, flags, is_bytes) for branch in expr.branches))
-        case Times():
-            body = to_tree(expr.body, flags, is_bytes)
-            return t.Repeat(nowhere, body, expr.low, expr.high, "lazy" if expr.lazy else "greedy")
-        case Opaque():
-            raise ValueError(f"{expr.written!r} has no tree")
 
 
 def in_order(expr: Expr, leaves: list[CharSet]) -> Expr:

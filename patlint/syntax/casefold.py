@@ -76,11 +76,6 @@ def orbit(code: int, ascii_only: bool = False) -> CharSet:
     return CharSet.of_codes(member for lower in family for member in fold.sources.get(lower, (lower,)))
 
 
-def is_cased(code: int, ascii_only: bool = False) -> bool:
-    """Whether the orbit of `code` holds more than `code`."""
-    return code in folding(ascii_only).cased
-
-
 @lru_cache(maxsize=2)
 def folding(ascii_only: bool) -> Folding:
     """The tables, made once."""

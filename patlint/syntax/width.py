@@ -38,13 +38,6 @@ def width(node: Node, groups: Mapping[int, Width] | None = None) -> Width:
     return _measure(node, dict(groups or {}))
 
 
-def group_widths(root: Node) -> dict[int, Width]:
-    """The width of each capturing group below `root`."""
-    widths: dict[int, Width] = {}
-    _measure(root, widths)
-    return widths
-
-
 def _measure(node: Node, groups: dict[int, Width]) -> Width:
     """The width; notes those of the groups, which are closed before the text can refer to them."""
     match node:

@@ -13,9 +13,9 @@ from patlint.machine import expr as a
 from patlint.machine.algebra import Algebra, reverse
 from patlint.machine.alphabet import minterms
 from patlint.machine.dfa import Dfa, minimal
-from patlint.machine.expression import MOST_STATES, complexity, expression, in_order, rank, tree_of
+from patlint.machine.expression import MOST_STATES, complexity, expression, in_order, rank
 from patlint.syntax.charset import ALL_CODES, CharSet
-from patlint.syntax.render import render, render_set
+from patlint.syntax.render import render_set
 
 
 def plain_algebra(**options: bool) -> Algebra:
@@ -110,13 +110,12 @@ def test_random_automata_keep_their_language() -> None:
 def test_bytes_and_wide_sets() -> None:
     for pattern in (rb"\w+=|[^\x00-\x7f]", rb"(?s:.)*\x00"):
         language = Language(pattern)
-        tree = tree_of(language.dfa, 0, True)
-        assert tree is not None
-        assert Language(render(tree, 0, True)) == language
-    language = Language(r"\w+(?:-\w+)*|\S")
-    tree = tree_of(language.dfa)
-    assert tree is not None
-    assert Language(render(tree, 0, False)) == language
+        made = Algebra(lambda chars: render_set(chars, 0, True))
+        found = expression(language.dfa, made)
+        assert found is not None
+        assert Language(made.text(found).encode("latin-1")) == language
+    wide = r"\w+(?:-\w+)*|\S"
+    assert Language(short(wide) or "") == Language(wide)
 
 
 def test_nothing_and_the_empty_text() -> None:

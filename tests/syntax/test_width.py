@@ -9,7 +9,7 @@ from typing import Any
 import pytest
 
 from patlint.syntax.parser import PatternError, parse
-from patlint.syntax.width import group_widths, width
+from patlint.syntax.width import width
 
 from .generate import patterns
 
@@ -70,9 +70,9 @@ def test_width(text: str, expected: tuple[int, int | None]) -> None:
     assert width(parse(text, 0, (3, 12)).root) == expected
 
 
-def test_group_widths() -> None:
-    root = parse(r"((a|bc)d*)(\2\2)").root
-    assert group_widths(root) == {1: (1, None), 2: (1, 2), 3: (2, 4)}
+def test_reference_to_a_group_inside() -> None:
+    assert width(parse(r"((a|bc)d*)(\2\2)").root) == (3, None)
+    assert width(parse(r"(a|bc)\1{2}").root) == (3, 6)
 
 
 def test_reference_to_a_group_outside() -> None:

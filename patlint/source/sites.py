@@ -141,14 +141,27 @@ class Site:
         return piece.places[inner] if inner < len(piece.places) else piece.whole
 
     def place_of_span(self, start: int, end: int) -> Place:
-        """The place of the pattern's characters `start` to `end`, half-open."""
+        """The place of the pattern's characters `start` to `end`, half-open.
+
+        Of a span that begins in a constant elsewhere and ends in the expression itself (`{WORD}?`), the part in
+        the expression: what stands between the two in the file has nothing to do with it.
+        """
         first = self.place_of(start)
         if end <= start:
             return Place(first.line, first.column, first.line, first.column)
         last = self.place_of(end - 1)
         if (last.end_line, last.end_column) < (first.line, first.column):
             return first  # pieces out of the order of the file: point at the first alone
+        if self._is_inside(last) and not self._is_inside(first):
+            first = next(place for place in map(self.place_of, range(start, end)) if self._is_inside(place))
         return Place(first.line, first.column, last.end_line, last.end_column)
+
+    def _is_inside(self, place: Place) -> bool:
+        whole = self.place
+        return (whole.line, whole.column) <= (place.line, place.column) and (
+            place.end_line,
+            place.end_column,
+        ) <= (whole.end_line, whole.end_column)
 
     def spelling(self, offset: int) -> str | None:
         """How the file spells the pattern character at `offset`, None where it has no spelling of its own."""

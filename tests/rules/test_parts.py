@@ -15,6 +15,7 @@ from dataclasses import replace
 
 import pytest
 
+from patlint import lint_source
 from patlint.rules.finding import Finding
 from patlint.source.sites import Function, LooksAt
 from patlint.syntax import tree as t
@@ -182,3 +183,9 @@ def test_a_warning_only_where_somebody_is_misled(
 def test_uses_that_are_not_seen_may_look_at_groups() -> None:
     public = replace(site(r"(\w*)\d*:", "match"), uses=(), uses_seen=False)
     assert [finding.level for finding in findings(public, "unreachable-part")] == ["warning"]
+
+
+def test_a_part_that_begins_in_a_constant_is_shown_where_it_is_used() -> None:
+    code = 'import re\n_C = r"[ab]"\n\nm = re.match(rf"(a.*){_C}?", s)\nx = m[1]\n'
+    (found,) = (each for each in lint_source(code, "case.py") if each.rule == "unreachable-part")
+    assert (found.line, found.column, found.end_line, found.end_column) == (4, 26, 4, 27)

@@ -8,15 +8,16 @@ class is reached with all of them. An attribute that only `__init__` sets, once,
 Sources: Python language reference, "Custom classes"; M. Simionato, The Python 2.3 Method Resolution Order,
 for the cases that are given up.
 
-Limits: an attribute that is set anywhere else, or by `setattr` with a name that is not constant, is not
-followed, nor is one under a test of itself. Classes derived in other files are not thought of. Fields of
-classes with decorators and annotated fields of classes with unknown bases are set when an object is made;
-members of an enumeration are no texts.
+Limits: an attribute that is set anywhere else, or may be by `setattr` or `__dict__`, is not followed, nor is
+one under a test of itself. That `setattr` with an unknown object and an unknown name could mean it is not
+thought of, nor are classes derived in other files. Fields of classes with decorators and annotated fields of
+classes with unknown bases are set when an object is made; members of an enumeration are no texts.
 """
 
 from __future__ import annotations
 
 import ast
+from collections.abc import Iterator
 from typing import TYPE_CHECKING
 
 from patlint.source import reasons
@@ -40,7 +41,7 @@ class Attributes:
         self.constants = constants
         self.index = index
         self._derived: dict[Scope, list[Scope]] | None = None
-        self._set_by_name: bool | None = None
+        self._setters: list[tuple[AttributeUse | None, str | None]] | None = None
 
     def chosen(self, node: ast.Attribute, scope: Scope) -> Row:
         """Errors: `Opaque`."""
@@ -53,7 +54,7 @@ class Attributes:
         related = [owner] if named or private else self._family(owner)
         self._check_untested(node)
         stores = [use for use in self.index.stores.get(node.attr, ()) if self._concerns(use, related)]
-        if self._may_be_set_by_name(node.attr):
+        if self._may_be_set_by_name(node.attr, related):
             raise Opaque(reasons.ATTRIBUTE)
         if stores:
             return self._of_init(node.attr, stores, related, named)
@@ -214,25 +215,30 @@ class Attributes:
         above = self._ancestors(related[0])
         return above is None or owner in above
 
-    def _may_be_set_by_name(self, name: str) -> bool:
-        if self._set_by_name is None:
-            self._set_by_name = "__dict__" in self.index.reads
-            for read in self._setters():
-                call = self.index.parents.get(read)
-                known = isinstance(call, ast.Call) and call.func is read and len(call.args) > 1
-                if not known or not isinstance(call.args[1], ast.Constant):  # type: ignore[union-attr]
-                    self._set_by_name = True
-        return self._set_by_name or any(self._sets(read, name) for read in self._setters())
+    def _may_be_set_by_name(self, name: str, related: list[Scope]) -> bool:
+        """Whether `setattr` or a `__dict__` may set the attribute on one of the classes or their objects."""
+        if self._setters is None:
+            self._setters = list(self._find_setters())
+        return any(
+            given in (None, name) and (where is None or self._concerns(where, related))
+            for where, given in self._setters
+        )
 
-    def _setters(self) -> list[ast.Name]:
-        return [read for scope in self.index.scopes for read in scope.loads.get("setattr", ())]
-
-    def _sets(self, read: ast.Name, name: str) -> bool:
-        match self.index.parents.get(read):
-            case ast.Call(args=[_, ast.Constant(value=str() as given), *_]):
-                return given == name
-            case _:
-                return False
+    def _find_setters(self) -> Iterator[tuple[AttributeUse | None, str | None]]:
+        """What may be set by name: on which object, None for any; by which name, None for any."""
+        for use in self.index.reads.get("__dict__", ()):
+            yield use, None
+        for scope in self.index.scopes:
+            for read in scope.loads.get("setattr", ()):
+                match self.index.parents.get(read):
+                    case ast.Call(func=function, args=[target, name, *_]) if function is read:
+                        known = isinstance(name, ast.Constant) and isinstance(name.value, str)
+                        if not known and self.constants.names.class_of(target, scope) is None:
+                            continue  # some object and some name
+                        use = AttributeUse(ast.Attribute(target, "", ast.Load()), scope)
+                        yield use, str(name.value) if known else None  # type: ignore[attr-defined]
+                    case _:
+                        yield None, None
 
     def _check_untested(self, node: ast.Attribute) -> None:
         """Where the text itself decides whether the call is reached, not every text may reach it."""

@@ -41,6 +41,11 @@ RESOLVED = {
     "set in another class": (
         "class A:\n P = 'a'\n def f(self): re.match(self.P, '')\nclass B:\n def f(self): self.P = 'b'\nB().f()\nA().f()"
     ),
+    "another class is set by name": (
+        "class A:\n P = 'a'\n def f(self): re.match(self.P, '')\n"
+        "class B:\n def g(self, **k):\n  self.__dict__.update(k)\n  setattr(self, 'P', 'b')\nB().g()\nA().f()"
+    ),
+    "another name is set": "class A:\n P = 'a'\n def f(self): re.match(self.P, '')\nsetattr(A, 'Q', 'b')\nA().f()",
     "in a closure": "class A:\n P = 'a'\n def f(self):\n  def g(): re.match(self.P, '')\n  g()\nA().f()",
     "a table of the class": "class A:\n T = ['a', 'b']\n def f(self):\n  for p in self.T: re.match(p, '')\nA().f()",
     "tables of classes": (
@@ -78,6 +83,8 @@ UNRESOLVED = [
     (CLASS + "setattr(A, x, 'b')", reasons.ATTRIBUTE),
     (CLASS + "map(setattr, x)", reasons.ATTRIBUTE),
     (CLASS + "A().__dict__['P'] = 'b'", reasons.ATTRIBUTE),
+    (CLASS + " def g(self, **k): self.__dict__.update(k)", reasons.ATTRIBUTE),
+    (CLASS + "class B(A):\n def g(self, k): setattr(self, k, 'b')", reasons.ATTRIBUTE),
     (CLASS + " def g(self): self.P = 'b'", reasons.ATTRIBUTE),
     (CLASS + "class B(A):\n def g(self): self.P = 'b'", reasons.ATTRIBUTE),
     ("class A(Enum):\n P = 'a'\nre.match(A.P, '')", reasons.ATTRIBUTE),

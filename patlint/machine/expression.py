@@ -7,6 +7,7 @@ automaton read backwards gives a second result; the shorter text wins, then the 
 fewer operators.
 
 >>> from patlint.language import Language
+>>> from patlint.syntax.render import render_set
 >>> short = expression(Language("(a|b)*a|(b|a)*b|").dfa, Algebra(lambda chars: render_set(chars, 0, False)))
 >>> Algebra(lambda chars: render_set(chars, 0, False)).text(short)
 '[ab]*'

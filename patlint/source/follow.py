@@ -41,6 +41,8 @@ class Followed:
     uses: list[Use] = field(default_factory=list)
     seen: bool = True
     name: str | None = None
+    embedded: bool = False
+    """A library that takes it may read its text."""
     visited: set[tuple[Scope, str, str | None]] = field(default_factory=set)
 
 
@@ -161,6 +163,7 @@ class Follower:
             return False
         use, alone = taken
         found.uses += [use] if use is not None else []
+        found.embedded |= use is None
         found.seen &= alone
         return True
 

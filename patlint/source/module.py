@@ -289,12 +289,14 @@ class _Reader:
         handed: bool = False,
     ) -> None:
         uses: tuple[Use, ...]
+        embedded = False
         if handed:
             uses, seen, name = (), False, None
         elif function == "compile":
             found = self.follower.follow(call, scope, pattern.value)
             uses = tuple(sorted(found.uses, key=lambda use: use.place))
             seen, name = found.seen and not self.follower.leads_back, found.name
+            embedded = found.embedded
         else:
             uses = (self.uses.call(call, scope, cast(Function, function), False, pattern.value),)
             seen, name = True, None
@@ -311,6 +313,7 @@ class _Reader:
                 uses=uses,
                 uses_seen=seen,
                 name=name,
+                embedded=embedded,
             )
         )
         self.made.setdefault(call, []).append((self.sites[-1], scope))

@@ -309,7 +309,7 @@ HANDED_ON: tuple[tuple[str, list[str], bool], ...] = (
 def test_pattern_objects(source: str, functions: list[str], seen: bool) -> None:
     (site,) = find_patterns("import re\n" + source, "a.py")
     assert (sorted(use.function for use in site.uses), site.uses_seen) == (functions, seen)
-    assert site.function == "compile"
+    assert site.function == "compile" and site.embedded is ("re_path" in source)
 
 
 def test_a_table_goes_to_another_process() -> None:

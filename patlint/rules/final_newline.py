@@ -91,7 +91,7 @@ def _without(root: t.Node, *kinds: str) -> t.Node:
 RULE = Rule(
     name="final-newline",
     level="note",
-    summary="$ lets a line feed pass at the end of a validated text",
+    summary="$ lets a validated text end in a line feed",
     page="""\
 `$` holds at the end of the text and also before a line feed that ends it. So
 `re.match(r"^[a-z]+$", name)` lets "admin\\n" pass, which is another name, and

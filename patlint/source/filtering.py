@@ -12,7 +12,8 @@ import ast
 
 from patlint.source.index import Index
 
-_PASSING = frozenset({"list", "tuple", "iter", "set", "sorted", "enumerate"})
+_PASSING = frozenset({"list", "tuple", "iter", "set", "sorted"})
+"""Functions that hand on the same items."""
 
 
 def drops_empty(call: ast.Call, index: Index) -> bool:
@@ -20,8 +21,6 @@ def drops_empty(call: ast.Call, index: Index) -> bool:
     node: ast.expr = call
     parent = index.parents.get(node)
     while isinstance(parent, ast.Call) and isinstance(parent.func, ast.Name) and parent.func.id in _PASSING:
-        if parent.func.id == "enumerate":
-            return False
         node, parent = parent, index.parents.get(parent)
     match parent:
         case ast.Call(func=ast.Name(id="filter"), args=[ast.Constant(value=None), given]):

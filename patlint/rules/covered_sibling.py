@@ -52,9 +52,13 @@ def _finding(kin: Kin, number: int, verdict: Verdict) -> Finding:
             f"everything that this pattern matches is taken by {len(verdict.takers)} earlier ones together"
         )
     if alone:
-        evidence = f"this text is taken by the pattern of line {kin.line(shown[0][0])}, like all others"
+        evidence = (
+            f"this text is taken by the pattern of line {kin.line(shown[0][0], number)}, like all others"
+        )
     else:
-        evidence = "; ".join(f"{text!a} is taken by the one of line {kin.line(each)}" for each, text in shown)
+        evidence = "; ".join(
+            f"{text!a} is taken by the one of line {kin.line(each, number)}" for each, text in shown
+        )
         evidence += "; …" if len(shown) < len(verdict.takers) else ""
     return Finding(
         RULE.name,
@@ -67,7 +71,7 @@ def _finding(kin: Kin, number: int, verdict: Verdict) -> Finding:
         evidence=evidence,
         way_out="delete it, or move it before the more general one",
         related=tuple(
-            kin.related(each, f"takes {text!a}" if not alone else "takes everything that it matches")
+            kin.related(each, number, f"takes {text!a}" if not alone else "takes everything that it matches")
             for each, text in shown
         ),
     )
@@ -136,7 +140,7 @@ def _language(subject: Subject, node: t.Node, mode: str) -> Language:
 RULE = Rule(
     name="covered-sibling",
     level="warning",
-    summary="patterns that are tried before this one take all that it matches",
+    summary="earlier patterns take all that this one matches",
     page="""\
 Where patterns are tried in order and the first that matches wins (a table in
 a loop that is left by return or break, an if/elif chain on one text, `next`,

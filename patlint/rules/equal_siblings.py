@@ -52,20 +52,18 @@ def check_family(kin: Kin) -> Iterator[tuple[int, Finding]]:
 def _family_finding(kin: Kin, number: int, earlier: int, verdict: Verdict | None) -> Finding:
     site, other = kin.members[number].site, kin.members[earlier].site
     same = site.pattern == other.pattern and site.flags == other.flags
-    line = kin.line(earlier)
+    line = kin.line(earlier, number)
     if site is other:
         message = "this pattern has been tried on the same text before"
     elif verdict is None and same:
         message = f"this pattern stands a second time among these, first in line {line}"
     else:
         message = f"this pattern is that of line {line} {'again' if same else 'in other words'}"
-    first = kin.members[earlier].asked or other.place
     evidence = "both take exactly the same texts"
     if verdict is not None and not verdict.together:
-        evidence += f", and the one of line {first.line} is tried first"
-    related = kin.related(earlier, "the pattern that is tried first" if verdict else "the same pattern")
-    if site is other:
-        related = Related("the earlier test", path=other.path, place=first)
+        evidence += f", and the one of line {line} is tried first"
+    what = "the earlier test" if site is other else "the pattern that is tried first"
+    related = kin.related(earlier, number, what if verdict else "the same pattern")
     return Finding(
         RULE.name,
         RULE.level,
@@ -150,7 +148,7 @@ def is_plain(node: t.Node) -> bool:
 RULE = Rule(
     name="equal-siblings",
     level="warning",
-    summary="two branches, or two patterns of a family, have the same language",
+    summary="two branches, or two of a family, are the same",
     page="""\
 An alternation tries its branches in order, so a second branch that takes the
 same texts as an earlier one is never of any use. It is either a leftover or

@@ -66,18 +66,24 @@ class Kin:
         assert subject is not None
         return subject.text(codes)
 
-    def related(self, member: int, message: str) -> Related:
-        """Another member, where its pattern stands."""
-        site = self.members[member].site
-        return Related(message, path=site.path, place=site.place_of_span(0, len(site.pattern)))
+    def related(self, member: int, of: int, message: str) -> Related:
+        """Another member than `of`, where its pattern stands; where that is the same, the test that asks it."""
+        site, asked = self.members[member].site, self.members[member].asked
+        place = site.place_of_span(0, len(site.pattern))
+        if asked is not None and site is self.members[of].site:
+            place = asked
+        return Related(message, path=site.path, place=place)
 
     def mode(self, member: int) -> Mode | None:
         """The mode in which a member is tried, None where there are several."""
         modes = set(self.members[member].modes)
         return modes.pop() if len(modes) == 1 else None
 
-    def line(self, member: int) -> int:
-        return self.members[member].site.place.line
+    def line(self, member: int, of: int) -> int:
+        """The line of another member's pattern; where it is the same pattern, of the test that asks it."""
+        other = self.members[member]
+        same = other.asked is not None and other.site is self.members[of].site
+        return other.asked.line if same and other.asked else other.site.place.line
 
     # languages
 

@@ -32,9 +32,11 @@ def check_family(kin: Kin) -> Iterator[tuple[int, Finding]]:
                 "this pattern and an earlier one of its family match the same texts",
                 mode=kin.mode(number),
                 witness=TextWitness(text),
-                evidence=f"this text is matched by the pattern of line {kin.line(first)} as well",
+                evidence=f"this text is matched by the pattern of line {kin.line(first, number)} as well",
                 way_out="let no text fit both, or be content that the order decides",
-                related=tuple(kin.related(each, f"matches {shown!a}") for each, shown in shared.items()),
+                related=tuple(
+                    kin.related(each, number, f"matches {shown!a}") for each, shown in shared.items()
+                ),
             ),
         )
 
@@ -42,7 +44,7 @@ def check_family(kin: Kin) -> Iterator[tuple[int, Finding]]:
 RULE = Rule(
     name="overlapping-siblings",
     level="note",
-    summary="two patterns of a family share texts (off unless asked for)",
+    summary="two patterns of a family share texts",
     page="""\
 Where the patterns of a table are meant to exclude each other, so that their
 order does not matter, a text that two of them match shows that it does. This

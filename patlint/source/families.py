@@ -47,7 +47,7 @@ def read_families(
     `rows` are sequences of which a library takes the first that matches.
     """
     ordered = [each for each in rows if len(each) > 1]
-    if sum(map(len, made.values())) < 2 and not ordered:
+    if not made and not ordered:
         return ()
     final = {(site.place, site.pattern, site.flags): site for site in sites}
     found = list(Tables(index, text, constants.names, made).find())
@@ -114,7 +114,7 @@ def _settled(family: Family, final: Mapping[tuple[Place, str | bytes, int], Site
         site = final.get((member.site.place, member.site.pattern, member.site.flags))
         if site is not None:
             members.append(replace(member, site=site))
-    if len({id(member.site) for member in members}) < 2:
+    if len(members) < 2 or (family.kind != "tests" and len({id(member.site) for member in members}) < 2):
         return None
     return replace(family, members=tuple(members))
 

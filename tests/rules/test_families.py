@@ -457,6 +457,20 @@ def test_a_finding_is_told_once_and_silences_what_it_makes_idle() -> None:
     ] == [("made.py", 2, 17, 2, 23)]
 
 
+def test_one_pattern_asked_twice() -> None:
+    source = (
+        "import re\nA = re.compile('a+')\ndef f(s):\n  if A.match(s): return 1\n"
+        "  if A.fullmatch(s): return 2\n  elif A.match(s): return 3\n"
+    )
+    equal, covered = sorted(siblings(source), key=lambda finding: finding.rule, reverse=True)
+    assert (equal.rule, equal.message) == (
+        "equal-siblings",
+        "this pattern has been tried on the same text before",
+    )
+    assert [(place.line, place.column) for place in equal.related] == [(4, 6)]
+    assert covered.rule == "covered-sibling" and [place.line for place in covered.related] == [4]
+
+
 def test_waivers_and_levels() -> None:
     source = (
         "import re\ndef f(s):\n  if re.match('[a-z]+', s): return 1\n"

@@ -30,10 +30,13 @@ def prune(nfa: Nfa, moves: Iterable[tuple[Thread, int]], cut: bool) -> tuple[Thr
     origins: list[int] = []
     for thread, origin in moves:
         position, duty = thread
-        before = best.setdefault(position, [])
-        if any(other <= duty for other in before):
+        before = best.get(position)
+        if before is None:
+            best[position] = [duty]
+        elif any(other <= duty for other in before):
             continue
-        before.append(duty)
+        else:
+            before.append(duty)
         kept.append(thread)
         origins.append(origin)
         if cut and not duty and position in (nfa.accept, nfa.pending):

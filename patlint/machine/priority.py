@@ -179,7 +179,7 @@ def shown_used(nfa: Nfa, mode: str, wanted: Iterable[int]) -> set[int]:
         while (after := onward[way[-1]]) is not None:
             way.append(after)
         used |= runs.winner([_some_minterm(nfa, each) for each in way])
-        if ORDERED_COST * runs.counted.number > nfa.limits.work:
+        if runs.is_spent():
             break
     return used
 
@@ -229,6 +229,9 @@ class _Runs:
         self._moves: dict[tuple[int, int], tuple[int, tuple[int, ...]]] = {}
         self.start = self._number(_start(nfa, nfa.start_context, False, cut), nfa.start_context)
 
+    def is_spent(self) -> bool:
+        return ORDERED_COST * self.counted.number > self.nfa.limits.work
+
     def _number(self, threads: Threads, context: int) -> int:
         key = (threads, context)
         number = self._numbers.get(key)
@@ -256,6 +259,8 @@ class _Runs:
         """The positions that the winning thread reads on a text; nothing where that is not sure."""
         layers: list[tuple[int, tuple[int, ...]]] = [(self.start, ())]
         for minterm in minterms:
+            if self.is_spent():
+                return set()
             state, origins = self._move(layers[-1][0], minterm)
             if not self.lists[state][0]:
                 break

@@ -17,6 +17,7 @@ from typing import cast
 
 from patlint.source.constants import Constants
 from patlint.source.engine import METHODS, Engine
+from patlint.source.held import Held, Way, enclose, flow, is_fresh, put, taken
 from patlint.source.index import Index
 from patlint.source.places import Text
 from patlint.source.reaching import reached_reads
@@ -43,7 +44,7 @@ class Followed:
     name: str | None = None
     embedded: bool = False
     """A library that takes it may read its text."""
-    visited: set[tuple[Scope, str, str | None]] = field(default_factory=set)
+    visited: set[tuple[Scope, str, Way]] = field(default_factory=set)
 
 
 class Follower:
@@ -65,30 +66,33 @@ class Follower:
         self.engine = engine
         self.names = constants.names
         self.helpers = constants.helpers
+        self.choices = constants.choices
         self.uses = uses
         self.sinks = sinks
         self.leads_back = re.search(r"\.re\b", self.source) is not None
         """`found.re` is the pattern of a match: where it is asked for, a pattern has uses that are not seen."""
 
-    def follow(self, call: ast.Call, scope: Scope, pattern: str | bytes) -> Followed:
-        """`call` makes the pattern object, whose text is `pattern`."""
+    def follow(self, call: ast.Call, scope: Scope, pattern: str | bytes, way: Way = None) -> Followed:
+        """`call` makes the pattern object, whose text is `pattern`, or a container that holds it."""
         found = Followed(pattern)
-        self._flow(call, scope, None, found)
+        self.flow(call, scope, way, found)
         return found
 
-    def _flow(self, node: ast.expr, scope: Scope, method: str | None, found: Followed) -> None:
-        """`node` is the pattern object or, with `method`, that method of it."""
+    def flow(self, node: ast.expr, scope: Scope, method: Way, found: Followed) -> None:
+        """`node` is the pattern object or, with `method`, that method of it, or a container of these."""
         parent = self.index.parents.get(node)
+        if isinstance(method, Held) and flow(self, node, scope, method, found):
+            return
         match parent:
             case ast.Attribute() if method is None:
                 if parent.attr in METHODS and isinstance(parent.ctx, ast.Load):
-                    self._flow(parent, scope, parent.attr, found)
+                    self.flow(parent, scope, parent.attr, found)
                 elif parent.attr != "flags":
                     found.seen = False
-            case ast.Call() if method is not None and parent.func is node:
+            case ast.Call() if isinstance(method, str) and parent.func is node:
                 function = cast(Function, method)
                 found.uses.append(self.uses.call(parent, scope, function, True, found.pattern))
-            case ast.Call():
+            case ast.Call() if not isinstance(method, Held):
                 self._argument(node, parent, scope, method, found)
             case ast.keyword() if method is None:
                 call = self.index.parents.get(parent)
@@ -96,24 +100,25 @@ class Follower:
                     found.seen = False
             case ast.Assign() if parent.value is node:
                 for target in parent.targets:
-                    self._target(target, parent, scope, method, found)
+                    self.into_target(target, parent, scope, method, found)
             case ast.AnnAssign() if parent.value is node:
-                self._target(parent.target, parent, scope, method, found)
+                self.into_target(parent.target, parent, scope, method, found)
             case ast.NamedExpr():
-                self._target(parent.target, parent, scope, method, found)
-                self._flow(parent, scope, method, found)
+                self.into_target(parent.target, parent, scope, method, found)
+                self.flow(parent, scope, method, found)
             case ast.Expr() | ast.If() | ast.While() | ast.UnaryOp(op=ast.Not()):
                 pass
             case ast.Compare(ops=[ast.Is() | ast.IsNot()]):
                 pass
-            case ast.Tuple():
-                self._parallel(node, parent, scope, method, found)
+            case ast.Tuple() if self._parallel(node, parent, scope, method, found):
+                pass
             case ast.Return() | ast.Lambda():
                 self._returned(scope, method, found)
             case _:
-                found.seen = False
+                if parent is None or not enclose(self, node, parent, scope, method, found):
+                    found.seen = False
 
-    def _returned(self, scope: Scope, method: str | None, found: Followed) -> None:
+    def _returned(self, scope: Scope, method: Way, found: Followed) -> None:
         """The function around gives the value back to its callers: to that one alone whose text is meant."""
         owner = scope.function()
         if (
@@ -129,11 +134,9 @@ class Follower:
         if taken is None and not calls.all:
             found.seen = False
         for call, outside in calls.seen if taken is None else [taken]:
-            self._flow(call, outside, method, found)
+            self.flow(call, outside, method, found)
 
-    def _argument(
-        self, node: ast.expr, call: ast.Call, scope: Scope, method: str | None, found: Followed
-    ) -> None:
+    def _argument(self, node: ast.expr, call: ast.Call, scope: Scope, method: Way, found: Followed) -> None:
         if method is None:
             denoted = self._denotes(call.func, scope)
             name = denoted.removeprefix("re.") if denoted else ""
@@ -143,6 +146,11 @@ class Follower:
                 return
             if self._to_library(node, call, scope, found):
                 return
+            match call:
+                case ast.Call(func=ast.Attribute(attr="append" | "add") as adding, args=[_], keywords=[]):
+                    if is_fresh(self, adding.value, scope, "list"):
+                        self.into_target(adding.value, call, scope, put("each", method), found)
+                        return
         elif isinstance(call.func, ast.Name) and call.args and call.args[0] is node:
             above = self.index.parents.get(call)
             tested = call.func.id == "filter" or (
@@ -174,19 +182,19 @@ class Follower:
             return None
 
     def _parallel(
-        self, node: ast.expr, parent: ast.Tuple, scope: Scope, method: str | None, found: Followed
-    ) -> None:
+        self, node: ast.expr, parent: ast.Tuple, scope: Scope, method: Way, found: Followed
+    ) -> bool:
         """`a, b = re.compile(…), re.compile(…)`."""
         above = self.index.parents.get(parent)
         if isinstance(above, ast.Assign) and above.value is parent and len(above.targets) == 1:
             targets = above.targets[0]
             if isinstance(targets, ast.Tuple) and len(targets.elts) == len(parent.elts):
-                self._target(targets.elts[parent.elts.index(node)], above, scope, method, found)
-                return
-        found.seen = False
+                self.into_target(targets.elts[parent.elts.index(node)], above, scope, method, found)
+                return True
+        return False
 
-    def _target(
-        self, target: ast.expr, statement: ast.AST, scope: Scope, method: str | None, found: Followed
+    def into_target(
+        self, target: ast.expr, statement: ast.AST, scope: Scope, method: Way, found: Followed
     ) -> None:
         match target:
             case ast.Name():
@@ -207,10 +215,20 @@ class Follower:
                     found.seen = False
                 else:
                     self._attributes(owner, target.attr, method, found)
+            case ast.Tuple() if isinstance(method, Held) and isinstance(method.path[0], int):
+                place = method.path[0]
+                if place < len(target.elts) and not any(
+                    isinstance(each, ast.Starred) for each in target.elts
+                ):
+                    self.into_target(target.elts[place], statement, scope, taken(method), found)
+                else:
+                    found.seen = False
+            case ast.Subscript() if is_fresh(self, target.value, scope, "dict"):
+                self.into_target(target.value, statement, scope, put("value", method), found)
             case _:
                 found.seen = False
 
-    def _name(self, owner: Scope, name: str, statement: ast.AST, method: str | None, found: Followed) -> None:
+    def _name(self, owner: Scope, name: str, statement: ast.AST, method: Way, found: Followed) -> None:
         if (owner, name, method) in found.visited:
             return
         found.visited.add((owner, name, method))
@@ -223,11 +241,30 @@ class Follower:
                 reached = reached_reads(name, statement, owner, self.index)
             if reached is None:
                 found.seen = False
+        loops = self._loops(statement) if not isinstance(method, Held) else []
         for read, scope in owner.reads(name):
-            if reached is None or read in reached:
-                self._flow(read, scope, method, found)
+            if not all(self._within(read, loop) for loop in loops):
+                found.seen = False  # after the loop, what the last row gave
+            elif reached is None or read in reached:
+                self.flow(read, scope, method, found)
 
-    def _attributes(self, owner: Scope, name: str, method: str | None, found: Followed) -> None:
+    def _loops(self, statement: ast.AST) -> list[ast.For]:
+        """The loops around a statement whose row is taken now."""
+        found: list[ast.For] = []
+        current = self.index.parents.get(statement)
+        while current is not None:
+            if isinstance(current, ast.For) and self.choices.taken(current) is not None:
+                found.append(current)
+            current = self.index.parents.get(current)
+        return found
+
+    def _within(self, node: ast.AST, outer: ast.AST) -> bool:
+        current: ast.AST | None = node
+        while current is not None and current is not outer:
+            current = self.index.parents.get(current)
+        return current is outer
+
+    def _attributes(self, owner: Scope, name: str, method: Way, found: Followed) -> None:
         """A name of the class or of its objects: read by name in its body, by attribute anywhere."""
         if (owner, name, method) in found.visited:
             return
@@ -240,10 +277,10 @@ class Follower:
         if not self.names.is_private(name) or len(values) > 1:
             found.seen = False
         for read, scope in owner.reads(name):
-            self._flow(read, scope, method, found)
+            self.flow(read, scope, method, found)
         for use in self.index.reads.get(name, ()):
             if self._is_of(self.names.class_of(use.node.value, use.scope), owner, name, 0):
-                self._flow(use.node, use.scope, method, found)
+                self.flow(use.node, use.scope, method, found)
             elif self._may_be(use.node, use.scope, owner, name):
                 found.seen = False
 

@@ -23,6 +23,7 @@ from patlint.source.engine import FUNCTIONS, Arguments, Engine, bind_arguments
 from patlint.source.families import Made, read_families
 from patlint.source.flags import evaluate_flags
 from patlint.source.follow import Follower
+from patlint.source.held import put
 from patlint.source.index import Index, build_index
 from patlint.source.library import dotted
 from patlint.source.places import Text
@@ -236,7 +237,7 @@ class _Reader:
                 refused = refused or told.reason
             else:
                 value, row = told
-                self._site(call, row.scope, function, row.node, value, 0)
+                self._site(call, scope, function, row.node, value, 0, row=row)
         if refused is not None:
             self._refuse(node, function, refused)
         return True
@@ -287,20 +288,22 @@ class _Reader:
         pattern: Spelled,
         flags: int,
         handed: bool = False,
+        row: Row | None = None,
     ) -> None:
+        """`row`: `call` is `map` over a table, and makes a container of pattern objects."""
         uses: tuple[Use, ...]
         embedded = False
         if handed:
             uses, seen, name = (), False, None
         elif function == "compile":
-            found = self.follower.follow(call, scope, pattern.value)
+            found = self.follower.follow(call, scope, pattern.value, put("each", None) if row else None)
             uses = tuple(sorted(found.uses, key=lambda use: use.place))
             seen, name = found.seen and not self.follower.leads_back, found.name
             embedded = found.embedded
         else:
             uses = (self.uses.call(call, scope, cast(Function, function), False, pattern.value),)
             seen, name = True, None
-        place, statement = self._where(argument, scope, pattern)
+        place, statement = self._where(argument, row.scope if row is not None else scope, pattern)
         self.sites.append(
             Site(
                 path=self.path,

@@ -126,12 +126,13 @@ class Names:
             for each in ast.walk(parent.target):
                 if isinstance(each, ast.Name) and _may_hold_mutable(each, parent, read, display):
                     if isinstance(parent, ast.comprehension):
-                        inner = self._comprehension_scope(parent, inner)
+                        inner = self.comprehension_scope(parent, inner)
                     if not self.unchanged(each.id, inner):
                         return False
         return True
 
-    def _comprehension_scope(self, generator: ast.comprehension, scope: Scope) -> Scope:
+    def comprehension_scope(self, generator: ast.comprehension, scope: Scope) -> Scope:
+        """The scope of the comprehension that `generator` is a part of, which stands in `scope`."""
         node = self.index.parents.get(generator)
         return next((child for child in scope.children if child.node is node), scope)
 

@@ -28,6 +28,7 @@ Kind: TypeAlias = Literal["call", "method", "attribute", "rows", "states", "rout
 
 PART = "a part of a pattern that a library puts together"
 ENGINE = "a pattern for another engine than re"
+_WORD = re.compile(r"[^\W\d]\w*")
 SCANNER = "re.Scanner"
 CONDITION = "an argument that cannot be told decides whether it is a pattern"
 
@@ -117,7 +118,8 @@ class SinkTable:
         self.attributes: dict[str, list[Sink]] = {}
         self.results: dict[str, list[Sink]] = {}
         self.lookups: dict[str, Sink] = {}
-        hints: dict[tuple[str, bool], set[tuple[str, ...]]] = {}
+        self._told: set[tuple[str, ...]] = set()
+        self._below: dict[str, set[tuple[str, ...]]] = {}
         self.scanners = tuple(sink for sink in sinks if sink.name == SCANNER)
         for sink in sinks:
             if sink.name == SCANNER:
@@ -133,15 +135,10 @@ class SinkTable:
             else:
                 self.calls.setdefault(sink.name, []).append(sink)
             if sink.project or (sink.kind == "method" and not sink.needs):
-                firsts: tuple[tuple[str, bool], ...] = ((sink.words[0], False),)
+                self._told.add(sink.words)
             else:
-                firsts = tuple((top, True) for top in sink.needs or (sink.name.split(".")[0],))
-            for first in firsts:
-                hints.setdefault(first, set()).add(sink.words)
-        self._hints = tuple(
-            (first, _imports(first) if imported else None, tuple(sorted(words)))
-            for (first, imported), words in hints.items()
-        )
+                for top in sink.needs or (sink.name.split(".")[0],):
+                    self._below.setdefault(top, set()).add(sink.words)
         named = {*self.calls, *self.attributes, *self.results}
         self.tops = frozenset(name.split(".")[0] for name in named)
         self.members = frozenset(name.rpartition(".")[2] for name in named)
@@ -149,19 +146,21 @@ class SinkTable:
 
     def mentioned(self, text: str) -> bool:
         """Whether a file with this text can have any of the sinks; cheap, and True rather too often."""
-        return any(
-            first in text
-            and any(all(word in text for word in words) for words in several)
-            and (imports is None or any(each.search(text) for each in imports))
-            for first, imports, several in self._hints
-        )
+        below = self._below.keys() & imported_words(text)
+        several = [*self._told, *(words for top in below for words in self._below[top])]
+        return any(all(word in text for word in words) for words in several)
 
 
-def _imports(module: str) -> tuple[re.Pattern[str], ...]:
-    """What can stand before and after the name of a module where it is imported."""
-    name = re.escape(module)
-    return (
-        re.compile(rf"import[ \t\f\\\r\n]+{name}\b"),
-        re.compile(rf"from[ \t\f\\\r\n]+{name}\b"),
-        re.compile(rf",[ \t\f\\\r\n]*{name}\b"),
-    )
+def imported_words(text: str) -> set[str]:
+    """The words of all lines that hold "import", continued lines as one: modules are among them."""
+    found: set[str] = set()
+    at = text.find("import")
+    while at >= 0:
+        start, end = text.rfind("\n", 0, at) + 1, text.find("\n", at)
+        while start > 1 and text[start - 2] == "\\":
+            start = text.rfind("\n", 0, start - 1) + 1
+        while end > 0 and text[end - 1] == "\\":
+            end = text.find("\n", end + 1)
+        found.update(_WORD.findall(text, start, end if end >= 0 else len(text)))
+        at = text.find("import", end) if end >= 0 else -1
+    return found

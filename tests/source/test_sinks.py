@@ -332,6 +332,22 @@ def test_files_with_sinks_are_read_at_all() -> None:
     assert not table.mentioned("regex = compile(match)\nself.contains(raises)")
 
 
+@pytest.mark.parametrize(
+    "source",
+    [
+        "import os, \\\n pytest\npytest.raises(E, match='a')",
+        "from \\\n pytest \\\n import raises\nraises(E, match='a')",
+        "if 1: import os; import pytest\npytest.raises(E, match='a')",
+        "def f():\r\n\timport pytest as p\r\n\tp.raises(E, match='a')\r\n",
+        "from pytest import (\n  fail,\n  raises,\n)\nraises(E, match='a')",
+        "import pytest\rpytest.raises(E, match='a')",
+        "x = 1\nimport pytest; pytest.raises(E, match='a')",
+    ],
+)
+def test_imports_in_odd_places(source: str) -> None:
+    assert only(source).function == "pytest.raises"
+
+
 def test_one_text_for_two_takers_is_one_site() -> None:
     source = f"import re\nP = 'x+y'\nre.match(P, s)\n{UNITTEST}self.assertRegex(s, P)"
     (site,) = find_patterns(source, "a.py")

@@ -3,8 +3,9 @@
 >>> [(site.pattern, site.function) for site in find_patterns("import re\\nre.match('a+', text)", "a.py")]
 [('a+', 'match')]
 
-Order of work: decode, parse with `ast`, and only where the text imports `re`: one walk (`index`), the calls
-on `re` (`engine`), the text and flags of each (`constants`, `flags`), its uses (`usage`, `follow`).
+Order of work: decode, parse with `ast`, and only where the text imports `re` or mentions a sink: one
+walk (`index`), the calls on `re` (`engine`) and those of other libraries (`sinks_calls`), the text and flags
+of each (`constants`, `flags`), its uses (`usage`, `follow`).
 """
 
 from __future__ import annotations

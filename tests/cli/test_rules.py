@@ -21,6 +21,7 @@ def test_table(patlint: Patlint) -> None:
     for line, rule in zip(lines, RULES, strict=True):
         assert line.endswith(f" {rule.summary}")
         assert rule.level in line
+        assert len(line) <= 80
 
 
 @pytest.mark.parametrize("name", [rule.name for rule in RULES])

@@ -9,6 +9,7 @@ from dataclasses import replace
 import pytest
 
 from patlint.limits import DEFAULT_LIMITS
+from patlint.machine.counting import Counter
 from patlint.machine.nfa import Nfa
 from patlint.machine.program import compile_tree
 from patlint.machine.slow_text import REFERENCES, Ambiguity, Growth, ambiguity_of
@@ -165,6 +166,31 @@ MENDED: tuple[tuple[str, str, Growth | None], ...] = (
 @pytest.mark.parametrize(("pattern", "manner", "growth"), MENDED)
 def test_mended(pattern: str, manner: str, growth: Growth | None) -> None:
     assert decide(pattern, manner).growth == growth
+
+
+# What is still told as less than it is: found by the same search, with what is said and what the engine does on which
+# text. Must only shrink.
+OPEN: tuple[tuple[str, str, Growth, Growth, tuple[str, str, str, str]], ...] = (
+    (  # two repeats of one loop compete before a line feed and again behind it
+        r"(?:(?:(?s:.)*(?m:^))(?:$|.)*?)*[^a]",
+        "match",
+        2,
+        3,
+        ("a", "\n", "a", ""),
+    ),
+)
+
+
+@pytest.mark.parametrize(("pattern", "manner", "said", "done", "pieces"), OPEN)
+def test_still_open(
+    pattern: str, manner: str, said: Growth, done: Growth, pieces: tuple[str, str, str, str]
+) -> None:
+    assert decide(pattern, manner).growth == said != done
+    pump, between, second, suffix = pieces
+    counter = Counter(matcher_of(pattern).program)
+    text = [pump * n + between + second * n + suffix for n in (128, 256, 512)]
+    early, middle, late = (counter.steps(each, manner, 1_000_000)[0] or 0 for each in text)
+    assert round(2 * math.log2(late / middle) - math.log2(middle / early)) == done
 
 
 # One pump shows less of these. The first is Weber and Seidl's: the words of a chain may differ; the others are

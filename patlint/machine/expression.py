@@ -45,7 +45,7 @@ from patlint.syntax.charset import CharSet
 
 MOST_STATES = 40
 """Useful states of an automaton that is turned into an expression; 40 states take about 20 ms."""
-Order: TypeAlias = Literal["natural", "weights"]
+Order: TypeAlias = Literal["natural", "weights", "bridges", "both"]
 SLACK = 2
 """A way between two states may become so many times longer than the result may be; algebra shortens it
 later."""
@@ -74,10 +74,14 @@ def expressions(dfa: Dfa, algebra: Algebra, longest: int = 400, *, backwards: bo
 
 
 def eliminated(dfa: Dfa, algebra: Algebra, order: Order, longest: int = 100_000) -> Expr | None:
-    """One run of the elimination forwards, for comparison: states in their "natural" order, or by "weights"
-    alone."""
+    """One run of the elimination forwards, for comparison: states in their "natural" order, by "weights" alone,
+    in their natural order but for "bridges", which come last, or "both"."""
     edges = _edges(dfa)
-    return None if edges is None else _eliminate(edges, algebra, longest, False, order == "natural")
+    if edges is None:
+        return None
+    natural = order in ("natural", "bridges")
+    found = _eliminate(edges, algebra, longest, True, natural) if order in ("bridges", "both") else None
+    return _eliminate(edges, algebra, longest, False, natural) if found is None else found
 
 
 def in_order(expr: Expr, leaves: list[CharSet]) -> Expr:

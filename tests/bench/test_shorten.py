@@ -19,9 +19,12 @@ def test_nothing_is_wrong_on_random_patterns() -> None:
 def test_shorter_than_the_weights_alone() -> None:
     rows = random_automata(4, 1, [(3, 2), (5, 2), (4, 3)])
     assert len(rows) == 3
-    for states, letters, natural, weights, search in rows:
-        assert search <= weights, (states, letters)
-        assert search < natural, (states, letters)
+    for states, letters, means in rows:
+        assert all(means["search"] <= means[column] for column in ("weights", "bridges", "both")), (
+            states,
+            letters,
+        )
+        assert means["search"] < means["natural"], (states, letters)
 
 
 def test_round_trips_come_back() -> None:

@@ -9,8 +9,9 @@ import pytest
 
 from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
 from patlint.machine.determinise import language
+from patlint.machine.dfa import canonical
 from patlint.machine.nfa import Nfa
-from patlint.machine.priority import spans
+from patlint.machine.priority import shown_used, spans
 from patlint.machine.program import compile_tree
 from patlint.syntax.parser import parse
 
@@ -102,3 +103,27 @@ def test_what_a_program_computes_on_the_way_counts_as_work(what: str, pattern: s
             assert (reached.limit, reached.value) == ("work", middle)
             low = middle
     assert low > 10, what
+
+
+def test_equal_look_arounds_share_what_is_known_of_them() -> None:
+    """Two hundred words, each between the same look-arounds: one tracker, one automaton."""
+    names = [f"w{number}" for number in range(200)]
+    nfa = Nfa(compile_tree(parse("|".join(rf"(?<!\w){name}(?!\w)" for name in names))), DEFAULT_LIMITS)
+    assert (
+        len(set(nfa.body_of)) == 400
+        and len(nfa.trackers) == 1
+        and set(nfa.body_of.values()) == set(nfa.trackers)
+    )
+    same = language(nfa, "search")
+    whole = rf"(?<!\w)(?:{'|'.join(names)})(?!\w)"
+    assert canonical(same) == canonical(language(Nfa(compile_tree(parse(whole)), DEFAULT_LIMITS), "search"))
+    other = Nfa(compile_tree(parse(r"(?<=a)x|(?<=(?i:a))x|(?<=b)x|(?<!a)x")), DEFAULT_LIMITS)
+    assert len(other.trackers) == 3
+
+
+def test_showing_what_is_used_stops() -> None:
+    """Within a text too: a way through all of these reads 400 characters, and each step has as many threads."""
+    nfa = Nfa(compile_tree(parse(r"\w+\s*" * 200)), replace(DEFAULT_LIMITS, work=4_000))
+    assert shown_used(nfa, "match", [nfa.accept - 1]) == set()
+    nfa = Nfa(nfa.program, DEFAULT_LIMITS)
+    assert len(shown_used(nfa, "match", [nfa.accept - 1])) >= 200

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import itertools
 import random
+import re
 from dataclasses import replace
 
 import pytest
@@ -152,3 +153,12 @@ def test_texts_of_a_language(mode: str) -> None:
 )
 def test_totals(pattern: str, total: int | None) -> None:
     assert words.total(dfa_of(pattern)) == total
+
+
+def test_texts_of_many_paths_come_at_once() -> None:
+    """There are 2**90 texts of the least length, and as many ways to begin a text that cannot be finished."""
+    for pattern in ("(?:[ab]x?){90}", "(?:[ab]){90}", "(?=(?:[ab]){89}a)[ab]{90}"):
+        listed = [text_of(codes) for codes in itertools.islice(words.words(dfa_of(pattern)), 3)]
+        assert len(set(listed)) == 3 and sorted(listed, key=len) == listed
+        assert all(re.fullmatch(pattern, text) for text in listed)
+        assert listed[0] == "a" * 90

@@ -44,7 +44,7 @@ def told(monkeypatch: pytest.MonkeyPatch) -> dict[str, dict[tuple[int, int, str]
     site, refuse = reading._Reader._site, reading._Reader._refuse
 
     def keep(
-        self: Any, call: Any, scope: Any, function: str, argument: Any, pattern: Any, flags: int, **more: Any
+        self: Any, call: Any, scope: Any, name: str, node: Any, text: Any, flags: int, **more: Any
     ) -> None:
         seen[self.path][call.lineno, call.end_lineno, name].add((text.value, flags))
         site(self, call, scope, name, node, text, flags, **more)

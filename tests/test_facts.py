@@ -12,7 +12,7 @@ from datetime import date
 
 import pytest
 
-from patlint.language import Language, relate
+from patlint.language import Language, ambiguity, relate
 from patlint.limits import DEFAULT_LIMITS, Limits
 from patlint.machine.nfa import Nfa
 from patlint.machine.program import compile_tree
@@ -193,6 +193,21 @@ def test_the_expression_for_uris_matches_every_text() -> None:
     assert Language(pattern, mode="search").is_universal()
     assert not Language(pattern).is_universal()
     assert Language(pattern, int(re.DOTALL)).is_universal()
+
+
+def test_the_expression_for_mail_addresses() -> None:
+    """HTML Living Standard, e-mail state of input, from memory: labels of at most 63 characters, and no way back."""
+    pattern = (
+        r"^[a-zA-Z0-9.!#$%&'*+\/=?^_`{|}~-]+@[a-zA-Z0-9](?:[a-zA-Z0-9-]{0,61}[a-zA-Z0-9])?"
+        r"(?:\.[a-zA-Z0-9](?:[a-zA-Z0-9-]{0,61}[a-zA-Z0-9])?)*$"
+    )
+    address = Language(pattern, ASCII)
+    assert address.accepts("a@" + "b" * 63) and not address.accepts("a@" + "b" * 64)
+    assert not address.accepts("a@-b") and not address.accepts("a@b.")
+    label = r"(?!-)[a-zA-Z0-9-]{1,63}(?<!-)"
+    assert address == Language(rf"[a-zA-Z0-9.!#$%&'*+/=?^_`{{|}}~-]+@{label}(?:\.{label})*", ASCII)
+    found = ambiguity(pattern, ASCII, "match")
+    assert (found.growth, found.undecided) == (None, None)
 
 
 # RFC 5234, appendix B.1; from memory: the code points of each rule.

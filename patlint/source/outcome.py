@@ -32,14 +32,12 @@ class Outcome:
     """What was seen so far; `ends` are the places that read where the match ends."""
 
     level: int = -1
-    tested: bool = False
     ends: list[ast.AST] = field(default_factory=list)
     tests: list[ast.AST] = field(default_factory=list)
     """The expressions whose truth is asked."""
 
     def saw(self, looks_at: LooksAt) -> None:
         self.level = max(self.level, _ORDER.index(looks_at))
-        self.tested |= looks_at == "truth"
 
     @property
     def looks_at(self) -> LooksAt:

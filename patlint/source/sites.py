@@ -64,8 +64,6 @@ class Use:
     bounded: int | None = None
     in_loop: bool = False
     """The outcome steers a `while` loop that goes on from the end of the match."""
-    tested: bool = False
-    """The program tests somewhere whether there is an outcome, whatever else it looks at."""
     validates: bool = False
     """A text without an outcome is refused: an exception, `return False`, or the truth is what a function returns."""
     end_settled: bool = False

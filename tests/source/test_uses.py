@@ -111,22 +111,6 @@ def test_looks_at(body: str, looks_at: str) -> None:
     assert of_body(body).uses[0].looks_at == looks_at
 
 
-TESTED = [
-    ("if re.match('a', s): pass", True),
-    ("m = re.match('a', s)\nif m: print(m[1])", True),
-    ("m = re.match('a', s)\nprint(m[1])", False),
-    ("g(re.match('a', s))", False),
-    ("m = re.match('a', s)\nreturn m and m[1]", True),
-    ("m = y and re.match('a', s)\nprint(m[1])", False),
-    ("if y and re.match('a', s): pass", True),
-]
-
-
-@pytest.mark.parametrize("body, tested", TESTED)
-def test_tested(body: str, tested: bool) -> None:
-    assert of_body(body).uses[0].tested is tested
-
-
 SEEN = [
     # module level, private
     ("_r = re.compile('a')\ndef f(s): return bool(_r.match(s))", ["match"], True),

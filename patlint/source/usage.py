@@ -59,7 +59,6 @@ class Uses:
             maximum=self._number(limit, scope),
             bounded=self._bound(given.get("string"), scope),
             in_loop=self._in_loop(call, outcome),
-            tested=outcome.tested if outcome else False,
             validates=outcome is not None and any(refuses(test, self.index) for test in outcome.tests),
             end_settled=end_is_settled(given.get("string"), scope, self.index),
             drops_empty=function in ("findall", "finditer") and drops_empty(call, self.index),
@@ -67,7 +66,7 @@ class Uses:
 
     def tested_by(self, node: ast.expr, function: Function, looks_at: LooksAt) -> Use:
         """A bound method that `filter` or `any(map(...))` calls."""
-        return Use(function, looks_at, self.text.place(node), tested=looks_at == "truth")
+        return Use(function, looks_at, self.text.place(node))
 
     def _outcome(
         self,

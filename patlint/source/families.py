@@ -22,7 +22,9 @@ from patlint.source.chains import Chains
 from patlint.source.constants import Constants
 from patlint.source.index import Index
 from patlint.source.places import Text
+from patlint.source.routes import route_families
 from patlint.source.scopes import Scope
+from patlint.source.sinks_calls import SinkReader
 from patlint.source.sites import Family, Member, Place, Site, Trial
 from patlint.source.tables import Tables
 from patlint.source.trials import TESTING, Test, read_test
@@ -39,20 +41,21 @@ def read_families(
     text: Text,
     constants: Constants,
     made: Made,
-    rows: Iterable[list[Site]],
+    sinks: SinkReader,
     sites: Iterable[Site],
 ) -> tuple[Family, ...]:
     """The families of a file whose sites, merged, are `sites`; in the order of their first members.
 
-    `rows` are sequences of which a library takes the first that matches.
+    `sinks` knows the rows and routes of which a library takes the first that matches.
     """
-    ordered = [each for each in rows if len(each) > 1]
-    if not made and not ordered:
+    ordered = [each for each in sinks.rows if len(each) > 1]
+    if not made and not ordered and not sinks.made:
         return ()
     final = {(site.place, site.pattern, site.flags): site for site in sites}
     found = list(Tables(index, text, constants.names, made).find())
     found += Chains(index, text, _tests(index, constants, made)).find()
     found += filter(None, map(_ordered, ordered))
+    found += route_families(index, text, sinks.made)
     found += _constants(index, made)
     settled = filter(None, (_settled(family, final) for family in found))
     return tuple(sorted(settled, key=lambda family: family.members[0].site.place))
@@ -60,6 +63,10 @@ def read_families(
 
 def _ordered(rows: list[Site]) -> Family | None:
     """Rows that a library tries in their order; None where it is not known how."""
+    if all(site.function.startswith("tornado.") and not site.uses for site in rows):
+        # A dollar is added to each, and match asked: what holds of fullmatch holds of that.
+        members = tuple(Member(site, ("fullmatch",), True, step, None) for step, site in enumerate(rows))
+        return Family("table", "first", members, (Trial(rows[0].place),))
     if any(len(site.uses) != 1 for site in rows):
         return None
     positioned = any(site.uses[0].positioned for site in rows)

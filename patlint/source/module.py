@@ -72,7 +72,7 @@ def read_module(
                 reader.read()
                 sites, unresolved = reader.results()
                 families = read_families(
-                    reader.index, reader.text, reader.constants, reader.made, reader.sinks.rows, sites
+                    reader.index, reader.text, reader.constants, reader.made, reader.sinks, sites
                 )
             finally:
                 reader.release()

@@ -56,6 +56,8 @@ class SinkReader:
         self.unresolved: list[Unresolved] = []
         self.rows: list[list[Site]] = []
         """The sites of each sequence of rows that is tried in its order."""
+        self.made: dict[ast.Call, Site] = {}
+        """The site of each call of a function or class that takes one pattern."""
         self._package = [part for part in re.split(r"[/\\]", path)[:-1] if part]
         self._imported: dict[str, bool] = {}
 
@@ -283,8 +285,11 @@ class SinkReader:
             return
         if sink.kind == "rows":
             self._rows(argument, scope, sink, flags, call)
-        else:
-            self._text(argument, scope, sink, flags, call)
+            return
+        before = len(self.sites)
+        self._text(argument, scope, sink, flags, call)
+        if sink.kind == "call" and len(self.sites) == before + 1:
+            self.made[call] = self.sites[before]
 
     def _flags(self, node: ast.expr | None, scope: Scope) -> int:
         if isinstance(node, ast.Constant) and node.value is None:

@@ -176,6 +176,37 @@ def test_rules_of_lexers() -> None:
     assert families(RULES.format("RegexLexer, Flagged")) == []
 
 
+ROUTES = """
+from django.urls import re_path, include
+from . import views, urls
+from .views import gate
+nested = include('x')
+urlpatterns = [
+    re_path(r'^a$', views.a), re_path(r'b', gate), re_path('c', include('x')), re_path('d', nested),
+    re_path('e', admin.site.urls), re_path('f', urls.patterns), re_path('g', Gate.as_view()), re_path('h', made()),
+]
+"""
+
+
+def test_routes() -> None:
+    """Only plain views take: what is included may fit nothing, and then the next route is tried."""
+    family = only(ROUTES)
+    assert [(str(m.site.pattern), m.modes, m.takes) for m in family.members] == [
+        ("^a$", ("search", "fullmatch"), True),
+        ("b", ("search", "search"), True),
+        *((each, ("search", "search"), each == "g") for each in "cdefgh"),
+    ]
+
+
+def test_rows_of_an_application() -> None:
+    source = "from tornado.web import Application\nApplication([{}])"
+    family = only(source.format("('/a', A), ('/b', B)"))
+    assert {member.modes for member in family.members} == {("fullmatch",)}
+    family = only(source.format("('/a$', A), ('/b$', B)"))
+    assert {member.modes for member in family.members} == {("match",)}
+    assert families(source.format("('/a$', A), ('/b', B)")) == []
+
+
 def test_rows_of_a_scanner() -> None:
     family = only("re.Scanner([('a', None), ('b', None)])")
     assert (patterns(family), family.order, family.trials[0].positioned) == ("a b", "first", True)

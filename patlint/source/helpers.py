@@ -49,7 +49,8 @@ class Helpers:
         self._inside: dict[ast.AST, Scope] = {}
         self._calls: dict[ast.AST, Calls] = {}
         self._reached: dict[tuple[ast.AST, ast.AST], bool] = {}
-        self._given_names: dict[Scope, frozenset[str]] = {}
+        self._given_names: dict[Scope, frozenset[str] | None] = {}
+        """None while it is being found: a function that calls itself hands its own parameters on."""
         self._frames: dict[ast.AST, Environment] = {}
         self._depth = 0
 
@@ -153,10 +154,21 @@ class Helpers:
             raise Opaque(reasons.PARAMETER)
 
     def given_names(self, owner: Scope) -> frozenset[str]:
-        """The parameters of a function for which one of its calls gives a constant."""
+        """The parameters of a function for which one of its calls gives a constant.
+
+        Errors: `Opaque` where that depends on itself.
+        """
         if owner not in self._given_names:
-            self._given_names[owner] = self._find_given(owner)
-        return self._given_names[owner]
+            self._given_names[owner] = None
+            try:
+                self._given_names[owner] = self._find_given(owner)
+            finally:
+                if self._given_names[owner] is None:
+                    del self._given_names[owner]
+        found = self._given_names[owner]
+        if found is None:
+            raise Opaque(reasons.PARAMETER)
+        return found
 
     def _find_given(self, owner: Scope) -> frozenset[str]:
         names = set()

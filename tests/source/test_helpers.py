@@ -156,3 +156,18 @@ def test_uses(source: str, expected: dict[str, tuple[list[str], bool]]) -> None:
     sites = find_patterns("import re\n" + source, "a.py")
     found = {site.pattern: ([use.function for use in site.uses], site.uses_seen) for site in sites}
     assert found == expected
+
+
+CALLING_THEMSELVES = [
+    "def f(t, w):\n if t: f(t, w)\n else: re.search(w, t)\n",
+    "def f(t, w='x'):\n if w: return re.match(w, t)\n return g(t, w)\ndef g(t, w): return f(t, w)\n",
+    "def f(t, w='x'):\n if w: return re.match(w, t)\n return g(t, w)\ndef g(t, w): return f(t, w)\nf('', 'y')\n",
+    "def f(t, *, w):\n if not t: return re.match(w, t)\n return f(t[1:], w=w + 'a')\nf('aa', w='b')\n",
+]
+
+
+@pytest.mark.parametrize("source", CALLING_THEMSELVES)
+def test_functions_that_call_themselves_are_no_circle(source: str) -> None:
+    found = read_module("import re\n" + source, "circle.py")
+    assert {each.pattern for each in found.sites} <= {"x", "y", "b"}
+    assert found.unresolved or found.sites

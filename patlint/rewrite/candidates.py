@@ -44,7 +44,8 @@ def candidates(
     target: tuple[int, int] | None = None,
     limits: Limits = DEFAULT_LIMITS,
 ) -> list[Candidate]:
-    """The candidates for a pattern, shorter than it and shortest first, at most `MOST`."""
+    """The candidates for a pattern, shorter than it and shortest first, at most `MOST`; `keeps` is the least that
+    has to stay, and each says what does."""
     if len(parsed.text) > LONGEST or parsed.flags & t.LOCALE:
         return []
     search = Search(parsed, mode, keeps, target, limited(limits))
@@ -62,7 +63,11 @@ def candidates(
                 search.typed(whole), len(whole), _verdict(search, island, text, whole, turned)
             )
     ranked = sorted(found.values(), key=lambda each: (each.length, each.pattern))
-    return ranked[:MOST]
+    # Of each thing that may have to stay the shortest is shown, however many shorter ones keep less.
+    first = {each.verdict: each for each in reversed(ranked) if each.verdict in _STAYS.values()}
+    rest = [each for each in ranked if each not in first.values()]
+    shown = [*first.values(), *rest[: MOST - len(first)]]
+    return sorted(shown, key=lambda each: (each.length, each.pattern))
 
 
 _STAYS = {"groups": "groups stay", "spans": "spans stay", "language": "the language stays"}

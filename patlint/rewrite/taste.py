@@ -7,6 +7,8 @@ r"""What a maintainer would rather not read, although it is shorter.
 - sets that mix what the author kept apart: `[a-z=]=` for `[a-z]=|==`;
 - optional signs that say what may stand there, swallowed by what follows: `<[^>]+` for `</?[^>]+`;
 - a loop inside a loop where there was none: `(?:[a-z][._]*)*[a-z]` for `[a-z]|[a-z][a-z._]*[a-z]`;
+- numbers by their ranges whose first digit is taken out: `2(?:2[4-9]|[34][0-9]|5[0-5])` for
+  `22[4-9]|23[0-9]|24[0-9]|25[0-5]`;
 - a pattern turned inside out for the sake of a few characters.
 
 Examples are from reading what is proposed for the patterns of the standard library; common practice, no
@@ -29,6 +31,7 @@ from patlint.syntax.classes import char_set
 
 Word: TypeAlias = tuple[int, ...]
 
+_DIGITS = CharSet.of_range(48, 57)
 LIST = 3
 """So many words make a list."""
 LIST_SAVING = 0.4
@@ -51,7 +54,7 @@ def is_readable(old: t.Node, new: t.Node, lengths: tuple[int, int], turned: bool
     plainer = operators <= DEEPER_OPERATORS * old_operators and before - after >= DEEPER_SAVING * before
     if operators > old_operators or depth > old_depth + plainer:
         return False
-    if _loop_depth(new) > _loop_depth(old):
+    if _loop_depth(new) > _loop_depth(old) or _split_numbers(new) > _split_numbers(old):
         return False
     if turned and (operators >= old_operators or before - after < TURNED_SAVING * before):
         return False
@@ -88,6 +91,26 @@ def _loop_depth(node: t.Node) -> int:
     """How deep repeats without bound are nested."""
     below = max(map(_loop_depth, t.children(node)), default=0)
     return below + (isinstance(node, t.Repeat) and node.maximum is None)
+
+
+def _split_numbers(node: t.Node) -> int:
+    """How often a digit stands before alternatives that begin with digits or sets."""
+    count = 0
+    for each in t.walk(node):
+        for digit, after in (
+            zip(each.items, each.items[1:], strict=False) if isinstance(each, t.Sequence) else ()
+        ):
+            if isinstance(digit, t.Literal) and chr(digit.code).isdigit() and isinstance(after, t.Group):
+                branches = after.body.branches if isinstance(after.body, t.Alternation) else ()
+                count += sum(map(_begins_with_digits, branches)) > 1
+    return count
+
+
+def _begins_with_digits(node: t.Node) -> bool:
+    first = node.items[0] if isinstance(node, t.Sequence) and node.items else node
+    if isinstance(first, t.Literal):
+        return chr(first.code).isdigit()
+    return isinstance(first, t.Set) and not first.negated and not char_set(first, False).isdisjoint(_DIGITS)
 
 
 def _keeps_options(old: t.Node, new: t.Node, is_bytes: bool) -> bool:

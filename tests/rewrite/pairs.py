@@ -89,7 +89,11 @@ PAIRS = [
     Pair(r"01|02|03|04|05|06|07|08|09|10|11|12", r"0[1-9]|1[0-2]"),
     Pair(r"[+-]\d+|\d+", r"[+-]?\d+"),
     Pair(r"a(?:b|c)d|a(?:b|c)e", r"a[bc][de]"),
-    Pair(r"(?:22[4-9]|23[0-9]|24[0-9])\.", r"2(?:2[4-9]|[34][0-9])\."),
+    Pair(
+        r"(?:22[4-9]|23[0-9]|24[0-9])\.",
+        r"2(?:2[4-9]|[34][0-9])\.",
+        known="numbers by their ranges keep their first digit",
+    ),
     # Branches and parts that others take in
     Pair(r"[a-z]+|box|crate", r"[a-z]+"),
     Pair(r"\d+|\d", r"\d+"),

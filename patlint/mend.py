@@ -281,7 +281,7 @@ def _proven(one: Site, other: Site, keeps: Keeps | None, settings: Settings) -> 
 
 
 def _manner(use: object) -> tuple[object, ...]:
-    names = ("function", "positioned", "replacement", "maximum", "in_loop", "tested")
+    names = ("function", "positioned", "replacement", "maximum", "in_loop", "validates")
     return tuple(getattr(use, name) for name in names)
 
 

@@ -25,6 +25,7 @@ from patlint.source.engine import FUNCTIONS, bind_arguments
 from patlint.source.index import Index
 from patlint.source.names import Names
 from patlint.source.places import Text
+from patlint.source.reasons import Opaque
 from patlint.source.scopes import Scope
 from patlint.source.sites import Family, Member, Mode, Order, Site, Trial
 from patlint.source.trials import (
@@ -115,8 +116,11 @@ class Tables:
                 rest = None if several else self._rest(element, node)
                 if several and not column and _over_texts(container):
                     rest = ""
-                if several and not _over_rows(container, call):
-                    continue
+                if several:
+                    if not _over_rows(container, call) or not self._is_one_table(container, sites):
+                        continue
+                elif len(sites) > 1:
+                    continue  # one text or another, not one after the other
                 table.members += [(element, site, rest) for site, _ in sites]
                 scopes[container] = sites[0][1]
         tables = [table for table in found.values() if len(table.members) > 1]
@@ -135,6 +139,33 @@ class Tables:
             table.named = isinstance(table.container, (ast.Dict, ast.DictComp)) or self._is_record(table)
             kept.append((table, scope))
         return kept
+
+    def _is_one_table(self, container: ast.expr, sites: list[tuple[Site, Scope]]) -> bool:
+        """Whether a comprehension's patterns are the rows of one display, each once."""
+        generators: list[ast.comprehension] = getattr(container, "generators", [])
+        scope = sites[0][1]
+        outer = scope.parent if scope.node is container and scope.parent else scope
+        places = {site.place for site, _ in sites}
+        return len(places) == len(sites) and self._is_display(generators[0].iter, outer)
+
+    def _is_display(self, node: ast.expr, scope: Scope, depth: int = 0) -> bool:
+        """Whether an iterable is one written-out sequence in its order, and no other."""
+        match node:
+            case ast.List() | ast.Tuple() | ast.Dict():
+                return True
+            case ast.Call(func=ast.Name(id="tuple" | "list" | "enumerate" | "iter"), args=[first, *_]):
+                return self._is_display(first, scope, depth + 1)
+            case ast.Call(func=ast.Attribute(attr="items" | "values" | "keys"), args=[]):
+                assert isinstance(node.func, ast.Attribute)
+                return self._is_display(node.func.value, scope, depth + 1)
+            case ast.Name() | ast.Attribute() if depth < 10:
+                try:
+                    definitions = self.names.definitions(node, scope)
+                except Opaque:
+                    return False
+                return len(definitions) == 1 and self._is_display(*definitions[0], depth + 1)
+            case _:
+                return False
 
     def _is_record(self, table: Table) -> bool:
         """Whether each member of a tuple has a meaning of its own: the tuple is unpacked, returned, or a row."""
@@ -452,6 +483,8 @@ class Tables:
         given = bind_arguments(call, FUNCTIONS.get(sites[0][0].function, ())).given.get("pattern")
         if not isinstance(given, ast.Name):
             return None
+        if len({site.place for site, _ in sites}) < len(sites):
+            return None
         members: list[tuple[ast.expr, Site, str | None]] = [(given, site, "") for site, _ in sites]
         name = given.id
         current: ast.AST | None = self.index.parents.get(call)
@@ -465,12 +498,16 @@ class Tables:
         if isinstance(current, (ast.GeneratorExp, ast.ListComp, ast.SetComp)):
             part = current.generators[0]
             outer = scope.parent if scope.node is current and scope.parent else scope
-            if name in stored_names([part.target]):
+            if name in stored_names([part.target]) and self._is_display(part.iter, outer):
                 found = self._through_generator(part, outer, {(name, ())}, None)
         else:
             while current is not None and not isinstance(current, (ast.For, ast.FunctionDef, ast.Lambda)):
                 current = self.index.parents.get(current)
-            if isinstance(current, ast.For) and name in stored_names([current.target]):
+            if (
+                isinstance(current, ast.For)
+                and name in stored_names([current.target])
+                and self._is_display(current.iter, scope)
+            ):
                 found = self._through(current, scope, name, (), None)
         if found.order != "first":
             return None

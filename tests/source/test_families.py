@@ -123,6 +123,25 @@ def test_chains(body: str, expected: list[str]) -> None:
     assert told == expected
 
 
+ALTERNATIVES = [
+    "T = ('a', 'b') if x else ('c', 'd')\ndef f(s):\n  for p in T:\n    if re.match(p, s): return 1",
+    "def f(s, x):\n  for p in (('a', 'b') if x else ('c', 'd')):\n    if re.match(p, s): return 1",
+    "def f(s, x):\n  for p in {'a', 'b', 'c'}:\n    if re.match(p, s): return 1",
+    "def f(s, T):\n  for p in T:\n    if re.match(p, s): return 1\nf('', ('a', 'b'))\nf('', ('ab', 'c'))",
+    "class A:\n  T = ('a', 'b')\n  def f(self, s):\n    for p in self.T:\n      if re.match(p, s): return 1\n"
+    "class B(A):\n  T = ('ab', 'c')",
+    "if x: P = 'a'\nelse: P = 'ab'\nT = [re.compile(P), re.compile('b')]\ndef f(s):\n"
+    "  for p in T:\n    if p.match(s): return 1",
+    "def f(x):\n  P = 'a' if x else 'b'\n  return [re.compile(P + p) for p in ('c', 'd')]",
+]
+"""Texts of which a run of the program has one or the other: no family of all."""
+
+
+@pytest.mark.parametrize("source", ALTERNATIVES)
+def test_alternatives_are_no_siblings(source: str) -> None:
+    assert [each for each in families(source) if each.order == "first"] == []
+
+
 def test_a_global_text_may_change_in_any_call() -> None:
     source = "def f():\n  if re.match('a', s): return 1\n  g()\n  if re.match('b', s): return 2\n"
     assert families(source) == []

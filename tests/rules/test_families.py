@@ -368,6 +368,9 @@ DECLINING = [
     "T = [{rows}]\ndef f(s, it):\n  for p, n in T:\n    if p.match(next(it)): return n\n",
     "T = set([{rows}])\ndef f(s):\n  for p, n in T:\n    if p.match(s): return n\n",
     "T = {{{items}}}\ndef f(s):\n  return T[s].match(s)\n",
+    "T = [{rows}]\ndef f(s):\n  for p, n in T:\n    if p.match(s):\n      x = n\n      continue\n    return n\n",
+    "def f(s):\n  if re.match({0!r}, s): return 0\n  elif (s := s[1:]) == 'x': return None\n"
+    "  elif re.match({1!r}, s): return 1\n",
     "def f(s):\n  if s and re.match({0!r}, s): return 0\n  elif s and re.match({1!r}, s): return 1\n",
     "def f(s):\n  if re.match({0!r}, s): x = 0\n  if re.match({1!r}, s): return 1\n  if re.match({2!r}, s): return 2\n",
     "def f(s):\n  if re.match({0!r}, s): return 0\n  s = s.strip('a')\n  if re.match({1!r}, s): return 1\n"

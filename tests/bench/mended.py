@@ -64,7 +64,18 @@ def outcomes(tree: Path, package: str, python: Path) -> dict[str, str]:
     # The modules are those of the copy, whatever is installed.
     begin = f"import sys; sys.path.insert(0, {str(code.parent)!r})"
     begin += "; import pytest; sys.exit(pytest.main(sys.argv[1:]))"
-    call = [str(python), "-c", begin, "-q", "-p", "no:cacheprovider", f"--junitxml={report}", "tests"]
+    call = [
+        str(python),
+        "-c",
+        begin,
+        "-q",
+        "-W",
+        "default",
+        "-p",
+        "no:cacheprovider",
+        f"--junitxml={report}",
+        "tests",
+    ]
     subprocess.run(call, cwd=tree, capture_output=True)
     found = {}
     for case in ElementTree.parse(report).iter("testcase"):

@@ -24,7 +24,7 @@ from patlint import __version__
 from patlint.identity import VERSION, content, fingerprint, ordinals
 from patlint.placed import PlacedFinding, RelatedPlace
 from patlint.report.json import dump, summary
-from patlint.report.show import pattern_expression, witness_expression
+from patlint.report.show import open_question, pattern_expression, printable, witness_expression
 from patlint.rules.finding import Example, Rule, SlowWitness
 from patlint.target import Target, target_name
 
@@ -196,7 +196,7 @@ def _properties(finding: PlacedFinding) -> Iterator[tuple[str, Any]]:
         if isinstance(finding.witness, SlowWitness):
             yield "growth", finding.witness.growth
     if finding.proof:
-        yield "proof", _plain(finding.proof)
+        yield "proof", printable(finding.proof)
     if finding.suggestion is not None:
         yield "suggestion", pattern_expression(finding.suggestion.pattern)
         yield "keeps", finding.suggestion.keeps
@@ -227,11 +227,11 @@ def _open(outcome: Outcome, places: dict[str, dict[str, Any]]) -> Iterator[dict[
         for each in remarks:
             region = {"startLine": each.line, "startColumn": each.column}
             where = {"artifactLocation": places[outcome.path], "region": region}
-            yield _notification("note", f"{word}: {each.reason}", where)
+            yield _notification("note", f"{word}: {open_question(each.reason)}", where)
 
 
 def _notification(level: str, text: str, where: dict[str, Any] | None) -> dict[str, Any]:
-    made: dict[str, Any] = {"level": level, "message": {"text": _braced(_plain(_joined(text)))}}
+    made: dict[str, Any] = {"level": level, "message": {"text": _braced(printable(_joined(text)))}}
     if where is not None:
         made["locations"] = [{"physicalLocation": where}]
     return made
@@ -239,7 +239,7 @@ def _notification(level: str, text: str, where: dict[str, Any] | None) -> dict[s
 
 def _sentence(text: str) -> str:
     """`text` as a sentence of a SARIF message: a capital, a full stop, and what has a meaning there escaped."""
-    text = _plain(_joined(text))
+    text = printable(_joined(text))
     end = "" if text.endswith((".", "!", "?")) else "."
     return _braced(text[:1].upper() + text[1:] + end)
 
@@ -261,8 +261,3 @@ def _joined(text: str) -> str:
 
 def _lines(lines: Iterable[str]) -> Iterator[str]:
     return (line.strip() for line in lines)
-
-
-def _plain(text: str) -> str:
-    """`text` with everything that does not print, lone surrogates above all, escaped."""
-    return "".join(char if char.isprintable() else ascii(char)[1:-1] for char in text)

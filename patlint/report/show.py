@@ -14,8 +14,10 @@ the output's encoding lacks are escaped; wide characters count two columns.
 from __future__ import annotations
 
 import unicodedata
+from dataclasses import fields
 from typing import Final
 
+from patlint.limits import Limits
 from patlint.rules.finding import SlowWitness, TextWitness, Witness
 
 REPEATS: Final = {"exponential": 30, 2: 10_000, 3: 1_000}
@@ -78,6 +80,21 @@ def witness_expression(witness: Witness) -> str:
             if witness.suffix:
                 parts.append(ascii(witness.suffix))
             return " + ".join(parts)
+
+
+def open_question(reasons: str) -> str:
+    """Why a question stayed open, the names of limits in words; `reasons` are divided by `; `.
+
+    >>> open_question("states; back-references")
+    'limit states reached; back-references'
+    """
+    limits = {each.name for each in fields(Limits)}
+    return "; ".join(f"limit {each} reached" if each in limits else each for each in reasons.split("; "))
+
+
+def printable(text: str) -> str:
+    """`text` with everything escaped that does not print: what could break or hide a line, lone surrogates."""
+    return "".join(char if char.isprintable() else ascii(char)[1:-1] for char in text)
 
 
 def cells(text: str | bytes, encoding: str = "utf-8") -> tuple[str, ...]:

@@ -23,7 +23,14 @@ from typing import TYPE_CHECKING, Final
 
 from patlint.placed import PlacedFinding
 from patlint.report.json import summary
-from patlint.report.show import cells, pattern_expression, width, witness_expression
+from patlint.report.show import (
+    cells,
+    open_question,
+    pattern_expression,
+    printable,
+    width,
+    witness_expression,
+)
 from patlint.rules.finding import LEVELS
 
 if TYPE_CHECKING:
@@ -83,10 +90,11 @@ def lint_report(result: RunResult, style: Style, verbose: bool = False) -> Itera
     if result.gone:
         for entry in result.gone if verbose else ():
             shown = "" if entry.pattern is None else f": {pattern_expression(entry.pattern)}"
-            yield f"{_one_line(entry.path)}: gone: {entry.rule}{shown}"
-        many = "1 entry is" if len(result.gone) == 1 else f"{len(result.gone)} entries are"
-        name = _one_line(result.ledger or "")
-        yield f"{name}: {many} gone from the code; `patlint ledger prune` takes out what is gone"
+            yield f"{printable(entry.path)}: gone: {entry.rule}{shown}"
+        one = len(result.gone) == 1
+        many = "1 entry is" if one else f"{len(result.gone)} entries are"
+        name = printable(result.ledger or "")
+        yield f"{name}: {many} gone from the code; `patlint ledger prune` takes {'it' if one else 'them'} out"
         yield ""
     yield summary_line(result)
 
@@ -116,8 +124,8 @@ def _likewise(lines: list[int]) -> str:
 def _first_line(finding: PlacedFinding, style: Style) -> str:
     """The finding in the form that GNU programs give messages in, so that editors find the place."""
     level = style.paint(finding.level, finding.level)
-    place = f"{_one_line(finding.path)}:{finding.line}:{finding.column}"
-    return f"{place}: {level}: {finding.rule}: {_one_line(finding.message)}"
+    place = f"{printable(finding.path)}:{finding.line}:{finding.column}"
+    return f"{place}: {level}: {finding.rule}: {printable(finding.message)}"
 
 
 def finding_block(finding: PlacedFinding, style: Style) -> Iterator[str]:
@@ -131,7 +139,7 @@ def finding_block(finding: PlacedFinding, style: Style) -> Iterator[str]:
         label = ""
     evidence = finding.evidence or finding.proof
     if evidence:
-        yield from _rows("evidence", _one_line(evidence), style)
+        yield from _rows("evidence", printable(evidence), style)
     if finding.witness is not None:
         yield _row("text", witness_expression(finding.witness), style)
     if finding.suggestion is not None:
@@ -141,8 +149,8 @@ def finding_block(finding: PlacedFinding, style: Style) -> Iterator[str]:
         # Not in the form of a first line: editors would take the label for a piece of the file's name.
         where = f"line {related.line}, column {related.column}"
         if related.path != finding.path:
-            where += f" of {_one_line(related.path)}"
-        yield _row("see", f"{where}: {_one_line(related.message)}", style)
+            where += f" of {printable(related.path)}"
+        yield _row("see", f"{where}: {printable(related.message)}", style)
     if finding.way_out:
         yield from _rows("advice", finding.way_out, style)
 
@@ -178,7 +186,7 @@ def _remarks(outcome: Outcome) -> Iterator[str]:
         (
             each.line,
             each.column,
-            f"{_one_line(outcome.path)}:{each.line}:{each.column}: {word}: {each.reason}",
+            f"{printable(outcome.path)}:{each.line}:{each.column}: {word}: {open_question(each.reason)}",
         )
         for word, remarks in groups
         for each in remarks
@@ -196,11 +204,6 @@ def _rows(label: str, text: str, style: Style) -> Iterator[str]:
     for line in textwrap.wrap(text, width, break_long_words=False, break_on_hyphens=False):
         yield _row(label, line, style)
         label = ""
-
-
-def _one_line(text: str) -> str:
-    """`text` with everything that could break or hide the line escaped."""
-    return "".join(char if char.isprintable() else ascii(char)[1:-1] for char in text)
 
 
 def _pattern_rows(finding: PlacedFinding, style: Style) -> Iterator[tuple[str, str]]:

@@ -39,7 +39,7 @@ def test_from_the_beginning_to_the_end(patlint: Patlint) -> None:
     assert (ran.status, ran.err) == (1, "")
     assert ran.out.startswith("b.py:2:14: error: invalid-pattern: ")
     assert ran.out.endswith(
-        "\n\nknown: 1 entry is gone from the code; `patlint ledger prune` takes out what is gone\n\n"
+        "\n\nknown: 1 entry is gone from the code; `patlint ledger prune` takes it out\n\n"
         f"2 files, 2 patterns: 1 error, 0 warnings, 0 notes; 1 known, {TAIL}"
     )
     assert "\nb.py: gone: invalid-pattern: 'a(b'\n" in patlint("lint", "--ledger", "known", "--verbose").out

@@ -251,7 +251,7 @@ def test_what_stayed_open_is_told_if_asked() -> None:
     told = run_of(outcome, verbose=True)["invocations"][0]["toolExecutionNotifications"]
     assert [(each["level"], each["message"]["text"]) for each in told] == [
         ("note", "unresolved: a parameter"),
-        ("note", "undecided: states"),
+        ("note", "undecided: limit states reached"),
     ]
     assert told[0]["locations"][0]["physicalLocation"]["region"] == {"startLine": 3, "startColumn": 5}
 

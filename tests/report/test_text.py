@@ -221,7 +221,7 @@ def test_a_whole_report_verbose() -> None:
         "dock.py:4:9: warning: nullable: says so",
         "",
         "dock.py:3:9: inexact: a back-reference",
-        "dock.py:9:1: undecided: states",
+        "dock.py:9:1: undecided: limit states reached",
         "dock.py:9:5: unresolved: compile: a parameter",
         "",
         "1 file, 2 patterns: 0 errors, 2 warnings, 0 notes; "

@@ -26,7 +26,7 @@ def parser() -> Parser:
         "Show everything that is known about one pattern: whether it is taken, its\n"
         "groups, its automata, its texts, how long matching can take, and what the rules\n"
         "say.",
-        "exit status: 0, or 1 where `re` refuses the pattern",
+        "exit status: 0, 1 where `re` refuses the pattern, 2 a wrong call",
     )
     made.add_argument("pattern", metavar="PATTERN", help="the regular expression")
     made.add_argument(
@@ -68,7 +68,7 @@ def run(given: Sequence[str]) -> int:
     pattern: str | bytes = options.pattern
     if options.bytes:
         try:
-            pattern = options.pattern.encode("latin-1")
+            pattern = options.pattern.encode("latin-1", "surrogateescape")  # a raw byte of the call
         except UnicodeEncodeError:
             raise CallError("--bytes: the pattern has characters above U+00FF") from None
     from patlint.config import OFF_BY_DEFAULT
@@ -101,11 +101,23 @@ def _flags(letters: str) -> int:
 
 
 def _lines(portrait: Portrait, style: Style) -> Iterator[str]:
-    from patlint.report.show import expression, pattern_expression, witness_expression
+    from patlint.report.show import expression, open_question, pattern_expression, witness_expression
     from patlint.report.text import finding_block
 
     def row(label: str, text: str) -> str:
         return style.paint(label, "label") + " " * (LABEL - len(label)) + text
+
+    def rows(label: str, parts: Sequence[str]) -> Iterator[str]:
+        """`parts`, divided by commas, in as many rows as they need; none of them is broken."""
+        line = ""
+        for index, part in enumerate(parts):
+            piece = part + "," * (index + 1 < len(parts))
+            if line and LABEL + len(line) + 1 + len(piece) > style.columns:
+                yield row(label, line)
+                label, line = "", piece
+            else:
+                line += " " * bool(line) + piece
+        yield row(label, line)
 
     yield row("pattern", pattern_expression(portrait.pattern))
     yield row("flags", " ".join(portrait.flags) or "none")
@@ -116,16 +128,16 @@ def _lines(portrait: Portrait, style: Style) -> Iterator[str]:
         yield row("refused", message if position is None else f"{message}, at position {position}")
     elif portrait.states:
         yield row("groups", _groups(portrait))
-        yield row("exact", _exactness(portrait))
+        yield from rows("exact", _exactness(portrait))
         states = ", ".join(f"{mode} {_known(number)}" for mode, number in portrait.states.items())
         yield row("states", states)
         yield row("texts", _texts(portrait))
         counts = [f"{_number(each)} of {n}" for n, each in enumerate(portrait.counts or ()) if each]
         if counts:
-            yield row("lengths", ", ".join(counts))
+            yield from rows("lengths", counts)
         if portrait.words:
-            yield row("such as", ", ".join(expression(each) for each in portrait.words))
-        yield row("time", _growth(portrait))
+            yield from rows("such as", [expression(each) for each in portrait.words])
+        yield from rows("time", _growth(portrait))
         if portrait.slow is not None:
             yield row("slow text", witness_expression(portrait.slow))
     for pattern, length, verdict in portrait.shorter:
@@ -133,7 +145,8 @@ def _lines(portrait: Portrait, style: Style) -> Iterator[str]:
             "shorter", f"{pattern_expression(pattern)} ({length} for {len(portrait.pattern)}: {verdict})"
         )
     for reason in portrait.open:
-        yield row("open", reason)
+        if not any(reason != other and reason in other for other in portrait.open):  # said in more words
+            yield row("open", open_question(reason))
     for finding in portrait.findings:
         yield ""
         yield from finding_block(finding, style)
@@ -144,16 +157,17 @@ def _groups(portrait: Portrait) -> str:
     return f"{portrait.groups}{' (' + names + ')' if names else ''}"
 
 
-def _exactness(portrait: Portrait) -> str:
+def _exactness(portrait: Portrait) -> list[str]:
     if not portrait.inexact:
-        return "yes"
+        return ["yes"]
     from patlint.report.show import pattern_expression
 
     reasons = dict.fromkeys(
         f"{reason} {pattern_expression(portrait.pattern[start:end])}"
         for reason, (start, end) in portrait.inexact
     )
-    return f"no, the automata are supersets: {', '.join(reasons)}"
+    first, *others = reasons
+    return ["no", f"the automata are supersets: {first}", *others]
 
 
 def _texts(portrait: Portrait) -> str:
@@ -166,18 +180,18 @@ def _texts(portrait: Portrait) -> str:
     return "endlessly many" if portrait.endless else "not known"
 
 
-def _growth(portrait: Portrait) -> str:
+def _growth(portrait: Portrait) -> list[str]:
     slow = portrait.slow
-    limit = ", up to a bound that is out of reach" if slow is not None and slow.bounded else ""
+    limit = ["up to a bound that is out of reach"] if slow is not None and slow.bounded else []
     match portrait.growth:
         case None:
-            return "not known"
+            return ["not known"]
         case 1:
-            return "can be endless on any text" if limit else "no growth beyond the text's length was found"
+            return ["can be endless on any text" if limit else "no growth beyond the text's length was found"]
         case "exponential":
-            return f"exponential in the number of repetitions{limit}"
+            return ["exponential in the number of repetitions", *limit]
         case degree:
-            return f"grows with the text's length to the power {degree}{limit}"
+            return [f"grows with the text's length to the power {degree}", *limit]
 
 
 def _known(number: int | None) -> str:

@@ -60,6 +60,24 @@ def test_a_superset(patlint: Patlint) -> None:
     assert "open      the automaton is only a superset: back-reference\n" in ran.out
 
 
+def test_an_open_question_is_told_once(patlint: Patlint) -> None:
+    lines = patlint("inspect", "(?:a{1,100}){1,100}").out.splitlines()
+    assert [line for line in lines if line.startswith("open ")] == ["open      limit work reached (400000)"]
+
+
+WIDE = [".*a.*b.*c", "(?:a{1,100}){1,100}", r"(a)(b)\1\2(?(1)c|d)", "[a-z]{9}[0-9]{9}", "(?=a)"]
+
+
+@pytest.mark.parametrize("pattern", WIDE)
+def test_rows_fit_the_width(patlint: Patlint, pattern: str) -> None:
+    """Numbers, texts and reasons go on in the next row; each of them stands in one."""
+    lines = patlint("inspect", "--mode", "match", pattern).out.split("\n\n")[0].splitlines()
+    assert max(map(len, lines)) <= 80
+    first = next(at for at, line in enumerate(lines) if line.startswith(("lengths ", "exact ")))
+    told = [line for line in lines[first:] if line.startswith(" ")]
+    assert told and all(line.startswith(" " * 10) and line[10] != " " for line in told)
+
+
 def test_none_and_all(patlint: Patlint) -> None:
     assert "texts     none: the language is empty\n" in patlint("inspect", "(?!)").out
     assert "texts     all\n" in patlint("inspect", "--mode", "search", "a*").out
@@ -87,6 +105,7 @@ def test_target(patlint: Patlint) -> None:
 
 def test_bytes(patlint: Patlint) -> None:
     assert "pattern   b'\\xe9'\n" in patlint("inspect", "--bytes", "\xe9").out
+    assert "pattern   b'\\xff'\n" in patlint("inspect", "--bytes", "\udcff").out  # a byte that is no UTF-8
     assert patlint("inspect", "--bytes", "\u20ac") == Ran(
         2, "", "patlint: --bytes: the pattern has characters above U+00FF\n"
     )

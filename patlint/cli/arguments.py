@@ -63,7 +63,7 @@ class Parser(argparse.ArgumentParser):
         name = word.partition("=")[0]
         options = [each for each in self._option_string_actions if each.startswith("--")]
         if name not in options:
-            raise CallError(f"unknown option {name!r}{nearest(name, options)}")
+            raise CallError(f"unknown option {name!r}{nearest(name, options) or f'; see {self.prog} --help'}")
 
 
 def fitted(text: str) -> str:
@@ -135,14 +135,14 @@ def add_file_options(parser: Parser, stdin: bool = True) -> None:
     )
 
 
-def add_run_options(parser: Parser) -> None:
-    """The options of the commands that ask the rules."""
+def add_run_options(parser: Parser, ledger: str) -> None:
+    """The options of the commands that ask the rules; `ledger` is what `--ledger` is for."""
     parser.add_argument(
         "--only",
         action="append",
         default=[],
         metavar="RULE",
-        help="use this rule alone; may be repeated (default: all rules)",
+        help="use this rule alone; may be repeated (default: all that are on)",
     )
     parser.add_argument(
         "--skip",
@@ -154,7 +154,7 @@ def add_run_options(parser: Parser) -> None:
     parser.add_argument(
         "--ledger",
         metavar="FILE",
-        help="findings that are known and not told (default: the configuration's, else none)",
+        help=ledger,
     )
     parser.add_argument(
         "--jobs",

@@ -30,7 +30,7 @@ def parser() -> Parser:
     )
     made.add_argument("action", type=one_of(*ACTIONS), metavar="write|prune", help="see above")
     add_file_options(made, stdin=False)
-    add_run_options(made)
+    add_run_options(made, "the ledger to keep (default: the configuration's)")
     return made
 
 

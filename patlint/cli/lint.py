@@ -51,7 +51,7 @@ def parser() -> Parser:
         metavar="LEVEL",
         help="lowest level that makes the exit status 1: error, warning, note or never (default: warning)",
     )
-    add_run_options(made)
+    add_run_options(made, "findings that are known and not told (default: the configuration's, else none)")
     made.add_argument(
         "--no-ledger",
         action="store_true",

@@ -19,6 +19,8 @@ def parser() -> Parser:
         "[OPTIONS] [PATHS ...]",
         "List every pattern in Python files: place, pattern, flags, the modes in which it\n"
         "is used, and what the program looks at (truth, span, groups or unknown).",
+        "exit status: 0, or 2 for a wrong call or configuration, or where a file could\n"
+        "not be read or parsed",
     )
     add_file_options(made)
     made.add_argument(

@@ -16,7 +16,7 @@ COMMANDS: Final = {
     "lint": "find mistakes in the patterns of Python files",
     "list": "list every pattern with its place, its flags and how it is used",
     "inspect": "show everything that is known about one pattern",
-    "mend": "put proven shorter equivalents in the place of patterns",
+    "mend": "put proven suggestions in the place of patterns",
     "ledger": "keep a file of known findings, so that only new ones are told",
     "rules": "list the rules, or explain one with an example",
     "completion": "give the script with which a shell completes patlint's words",
@@ -37,8 +37,8 @@ commands:
   patlint COMMAND --help   the options of a command
   patlint --version        the version
 
-exit status: 0 nothing found, 1 findings, 2 a wrong call or configuration, or
-a file that could not be read
+exit status: 0 nothing at or above --fail-on, 1 findings, 2 a wrong call or
+configuration, or a file that could not be read or parsed
 """
 
 

@@ -25,7 +25,7 @@ WRONG = [
     (("lint", "--fromat", "json"), "unknown option '--fromat'; the nearest is --format"),
     (("lint", "--fromat=json"), "unknown option '--fromat'; the nearest is --format"),
     (("lint", "--form", "json"), "unknown option '--form'; the nearest is --format"),  # no abbreviations
-    (("lint", "-z"), "unknown option '-z'"),
+    (("lint", "-z"), "unknown option '-z'; see patlint lint --help"),
     (
         ("lint", "--format", "jsn"),
         "--format: 'jsn' is not one of text, json, sarif; the nearest is json; see patlint lint --help",
@@ -104,6 +104,7 @@ def test_wrong_configuration(patlint: Patlint) -> None:
 def test_help_names_every_command(patlint: Patlint, words: tuple[str, ...]) -> None:
     ran = patlint(*words)
     assert (ran.status, ran.err) == (0, "")
+    assert max(map(len, ran.out.splitlines())) <= 80
     assert [line.split()[0] for line in ran.out.splitlines() if line.startswith("  ") and line[2] != " "][
         : len(COMMANDS)
     ] == list(COMMANDS)

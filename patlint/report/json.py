@@ -1,4 +1,4 @@
-"""Reports as JSON. The shapes are in the README; consumers may rely on them.
+"""Reports of `lint` and `list` as JSON. Their shapes are in the README; consumers may rely on them.
 
 Everything is ASCII: characters outside are `\\u` escapes, so that lone surrogates survive. Bytes patterns and
 their texts are given as text, one character for each byte (latin-1), with `"bytes": true` beside them.

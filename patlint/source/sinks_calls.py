@@ -14,6 +14,7 @@ from __future__ import annotations
 import ast
 import re
 from collections.abc import Callable, Iterator
+from dataclasses import replace
 
 from patlint.limits import LimitReached
 from patlint.source import reasons
@@ -385,8 +386,20 @@ class SinkReader:
                 self._refuse(first, sink, opaque.reason)
                 continue
             before = len(self.sites)
-            self._site(first, inner, sink, pattern, flags, self.text.place(call))
+            plain = sink.kind == "states" and self._is_token(row, inner)
+            read = replace(sink, looks_at="span") if plain else sink
+            self._site(first, inner, read, pattern, flags, self.text.place(call))
             made += self.sites[before:]
+
+    def _is_token(self, row: ast.expr, scope: Scope) -> bool:
+        """Whether a lexer's rule gives all that it matches one kind of token, or none: no group is read."""
+        match row:
+            case ast.Tuple(elts=[_, ast.Constant(value=None), *_]):
+                return True
+            case ast.Tuple(elts=[_, ast.Name() | ast.Attribute() as action, *_]):
+                return (self.qualified(action, scope) or "").startswith("pygments.token.")
+            case _:
+                return False
 
     def _items(
         self, node: ast.expr, scope: Scope, sink: Sink, call: ast.expr, depth: int

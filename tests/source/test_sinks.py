@@ -130,6 +130,25 @@ SEEN: tuple[tuple[str, str, int, str | None, str, bool, bool], ...] = (
         " tokens = {'root': [include('x'), ('a+', T, '#pop'), (words(('a',)), T)]}",
         *("a+", I, "match", "groups", True, False),
     ),
+    (
+        "from pygments.lexer import RegexLexer\nfrom pygments.token import Name\n"
+        "class L(RegexLexer):\n tokens = {'root': [('a+', Name.Tag, '#pop')]}",
+        *("a+", M, "match", "span", True, False),  # one kind of token: no group is read
+    ),
+    (
+        "from pygments.lexer import RegexLexer\nclass L(RegexLexer):\n tokens = {'root': [('a+', None, 'b')]}",
+        *("a+", M, "match", "span", True, False),
+    ),
+    (
+        "from pygments.lexer import RegexLexer, bygroups\nfrom pygments.token import Name\n"
+        "class L(RegexLexer):\n tokens = {'root': [('(a+)', bygroups(Name))]}",
+        *("(a+)", M, "match", "groups", True, False),
+    ),
+    (
+        "from pygments.lexer import RegexLexer\ndef act(lexer, found): ...\n"
+        "class L(RegexLexer):\n tokens = {'root': [('a+', act)]}",
+        *("a+", M, "match", "groups", True, False),
+    ),
     (PANDAS + "s.str.contains('a+')", "a+", 0, "search", "truth", False, False),
     (PANDAS + "s.str.contains('a+', case=False)", "a+", I, "search", "truth", False, False),
     (PANDAS + "s.str.contains('a+', regex=True)", "a+", 0, "search", "truth", False, False),

@@ -19,34 +19,20 @@ from __future__ import annotations
 import ast
 from collections.abc import Iterator
 from dataclasses import dataclass, field
-from typing import TypeAlias
 
 from patlint.source.engine import FUNCTIONS, bind_arguments
 from patlint.source.index import Index
+from patlint.source.loops import UNKNOWN, Column, Found, Loops, bound
 from patlint.source.names import Names
 from patlint.source.places import Text
 from patlint.source.reasons import Opaque
 from patlint.source.scopes import Scope
 from patlint.source.sites import Family, Member, Mode, Order, Site, Trial
-from patlint.source.trials import (
-    Conditions,
-    Test,
-    Verdict,
-    asked_by,
-    has_calls,
-    has_continue,
-    leaves,
-    read_test,
-    stored_names,
-)
+from patlint.source.trials import stored_names
 
-Column: TypeAlias = tuple[int | str, ...]
-"""The way from an element of a table to the pattern: indexes, or keyword names of a call."""
-_DISPLAYS = (ast.List, ast.Tuple, ast.Set, ast.Dict)
 _COMPREHENSIONS = (ast.ListComp, ast.SetComp, ast.GeneratorExp, ast.DictComp)
 _COPIES = frozenset({"tuple", "list", "iter"})
 _ADDING = frozenset({"append", "extend", "insert"})
-_APPLIED = frozenset({"sub", "subn", "findall", "finditer", "split"})
 _KEY, _VALUE = "key", "value"
 
 
@@ -63,19 +49,6 @@ class Table:
     """The members are this method of their patterns."""
 
 
-@dataclass(frozen=True, slots=True)
-class Found:
-    """How one place goes through a table; `together`: the members are asked together."""
-
-    order: Order
-    test: Test | None = None
-    together: bool = False
-
-
-_UNKNOWN = Found("unknown")
-_APPLYING = Found("independent")
-
-
 class Tables:
     """The tables of one file. `made` gives the sites of each call of `re.compile`."""
 
@@ -86,6 +59,7 @@ class Tables:
         self.text = text
         self.names = names
         self.made = made
+        self.loops = Loops(index, names.engine, made)
 
     def find(self) -> Iterator[Family]:
         for table, scope in self._tables():
@@ -326,155 +300,18 @@ class Tables:
         )
 
     def _loop(self, loop: ast.For, scope: Scope, wrapped: tuple[str, ...], table: Table) -> Found:
-        pattern = _bound(loop.target, _path(table, wrapped))
+        pattern = bound(loop.target, _path(table, wrapped))
         if pattern is None:
-            return _UNKNOWN
-        return self._through(loop, scope, *pattern, table.method)
-
-    def _through(self, loop: ast.For, scope: Scope, name: str, path: Column, method: str | None) -> Found:
-        """The loop binds `name` to an element, or a part of it, in which the pattern stands at `path`."""
-        names = {(name, path)}
-        engine = self.names.engine
-
-        def known(node: ast.AST) -> Test | None:
-            test = read_test(node, scope, engine) if method is None else _bound_test(node, method)
-            if test is None:
-                return None
-            return (
-                test
-                if _is_part(test.pattern, names) or self._compiled_part(test.pattern, names, scope)
-                else None
-            )
-
-        conditions = Conditions(known)
-        quiet: list[ast.AST] = []
-        applied = False
-        for number, statement in enumerate(loop.body):
-            if isinstance(statement, ast.Assign) and len(statement.targets) == 1:
-                target, value = statement.targets[0], statement.value
-                if isinstance(target, ast.Name) and conditions.test_of(value) is not None:
-                    test = conditions.test_of(value)
-                    assert test is not None
-                    conditions.kept[target.id] = test
-                    quiet.append(statement)
-                    continue
-                if isinstance(target, ast.Name) and self._compiled_part(value, names, scope):
-                    names.add((target.id, ()))
-                    continue
-                if isinstance(target, ast.Tuple) and isinstance(value, ast.Name):
-                    inner = [_bound(target, way) for start, way in names if start == value.id]
-                    names |= {each for each in inner if each is not None}
-                    quiet.append(statement)
-                    continue
-            if stored_names([statement]) & {start for start, _ in names} and not isinstance(
-                statement, ast.If
-            ):
-                return _UNKNOWN
-            if isinstance(statement, ast.If):
-                asked = conditions.read(statement.test)
-                if asked:
-                    return self._decided(loop, scope, statement, number, asked, quiet, conditions)
-            if has_continue([statement]) or any(conditions.test_of(each) for each in ast.walk(statement)):
-                return _UNKNOWN
-            applied = applied or _applies(statement, names)
-            quiet.append(statement)
-        return _APPLYING if applied else _UNKNOWN
-
-    def _decided(
-        self,
-        loop: ast.For,
-        scope: Scope,
-        statement: ast.If,
-        number: int,
-        asked: list[tuple[Test, Verdict]],
-        quiet: list[ast.AST],
-        conditions: Conditions,
-    ) -> Found:
-        """The statement is the first of the loop that asks whether the pattern matches."""
-        if len(asked) != 1:
-            return _UNKNOWN
-        test, verdict = asked[0]
-        after = loop.body[number + 1 :]
-        if verdict == "takes" and leaves(statement.body, False):
-            quiet = [*quiet, statement.test, *statement.orelse, *after]
-        elif (
-            verdict == "refuses"
-            and not statement.orelse
-            and _only_continues(statement.body)
-            and leaves(after, False)
-        ):
-            quiet = [*quiet, statement.test]
-        elif verdict == "takes" and not has_jumps([*statement.body, *after]):
-            return _APPLYING
-        else:
-            return _UNKNOWN
-        needed = asked_by(test, scope)
-        bound = stored_names([loop.target, *quiet])
-        if needed is None or needed.names & bound:
-            return _UNKNOWN
-        if not needed.plain and has_calls(quiet, lambda call: call is test.call or _is_compile(call)):
-            return _UNKNOWN
-        return Found("first", test)
+            return UNKNOWN
+        return self.loops.through(loop, scope, *pattern, table.method)
 
     def _generator(
         self, part: ast.comprehension, scope: Scope, wrapped: tuple[str, ...], table: Table
     ) -> Found:
-        pattern = _bound(part.target, _path(table, wrapped))
+        pattern = bound(part.target, _path(table, wrapped))
         if pattern is None:
-            return _UNKNOWN
-        return self._through_generator(part, scope, {pattern}, table.method)
-
-    def _through_generator(
-        self, part: ast.comprehension, scope: Scope, names: set[tuple[str, Column]], method: str | None
-    ) -> Found:
-        holder = self.index.parents.get(part)
-        if not isinstance(holder, (ast.GeneratorExp, ast.ListComp, ast.SetComp)):
-            return _APPLYING if isinstance(holder, ast.DictComp) else _UNKNOWN
-        inner = next((each for each in scope.children if each.node is holder), scope)
-        engine = self.names.engine
-
-        def known(node: ast.AST) -> Test | None:
-            test = read_test(node, inner, engine) if method is None else _bound_test(node, method)
-            if test is None:
-                return None
-            return (
-                test
-                if _is_part(test.pattern, names) or self._compiled_part(test.pattern, names, inner)
-                else None
-            )
-
-        conditions = Conditions(known)
-        call = self.index.parents.get(holder)
-        called = call.func.id if isinstance(call, ast.Call) and isinstance(call.func, ast.Name) else ""
-        if called == "filter" and isinstance(call, ast.Call):
-            call = self.index.parents.get(call)
-            outer = call.func.id if isinstance(call, ast.Call) and isinstance(call.func, ast.Name) else ""
-            called = "next of filter" if outer == "next" else ""
-        if len(holder.generators) != 1 or part.is_async or called not in ("any", "next", "next of filter"):
-            return _UNKNOWN if called else _APPLYING
-        asked: list[tuple[Test, Verdict]] = []
-        if len(part.ifs) == 1 and called != "next of filter":
-            asked = conditions.read(part.ifs[0])
-            if called == "any" and not isinstance(holder.elt, ast.Constant):
-                return _UNKNOWN
-        elif not part.ifs and called != "next":
-            asked = conditions.read(holder.elt)
-        if len(asked) != 1 or asked[0][1] != "takes":
-            return _UNKNOWN
-        test = asked[0][0]
-        needed = asked_by(test, inner)
-        if needed is None or needed.names & stored_names([part.target]):
-            return _UNKNOWN
-        return Found("first", test, called == "any")
-
-    def _compiled_part(self, node: ast.AST, names: set[tuple[str, Column]], scope: Scope) -> bool:
-        """`re.compile(p)` of the loop's own pattern."""
-        return (
-            isinstance(node, ast.Call)
-            and node in self.made
-            and bool(node.args)
-            and _is_part(node.args[0], names)
-        )
+            return UNKNOWN
+        return self.loops.through_generator(part, scope, {pattern}, table.method)
 
     # calls that give the loop's pattern to a function of `re`
 
@@ -494,12 +331,12 @@ class Tables:
             current = self.index.parents.get(current)
         if isinstance(current, ast.comprehension):
             current = self.index.parents.get(current)
-        found = _UNKNOWN
+        found = UNKNOWN
         if isinstance(current, (ast.GeneratorExp, ast.ListComp, ast.SetComp)):
             part = current.generators[0]
             outer = scope.parent if scope.node is current and scope.parent else scope
             if name in stored_names([part.target]) and self._is_display(part.iter, outer):
-                found = self._through_generator(part, outer, {(name, ())}, None)
+                found = self.loops.through_generator(part, outer, {(name, ())}, None)
         else:
             while current is not None and not isinstance(current, (ast.For, ast.FunctionDef, ast.Lambda)):
                 current = self.index.parents.get(current)
@@ -508,7 +345,7 @@ class Tables:
                 and name in stored_names([current.target])
                 and self._is_display(current.iter, scope)
             ):
-                found = self._through(current, scope, name, (), None)
+                found = self.loops.through(current, scope, name, (), None)
         if found.order != "first":
             return None
         return self._made(Table(call, (), members), [(found, call)], True)
@@ -534,73 +371,6 @@ def _path(table: Table, wrapped: tuple[str, ...]) -> Column | None:
             return None
         path = (1, *path)
     return path
-
-
-def _bound(target: ast.expr, path: Column | None) -> tuple[str, Column] | None:
-    """The name that `target` binds to what stands at `path`, or to something around it, with the rest of the way."""
-    if path is None:
-        return None
-    rest = path
-    while isinstance(target, (ast.Tuple, ast.List)):
-        if (
-            not rest
-            or not isinstance(rest[0], int)
-            or any(isinstance(each, ast.Starred) for each in target.elts)
-        ):
-            return None
-        if rest[0] >= len(target.elts):
-            return None
-        target, rest = target.elts[rest[0]], rest[1:]
-    return (target.id, rest) if isinstance(target, ast.Name) else None
-
-
-def _is_part(node: ast.AST, names: set[tuple[str, Column]]) -> bool:
-    """Whether `node` reads the pattern: a name, or `row[1]`."""
-    path: list[int | str] = []
-    while isinstance(node, ast.Subscript):
-        if not isinstance(node.slice, ast.Constant) or not isinstance(node.slice.value, int):
-            return False
-        path.insert(0, node.slice.value)
-        node = node.value
-    return isinstance(node, ast.Name) and (node.id, tuple(path)) in names
-
-
-def _bound_test(node: ast.AST, method: str) -> Test | None:
-    """`matcher(text)`, where the loop gets bound methods."""
-    match node:
-        case ast.Call(func=ast.Name() | ast.Subscript() as function, args=[subject], keywords=[]):
-            return Test(node, function, subject, method)  # type: ignore[arg-type]
-        case ast.Call(func=ast.Name() | ast.Subscript() as function, args=[subject, position], keywords=[]):
-            return Test(node, function, subject, method, position)  # type: ignore[arg-type]
-        case _:
-            return None
-
-
-def _applies(statement: ast.stmt, names: set[tuple[str, Column]]) -> bool:
-    """Whether the statement uses the pattern in a way that ends nothing."""
-    for each in ast.walk(statement):
-        match each:
-            case ast.Call(func=ast.Attribute(attr=attr, value=value)) if attr in _APPLIED:
-                if _is_part(value, names) or (each.args and _is_part(each.args[0], names)):
-                    return True
-    return False
-
-
-def _only_continues(block: list[ast.stmt]) -> bool:
-    return len(block) == 1 and isinstance(block[0], ast.Continue)
-
-
-def has_jumps(block: list[ast.stmt]) -> bool:
-    return any(
-        isinstance(each, (ast.Return, ast.Raise, ast.Break, ast.Continue))
-        for statement in block
-        for each in ast.walk(statement)
-    )
-
-
-def _is_compile(call: ast.Call) -> bool:
-    name = call.func.attr if isinstance(call.func, ast.Attribute) else getattr(call.func, "id", "")
-    return name in ("compile", "len", "isinstance")
 
 
 def _over_rows(container: ast.expr, call: ast.Call) -> bool:

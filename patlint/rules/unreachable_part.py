@@ -8,7 +8,11 @@ from dataclasses import dataclass, replace
 from itertools import pairwise
 
 from patlint.language import Language
+from patlint.limits import LimitReached
+from patlint.machine.agreement import same_spans
+from patlint.machine.nfa import Nfa
 from patlint.machine.priority import shown_used
+from patlint.machine.program import compile_tree
 from patlint.rules.equal_siblings import equal_branches, is_plain
 from patlint.rules.finding import Example, Finding, Rule
 from patlint.rules.joined import Row, joined_rows
@@ -70,19 +74,23 @@ def dead_parts(subject: Subject) -> list[Part]:
 def is_surprise(subject: Subject, part: Part) -> bool:
     """Whether the author of a dead part must expect something else of the outcome than comes.
 
-    A branch of which the earlier ones take only pieces; a group that is never set, or that takes what the part
-    behind it was written for; a lazy repeat that is left at once. What else is dead could be left out, and nobody
-    is misled (`\\w*\\d*:`), nor is anybody where only the truth of a match is asked.
+    A branch of which the earlier ones take only pieces, so that it would count if it were the first; a group that is
+    never set, or that takes what the part behind it was written for; a lazy repeat that is left at once. What else
+    is dead could be left out, and nobody is misled (`\\w*\\d*:`), nor is anybody where only the truth of a match is
+    asked.
     """
     uses, seen = subject.uses, subject.site.uses_seen and bool(subject.uses)
     if seen and all(use.looks_at == "truth" and use.function not in SCANNING for use in uses):
         return False
     node = part.node
+    groups_read = not seen or any(use.looks_at in ("groups", "unknown") for use in uses)
     if part.kind == "branch":
-        return not _is_covered(subject, node)
+        if _is_covered(subject, node):
+            return False
+        return (groups_read and any(map(_captures, t.walk(node)))) or _counts_in_front(subject, node)
     if isinstance(node, t.Repeat) and node.kind == "lazy":
         return True
-    if seen and not any(use.looks_at in ("groups", "unknown") for use in uses):
+    if not groups_read:
         return False
     return any(_captures(inner) for inner in t.walk(node)) or _follows_group(subject.pattern.root, node)
 
@@ -91,8 +99,9 @@ def _is_covered(subject: Subject, branch: t.Node) -> bool:
     """Whether the branches before `branch` together take every text that it takes, as a whole."""
     for node in t.walk(subject.pattern.root):
         if isinstance(node, t.Alternation) and any(each is branch for each in node.branches):
-            earlier = node.branches[: next(i for i, each in enumerate(node.branches) if each is branch)]
-            if not earlier or not all(map(is_plain, (*earlier, branch))):
+            before = node.branches[: next(i for i, each in enumerate(node.branches) if each is branch)]
+            earlier = tuple(filter(is_plain, before))
+            if not earlier or not is_plain(branch):
                 return False
             tree = earlier[0] if len(earlier) == 1 else t.Alternation(node.span, earlier)
             own, others = (
@@ -101,6 +110,33 @@ def _is_covered(subject: Subject, branch: t.Node) -> bool:
             )
             return own.exact and others.exact and own <= others
     return False
+
+
+def _counts_in_front(subject: Subject, branch: t.Node) -> bool:
+    """Whether other spans would match if `branch` were the first of its alternation; True where that is open."""
+    root = _with_in_front(subject.pattern.root, branch)
+    if root == subject.pattern.root or not subject.exact:
+        return True
+    try:
+        moved = Nfa(compile_tree(subject.pattern, subject.limits, root=root), subject.limits)
+        return bool(moved.inexact) or not same_spans(subject.nfa, moved, subject.limits, not_empty=True)
+    except LimitReached:
+        return True
+
+
+def _with_in_front(node: t.Node, branch: t.Node) -> t.Node:
+    """The tree in which `branch` is the first of its alternation; the same one where it is not found."""
+    match node:
+        case t.Alternation(branches=branches):
+            if any(each is branch for each in branches):
+                return replace(node, branches=(branch, *(each for each in branches if each is not branch)))
+            return replace(node, branches=tuple(_with_in_front(each, branch) for each in branches))
+        case t.Sequence(items=items):
+            return replace(node, items=tuple(_with_in_front(each, branch) for each in items))
+        case t.Group(body=body) | t.Repeat(body=body):
+            return replace(node, body=_with_in_front(body, branch))
+        case _:
+            return node
 
 
 def _captures(node: t.Node) -> bool:
@@ -245,9 +281,10 @@ if none of the functions of re can take it. A part that is used but could be
 left out (`[a-za]`) is not reported here.
 
 A note where nobody is misled: only the truth of a match is asked, or the part
-could simply be left out (`\\w*\\d*:`). A warning where the outcome is not what
-the author must expect: a branch of which an earlier one takes a piece, a
-group that takes what the part behind it was written for (`(.*)\\r?\\n`).
+could simply be left out (`\\w*\\d*:`), or a branch would change nothing if it
+were the first. A warning where the outcome is not what the author must
+expect: a branch of which an earlier one takes a piece, a group that takes
+what the part behind it was written for (`(.*)\\r?\\n`).
 """,
     wrong=Example(
         'import re\n\n\ndef terminal(text):\n    return re.match(r"east|eastern", text).group()\n',

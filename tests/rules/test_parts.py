@@ -158,6 +158,11 @@ LEVELS: list[tuple[str, Function, LooksAt, str]] = [
     ("(?:east|eastern)s?", "search", "groups", "warning"),
     ("[a-z]+|b", "match", "span", "note"),  # nothing is lost without it
     (r"(?:\w|\d)x", "match", "span", "note"),
+    (r"(?:x(?=y)|\w|\d)z", "match", "span", "note"),  # one of the earlier ones is enough
+    (r'"(?:\\.|\\[0-7]{1,3}|[^\\"])*"', "match", "span", "note"),  # the loop takes the rest of it
+    (r'"(?:\\.|(\\[0-7]{1,3})|[^\\"])*"', "match", "groups", "warning"),  # a group that is never set
+    (r'"(?:[^"]|\\.)*"', "match", "span", "warning"),  # in front it would take a quote
+    (r"(?:at|on|(?:in|at))x", "match", "span", "note"),
     ("x.*?", "search", "span", "warning"),
     ("x.*?", "search", "truth", "note"),
     ("x(.*?)", "match", "groups", "warning"),

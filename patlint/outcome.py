@@ -15,7 +15,7 @@ from typing import TYPE_CHECKING, Any, Final
 
 from patlint.config import LevelName, Settings
 from patlint.nearest import nearest
-from patlint.placed import PlacedFinding, decode, encode, place_finding
+from patlint.placed import PlacedFinding, decode, encode, gathered, place_finding
 from patlint.rules.finding import Level
 
 if TYPE_CHECKING:
@@ -96,7 +96,7 @@ def lint_module(module: Module, settings: Settings) -> Outcome:
     stale, stale_waived = _stale_waivers(module, settings, enabled, levels, used, tally.undecided_lines)
     return Outcome(
         path=module.path,
-        findings=tuple(sorted(kept + stale, key=lambda each: each.sort_key)),
+        findings=tuple(sorted(gathered(kept) + stale, key=lambda each: each.sort_key)),
         patterns=len(module.sites),
         waived=waived + stale_waived,
         unresolved=tuple(
@@ -273,9 +273,9 @@ def _lines(site: Site) -> set[int]:
 
 def _waive(
     placed: Iterable[tuple[PlacedFinding, Site]], waivers: tuple[Waiver, ...]
-) -> tuple[list[PlacedFinding], int, set[tuple[int, str]]]:
+) -> tuple[list[tuple[PlacedFinding, Site]], int, set[tuple[int, str]]]:
     """The findings that stay, the number of those that do not, the (waiver, rule) pairs that were of use."""
-    kept: list[PlacedFinding] = []
+    kept: list[tuple[PlacedFinding, Site]] = []
     used: set[tuple[int, str]] = set()
     waived = 0
     for finding, site in placed:
@@ -289,7 +289,7 @@ def _waive(
         if hits:
             waived += 1
         else:
-            kept.append(finding)
+            kept.append((finding, site))
     return kept, waived, used
 
 

@@ -9,13 +9,19 @@ one character and has no bytes.
 from __future__ import annotations
 
 import ast
-from dataclasses import dataclass, fields
+from dataclasses import dataclass, fields, replace
 from typing import TYPE_CHECKING, Any
 
 from patlint.rules.finding import Finding, Level, Related, SlowWitness, Suggestion, TextWitness, Witness
 
 if TYPE_CHECKING:
     from patlint.source.sites import Place, Site
+
+
+MOST_ALIKE = 3
+"""Findings that say the same of parts of one pattern; more of them are told as one."""
+MOST_RELATED = 6
+"""Of those the parts that are named."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -108,6 +114,39 @@ def _related(related: Related, site: Site) -> RelatedPlace:
     return RelatedPlace(
         related.message, path, place.line, place.column, place.end_line, place.end_column, related.span
     )
+
+
+def gathered(placed: list[tuple[PlacedFinding, Site]]) -> list[PlacedFinding]:
+    """The findings, but what is said of more than a few parts of one pattern in the same words as one of them."""
+    alike: dict[object, list[PlacedFinding]] = {}
+    for finding, site in placed:
+        alike.setdefault(_said(finding, site), []).append(finding)
+    kept = []
+    for finding, site in placed:
+        group = alike[_said(finding, site)]
+        if len(group) <= MOST_ALIKE:
+            kept.append(finding)
+        elif finding is group[0]:
+            others = tuple(
+                RelatedPlace("the same holds of this part", each.path, *_lines(each), each.span)
+                for each in group[1 : MOST_RELATED + 1]
+            )
+            message = (
+                f"{finding.message}, and the same holds of {len(group) - 1} further parts of the pattern"
+            )
+            kept.append(replace(finding, message=message, related=(*finding.related, *others)))
+    return kept
+
+
+def _said(finding: PlacedFinding, site: Site) -> object:
+    """Equal for findings that say the same of parts of one pattern; what has a text to show stands alone."""
+    if finding.witness is not None or finding.suggestion is not None or finding.span[0] == finding.span[1]:
+        return id(finding)
+    return id(site), finding.rule, finding.level, finding.mode, finding.message
+
+
+def _lines(finding: PlacedFinding) -> tuple[int, int, int, int]:
+    return finding.line, finding.column, finding.end_line, finding.end_column
 
 
 def encode(finding: PlacedFinding) -> tuple[Any, ...]:

@@ -194,3 +194,24 @@ def test_a_part_that_begins_in_a_constant_is_shown_where_it_is_used() -> None:
     code = 'import re\n_C = r"[ab]"\n\nm = re.match(rf"(a.*){_C}?", s)\nx = m[1]\n'
     (found,) = (each for each in lint_source(code, "case.py") if each.rule == "unreachable-part")
     assert (found.line, found.column, found.end_line, found.end_column) == (4, 26, 4, 27)
+
+
+def told(*endings: str) -> list[str]:
+    """What is told of an alternation of `pier` and of `pier` with each of the endings."""
+    pattern = "|".join(["pier", *(f"pier{each}" for each in endings)])
+    code = f'import re\n\n\ndef place(s):\n    return re.match(r"{pattern}", s).group()\n'
+    found = [each for each in lint_source(code, "case.py") if each.rule == "unreachable-part"]
+    for each in found:
+        named = [pattern[slice(*place.span)] for place in each.related if place.span]
+        assert all(re.match(pattern, part)[0] == "pier" for part in [pattern[slice(*each.span)], *named])  # type: ignore[index]
+        assert len(named) == (0 if len(endings) <= 3 else min(len(endings) - 1, 6))
+    return [each.message for each in found]
+
+
+def test_many_dead_branches_of_one_pattern_are_told_as_one() -> None:
+    dead = "no match ever takes this branch"
+    assert told("s", "head", "side") == [dead] * 3
+    assert told("s", "head", "side", "work") == [
+        f"{dead}, and the same holds of 3 further parts of the pattern"
+    ]
+    assert told(*"abcdefghij") == [f"{dead}, and the same holds of 9 further parts of the pattern"]

@@ -23,17 +23,21 @@ def check(subject: Subject) -> Iterator[Finding]:
     for mode in asked:
         if not subject.language(mode).is_empty_for_sure():
             continue
-        where = f"in {mode}" if modes else "in whatever way it is used"
+        use = modes.get(mode)
+        asked_by: Mode = mode if use is None else use.mode
+        where = "in whatever way it is used" if use is None else f"in {asked_by}"
+        if use is not None and use.positioned:
+            where += ", from whatever place"
         yield Finding(
             RULE.name,
             RULE.level,
             (0, len(site.pattern)),
             f"nothing matches this pattern {where}",
-            mode=mode,
+            mode=asked_by,
             proof=f"the automaton of the pattern in {mode} accepts no text",
             evidence="its automaton accepts no text at all",
             way_out="look for an anchor on the wrong side, or conditions that cannot hold together",
-            related=used_here(subject, modes.get(mode)),
+            related=used_here(subject, use),
         )
         return
 

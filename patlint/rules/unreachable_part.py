@@ -181,7 +181,8 @@ def dead_rows(subject: Subject, dead: list[Part]) -> list[tuple[t.Alternation, R
 
 
 def only_mode(subject: Subject) -> Mode | None:
-    modes = {mode for mode, _ in _asked(subject)}
+    seen = subject.site.uses_seen and subject.uses
+    modes: set[Mode] = {use.mode for use in subject.uses} if seen else {mode for mode, _ in _asked(subject)}
     return modes.pop() if len(modes) == 1 else None
 
 

@@ -217,3 +217,17 @@ def test_a_rule_that_is_off_silences_nothing() -> None:
     names = tuple(rule.name for rule in RULES)
     off = Settings((3, 11), names, only=frozenset({"shorter-equivalent"}))
     assert [finding.rule for finding in lint_source(code, "case.py", settings=off)] == ["shorter-equivalent"]
+
+
+def test_a_match_from_within_a_text_is_called_a_match() -> None:
+    code = (
+        "import re\n_A = re.compile(r'$a')\n_B = re.compile(r'in|into')\n\n\n"
+        "def read(text, at):\n    return _A.match(text, at) or _B.match(text, at).group()\n"
+    )
+    (never,) = (each for each in lint_source(code, "case.py") if each.rule == "empty-language")
+    assert (never.mode, never.message) == (
+        "match",
+        "nothing matches this pattern in match, from whatever place",
+    )
+    (part,) = (each for each in lint_source(code, "case.py") if each.rule == "unreachable-part")
+    assert part.mode == "match"

@@ -2,7 +2,8 @@
 
 An entry is one file per linted path, named by the path's hash; its lines are the key it was made under, the
 outcome, and a hash of that. The key is a hash of the file's content and path and of everything else that
-decides the outcome: patlint's own source files (sizes and times), the Python that runs it, the settings. What
+decides the outcome: patlint's own source files (sizes and times), the Python that runs it, the settings, the
+working directory (paths are told and globs asked from there). What
 other files had a part in it (constants that are imported) stands in the outcome, with hashes of their content.
 An entry that is missing, of another key, damaged, or made beside other files is as good as none. A cache that
 cannot be written is not an error. The directory ignores itself in git.
@@ -29,7 +30,7 @@ def fingerprint(settings: Settings) -> str:
     """Everything but the file itself that an outcome depends on, as one text."""
     package = Path(__file__).parent
     sources = sorted(package.rglob("*.py"))
-    parts = [sys.version, repr(_plain(settings))]
+    parts = [sys.version, os.getcwd(), repr(_plain(settings))]
     for source in sources:
         state = source.stat()
         parts.append(f"{source.relative_to(package)}:{state.st_size}:{state.st_mtime_ns}")

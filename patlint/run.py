@@ -9,6 +9,7 @@ which does not depend on the number of processes or on the cache. `lint_source` 
 
 from __future__ import annotations
 
+import contextlib
 import os
 import signal
 from collections.abc import Callable, Iterable, Iterator
@@ -167,7 +168,8 @@ def _lint_missing(paths: list[str], job: _Job, processes: int) -> Iterator[tuple
         processes, mp_context=multiprocessing.get_context("spawn"), initializer=_ignore_interrupt
     )
     try:
-        running = {pool.submit(_lint_several, batch, job): batch for batch in batches}
+        with _held_interrupt():  # a process begins with it, and would say so before `_ignore_interrupt`
+            running = {pool.submit(_lint_several, batch, job): batch for batch in batches}
         for future in as_completed(running):
             batch = running[future]
             try:
@@ -181,6 +183,19 @@ def _lint_missing(paths: list[str], job: _Job, processes: int) -> Iterator[tuple
         pool.shutdown(wait=False, cancel_futures=True)
         raise
     pool.shutdown()
+
+
+@contextlib.contextmanager
+def _held_interrupt() -> Iterator[None]:
+    """Ctrl-C comes after the block, and never to processes that are started in it (not on Windows)."""
+    if not hasattr(signal, "pthread_sigmask"):
+        yield
+        return
+    before = signal.pthread_sigmask(signal.SIG_BLOCK, {signal.SIGINT})
+    try:
+        yield
+    finally:
+        signal.pthread_sigmask(signal.SIG_SETMASK, before)
 
 
 def _ignore_interrupt() -> None:

@@ -113,5 +113,9 @@ def test_what_changes_the_fingerprint(monkeypatch: pytest.MonkeyPatch, tmp_path:
     second = fingerprint(SETTINGS)
     (package / "new.py").write_text("")
     assert len({first, second, fingerprint(SETTINGS)}) == 3
+    here = fingerprint(SETTINGS)
+    monkeypatch.chdir(tmp_path)
+    assert fingerprint(SETTINGS) != here
+    second = fingerprint(SETTINGS)
     monkeypatch.setattr("sys.version", "another Python")
     assert fingerprint(SETTINGS) != second

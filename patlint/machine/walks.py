@@ -23,7 +23,8 @@ from patlint.machine import program as p
 from patlint.machine.nfa import Nfa
 from patlint.machine.obligations import ALL, FREE, NONE, Conjunction, Thread
 
-PATH_LIMIT = 4_096
+STATE_COST = 3
+"""A state on the way to a character takes about as long as three edges."""
 SCAN = 0
 """The node of the search itself, where there is one."""
 
@@ -86,11 +87,14 @@ def _graph(nfa: Nfa, scan: bool, cut: bool) -> Walks:
         return index
 
     closures: dict[tuple[int, int], dict[Thread, int]] = {}
+    work = 0
 
     def close(pc: int, context: int) -> dict[Thread, int]:
+        nonlocal work
         key = (pc, context)
         if key not in closures:
-            closures[key] = _paths(nfa, pc, context, cut)
+            closures[key], states = _paths(nfa, pc, context, cut)
+            work += STATE_COST * states
         return closures[key]
 
     by_context: dict[int, int] = {}
@@ -98,7 +102,6 @@ def _graph(nfa: Nfa, scan: bool, cut: bool) -> Walks:
         by_context[context] = by_context.get(context, 0) | 1 << minterm
     entry = [node(thread) for thread in close(nfa.program.start, nfa.plain_start)]
     edges: list[tuple[Edge, ...]] = []
-    work = 0
     for thread in order:
         out: dict[tuple[int, int], int] = {}
         if thread is None:
@@ -193,71 +196,92 @@ def _follow(nfa: Nfa, close: Close, position: int, context: int, cut: bool) -> d
     return out
 
 
-def _paths(nfa: Nfa, entry: int, context: int, cut: bool) -> dict[Thread, int]:
-    """The threads reached from `entry` without reading, with the number of ways (2: two or more)."""
-    ways: dict[Thread, int] = {}
-    stack: list[tuple[int, frozenset[int], Conjunction]] = [(entry, FREE, FREE)]
-    paths = 0
+State: TypeAlias = tuple[int, frozenset[int], Conjunction]
+"""A place on the way to the next character: an instruction, the loops whose iteration began here, obligations."""
 
-    def reach(position: int, duty: Conjunction) -> None:
-        ways[position, duty] = min(ways.get((position, duty), 0) + 1, 2)
 
+def _paths(nfa: Nfa, entry: int, context: int, cut: bool) -> tuple[dict[Thread, int], int]:
+    """The threads reached from `entry` without reading, with the number of ways (2: two or more); how many states
+    were gone through.
+
+    The guards of loops see to it that no state comes back, so ways are added up in topological order.
+    """
+    start: State = (entry, FREE, FREE)
+    following: dict[State, tuple[list[Thread], list[State]]] = {}
+    order: list[State] = []
+    stack: list[tuple[State, bool]] = [(start, False)]
     while stack:
-        pc, marks, duty = stack.pop()
-        op = nfa.program.code[pc]
-        match op:
-            case p.Char() | p.Back():
-                reach(nfa.first[pc], duty)
-                paths += 1
-                if isinstance(op, p.Back):
-                    stack.append((op.next, marks, duty))
-            case p.Run():
-                if op.maximum != 0:
-                    reach(nfa.first[pc], duty)
-                    paths += 1
-                if op.minimum == 0:
-                    stops = nfa.stopping(pc) if cut and op.maximum != 0 else FREE
-                    stack.append((op.next, marks, duty | stops))
-            case p.Fork():
-                stack += ((op.second, marks, duty), (op.first, marks, duty))
-            case p.Save():
-                stack.append((op.next, marks, duty))
-            case p.Enter():
-                stack.append((op.next, marks - {op.loop}, duty))
-            case p.Iterate():
-                stack.append((op.exit, marks, duty))
-                if op.loop not in marks:
-                    stack.append((op.body, marks | {op.loop}, duty))
-            case p.Accept():
-                paths += 1
-                ends = nfa.leads if cut else nfa.atomic_ends
-                if pc in ends:
-                    stack.append((ends[pc], marks, duty))
-            case p.Assert():
-                asked = nfa.asked(pc, op, context)
-                if asked != NONE:
-                    stack.append((op.next, marks, duty if asked == ALL else duty | {asked}))
-            case p.Look():
-                asked = nfa.look(pc, op, context)
-                if asked != NONE:
-                    stack.append((op.next, marks, duty if asked == ALL else duty | {asked}))
-                if op.ahead and not cut:
-                    stack.append((op.body, marks, duty))
-            case p.Atomic():
-                if not cut or op.end in nfa.leads:
-                    stack.append((op.body, marks, duty))
-                    continue
-                for more, goes_on in nfa.atomic_at(pc, op, context):
-                    if goes_on is not None:
-                        reach(goes_on, duty)
-                        paths += 1
-                    else:
-                        stack.append((op.next, marks, duty | more))
-            case p.Test():
-                stack += ((op.no, marks, duty), (op.yes, marks, duty))
-        if paths > PATH_LIMIT:
-            break
-    return ways
+        state, done = stack.pop()
+        if done:
+            order.append(state)
+        elif state not in following:
+            if len(following) > nfa.limits.work:
+                raise LimitReached("work", nfa.limits.work)
+            following[state] = threads, states = _ahead(nfa, state, context, cut)
+            stack.append((state, True))
+            stack += [(each, False) for each in states if each not in following]
+    count = {start: 1}
+    ways: dict[Thread, int] = {}
+    for state in reversed(order):
+        here = count[state]
+        threads, states = following[state]
+        for thread in threads:
+            ways[thread] = min(ways.get(thread, 0) + here, 2)
+        for each in states:
+            count[each] = min(count.get(each, 0) + here, 2)
+    return ways, len(order)
+
+
+def _ahead(nfa: Nfa, state: State, context: int, cut: bool) -> tuple[list[Thread], list[State]]:
+    """The threads and the states that one instruction leads to, once for each way."""
+    pc, marks, duty = state
+    op = nfa.program.code[pc]
+    match op:
+        case p.Char():
+            return [(nfa.first[pc], duty)], []
+        case p.Back():
+            return [(nfa.first[pc], duty)], [(op.next, marks, duty)]
+        case p.Run():
+            stops = nfa.stopping(pc) if cut and op.minimum == 0 and op.maximum != 0 else FREE
+            return (
+                [(nfa.first[pc], duty)] if op.maximum != 0 else [],
+                [(op.next, marks, duty | stops)] if op.minimum == 0 else [],
+            )
+        case p.Fork():
+            return [], [(op.first, marks, duty), (op.second, marks, duty)]
+        case p.Save():
+            return [], [(op.next, marks, duty)]
+        case p.Enter():
+            return [], [(op.next, marks - {op.loop}, duty)]
+        case p.Iterate():
+            left: State = (op.exit, marks - {op.loop}, duty)
+            return [], [left] if op.loop in marks else [(op.body, marks | {op.loop}, duty), left]
+        case p.Accept():
+            ends = nfa.leads if cut else nfa.atomic_ends
+            return [], [(ends[pc], marks, duty)] if pc in ends else []
+        case p.Assert():
+            asked = nfa.asked(pc, op, context)
+            return [], [(op.next, marks, _with(duty, asked))] if asked != NONE else []
+        case p.Look():
+            asked = nfa.look(pc, op, context)
+            states = [(op.next, marks, _with(duty, asked))] if asked != NONE else []
+            return [], [(op.body, marks, duty), *states] if op.ahead and not cut else states
+        case p.Atomic():
+            if not cut or op.end in nfa.leads:
+                return [], [(op.body, marks, duty)]
+            ends_of = list(nfa.atomic_at(pc, op, context))
+            return (
+                [(goes_on, duty) for _, goes_on in ends_of if goes_on is not None],
+                [(op.next, marks, duty | more) for more, goes_on in ends_of if goes_on is None],
+            )
+        case p.Test():
+            return [], [(op.yes, marks, duty), (op.no, marks, duty)]
+        case _:
+            return [], []
+
+
+def _with(duty: Conjunction, asked: int) -> Conjunction:
+    return duty if asked == ALL else duty | {asked}
 
 
 def _components(edges: list[tuple[Edge, ...]]) -> tuple[list[int], frozenset[int]]:

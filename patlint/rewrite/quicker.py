@@ -46,6 +46,8 @@ from patlint.syntax.parser import PatternError, parse
 
 TRIES = 5
 """Proven candidates whose growth is asked in one round, the cheapest first, some milliseconds each."""
+LARGE = 1_000
+"""Instructions from which each proof is held to what one suggestion may cost: dozens of them would take seconds."""
 ROUNDS = 3
 """Changes one after the other, each lowering the growth."""
 ROOM = 2.0
@@ -92,9 +94,12 @@ def quicker(
 
     `growths` are those of the original in all manners of use, `parts` the spans that compete in `manner`,
     `modes` and `keeps` what has to stay.
+    Raises LimitReached("instructions").
     """
     if len(parsed.text) > LONGEST or parsed.flags & t.LOCALE or not parts:
         return None
+    if len(compile_tree(parsed, limits).code) > LARGE:
+        limits = limited(limits)
     modes = list(modes)
     found: WayOut | None = None
     now = parsed

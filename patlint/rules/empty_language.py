@@ -23,10 +23,10 @@ def check(subject: Subject) -> Iterator[Finding]:
     for mode in asked:
         if not subject.language(mode).is_empty_for_sure():
             continue
-        use = modes.get(mode)
-        asked_by: Mode = mode if use is None else use.mode
-        where = "in whatever way it is used" if use is None else f"in {asked_by}"
-        if use is not None and use.positioned:
+        shown = modes.get(mode)
+        asked_by: Mode = mode if shown is None else shown.mode
+        where = "in whatever way it is used" if shown is None else f"in {asked_by}"
+        if shown is not None and shown.positioned:
             where += ", from whatever place"
         yield Finding(
             RULE.name,
@@ -37,7 +37,7 @@ def check(subject: Subject) -> Iterator[Finding]:
             proof=f"the automaton of the pattern in {mode} accepts no text",
             evidence="its automaton accepts no text at all",
             way_out="look for an anchor on the wrong side, or conditions that cannot hold together",
-            related=used_here(subject, use),
+            related=used_here(subject, shown),
         )
         return
 

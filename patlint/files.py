@@ -59,7 +59,15 @@ def find_files(paths: Iterable[str], settings: Settings, stdin_name: str | None 
         if not inside and not left_out:
             problems.append(f"{path}: no Python files in this directory")
         found |= dict.fromkeys(inside)
-    return FileList(tuple(found), excluded, tuple(problems))
+    return FileList(_once(found), excluded, tuple(problems))
+
+
+def _once(paths: Iterable[str]) -> tuple[str, ...]:
+    """`paths` without those that an earlier one names in another way (`a.py` and `/home/a.py`)."""
+    told: dict[str, str] = {}
+    for path in paths:
+        told.setdefault(path if path == STDIN else os.path.abspath(path), path)
+    return tuple(told.values())
 
 
 def read_file(path: str) -> bytes | str:

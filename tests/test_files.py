@@ -43,6 +43,8 @@ def test_directories_are_walked_in_order(tree: Path) -> None:
     expected = ("a.py", "b.py", "vendored.py", "lib/z.py", "lib/deep/y.py", "vendor/c.py")
     assert find_files(["."], SETTINGS) == FileList(expected, 0, ())
     assert find_files(["./lib/", "a.py", "lib/z.py"], SETTINGS).paths == ("lib/z.py", "lib/deep/y.py", "a.py")
+    named_twice = find_files(["a.py", str(tree / "a.py"), str(tree / "lib")], SETTINGS).paths
+    assert named_twice == ("a.py", str(tree / "lib/z.py"), str(tree / "lib/deep/y.py"))
 
 
 def test_what_is_named_is_read_whatever_it_is_called(tree: Path) -> None:

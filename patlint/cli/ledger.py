@@ -54,6 +54,8 @@ def run(given: Sequence[str]) -> int:
         )
     for line in result.problems:
         say(line)
+    if new_file and result.problems and not result.files:
+        return 2  # nothing was read: a slip in a path does not make an empty ledger
     judged = judge(ledger, result.outcomes, options.paths, settings.asks)
     lines = entered(judged) if options.action == "write" else pruned(judged)
     try:

@@ -155,14 +155,14 @@ anything. Under `any`, where order does not matter, it is a note.
 """,
     wrong=Example(
         "import re\n\n"
-        '_KINDS = [("word", re.compile(r"[a-z]+")), ("keyword", re.compile(r"load|unload"))]\n\n\n'
+        '_KINDS = [\n    ("word", re.compile(r"[a-z]+")),\n    ("keyword", re.compile(r"load|unload")),\n]\n\n\n'
         "def kind(text):\n    for name, pattern in _KINDS:\n        if pattern.match(text):\n"
         "            return name\n    return None\n",
         "every keyword is a word, and words come first",
     ),
     right=Example(
         "import re\n\n"
-        '_KINDS = [("keyword", re.compile(r"load|unload")), ("word", re.compile(r"[a-z]+"))]\n\n\n'
+        '_KINDS = [\n    ("keyword", re.compile(r"load|unload")),\n    ("word", re.compile(r"[a-z]+")),\n]\n\n\n'
         "def kind(text):\n    for name, pattern in _KINDS:\n        if pattern.match(text):\n"
         "            return name\n    return None\n"
     ),

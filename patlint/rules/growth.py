@@ -59,7 +59,10 @@ def figures(slow: SlowText) -> str:
         count = exp(log(steps) + base * (wanted - n))
     else:
         wanted, count = at_length(slow, LONG)
-    return f"a text of {slow.fixed + wanted * slow.period:,} characters takes {in_words(count)} steps"
+    already = "already " if slow.growth == "exponential" else ""
+    return (
+        f"{already}a text of {slow.fixed + wanted * slow.period:,} characters takes {in_words(count)} steps"
+    )
 
 
 def at_length(slow: SlowText, length: int) -> tuple[int, float]:

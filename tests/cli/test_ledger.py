@@ -120,6 +120,13 @@ def test_a_file_that_cannot_be_read_keeps_its_entries(patlint: Patlint) -> None:
         assert Path("known").read_text() == before
 
 
+def test_a_slip_in_a_path_makes_no_empty_ledger(patlint: Patlint) -> None:
+    ran = patlint("ledger", "write", "--ledger", "fresh", "scr")
+    assert (ran.status, ran.out) == (2, "")
+    assert ran.err.startswith("scr: ")
+    assert not Path("fresh").exists()
+
+
 def test_standard_input_has_the_entries_of_its_name(patlint: Patlint) -> None:
     Path("a.py").write_text(INVALID)
     patlint("ledger", "write", "--ledger", "known")

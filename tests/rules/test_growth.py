@@ -121,7 +121,7 @@ def one(pattern: str, function: str = "match", looks_at: str = "truth") -> Findi
 def test_what_a_finding_says() -> None:
     found = one("(?:[a-z]+-?)+$")
     assert (found.rule, found.level, found.brief) == ("exponential-ambiguity", "error", False)
-    assert found.evidence.startswith("'a' can be taken in more than one way; a text of ")
+    assert found.evidence.startswith("'a' can be taken in more than one way; already a text of ")
     assert found.suggestion is not None and found.suggestion.pattern == "(?:[a-z]-?)+$"
     assert found.suggestion.keeps == "groups"
     assert found.way_out == "growth is exponential as it stands, linear with the pattern above"

@@ -13,8 +13,8 @@ automata is built: most are told apart by a single text, and only those that sha
 (97, 53)
 
 Cost: a few texts against each of the others, and a walk over tuples of states for each of the few that are compared.
-Limit: `product` pairs of states. Source of the method: refinement from counterexamples (Clarke, Grumberg, Jha, Lu and Veith,
-Counterexample-guided abstraction refinement, CAV 2000), here of a union.
+Limit: `product` pairs of states. Source of the method: refinement from counterexamples (Clarke, Grumberg,
+Jha, Lu and Veith, Counterexample-guided abstraction refinement, CAV 2000), here of a union.
 """
 
 from __future__ import annotations

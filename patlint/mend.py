@@ -33,7 +33,7 @@ from patlint.source import Module, SourceError, read_module
 from patlint.source.engine import FUNCTIONS
 from patlint.source.sinks import Sink
 from patlint.source.sinks_builtin import builtin_table
-from patlint.source.sinks_calls import pick
+from patlint.source.sinks_names import pick
 from patlint.source.sites import Site
 from patlint.syntax.parser import PatternError, parse
 

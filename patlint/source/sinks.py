@@ -1,8 +1,8 @@
 """Functions of other libraries that take a pattern: what is known of each, as data.
 
 A `Sink` is one argument of one function, class or method. `SinkTable` holds those that are in force and says
-quickly whether a file can have any. The built-in ones stand in `sinks_builtin`, `sinks_calls` finds their
-calls.
+quickly whether a file can have any. The built-in ones stand in `sinks_builtin`; `sinks_names` finds their
+calls, `sinks_calls` reads them.
 
 >>> table = SinkTable((Sink("freight.text.expect", (1, "pattern"), "search", "truth", seen=True),))
 >>> table.mentioned("from freight.text import expect"), table.mentioned("import freight")

@@ -1,12 +1,12 @@
 """The calls of one file that hand a pattern to another library -> sites, and what stays unresolved.
 
-`SinkReader.read()` finds the calls by the names that the file imports, by the names of methods, and by the
-bases of its classes; each argument becomes a `Site` whose `function` is the qualified name of what takes it.
-What a library does to the text (a `$` added, a place within a larger pattern) never makes another pattern of
-it here: where it may change the meaning, the site has no uses, and only what holds in every use is said of it.
+`SinkReader.read()` takes up the calls that `SinkNames` finds and the attributes of classes by their bases; each
+argument becomes a `Site` whose `function` is the qualified name of what takes it. What a library does to the text
+(a `$` added, a place within a larger pattern) never makes another pattern of it here: where it may change the
+meaning, the site has no uses, and only what holds in every use is said of it.
 
-Limits: a class that a file derives from one of its own is not followed to a library's; functions that are
-kept under another name or applied in part are not seen.
+Limits: a class that a file derives from one of its own is not followed to a library's; of a sequence only the
+first `_MOST_ROWS` rows are read.
 """
 
 from __future__ import annotations
@@ -16,19 +16,18 @@ import re
 from collections.abc import Callable, Iterator
 from dataclasses import replace
 
-from patlint.limits import LimitReached
 from patlint.source import reasons
 from patlint.source.constants import Constants
 from patlint.source.flags import evaluate_flags
 from patlint.source.index import Index
 from patlint.source.places import Text
 from patlint.source.reasons import Opaque
-from patlint.source.scopes import Binding, Scope
-from patlint.source.sinks import CONDITION, ENGINE, PART, SCANNER, Sink, SinkTable, Where
+from patlint.source.scopes import Scope
+from patlint.source.sinks import CONDITION, ENGINE, SCANNER, Sink, SinkTable
+from patlint.source.sinks_names import SinkNames, pick
+from patlint.source.sinks_parts import objection
 from patlint.source.sites import Function, Place, Site, Unresolved, Use
 from patlint.source.spelled import Spelled, cut
-from patlint.syntax import tree as t
-from patlint.syntax.parser import PatternError, parse
 
 _ROUTE = re.compile(r"\{[_a-zA-Z][^{}]*(?:\{[^{}]*\}[^{}]*)*\}")
 _PIECE = re.compile(r"\{[_a-zA-Z][_a-zA-Z0-9]*:(.+)\}", re.DOTALL)
@@ -59,25 +58,13 @@ class SinkReader:
         """The sites of each sequence of rows that is tried in its order."""
         self.made: dict[ast.Call, Site] = {}
         """The site of each call of a function or class that takes one pattern."""
-        self._package = [part for part in re.split(r"[/\\]", path)[:-1] if part]
-        self._imported: dict[str, bool] = {}
+        self._names = SinkNames(index, text, constants.names, path, table)
 
     def read(self) -> None:
-        for node, scope, sinks in self._called():
-            call = self.index.parents.get(node)
-            if isinstance(call, ast.Call) and call.func is node:
-                for sink in sinks:
-                    self.call(call, scope, sink)
-        for attribute, several in self.table.methods.items():
-            for use in self.index.reads.get(attribute, ()):
-                call = self.index.parents.get(use.node)
-                if isinstance(call, ast.Call) and call.func is use.node:
-                    for sink in self._fitting(use.node, use.scope, several):
-                        self.call(call, use.scope, sink)
-        if self.table.results:
-            self._results()
-        if self.table.lookups:
-            self._lookups()
+        for call, scope, sink in self._names.calls():
+            self.call(call, scope, sink)
+        for value, sink in self._names.lookups():
+            self._refuse(value, sink, sink.refused or ENGINE)
         if self.table.attributes:
             for definition, inner in self.index.classes.items():
                 self._class(definition, inner)
@@ -87,178 +74,13 @@ class SinkReader:
 
         The use (None where it is not known), and whether it is all that happens to the object.
         """
-        for sink in self._sinks_of(call, scope):
+        for sink in self._names.of_call(call, scope):
             if sink.kind in ("call", "method") and pick(call, sink.argument)[0] is node:
                 function = None if pick(call, sink.unless)[0] is not None else sink.function
                 if sink.embedded or sink.part or function is None:
                     return None, False
                 sense = pick(call, sink.inverted) == (None, False)
                 return self._use(sink, function, self.text.place(call), validates=sense), sink.seen
-        return None
-
-    def _sinks_of(self, call: ast.Call, scope: Scope) -> list[Sink]:
-        known = self.table.calls.get(self.qualified(call.func, scope) or "", [])
-        if not known and isinstance(call.func, ast.Attribute):
-            return self._fitting(call.func, scope, self.table.methods.get(call.func.attr, []))
-        return known
-
-    # names
-
-    def qualified(self, node: ast.expr, scope: Scope) -> str | None:
-        """The qualified name that an imported name or a member of it stands for, as far as the file tells."""
-        names: list[str] = []
-        while isinstance(node, ast.Attribute):
-            names.append(node.attr)
-            node = node.value
-        if not isinstance(node, ast.Name):
-            return None
-        owner = scope.find(node.id)
-        rest = "".join(f".{name}" for name in reversed(names))
-        if owner is None:
-            starred = [f"{module}.{node.id}{rest}" for _, module in self.index.module.stars]
-            return next((name for name in starred if self._known(name)), None)
-        bindings = [b for b in owner.bindings[node.id] if not b.is_none and b.kind != "deleted"]
-        found = {self._imported_name(binding) for binding in bindings}
-        if not found or None in found:
-            return None
-        whole = sorted(self._settled(f"{name}{rest}") for name in found)
-        return whole[0] if len(whole) == 1 or all(map(self._known, whole)) else None
-
-    def _known(self, name: str) -> bool:
-        return name in self.table.calls or name in self.table.attributes or name in self.table.results
-
-    def _imported_name(self, binding: Binding) -> str | None:
-        if binding.kind != "import" or binding.module is None:
-            return None
-        module = binding.module
-        if module.startswith("."):
-            level = len(module) - len(module.lstrip("."))
-            above = self._package[: len(self._package) - level + 1]
-            module = ".".join([*above, *([module[level:]] if module[level:] else [])])
-        return module if binding.member is None else f"{module}.{binding.member}"
-
-    def _settled(self, name: str) -> str:
-        """A project's own sink may lie in any folder: the end of its name decides."""
-        for known in self.table.project:
-            if name.endswith("." + known):
-                return known
-        return name
-
-    def _called(self) -> Iterator[tuple[ast.expr, Scope, list[Sink]]]:
-        """Every expression that names a sink, in whatever order."""
-        parents = self.index.parents
-        calls = self.table.calls
-        if not calls and not self.table.results:
-            return
-        names = self._names()
-        for scope in self.index.scopes:
-            for name in names & scope.loads.keys():
-                for node in scope.loads[name]:
-                    whole: ast.expr = node
-                    above = parents.get(whole)
-                    while isinstance(above, ast.Attribute):
-                        whole = above
-                        above = parents.get(whole)
-                    if not isinstance(above, ast.Call) or above.func is not whole:
-                        continue
-                    qualified = self.qualified(whole, scope)
-                    if qualified in calls:
-                        yield whole, scope, calls[qualified]
-
-    def _names(self) -> set[str]:
-        """Names that an import binds to something of a library with sinks."""
-        tops, members = self.table.tops, self.table.members
-        starred = any(module.split(".")[0] in tops for _, module in self.index.module.stars)
-        found: set[str] = set(members) if starred else set()
-        for scope in self.index.scopes:
-            for name, bindings in scope.bindings.items():
-                for binding in bindings:
-                    if binding.kind == "import" and binding.module is not None:
-                        top = binding.module.split(".")[0]
-                        if top in tops or (self.table.project and (not top or binding.member in members)):
-                            found.add(name)
-                            break
-        return found
-
-    def _fitting(self, node: ast.Attribute, scope: Scope, sinks: list[Sink]) -> list[Sink]:
-        """The sinks of a method that this attribute may be."""
-        chain: list[str] = []
-        base: ast.expr = node
-        while isinstance(base, ast.Attribute):
-            chain.insert(0, base.attr)
-            base = base.value
-        fit = [
-            sink
-            for sink in sinks
-            if tuple(chain[-len(sink.method) :]) == sink.method
-            and (not sink.needs or any(map(self._imports, sink.needs)))
-            and (not sink.decorator or self._decorates(node))
-        ]
-        if not fit:
-            return []
-        owner = self.constants.names.class_of(node.value, scope)
-        if owner is not None and node.attr in owner.bindings:
-            return []  # a method that the file writes itself
-        if self.qualified(node, scope) in self.table.calls:
-            return []
-        if self.qualified(node.value, scope) is not None and not any(sink.needs for sink in fit):
-            return []  # a function of a module, or a method with its object as an argument
-        return [sink for sink in fit if sink.refused] or fit
-
-    def _imports(self, module: str) -> bool:
-        """Whether the file imports `module` or something of it, anywhere."""
-        known = self._imported.get(module)
-        if known is None:
-            known = self._imported[module] = any(
-                binding.kind == "import" and (binding.module or "").split(".")[0] == module
-                for scope in self.index.scopes
-                for bindings in scope.bindings.values()
-                for binding in bindings
-            )
-        return known
-
-    def _decorates(self, node: ast.Attribute) -> bool:
-        call = self.index.parents.get(node)
-        above = self.index.parents.get(call) if call is not None else None
-        return isinstance(above, (ast.FunctionDef, ast.AsyncFunctionDef, ast.ClassDef)) and (
-            call in above.decorator_list
-        )
-
-    def _results(self) -> None:
-        """Methods of what a `with` statement binds: `with pytest.raises(…) as caught: … caught.match(…)`."""
-        methods = {sink.method[-1]: name for name, sinks in self.table.results.items() for sink in sinks}
-        for attribute, name in methods.items():
-            for use in self.index.reads.get(attribute, ()):
-                call = self.index.parents.get(use.node)
-                value = use.node.value
-                if not (isinstance(call, ast.Call) and call.func is use.node and isinstance(value, ast.Name)):
-                    continue
-                owner = use.scope.find(value.id)
-                bindings = owner.bindings[value.id] if owner is not None else []
-                made = {self._entered(binding) for binding in bindings}
-                if made == {name}:
-                    for sink in self.table.results[name]:
-                        self.call(call, use.scope, sink)
-
-    def _lookups(self) -> None:
-        """Keywords that end like a lookup: `filter(name__regex=…)`."""
-        wanted = {
-            ending: sink
-            for ending, sink in self.table.lookups.items()
-            if any(map(self._imports, sink.needs)) and any(ending in line for line in self.text.lines)
-        }
-        for node in self.index.parents if wanted else ():
-            if isinstance(node, ast.keyword) and node.arg is not None:
-                for ending, sink in wanted.items():
-                    if node.arg.endswith(ending):
-                        self._refuse(node.value, sink, sink.refused or ENGINE)
-
-    def _entered(self, binding: Binding) -> str | None:
-        """The qualified name of the call that a `with` statement enters to bind a name."""
-        item = self.index.parents.get(binding.node)
-        if isinstance(item, ast.withitem) and item.optional_vars is binding.node:
-            made = item.context_expr
-            return self.qualified(made.func, binding.scope) if isinstance(made, ast.Call) else None
         return None
 
     # calls
@@ -375,7 +197,7 @@ class SinkReader:
             else:
                 self._refuse(row, sink, reasons.ELEMENT)
                 continue
-            if isinstance(first, ast.Call) and (sink.kind == "states" or self._sinks_of(first, inner)):
+            if isinstance(first, ast.Call) and (sink.kind == "states" or self._names.of_call(first, inner)):
                 continue  # a list of words, made by a call
             self.constants.restart()
             try:
@@ -397,7 +219,7 @@ class SinkReader:
             case ast.Tuple(elts=[_, ast.Constant(value=None), *_]):
                 return True
             case ast.Tuple(elts=[_, ast.Name() | ast.Attribute() as action, *_]):
-                return (self.qualified(action, scope) or "").startswith("pygments.token.")
+                return (self._names.qualified(action, scope) or "").startswith("pygments.token.")
             case _:
                 return False
 
@@ -433,7 +255,7 @@ class SinkReader:
     def _class(self, definition: ast.ClassDef, inner: Scope) -> None:
         outer = inner.parent
         for base in definition.bases:
-            name = self.qualified(base, outer) if outer is not None else None
+            name = self._names.qualified(base, outer) if outer is not None else None
             for sink in self.table.attributes.get(name or "", ()):
                 if sink.kind == "states":
                     if len(definition.bases) == 1:  # another base might give the flags
@@ -526,13 +348,9 @@ class SinkReader:
                 function = sink.dollar
             elif not sink.ends_open:
                 function, part = None, True
-        if (part and not stands_alone(pattern.value, flags)) or (
-            sink.name == SCANNER and _sets_flags(pattern.value, flags)
-        ):
-            self._refuse(argument, sink, PART)
-            return
-        if sink.elsewhere and _is_refused(pattern.value, flags):
-            self._refuse(argument, sink, ENGINE)
+        refused = objection(sink, part, pattern.value, flags)
+        if refused is not None:
+            self._refuse(argument, sink, refused)
             return
         everything = pattern.value in EVERYTHING
         place, statement = self.locate(argument, scope, pattern)
@@ -550,57 +368,3 @@ class SinkReader:
                 embedded=sink.embedded or part,
             )
         )
-
-
-def pick(call: ast.Call, where: Where) -> tuple[ast.expr | None, bool]:
-    """An argument of a call, and whether `*` or `**` may give it where it is not written out."""
-    loose = False
-    for key in where:
-        if isinstance(key, int):
-            starred = any(isinstance(argument, ast.Starred) for argument in call.args[: key + 1])
-            if not starred and key < len(call.args):
-                return call.args[key], False
-            loose |= starred
-        else:
-            for keyword in call.keywords:
-                if keyword.arg == key:
-                    return keyword.value, False
-            loose |= any(keyword.arg is None for keyword in call.keywords)
-    return None, loose
-
-
-def _is_refused(pattern: str | bytes, flags: int) -> bool:
-    """Whether `re` of the newest Python refuses the pattern."""
-    try:
-        parse(pattern, flags, (3, 13))
-    except PatternError:
-        return True
-    except LimitReached:
-        pass
-    return False
-
-
-def _sets_flags(pattern: str | bytes, flags: int) -> bool:
-    """Whether the pattern sets flags for all of itself: `re.Scanner` loses them."""
-    try:
-        return parse(pattern, flags).inline != 0
-    except (PatternError, LimitReached):
-        return False
-
-
-def stands_alone(pattern: str | bytes, flags: int) -> bool:
-    """Whether what holds for the pattern by itself holds for it as a part of a larger one.
-
-    Not where it looks at what stands around it, counts groups, or sets flags; nor where its brackets may only
-    be balanced by what comes before and after.
-    """
-    try:
-        parsed = parse(pattern, flags)
-    except PatternError as error:
-        return "parenthesis" not in str(error)
-    except LimitReached:
-        return False
-    if parsed.inline:
-        return False
-    around = (t.Anchor, t.Look, t.BackReference, t.Conditional)
-    return not any(isinstance(node, around) for node in t.walk(parsed.root))

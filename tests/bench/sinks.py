@@ -21,7 +21,7 @@ from typing import TypeAlias
 
 from patlint.source.sinks import Sink
 from patlint.source.sinks_builtin import BUILTIN
-from patlint.source.sinks_calls import stands_alone
+from patlint.source.sinks_parts import stands_alone
 from tests.bench.environment import environment_python, install
 from tests.bench.libraries import key
 

@@ -21,7 +21,7 @@ from patlint.rules import check_site
 from patlint.source import Site, find_patterns, read_module, reasons
 from patlint.source.sinks import CONDITION, ENGINE, PART, Sink, SinkTable
 from patlint.source.sinks_builtin import BUILTIN, builtin_table
-from patlint.source.sinks_calls import stands_alone
+from patlint.source.sinks_parts import stands_alone
 from tests.bench import sinks as bench
 from tests.bench.libraries import adapters
 

@@ -33,6 +33,10 @@ class Part:
     """What is to be deleted from the pattern."""
 
 
+MOST_MOVED = 8
+"""Dead parts up to which each dead branch is tried in front: the pattern is built anew for each."""
+
+
 def check(subject: Subject) -> Iterator[Finding]:
     dead = dead_parts(subject)
     if not dead:
@@ -46,7 +50,7 @@ def check(subject: Subject) -> Iterator[Finding]:
         told.append(part.node.span)
         yield Finding(
             RULE.name,
-            RULE.level if is_surprise(subject, part) else "note",
+            RULE.level if is_surprise(subject, part, len(dead) <= MOST_MOVED) else "note",
             part.node.span,
             f"no match ever takes this {part.kind}",
             mode=only_mode(subject),
@@ -71,13 +75,13 @@ def dead_parts(subject: Subject) -> list[Part]:
     return [part for part in parts if not _is_read(part, used) and not is_spelled_never(part.node)]
 
 
-def is_surprise(subject: Subject, part: Part) -> bool:
+def is_surprise(subject: Subject, part: Part, moved: bool = True) -> bool:
     """Whether the author of a dead part must expect something else of the outcome than comes.
 
     A branch of which the earlier ones take only pieces, so that it would count if it were the first; a group that is
     never set, or that takes what the part behind it was written for; a lazy repeat that is left at once. What else
     is dead could be left out, and nobody is misled (`\\w*\\d*:`), nor is anybody where only the truth of a match is
-    asked.
+    asked. Without `moved` a branch is not tried in front, and taken to count there.
     """
     uses, seen = subject.uses, subject.site.uses_seen and bool(subject.uses)
     if seen and all(use.looks_at == "truth" and use.function not in SCANNING for use in uses):
@@ -87,7 +91,11 @@ def is_surprise(subject: Subject, part: Part) -> bool:
     if part.kind == "branch":
         if _is_covered(subject, node):
             return False
-        return (groups_read and any(map(_captures, t.walk(node)))) or _counts_in_front(subject, node)
+        return (
+            not moved
+            or (groups_read and any(map(_captures, t.walk(node))))
+            or _counts_in_front(subject, node)
+        )
     if isinstance(node, t.Repeat) and node.kind == "lazy":
         return True
     if not groups_read:

@@ -215,3 +215,10 @@ def test_many_dead_branches_of_one_pattern_are_told_as_one() -> None:
         f"{dead}, and the same holds of 3 further parts of the pattern"
     ]
     assert told(*"abcdefghij") == [f"{dead}, and the same holds of 9 further parts of the pattern"]
+
+
+@pytest.mark.parametrize(("count", "level"), [(8, "note"), (9, "warning")])
+def test_only_a_few_branches_are_tried_in_front(count: int, level: str) -> None:
+    pieces = "|".join(rf"\\{number}x" for number in range(count))
+    found = findings(site(rf'"(?:\\.|{pieces}|[^\\"])*"', "match", "span"), "unreachable-part")
+    assert [finding.level for finding in found] == [level] * count

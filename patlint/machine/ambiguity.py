@@ -110,7 +110,7 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
 
     Raises LimitReached.
     """
-    prefixes = _prefixes(graph)
+    prefixes = Prefixes(graph)
     members: dict[int, list[int]] = {}
     for node, component in enumerate(graph.components):
         if component in graph.cyclic and node in prefixes:
@@ -133,7 +133,7 @@ def suspects(nfa: Nfa, graph: Walks) -> Iterator[Suspect]:
         yield _several(chain, links, graph, prefixes)
 
 
-def _linked(graph: Walks, links: Links, prefixes: dict[int, Masks]) -> Iterator[Suspect]:
+def _linked(graph: Walks, links: Links, prefixes: Prefixes) -> Iterator[Suspect]:
     """Suspicions of one pump: for each link some, and one for a longest chain as a whole."""
     depth = depths(links)
     ranked = sorted(links, key=lambda link: (-depth[link], len(links[link][0][2])))
@@ -157,7 +157,7 @@ def _linked(graph: Walks, links: Links, prefixes: dict[int, Masks]) -> Iterator[
 
 def _suspect(
     graph: Walks,
-    prefixes: dict[int, Masks],
+    prefixes: Prefixes,
     nodes: tuple[int, ...],
     pump: Masks,
     degree: int,
@@ -175,7 +175,7 @@ def _suspect(
     )
 
 
-def _within(graph: Walks, nodes: list[int], prefixes: dict[int, Masks], limit: int) -> Iterator[Suspect]:
+def _within(graph: Walks, nodes: list[int], prefixes: Prefixes, limit: int) -> Iterator[Suspect]:
     """Repeats inside a loop that compete within one iteration.
 
     The loop as a whole has two cycles on one text, but what follows may take every such text; an iteration that
@@ -195,7 +195,7 @@ def _within(graph: Walks, nodes: list[int], prefixes: dict[int, Masks], limit: i
 
 
 def _joined(
-    chain: list[Link], links: Links, depth: dict[Link, int], graph: Walks, prefixes: dict[int, Masks]
+    chain: list[Link], links: Links, depth: dict[Link, int], graph: Walks, prefixes: Prefixes
 ) -> Suspect:
     """One suspicion for a whole chain, with a pump that all links can take.
 
@@ -212,7 +212,7 @@ def _joined(
     return _suspect(graph, prefixes, (begin, end), pump, depth[chain[0]], nodes)
 
 
-def _several(chain: tuple[Link, ...], links: Links, graph: Walks, prefixes: dict[int, Masks]) -> Suspect:
+def _several(chain: tuple[Link, ...], links: Links, graph: Walks, prefixes: Prefixes) -> Suspect:
     """A suspicion for a chain whose links have a pump each."""
     ways = [links[link][0] for link in chain]
     more: list[tuple[Masks, Masks]] = []
@@ -226,16 +226,28 @@ def _several(chain: tuple[Link, ...], links: Links, graph: Walks, prefixes: dict
     return replace(last, prefix=prefixes[first], by_restart=afresh, more=tuple(more))
 
 
-def _prefixes(graph: Walks) -> dict[int, Masks]:
-    """A shortest text from the start to each node."""
-    out: dict[int, Masks] = {node: () for node in graph.entry}
-    order = list(out)
-    for node in order:
-        for edge in graph.edges[node]:
-            if edge.target not in out:
-                out[edge.target] = (*out[node], edge.mask)
-                order.append(edge.target)
-    return out
+class Prefixes:
+    """A shortest text from the start to each node, put together when it is asked for."""
+
+    def __init__(self, graph: Walks) -> None:
+        self._from: dict[int, tuple[int, int] | None] = dict.fromkeys(graph.entry)
+        order = list(self._from)
+        for node in order:
+            for edge in graph.edges[node]:
+                if edge.target not in self._from:
+                    self._from[edge.target] = node, edge.mask
+                    order.append(edge.target)
+
+    def __contains__(self, node: int) -> bool:
+        return node in self._from
+
+    def __getitem__(self, node: int) -> Masks:
+        masks = []
+        step = self._from[node]
+        while step is not None:
+            masks.append(step[1])
+            step = self._from[step[0]]
+        return tuple(reversed(masks))
 
 
 def _others(graph: Walks, nodes: list[int], limit: int, found: list[Cycles], minterms: int) -> list[Cycles]:

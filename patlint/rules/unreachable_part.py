@@ -10,6 +10,7 @@ from itertools import pairwise
 from patlint.language import Language
 from patlint.limits import LimitReached
 from patlint.machine.agreement import same_spans
+from patlint.machine.matcher import Matcher
 from patlint.machine.nfa import Nfa
 from patlint.machine.priority import shown_used
 from patlint.machine.program import compile_tree
@@ -112,10 +113,13 @@ def _is_covered(subject: Subject, branch: t.Node) -> bool:
             if not earlier or not is_plain(branch):
                 return False
             tree = earlier[0] if len(earlier) == 1 else t.Alternation(node.span, earlier)
-            own, others = (
-                Language(replace(subject.pattern, root=root), limits=subject.limits)
-                for root in (branch, tree)
-            )
+            own = Language(replace(subject.pattern, root=branch), limits=subject.limits)
+            text = own.shortest()
+            if text is not None:  # a text tells most apart before the automaton of all the others is built
+                others_run = Matcher(compile_tree(subject.pattern, subject.limits, root=tree))
+                if others_run.run(text, "fullmatch").span is None:
+                    return False
+            others = Language(replace(subject.pattern, root=tree), limits=subject.limits)
             return own.exact and others.exact and own <= others
     return False
 

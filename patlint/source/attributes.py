@@ -8,7 +8,7 @@ class is reached with all of them. An attribute that only `__init__` sets, once,
 Sources: Python language reference, "Custom classes"; M. Simionato, The Python 2.3 Method Resolution Order,
 for the cases that are given up.
 
-Limits: an attribute that is set anywhere else, or may be by `setattr` or `__dict__`, is not followed, nor is
+Limits: an attribute that is set anywhere else, or may be by `setattr`, `vars` or `__dict__`, is not followed, nor is
 one under a test of itself. That `setattr` with an unknown object and an unknown name could mean it is not
 thought of, nor are classes derived in other files. Fields of classes with decorators and annotated fields of
 classes with unknown bases are set when an object is made; members of an enumeration are no texts.
@@ -228,7 +228,17 @@ class Attributes:
         """What may be set by name: on which object, None for any; by which name, None for any."""
         for use in self.index.reads.get("__dict__", ()):
             yield use, None
+        for use in self.index.reads.get("__setattr__", ()):
+            match self.index.parents.get(use.node):
+                case ast.Call(func=function, args=[target, ast.Constant(value=str(given)), _]):
+                    if function is use.node:  # object.__setattr__(target, "name", value)
+                        yield AttributeUse(ast.Attribute(target, "", ast.Load()), use.scope), given
         for scope in self.index.scopes:
+            for read in scope.loads.get("vars", ()):
+                match self.index.parents.get(read):
+                    case ast.Call(func=function, args=[target]) if function is read:
+                        if self._is_stored_into(read):
+                            yield AttributeUse(ast.Attribute(target, "", ast.Load()), scope), None
             for read in scope.loads.get("setattr", ()):
                 match self.index.parents.get(read):
                     case ast.Call(func=function, args=[target, name, *_]) if function is read:
@@ -239,6 +249,16 @@ class Attributes:
                         yield use, str(name.value) if known else None  # type: ignore[attr-defined]
                     case _:
                         yield None, None
+
+    def _is_stored_into(self, read: ast.AST) -> bool:
+        """Whether the dict that `vars(...)` gives is written to on the spot; `read` is the name `vars`."""
+        match self.index.parents.get(self.index.parents[read]):
+            case ast.Subscript(ctx=ast.Store() | ast.Del()):
+                return True
+            case ast.Attribute(attr="update" | "setdefault" | "pop" | "__setitem__"):
+                return True
+            case _:
+                return False
 
     def _check_untested(self, node: ast.Attribute) -> None:
         """Where the text itself decides whether the call is reached, not every text may reach it."""

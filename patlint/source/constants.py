@@ -19,6 +19,7 @@ from patlint.source.engine import Engine
 from patlint.source.formatting import percent
 from patlint.source.helpers import Helpers
 from patlint.source.index import Index
+from patlint.source.kept import Kept
 from patlint.source.names import MUTABLE, Names, path_to
 from patlint.source.places import Text
 from patlint.source.quoted import f_string, literal
@@ -48,6 +49,7 @@ class Constants:
         self.text = text
         self.engine = engine
         self.names = Names(index, engine, text)
+        self.kept = Kept(self.names, index)
         self.choices = Choices()
         self.rows = Rows(self, index)
         self.helpers = Helpers(self, index)
@@ -207,7 +209,10 @@ class Constants:
     def _definition(self, node: ast.Name, scope: Scope, depth: int) -> Value:
         item = self.origin(node, scope)
         if item is not None:
-            return self.rows.value(item, depth)
+            value = self.rows.value(item, depth)
+            if not self.kept.by_name(node.id, scope, value):
+                raise Opaque(reasons.CHANGED)
+            return value
         values: list[Value] = []
         definitions = self.names.definitions(node, scope)
         for expression, inner in definitions:
@@ -216,6 +221,8 @@ class Constants:
             values.append(self.remembered(expression, inner, depth))
             if not same(values[0], values[-1]):
                 raise Opaque(reasons.REASSIGNED)
+        if not self.kept.by_name(node.id, scope, values[0]):
+            raise Opaque(reasons.CHANGED)
         return values[0]
 
     def remembered(self, expression: ast.expr, scope: Scope, depth: int) -> Value:
@@ -256,7 +263,10 @@ class Constants:
                 return without_spelling(str(getattr(string, node.attr)), self.text.place(node))
         item = self.origin(node, scope)
         assert item is not None
-        return self.rows.value(item, depth)
+        value = self.rows.value(item, depth)
+        if not self.kept.as_attribute(node.attr, value):
+            raise Opaque(reasons.CHANGED)
+        return value
 
     def _fail(self) -> Value:
         raise Opaque(reasons.CALL)

@@ -58,7 +58,10 @@ def enclose(
         return False
     match parent:
         case ast.Tuple():
-            follower.flow(parent, scope, put(parent.elts.index(node), way), found)
+            place = parent.elts.index(node)
+            if any(isinstance(each, ast.Starred) for each in parent.elts[:place]):
+                return False  # it lies further on
+            follower.flow(parent, scope, put(place, way), found)
         case ast.List() | ast.Set():
             follower.flow(parent, scope, put("each", way), found)
         case ast.Dict() if any(node is value for value in parent.values):

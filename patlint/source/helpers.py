@@ -125,7 +125,7 @@ class Helpers:
         nothing = Calls((), False)
         if not isinstance(function, ast.FunctionDef) or owner.parent is None:
             return nothing
-        if not _is_plain(function) or owner.parent.find(function.name) is not owner.parent:
+        if not _is_plain(function, owner.parent) or owner.parent.find(function.name) is not owner.parent:
             return nothing
         bindings = owner.parent.bindings.get(function.name, [])
         if [each.node for each in bindings if each.kind != "deleted"] != [function]:
@@ -200,7 +200,7 @@ class Helpers:
             raise Opaque(reasons.CALL)
         function = bindings[0].value if bindings[0].kind == "value" else bindings[0].node
         if isinstance(function, ast.Lambda) or (
-            isinstance(function, ast.FunctionDef) and _is_plain(function)
+            isinstance(function, ast.FunctionDef) and _is_plain(function, bindings[0].scope)
         ):
             return function, bindings[0].scope
         raise Opaque(reasons.CALL)
@@ -260,13 +260,16 @@ class Helpers:
             return None
 
 
-def _is_plain(function: ast.FunctionDef) -> bool:
-    """No decorator, or one that keeps results alone; no generator."""
+def _is_plain(function: ast.FunctionDef, scope: Scope) -> bool:
+    """No decorator, or one that keeps results alone; no generator. `scope` is where it is defined."""
     for each in function.decorator_list:
         name = each.func if isinstance(each, ast.Call) else each
         last = name.attr if isinstance(name, ast.Attribute) else getattr(name, "id", "")
         if last not in _KEEPING:
             return False
+        owner = scope.find(name.id) if isinstance(name, ast.Name) else None
+        if owner is not None and any(each.kind != "import" for each in owner.bindings[last]):
+            return False  # a function of the same name
     return not any(isinstance(each, (ast.Yield, ast.YieldFrom)) for each in ast.walk(function))
 
 
@@ -306,8 +309,9 @@ def _parameter(name: str, call: ast.Call, scope: Scope, function: Function, owne
     positional = [each.arg for each in (*arguments.posonlyargs, *arguments.args)]
     if name in positional and positional.index(name) < len(call.args):
         return Row(call.args[positional.index(name)], scope)
+    by_name = any(each.arg == name for each in (*arguments.args, *arguments.kwonlyargs))
     for keyword in call.keywords:
-        if keyword.arg == name:
+        if keyword.arg == name and by_name:
             return Row(keyword.value, scope)
     default = _defaults(arguments).get(name)
     if default is not None and owner.parent is not None:

@@ -160,14 +160,15 @@ class Rows:
     def _check_unchanged(self, node: ast.Name | ast.Attribute, scope: Scope, display: ast.expr) -> None:
         """Nothing changes the list or dict that `node` stands for, nor one within. Errors: `Opaque`."""
         names = self.constants.names
+        mutable = isinstance(display, MUTABLE) or _gives_list(display)
         nested = any(isinstance(each, MUTABLE) for each in ast.walk(display) if each is not display)
-        if not isinstance(display, MUTABLE) and not nested:
+        if not mutable and not nested:
             return
         if isinstance(node, ast.Attribute):
             if nested or not names.attribute_unchanged(node.attr):
                 raise Opaque(reasons.CHANGED)
             return
-        if isinstance(display, MUTABLE) and not names.unchanged(node.id, scope):
+        if mutable and not names.unchanged(node.id, scope):
             raise Opaque(reasons.CHANGED)
         if nested and not names.rows_unchanged(node.id, scope, display):
             raise Opaque(reasons.CHANGED)
@@ -335,6 +336,13 @@ def _of_comprehension(read: ast.Name, owner: Scope, bindings: list[Binding], ind
         scope = owner if number else owner.parent
         return Loop(generator, scope, path) if scope is not None else None
     return None
+
+
+def _gives_list(node: ast.expr) -> bool:
+    """Whether a call may give a list or dict that can be changed afterwards."""
+    if not isinstance(node, ast.Call):
+        return False
+    return not (isinstance(node.func, ast.Name) and node.func.id in ("tuple", "frozenset"))
 
 
 def _within(node: ast.AST, outer: ast.AST, index: Index) -> bool:

@@ -121,6 +121,14 @@ UNRESOLVED = [
     ),
     ("class A:\n __slots__ = ('P',)\n def f(self): re.match(self.P, '')", reasons.ATTRIBUTE),
     ("class A:\n P = 'a'\nA = g(A)\nre.match(A.P, '')", reasons.ATTRIBUTE),
+    (
+        "class A:\n P = 'a'\n def f(self):\n  vars(self)['P'] = 'b'\n  re.match(self.P, '')",
+        reasons.ATTRIBUTE,
+    ),
+    (
+        "class A:\n P = 'a'\n def f(self):\n  object.__setattr__(self, 'P', 'b')\n  re.match(self.P, '')",
+        reasons.ATTRIBUTE,
+    ),
 ]
 
 

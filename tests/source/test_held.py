@@ -61,6 +61,7 @@ SEEN = [
     ("_T = g()\n_T['x'] = re.compile('a')\nfor r in _T: r.match(s)", [], False),
     ("_T = [1]\n_T[0] = re.compile('a')\nfor r in _T: r.match(s)", [], False),
     ("_T = [re.compile('a')]\nx = [*_T]", [], False),
+    ("_T = (*h, re.compile('a'))\n_T[1].match(s)\n_T[2].search(s)", [], False),
     ("_T = [re.compile('a')]\n_T.x", [], False),
     ("for p in ('a', 'b'): r = re.compile(p)\nr.match(s)", [], False),
     ("def f(s):\n for p in ('a', 'b'):\n  r = re.compile(p)\n  r.match(s)\n r.search(s)", ["match"], False),

@@ -158,6 +158,25 @@ def test_uses(source: str, expected: dict[str, tuple[list[str], bool]]) -> None:
     assert found == expected
 
 
+NOT_WHAT_THEY_LOOK = [
+    # a function of the file's own by the name of one that keeps results
+    "def cache(f): return lambda x: 'q'\n@cache\ndef w(x): return x\nre.match(w('a'), '')",
+    # a keyword by the name of `*p`: it lands in `**k`
+    "def _f(*p, **k): re.match(p[0], '')\n_f('a', p='b')",
+]
+
+
+@pytest.mark.parametrize("source", NOT_WHAT_THEY_LOOK)
+def test_not_what_they_look(source: str) -> None:
+    found = read_module("import re\n" + source, "a.py")
+    assert found.sites == () and len(found.unresolved) == 1
+
+
+def test_a_keyword_beside_a_default() -> None:
+    found = find_patterns("import re\ndef _f(p='a', /, **k): re.match(p, '')\n_f(p='b')", "a.py")
+    assert [site.pattern for site in found] == ["a"]
+
+
 CALLING_THEMSELVES = [
     "def f(t, w):\n if t: f(t, w)\n else: re.search(w, t)\n",
     "def f(t, w='x'):\n if w: return re.match(w, t)\n return g(t, w)\ndef g(t, w): return f(t, w)\n",

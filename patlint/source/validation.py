@@ -102,7 +102,21 @@ def end_is_settled(subject: ast.expr | None, scope: Scope, index: Index, depth: 
                 return not arguments or _takes_line_feeds(arguments[0])
             if method in _KEEPING:
                 return end_is_settled(inner, scope, index, depth + 1)
+            if method in ("encode", "decode"):
+                return end_is_settled(inner, scope, index, depth + 1)
+            if method == "replace" and len(arguments) == 2:
+                return _is_line_feed(arguments[0])
+            if method == "removesuffix" and arguments:
+                return _is_line_feed(arguments[0])
             return method == "readline"
+        case ast.IfExp(body=body, orelse=orelse):
+            return all(end_is_settled(each, scope, index, depth + 1) for each in (body, orelse))
+        case ast.Constant(value=str() as text):
+            return not text.endswith("\n")
+        case ast.BinOp(op=ast.Add(), right=ast.Constant(value=str() as text)) if text:
+            return not text.endswith("\n")
+        case ast.JoinedStr(values=[*_, ast.Constant(value=str() as text)]) if text:
+            return not text.endswith("\n")
         case ast.Call(func=ast.Name(id="input")):
             return True
         case ast.Subscript(value=inner, slice=ast.Slice(upper=None, step=None)):
@@ -117,6 +131,10 @@ def end_is_settled(subject: ast.expr | None, scope: Scope, index: Index, depth: 
             return _name_is_settled(subject, scope, index, depth + 1)
         case _:
             return False
+
+
+def _is_line_feed(argument: ast.expr) -> bool:
+    return isinstance(argument, ast.Constant) and argument.value in ("\n", b"\n")
 
 
 def _takes_line_feeds(argument: ast.expr) -> bool:

@@ -47,6 +47,11 @@ QUIET = [
     "def f(s):\n    return bool(P.match(s.strip()))",
     "def f(s):\n    return bool(P.match(s.rstrip('\\r\\n')))",
     "def f(s):\n    return bool(P.match(s.strip().lower()))",
+    "def f(s):\n    return bool(P.match(s.strip().encode().decode()))",
+    "def f(s):\n    return bool(P.match(s.replace('\\n', '')))",
+    "def f(s):\n    s = s.strip() if s else ''\n    return bool(P.match(s))",
+    "def f(s):\n    return bool(P.match(s + 'x'))",
+    "def f(s):\n    return bool(P.match(f'{s}x'))",
     "def f(s):\n    s = s.strip()\n    return bool(P.match(s))",
     "def f(s):\n    for line in s.splitlines():\n        if not P.match(line):\n            raise ValueError(line)",
     "def f(s):\n    for n, line in enumerate(s.splitlines()):\n"

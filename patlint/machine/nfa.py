@@ -34,6 +34,7 @@ from patlint.machine.contexts import AFTER_NEWLINE, AFTER_WORD, AT_START, Contex
 from patlint.machine.determinise import subset_table
 from patlint.machine.obligations import ALL, FREE, NONE, Conjunction, Obligations, Thread
 from patlint.machine.ordered import Threads, ends_here, prune, steps
+from patlint.machine.widened import widened
 from patlint.syntax.charset import NEWLINE, CharSet
 from patlint.syntax.tree import Span
 
@@ -107,7 +108,7 @@ class Nfa:
                 self.pc_of += [pc] * width
         self.accept = len(reads)
         self.pending = self.accept + 1
-        self.widened = self._widened()
+        self.widened = widened(program)
         self.leads = {end: then for end, then in self.atomic_ends.items() if end in self.widened}
         self.words = tuple(words)
         self.asks_start = bool(words) or not asserts.isdisjoint(("start", "line-start"))
@@ -154,40 +155,6 @@ class Nfa:
                 minterm for minterm in range(mask.bit_length()) if mask >> minterm & 1
             )
         return found
-
-    def _widened(self) -> frozenset[int]:
-        """The bodies, and the ends of atomic groups, in which something is not said exactly."""
-        found: set[int] = set()
-        for op in self.program.code:
-            if isinstance(op, p.Look) and self._has_widened(op.body):
-                found.add(op.body)
-            elif isinstance(op, p.Atomic) and self._has_widened(op.body):
-                found.add(op.end)
-        return frozenset(found)
-
-    def _has_widened(self, entry: int) -> bool:
-        """Whether a body that begins at `entry` holds a back-reference or a conditional."""
-        stack, seen = [entry], set()
-        while stack:
-            pc = stack.pop()
-            if pc in seen:
-                continue
-            seen.add(pc)
-            op = self.program.code[pc]
-            match op:
-                case p.Back() | p.Test():
-                    return True
-                case p.Look() | p.Atomic():
-                    stack += (op.body, op.next)
-                case p.Fork():
-                    stack += (op.first, op.second)
-                case p.Iterate():
-                    stack += (op.body, op.exit)
-                case p.Accept():
-                    pass
-                case _:
-                    stack.append(op.next)
-        return bool(self.program.locale)
 
     def charge(self, steps: int) -> None:
         """Count what all closures, trackers, look-arounds, vetoes and obligations of this program cost together.
@@ -247,10 +214,7 @@ class Nfa:
                 yield position, FREE
                 yield from self.closure(op.next, context)
             case p.Atomic():
-                before = self._lists[position]
-                moves = steps(self, before, minterm, context, stays=True)
-                threads, _ = prune(self, moves, cut=True)
-                for duty, goes_on in self._atomic(pc, threads, context):
+                for duty, goes_on in self.atomic_after(position, minterm, context):
                     if goes_on is not None:
                         yield goes_on, FREE
                     else:
@@ -276,11 +240,6 @@ class Nfa:
         if any(self.reads[position] for position, _ in threads):
             yield FREE, self._position_of(pc, threads)
 
-    def atomic_at(self, pc: int, op: p.Atomic, context: int) -> Iterator[tuple[Conjunction, int | None]]:
-        """The ways out of an atomic group that is entered here, and the position under way, as `_atomic`."""
-        threads = ((thread, 0) for thread in self.closure(op.body, context))
-        yield from self._atomic(pc, prune(self, threads, cut=True)[0], context)
-
     def atomic_after(
         self, position: int, minterm: int, context: int
     ) -> Iterator[tuple[Conjunction, int | None]]:
@@ -296,7 +255,7 @@ class Nfa:
         asked = self._not_in(pc)
         return FREE if asked == ALL else frozenset((asked,))
 
-    def _enter(self, pc: int, op: p.Atomic, context: int) -> tuple[tuple[Conjunction, int | None], ...]:
+    def atomic_at(self, pc: int, op: p.Atomic, context: int) -> tuple[tuple[Conjunction, int | None], ...]:
         """The ways out of an atomic group that begins here, as `_atomic` gives them."""
         key = (pc, context)
         found = self._entered.get(key)
@@ -397,7 +356,7 @@ class Nfa:
                     if op.end in self.leads:
                         stack.append((op.body, marks, duty))
                         continue
-                    for more, goes_on in self._enter(pc, op, context):
+                    for more, goes_on in self.atomic_at(pc, op, context):
                         if goes_on is not None:
                             threads[goes_on, duty] = None
                         else:

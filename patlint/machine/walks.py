@@ -269,7 +269,7 @@ def _ahead(nfa: Nfa, state: State, context: int, cut: bool) -> tuple[list[Thread
         case p.Atomic():
             if not cut or op.end in nfa.leads:
                 return [], [(op.body, marks, duty)]
-            ends_of = list(nfa.atomic_at(pc, op, context))
+            ends_of = nfa.atomic_at(pc, op, context)
             return (
                 [(goes_on, duty) for _, goes_on in ends_of if goes_on is not None],
                 [(op.next, marks, duty | more) for more, goes_on in ends_of if goes_on is None],

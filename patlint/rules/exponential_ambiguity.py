@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from patlint.rules.finding import Example, Finding, Level, Rule
-from patlint.rules.growth import advice, better, evidence, grows, judged, mode_name, suggestion_of, witness_of
+from patlint.rules.growth import judged, told
 from patlint.rules.subject import Subject
 
 
@@ -14,22 +14,9 @@ def check(subject: Subject) -> Iterator[Finding]:
         slow = ambiguity.slow
         if slow is None or slow.growth != "exponential":
             continue
-        first, *others = slow.parts
         harmless = use is not None and (use.bounded is not None or use.own)
         level: Level = "note" if harmless else RULE.level
-        found = better(subject, manner, slow)
-        yield Finding(
-            RULE.name,
-            level,
-            first,
-            grows(slow),
-            mode=mode_name(manner),
-            witness=witness_of(slow),
-            evidence=evidence(slow),
-            way_out=advice(found, subject, slow),
-            suggestion=suggestion_of(found),
-            marks=tuple(others),
-        )
+        yield told(RULE.name, level, subject, manner, slow)
         return
 
 

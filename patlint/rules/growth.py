@@ -8,7 +8,7 @@ from math import ceil, exp, log
 from patlint.machine.program import one_character
 from patlint.machine.slow_text import Ambiguity, Growth, Manner, SlowText
 from patlint.rewrite.quicker import WayOut, quicker
-from patlint.rules.finding import SlowWitness, Suggestion
+from patlint.rules.finding import Finding, Level, SlowWitness, Suggestion
 from patlint.rules.shorter_equivalent import fences, needed
 from patlint.rules.subject import Subject, manner_of
 from patlint.source.sites import Use
@@ -117,8 +117,25 @@ def better(subject: Subject, manner: Manner, slow: SlowText) -> WayOut | None:
     )
 
 
-def suggestion_of(found: WayOut | None) -> Suggestion | None:
-    return None if found is None else Suggestion(found.pattern, found.keeps)
+def told(
+    rule: str, level: Level, subject: Subject, manner: Manner, slow: SlowText, small: bool = False
+) -> Finding:
+    """The whole finding with its way out; one that is `small` is brief where no better pattern is known."""
+    span, *others = slow.parts or [(0, len(subject.site.pattern))]
+    found = better(subject, manner, slow)
+    return Finding(
+        rule,
+        level,
+        span,
+        grows(slow),
+        mode=mode_name(manner),
+        witness=witness_of(slow),
+        evidence=evidence(slow),
+        way_out=advice(found, subject, slow),
+        suggestion=None if found is None else Suggestion(found.pattern, found.keeps),
+        marks=tuple(others),
+        brief=small and found is None,
+    )
 
 
 def advice(found: WayOut | None, subject: Subject, slow: SlowText) -> str:

@@ -6,20 +6,7 @@ from collections.abc import Iterator
 
 from patlint.machine.slow_text import Manner, SlowText
 from patlint.rules.finding import Example, Finding, Level, Rule
-from patlint.rules.growth import (
-    ENDLESS,
-    LONG,
-    advice,
-    at_length,
-    better,
-    evidence,
-    figures,
-    grows,
-    judged,
-    mode_name,
-    suggestion_of,
-    witness_of,
-)
+from patlint.rules.growth import ENDLESS, LONG, at_length, figures, judged, mode_name, told, witness_of
 from patlint.rules.subject import Subject
 from patlint.source.sites import Use
 
@@ -62,21 +49,7 @@ def _finding(subject: Subject, manner: Manner, use: Use | None, slow: SlowText) 
     small = not slow.bounded and (slow.growth == 2 or at_length(slow, LONG)[1] < ENDLESS)
     if small or (use is not None and use.bounded is not None):
         level = "note"
-    span, *others = slow.parts or [(0, len(subject.site.pattern))]
-    found = better(subject, manner, slow)
-    return Finding(
-        RULE.name,
-        level,
-        span,
-        grows(slow),
-        mode=mode_name(manner),
-        witness=witness_of(slow),
-        evidence=evidence(slow),
-        way_out=advice(found, subject, slow),
-        suggestion=suggestion_of(found),
-        marks=tuple(others),
-        brief=small and found is None,
-    )
+    return told(RULE.name, level, subject, manner, slow, small)
 
 
 RULE = Rule(

@@ -8,6 +8,7 @@ of them, or nothing of the use (`function` None).
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 from patlint.source.sinks import ENGINE, SCANNER, Sink, SinkTable
 from patlint.source.sites import Function, LooksAt
@@ -193,32 +194,13 @@ def _tornado() -> Iterator[Sink]:
         ("tornado.routing.ReversibleRuleRouter", "rules"),
     ):
         yield _tornado_row(name, (0, keyword), rows=True)
-    yield Sink(
-        "tornado.web.Application.add_handlers",
-        (0, "host_pattern"),
-        "match",
-        "truth",
-        kind="method",
+    rows = replace(
+        _tornado_row("tornado.web.Application.add_handlers", (1, "host_handlers"), rows=True),
         method=("add_handlers",),
         needs=("tornado",),
-        embedded=True,
-        dollar="match",
-        ends_open=False,
-        selects=True,
     )
-    yield Sink(
-        "tornado.web.Application.add_handlers",
-        (1, "host_handlers"),
-        "match",
-        "groups",
-        kind="rows",
-        method=("add_handlers",),
-        needs=("tornado",),
-        embedded=True,
-        dollar="match",
-        ends_open=False,
-        selects=True,
-    )
+    yield rows
+    yield replace(rows, argument=(0, "host_pattern"), looks_at="truth", kind="method")
 
 
 def _tornado_row(name: str, argument: tuple[int | str, ...], rows: bool = False) -> Sink:

@@ -26,7 +26,7 @@ from __future__ import annotations
 import sys
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from contextlib import suppress
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from math import inf
 
 from patlint.limits import DEFAULT_LIMITS, LimitReached, Limits
@@ -63,16 +63,19 @@ LAZY = 9
 """What it costs that no lazy repeat is left: its author thought of a shortest match."""
 KEPT: tuple[Keeps, ...] = ("groups", "spans", "language")
 Parts = Sequence[tuple[int, int]]
+Grown = tuple[Growth | None, Parts, bool]
+"""A growth, the parts that compete for its text, and whether a suspicion of more was left open."""
 
 
 @dataclass(frozen=True, slots=True)
 class WayOut:
     """`pattern` keeps `keeps`, and its time grows as `growth` (None: with the length) in the manner asked
-    about."""
+    about. `open`: a suspicion of more was left that no text confirmed."""
 
     pattern: str | bytes
     keeps: Keeps
     growth: Growth | None
+    open: bool = False
 
 
 def degree(growth: Growth | None) -> float:
@@ -109,15 +112,15 @@ def quicker(
         step = _step(search, parsed, growths, manner, parts, modes, limits)
         if step is None:
             break
-        now, growth, parts = step
-        found = WayOut(now.text, keeps, growth)
+        now, (growth, parts, is_open) = step
+        found = WayOut(now.text, keeps, growth, is_open)
         growths = {each: growth if each == manner else before for each, before in growths.items()}
         if growth is None or fences or not parts:
             break
     if found is None:
         return None
     stays = next(each for each in KEPT if each == keeps or holds(parsed, now, modes, each, limits))
-    return WayOut(found.pattern, stays, found.growth)
+    return replace(found, keeps=stays)
 
 
 def _step(
@@ -128,9 +131,9 @@ def _step(
     parts: Parts,
     modes: list[Mode],
     limits: Limits,
-) -> tuple[t.Pattern, Growth | None, Parts] | None:
-    """The best pattern with one change that does as `first`, its growth, and the parts that compete in it."""
-    best: tuple[float, tuple[t.Pattern, Growth | None, Parts]] | None = None
+) -> tuple[t.Pattern, Grown] | None:
+    """The best pattern with one change that does as `first`, and how it grows."""
+    best: tuple[t.Pattern, Grown] | None = None
     most = inf if growths[manner] == "exponential" else len(search.text) + DEARER
     ranked = []
     for new, extra in _candidates(search, parts):
@@ -146,11 +149,11 @@ def _step(
         asked += 1
         # Without some ways back an engine is never slower, in whatever manner.
         after = _growth(new, {manner: growths[manner]} if only_less else growths, manner, limits)
-        if after is not None and (best is None or degree(after[0]) < best[0]):
-            best = degree(after[0]), (new, *after)
+        if after is not None and (best is None or degree(after[0]) < degree(best[1][0])):
+            best = new, after
             if after[0] is None:
                 break
-    return None if best is None else best[1]
+    return best
 
 
 def _common(old: str | bytes, new: str | bytes) -> int:
@@ -174,8 +177,8 @@ def _lazy(pattern: t.Pattern) -> int:
 
 def _growth(
     new: t.Pattern, growths: Mapping[Manner, Growth | None], manner: Manner, limits: Limits
-) -> tuple[Growth | None, Parts] | None:
-    """The growth in `manner` and what competes, where it is lower than before, and not higher in other manners."""
+) -> Grown | None:
+    """The growth in `manner`, where it is lower than before, and not higher in other manners."""
     try:
         program = compile_tree(new, limits)
         now = ambiguity_of(program, manner, limits)
@@ -188,7 +191,7 @@ def _growth(
                     return None
     except LimitReached:
         return None
-    return now.growth, () if now.slow is None else now.slow.parts
+    return now.growth, () if now.slow is None else now.slow.parts, now.unconfirmed > 0
 
 
 def _candidates(search: Search, parts: Parts) -> Iterator[tuple[t.Pattern, int]]:

@@ -141,7 +141,10 @@ def told(
 def advice(found: WayOut | None, subject: Subject, slow: SlowText) -> str:
     """Growth as it is and with what is suggested, or else the advice that fits the cause."""
     if found is not None:
-        return f"growth is {named(slow.growth)} as it stands, {named(found.growth)} with the pattern above"
+        after = f"{named(found.growth)} with the pattern above"
+        if found.open:
+            after += ", as far as texts confirm it"
+        return f"growth is {named(slow.growth)} as it stands, {after}"
     stop = separator(subject.pattern.root, slow.parts, subject.pattern.is_bytes)
     if stop is not None:
         return (

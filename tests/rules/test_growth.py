@@ -225,3 +225,13 @@ def test_no_growth_is_missed() -> None:
     tried = campaign(patterns, 2_500, chance)
     assert tried.pairs >= 2_500 and tried.patterns > 50
     assert not tried.misses
+
+
+def test_a_suspicion_that_is_left_open_is_told() -> None:
+    """The possessive group is walked as if it gave back, and no text confirms that: not told as plainly linear."""
+    found = one(r"(\w*)(\d*);", looks_at="groups")
+    assert found.suggestion is not None and found.suggestion.pattern == r"(\w*+)(\d*);"
+    assert (
+        found.way_out
+        == "growth is quadratic as it stands, linear with the pattern above, as far as texts confirm it"
+    )
